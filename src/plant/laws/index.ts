@@ -1,0 +1,16 @@
+import type { Law } from '../../scenario/scenario.ts';
+import { exchange } from './exchange.ts';
+import { formulaLaw, type NameLookup } from './formula.ts';
+import { freundlich } from './freundlich.ts';
+import { langmuir } from './langmuir.ts';
+import type { LawKind } from './law.ts';
+import { ratio } from './ratio.ts';
+import { table } from './table.ts';
+
+/** All equilibrium laws by name. A new law is a file beside this one and a line here. */
+export function lawKinds(lookup: NameLookup): Record<Law['law'], LawKind<never>> {
+  return { ratio, langmuir, freundlich, table, exchange, formula: formulaLaw(lookup) };
+}
+
+/** Letters and digits of a name with everything else as underscores: how a formula can call it. */
+export const formulaName = (name: string): string => name.replace(/[^A-Za-z0-9_]/g, '_');

@@ -1,0 +1,102 @@
+import { hint } from '../scenario/nearest.ts';
+import { type Problem, Refusal } from '../scenario/refusal.ts';
+import type { Path, Phase, Scenario } from '../scenario/scenario.ts';
+
+export type Maker = { readonly kind: 'feed' | 'tank' | 'train'; readonly index: number };
+export type User = { readonly kind: 'tank' | 'train'; readonly index: number };
+
+/** A named stream: who makes it, who takes it. An outlet is taken by nobody. */
+export interface Stream {
+  readonly name: string;
+  readonly phase: Phase;
+  readonly maker: Maker;
+  readonly user: User | null;
+}
+
+export interface Network {
+  readonly streams: ReadonlyMap<string, Stream>;
+  readonly outlets: readonly Stream[];
+  /** The feed or pumped tank that sets the flow of a stream: in full vessels a flow passes at once. */
+  flowSource(stream: string): Maker;
+}
+
+interface End {
+  readonly path: Path;
+  readonly phase: Phase;
+  readonly who: string;
+}
+
+/**
+ * Joins feeds, tanks and trains by the names of their streams.
+ *
+ * @throws Refusal naming every stream that nobody makes, that two make or take, or that has the wrong phase, every
+ * feed that nobody takes, and every loop whose flow no pump sets.
+ */
+export function network(s: Scenario): Network {
+  const problems: Problem[] = [];
+  const makers = new Map<string, End & { maker: Maker }>();
+  const users = new Map<string, End & { user: User }>();
+  const make = (name: string, end: End, maker: Maker): void => {
+    const other = makers.get(name);
+    if (other) {
+      const pumps = end.phase === 'organic' && maker.kind === 'tank' && other.maker.kind === 'tank';
+      const why = pumps ? ' (the flow of a loop is set by exactly one pump)' : '';
+      problems.push({ path: end.path, message: `'${name}' has two makers: ${other.who} and ${end.who}${why}` });
+    } else makers.set(name, { ...end, maker });
+  };
+  const use = (name: string, end: End, user: User): void => {
+    const other = users.get(name);
+    if (other)
+      problems.push({ path: end.path, message: `'${name}' has two takers: ${other.who} and ${end.who}` });
+    else users.set(name, { ...end, user });
+  };
+  s.feeds.forEach((f, index) => {
+    const path = ['feeds', f.name];
+    make(f.name, { path, phase: f.phase, who: `feed ${f.name}` }, { kind: 'feed', index });
+  });
+  s.tanks.forEach((t, index) => {
+    const end = { path: ['tanks', t.name], phase: t.phase, who: `tank ${t.name}` };
+    make(t.to, { ...end, path: ['tanks', t.name, 'to'] }, { kind: 'tank', index });
+    use(t.from, { ...end, path: ['tanks', t.name, 'from'] }, { kind: 'tank', index });
+  });
+  s.trains.forEach((t, index) => {
+    for (const phase of ['aqueous', 'organic'] as const) {
+      const end = { path: ['trains', t.name, phase], phase, who: `train ${t.name} (${phase})` };
+      make(t[phase].to, end, { kind: 'train', index });
+      use(t[phase].from, end, { kind: 'train', index });
+    }
+  });
+
+  const known = [...makers.keys()];
+  for (const [name, u] of users) {
+    const m = makers.get(name);
+    if (!m) problems.push({ path: u.path, message: `nobody makes the stream '${name}'${hint(name, known)}` });
+    else if (m.phase !== u.phase)
+      problems.push({ path: u.path, message: `'${name}' is ${m.phase} (${m.who}), but ${u.who} takes it as ${u.phase}` });
+  }
+  for (const [name, m] of makers)
+    if (m.maker.kind === 'feed' && !users.has(name))
+      problems.push({ path: m.path, message: `nobody takes the feed '${name}'${hint(name, [...users.keys()])}` });
+  if (problems.length > 0) throw new Refusal(problems);
+
+  const streams = new Map<string, Stream>();
+  for (const [name, m] of makers)
+    streams.set(name, { name, phase: m.phase, maker: m.maker, user: users.get(name)?.user ?? null });
+
+  const flowSource = (name: string, seen: readonly string[] = []): Maker => {
+    const { maker, phase } = streams.get(name) as Stream;
+    if (seen.includes(name))
+      throw new Refusal([
+        {
+          path: makers.get(name)?.path ?? [],
+          message: `the ${phase} loop through '${name}' has no pump: give a tank in it a flow`,
+        },
+      ]);
+    if (maker.kind === 'feed') return maker;
+    if (maker.kind === 'train') return flowSource(s.trains[maker.index][phase].from, [...seen, name]);
+    const tank = s.tanks[maker.index];
+    return tank.flow === null ? flowSource(tank.from, [...seen, name]) : maker;
+  };
+  for (const name of streams.keys()) flowSource(name);
+  return { streams, outlets: [...streams.values()].filter((q) => q.user === null), flowSource };
+}

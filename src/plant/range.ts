@@ -1,0 +1,35 @@
+import { sub } from '../math/expression.ts';
+import { kernel } from '../math/kernel.ts';
+import type { Train } from '../scenario/scenario.ts';
+import type { Book } from './book.ts';
+import { perVolume } from './kernels.ts';
+import { mul } from '../math/expression.ts';
+import type { InMixer } from './stage.ts';
+
+const above = kernel('above', ['amount', 'volume', 'least', 'end'], (m, V, least, end) =>
+  sub(mul(m, perVolume(V, least)), end),
+);
+
+/** Beyond the last measured point of an isotherm the figures rest on its end secant: said, with the time. */
+export function writeRangeGuards(book: Book, train: Train, path: string, m: InMixer): void {
+  train.equilibrium.forEach((law, i) => {
+    if (law?.law !== 'table') return;
+    for (const phase of ['aqueous', 'organic'] as const) {
+      const end = law[phase][law[phase].length - 1];
+      const name = `${path}.mixer.${phase}.${book.name(i)}`;
+      book.ledger.guard(
+        {
+          name,
+          direction: 1,
+          message: `${name} rises above ${end} g/L, the end of the measured isotherm; from here on its last secant is used`,
+          action: 'report',
+        },
+        above,
+        m.places[phase][i],
+        m.volume[phase],
+        m.least,
+        book.number(end),
+      );
+    }
+  });
+}

@@ -1,0 +1,273 @@
+import type { Inputs } from './inputs.ts';
+import type { Integrator, OnStep, Settings, Step, Stretch, StretchEnd } from './integrator.ts';
+import { LinearSolver } from './linear.ts';
+import { noWork, type Stop, type Work } from './outcome.ts';
+import { type Combine, combinations, type DenseForm, denseForm } from './stage-sums.ts';
+import type { F, System } from './system.ts';
+import type { Tableau } from './tableau.ts';
+
+/** A new step aims a little below the tolerance, so that few are rejected. */
+const SAFETY = 0.9;
+/** Bounds on the change of step from one to the next: Hairer & Wanner II, Sec. IV.8 (their facl, facr). */
+const SHRINK = 0.2;
+const GROW = 6;
+/** After a trial that was no number or negative the error says nothing about the step: cut it hard. */
+const CUT = 0.25;
+/** A trial state may lie below its floor by this many absolute tolerances. */
+const BELOW_FLOOR = 10;
+/** Smallest step, relative to the time reached and to the stretch: below it t + h loses its digits. */
+const SMALLEST = 1e-13;
+
+/** Linearly implicit one-step integrator: one Jacobian and one factorisation a step, exact f_t along ramps. */
+export class Rosenbrock implements Integrator {
+  readonly name: string;
+  readonly work: Work = noWork();
+  readonly #system: System;
+  readonly #p: F;
+  readonly #table: Tableau;
+  readonly #settings: Settings;
+  readonly #linear: LinearSolver;
+  readonly #jacobian: F;
+  readonly #byInput: F;
+  readonly #combine: readonly Combine[];
+  readonly #absolute: F;
+  /** 1 where a place takes part in the error norm; boundary totals have no feedback and do not. */
+  readonly #judged: Uint8Array;
+  readonly #floor: F;
+  readonly #u: F;
+  readonly #x1: F;
+  readonly #trial: F;
+  readonly #dx: F;
+  readonly #ft: F;
+  readonly #w: F;
+  readonly #dw: F;
+  readonly #one: F;
+  #moving = false;
+  /** The step that the error would allow, kept over corners: a step cut short by a corner says nothing. */
+  #natural: number;
+  #error = 0;
+  #worst = 0;
+
+  constructor(system: System, p: F, settings: Settings, table: Tableau) {
+    const n = system.places.length;
+    this.name = table.name.toLowerCase();
+    this.#system = system;
+    this.#p = p;
+    this.#table = table;
+    this.#settings = settings;
+    this.#linear = new LinearSolver(system.A);
+    this.#jacobian = new Float64Array(system.A.column.length);
+    this.#byInput = new Float64Array(system.B.column.length);
+    this.#combine = combinations(table);
+    this.#absolute = Float64Array.from(system.places, (q) => settings.tolerance.relative * q.scale);
+    this.#judged = Uint8Array.from(system.places, (q) => (q.kind === 'total' ? 0 : 1));
+    this.#floor = Float64Array.from(system.places, (q, i) =>
+      q.floor === null ? -Infinity : q.floor - BELOW_FLOOR * this.#absolute[i],
+    );
+    this.#u = new Float64Array(n * table.alpha.length);
+    this.#x1 = new Float64Array(n);
+    this.#trial = new Float64Array(n);
+    this.#dx = new Float64Array(n);
+    this.#ft = new Float64Array(n);
+    this.#one = new Float64Array(n);
+    this.#w = new Float64Array(system.inputs.length);
+    this.#dw = new Float64Array(system.inputs.length);
+    this.#natural = settings.firstStep;
+  }
+
+  advance({ from, to, inputs }: Stretch, x: F, onStep: OnStep): StretchEnd {
+    const { work } = this;
+    const table = this.#table;
+    const exponent = -1 / table.order;
+    work.restarts += 1;
+    inputs.slope(this.#dw);
+    this.#moving = this.#dw.some((v) => v !== 0);
+    const smallest = SMALLEST * Math.max(Math.abs(from), Math.abs(to), to - from);
+    const dense = new DenseStep(x, this.#x1, this.#u, table);
+    let t = from;
+    let grow = GROW;
+    while (t < to) {
+      if (work.steps >= this.#settings.maximumSteps)
+        return failed({ reason: 'too-many-steps', time: t, limit: this.#settings.maximumSteps });
+      this.#prepare(t, x, inputs);
+      for (;;) {
+        const left = to - t;
+        const cut = this.#natural >= left * (1 - 1e-12);
+        const h = cut ? left : Math.min(this.#natural, left > 2 * this.#natural ? left : left / 2);
+        const verdict = this.#attempt(t, h, x, inputs);
+        if (verdict === 'accepted') {
+          const factor = Math.min(grow, Math.max(SHRINK, SAFETY * this.#error ** exponent));
+          // A step that a corner cut short may only raise the natural step, never lower it.
+          this.#natural = cut ? Math.max(this.#natural, h * factor) : h * factor;
+          grow = GROW;
+          work.steps += 1;
+          dense.open(t, cut ? to : t + h);
+          const end = onStep(dense);
+          if (end < dense.t1) {
+            dense.at(end, this.#trial);
+            x.set(this.#trial);
+            return { ended: 'asked', time: end };
+          }
+          x.set(this.#x1);
+          t = dense.t1;
+          break;
+        }
+        grow = 1;
+        if (verdict === 'error') {
+          work.rejectedByError += 1;
+          this.#natural = h * Math.min(1, Math.max(SHRINK, SAFETY * this.#error ** exponent));
+        } else {
+          if (verdict === 'negative') work.rejectedByNegative += 1;
+          else if (verdict === 'not-finite') work.rejectedByNonFinite += 1;
+          else work.rejectedBySingular += 1;
+          this.#natural = h * CUT;
+        }
+        if (this.#natural < smallest) return failed(this.#tooSmall(t, verdict));
+      }
+    }
+    return { ended: 'at-end' };
+  }
+
+  #tooSmall(time: number, verdict: Exclude<Verdict, 'accepted'>): Stop {
+    const place = this.#system.places[this.#worst]?.path ?? 'the plant';
+    if (verdict === 'not-finite') return { reason: 'not-finite', time, place };
+    const cause = {
+      error: 'no step is small enough for the tolerance',
+      negative: 'every trial step makes it negative',
+      singular: 'the equations have no unique solution there',
+    }[verdict];
+    return { reason: 'step-too-small', time, place, cause };
+  }
+
+  /** Jacobian and f_t at (t, x): they serve every attempt from this point. */
+  #prepare(t: number, x: F, inputs: Inputs): void {
+    inputs.value(t, this.#w);
+    this.#system.jacobian(x, this.#w, this.#p, this.#jacobian);
+    this.work.jacobians += 1;
+    if (!this.#moving) return;
+    this.#system.byInput(x, this.#w, this.#p, this.#byInput);
+    const { rowStart, column } = this.#system.B;
+    for (let i = 0; i < this.#ft.length; i++) {
+      let s = 0;
+      for (let k = rowStart[i]; k < rowStart[i + 1]; k++) s += this.#byInput[k] * this.#dw[column[k]];
+      this.#ft[i] = s;
+    }
+  }
+
+  #attempt(t: number, h: number, x: F, inputs: Inputs): Verdict {
+    const table = this.#table;
+    const n = x.length;
+    const stages = table.alpha.length;
+    const trial = this.#trial;
+    const dx = this.#dx;
+    const ft = this.#ft;
+    const u = this.#u;
+    const one = this.#one;
+    this.#linear.factor(this.#jacobian, 1 / (h * table.gamma));
+    for (let i = 0; i < stages; i++) {
+      this.#combine[i].state(n, x, u, trial);
+      if (this.#moving) inputs.value(t + table.alpha[i] * h, this.#w);
+      this.#system.rhs(trial, this.#w, this.#p, dx);
+      this.#combine[i].slope(n, dx, u, one, 1 / h);
+      if (this.#moving && table.d[i] !== 0) {
+        const hd = h * table.d[i];
+        for (let k = 0; k < n; k++) one[k] += hd * ft[k];
+      }
+      if (!this.#linear.solve(one)) return this.#count(i + 1, 'singular');
+      u.set(one, i * n);
+    }
+    const x1 = this.#x1;
+    const absolute = this.#absolute;
+    const relative = this.#settings.tolerance.relative;
+    let worst = 0;
+    let below = -1;
+    let at = 0;
+    for (let k = 0; k < n; k++) {
+      const v = trial[k] + one[k];
+      x1[k] = v;
+      if (v < this.#floor[k]) below = k;
+      if (!this.#judged[k]) {
+        if (Number.isFinite(v)) continue;
+        worst = Number.NaN;
+        at = k;
+        break;
+      }
+      const e = Math.abs(one[k]) / (absolute[k] + relative * Math.max(Math.abs(x[k]), Math.abs(v)));
+      if (!(e <= worst)) {
+        worst = e;
+        at = k;
+        if (!(e < Infinity)) break;
+      }
+    }
+    this.#worst = at;
+    // An error of exactly zero (nothing moves) must not give an infinite next step.
+    this.#error = Math.max(worst, 1e-10);
+    if (!Number.isFinite(worst)) return this.#count(stages, 'not-finite');
+    if (worst > 1) return this.#count(stages, 'error');
+    if (below >= 0) {
+      this.#worst = below;
+      return this.#count(stages, 'negative');
+    }
+    return this.#count(stages, 'accepted');
+  }
+
+  #count(stages: number, verdict: Verdict): Verdict {
+    const { work } = this;
+    work.rhs += stages;
+    const linear = this.#linear.work;
+    work.factorisations = linear.factorisations;
+    work.solves = linear.solves;
+    work.refinements = linear.refinements;
+    work.pivotings = linear.pivotings;
+    return verdict;
+  }
+}
+
+type Verdict = 'accepted' | 'error' | 'negative' | 'not-finite' | 'singular';
+
+const failed = (stop: Stop): StretchEnd => ({ ended: 'failed', stop });
+
+/** The dense output of a step; its coefficients are formed when first asked for. */
+class DenseStep implements Step {
+  t0 = 0;
+  t1 = 0;
+  readonly x1: F;
+  readonly #x0: F;
+  readonly #u: F;
+  readonly #k: F;
+  readonly #terms: number;
+  readonly #form: DenseForm;
+  #formed = false;
+
+  constructor(x0: F, x1: F, u: F, table: Tableau) {
+    this.#x0 = x0;
+    this.x1 = x1;
+    this.#u = u;
+    this.#terms = table.dense.length;
+    this.#k = new Float64Array(3 * x1.length);
+    this.#form = denseForm(table);
+  }
+
+  open(t0: number, t1: number): void {
+    this.t0 = t0;
+    this.t1 = t1;
+    this.#formed = false;
+  }
+
+  at(t: number, x: F): void {
+    const n = this.x1.length;
+    const k = this.#k;
+    if (!this.#formed) {
+      this.#form(n, this.#u, k);
+      this.#formed = true;
+    }
+    const s = (t - this.t0) / (this.t1 - this.t0);
+    const r = 1 - s;
+    const x0 = this.#x0;
+    const x1 = this.x1;
+    if (this.#terms === 3)
+      for (let i = 0; i < n; i++)
+        x[i] = x0[i] * r + s * (x1[i] + r * (k[i] + s * (k[n + i] + s * k[2 * n + i])));
+    else for (let i = 0; i < n; i++) x[i] = x0[i] * r + s * (x1[i] + r * (k[i] + s * k[n + i]));
+  }
+}
