@@ -1,4 +1,19 @@
-import { add, call, constant, div, type Expr, exp, log, mul, neg, pow, select, sqrt, sub, tanh } from './expression.ts';
+import {
+  add,
+  call,
+  constant,
+  div,
+  type Expr,
+  exp,
+  log,
+  mul,
+  neg,
+  pow,
+  select,
+  sqrt,
+  sub,
+  tanh,
+} from './expression.ts';
 
 /**
  * ∂root/∂input(slot), an expression.

@@ -13,13 +13,29 @@ export interface Special {
   partials(args: readonly Expr[], self: Expr): Expr[];
 }
 
-export type Operator = 'add' | 'sub' | 'mul' | 'div' | 'neg' | 'pow' | 'exp' | 'log' | 'sqrt' | 'tanh' | 'select';
+export type Operator =
+  | 'add'
+  | 'sub'
+  | 'mul'
+  | 'div'
+  | 'neg'
+  | 'pow'
+  | 'exp'
+  | 'log'
+  | 'sqrt'
+  | 'tanh'
+  | 'select';
 
 export type Expr =
   | { readonly kind: 'constant'; readonly id: number; readonly value: number }
   | { readonly kind: 'input'; readonly id: number; readonly slot: number }
   | { readonly kind: 'operation'; readonly id: number; readonly op: Operator; readonly args: readonly Expr[] }
-  | { readonly kind: 'special'; readonly id: number; readonly special: Special; readonly args: readonly Expr[] };
+  | {
+      readonly kind: 'special';
+      readonly id: number;
+      readonly special: Special;
+      readonly args: readonly Expr[];
+    };
 
 const known = new Map<string, Expr>();
 const specialNumber = new WeakMap<Special, number>();
@@ -51,7 +67,12 @@ export function call(special: Special, ...args: Expr[]): Expr {
     n = specials;
     specialNumber.set(special, n);
   }
-  return intern(`f${n}(${args.map((a) => a.id).join(',')})`, (id) => ({ kind: 'special', id, special, args }));
+  return intern(`f${n}(${args.map((a) => a.id).join(',')})`, (id) => ({
+    kind: 'special',
+    id,
+    special,
+    args,
+  }));
 }
 
 type Operand = Expr | number;

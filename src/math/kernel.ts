@@ -17,7 +17,12 @@ export interface Kernel {
 export type Effect = 'assign' | 'move';
 export const targetsPer = { assign: 1, move: 2 } as const;
 
-export type Run = (instances: number, references: Int32Array, board: Float64Array, target: Float64Array) => void;
+export type Run = (
+  instances: number,
+  references: Int32Array,
+  board: Float64Array,
+  target: Float64Array,
+) => void;
 /** Writes `pairs.length` partial derivatives an instance, instance-major. */
 export type Derive = Run;
 

@@ -72,7 +72,13 @@ export class MonotoneCubic {
     const i = interval(this.y, y);
     const [a, b] = [this.x[i], this.x[i + 1]];
     const guess = a + ((b - a) * (y - this.y[i])) / (this.y[i + 1] - this.y[i]);
-    return risingRoot((x) => this.value(x) - y, (x) => this.slope(x), a, b, guess).value;
+    return risingRoot(
+      (x) => this.value(x) - y,
+      (x) => this.slope(x),
+      a,
+      b,
+      guess,
+    ).value;
   }
 }
 

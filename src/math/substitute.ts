@@ -1,5 +1,5 @@
-import { call, type Expr, type Operator } from './expression.ts';
 import * as x from './expression.ts';
+import { call, type Expr, type Operator } from './expression.ts';
 
 const rebuild: Record<Operator, (...args: Expr[]) => Expr> = {
   add: x.add,

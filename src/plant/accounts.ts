@@ -23,14 +23,24 @@ export function accounts(
   fixedVolume: Readonly<Record<Phase, number>>,
 ): Account[] {
   const n = book.solutes + book.s.species.length;
-  const side = (list: readonly Totals[], which: 'in' | 'out', pick: (t: Totals) => Ref | undefined): number[] =>
-    list.filter((t) => t.side === which).flatMap((t) => pick(t)?.index ?? []);
+  const side = (
+    list: readonly Totals[],
+    which: 'in' | 'out',
+    pick: (t: Totals) => Ref | undefined,
+  ): number[] => list.filter((t) => t.side === which).flatMap((t) => pick(t)?.index ?? []);
   const components = Array.from({ length: n }, (_, k): Account => {
     const held = book.ledger.places.flatMap((p, i) =>
       p.kind === 'amount' && p.path.endsWith(`.${book.name(k)}`) ? [i] : [],
     );
     const pick = (t: Totals): Ref | undefined => t.components[k];
-    return { name: book.name(k), unit: 'kg', held, fixed: 0, entered: side(totals, 'in', pick), left: side(totals, 'out', pick) };
+    return {
+      name: book.name(k),
+      unit: 'kg',
+      held,
+      fixed: 0,
+      entered: side(totals, 'in', pick),
+      left: side(totals, 'out', pick),
+    };
   });
   const volumes = (['aqueous', 'organic'] as const).map((phase): Account => {
     const own = totals.filter((t) => t.phase === phase);

@@ -1,4 +1,5 @@
 import { type Execution, generated } from '../math/kernel.ts';
+import { type Maker, type Network, network, type Stream } from '../scenario/network.ts';
 import type { Phase, Scenario, Tank, Train } from '../scenario/scenario.ts';
 import type { F, System } from '../solve/system.ts';
 import { type Account, accounts } from './accounts.ts';
@@ -9,7 +10,6 @@ import { holdWhatOnlyCirculates } from './circulating.ts';
 import { entering } from './entering.ts';
 import { passed, same } from './kernels.ts';
 import type { Ref } from './ledger.ts';
-import { type Maker, type Network, network, type Stream } from './network.ts';
 import { type Flows, type Laws, type WrittenStage, writeStage } from './stage.ts';
 import { type WrittenTank, writeTank, writeTankEvents } from './tank.ts';
 
@@ -85,7 +85,9 @@ class PlantWriter {
       this.totals.push(entered);
     }
     // A tank without a pump passes on what it gets, so it is written after the source of its flow.
-    const order = tanks.map((_, i) => i).sort((a, b) => Number(tanks[a].flow === null) - Number(tanks[b].flow === null));
+    const order = tanks
+      .map((_, i) => i)
+      .sort((a, b) => Number(tanks[a].flow === null) - Number(tanks[b].flow === null));
     for (const i of order) this.#tanks[i] = this.#writeTank(tanks[i]);
     trains.forEach((t, i) => {
       this.#trains[i] = this.#writeStages(t);
@@ -105,7 +107,13 @@ class PlantWriter {
     const source = this.#net.flowSource(t.from);
     const own = this.#net.flowSource(t.to);
     const levelMoves = t.flow !== null && !(source.kind === own.kind && source.index === own.index);
-    const w = writeTank(this.#book, t, levelMoves || t.flow !== null ? null : this.#flow(source), levelMoves, t.content);
+    const w = writeTank(
+      this.#book,
+      t,
+      levelMoves || t.flow !== null ? null : this.#flow(source),
+      levelMoves,
+      t.content,
+    );
     if (w.volume === null) this.fixedVolume[t.phase] += t.held;
     else this.levels.push({ phase: t.phase, place: w.volume });
     if (w.lost) this.totals.push(w.lost);
@@ -127,7 +135,10 @@ class PlantWriter {
   }
 
   #writeStages(t: Train): WrittenStage[] {
-    const source = { aqueous: this.#net.flowSource(t.aqueous.from), organic: this.#net.flowSource(t.organic.from) };
+    const source = {
+      aqueous: this.#net.flowSource(t.aqueous.from),
+      organic: this.#net.flowSource(t.organic.from),
+    };
     const flows: Flows = {
       aqueous: this.#flow(source.aqueous),
       organic: this.#flow(source.organic),
@@ -175,7 +186,10 @@ class PlantWriter {
   #writeVolumes(): void {
     const { ledger } = this.#book;
     this.#s.feeds.forEach((f, i) => {
-      ledger.flux(passed, [this.#feeds[i].flow], { from: this.totals[i].volume, to: this.#volumeEnd(f.name) });
+      ledger.flux(passed, [this.#feeds[i].flow], {
+        from: this.totals[i].volume,
+        to: this.#volumeEnd(f.name),
+      });
     });
     this.#s.tanks.forEach((t, i) => {
       const w = this.#tanks[i];

@@ -1,9 +1,9 @@
 import type { Kernel } from '../math/kernel.ts';
-import type { Named, Place, SteadyRow } from '../solve/system.ts';
+import type { Network } from '../scenario/network.ts';
 import type { Phase, Scenario } from '../scenario/scenario.ts';
+import type { Named, Place, SteadyRow } from '../solve/system.ts';
 import { carried, concentration, mixerConcentration } from './kernels.ts';
 import { Ledger, type Ref } from './ledger.ts';
-import type { Network } from './network.ts';
 import { mixerSpecies, speciesConcentration } from './released.ts';
 
 /** Share of a vessel below which it counts as nearly empty. */
@@ -130,7 +130,12 @@ export class Book {
   }
 
   /** The same for a mixer phase, whose volume may vanish. */
-  mixerContentOf(places: readonly Ref[], volume: Ref, least: Ref, k: number): { kernel: Kernel; args: Ref[] } {
+  mixerContentOf(
+    places: readonly Ref[],
+    volume: Ref,
+    least: Ref,
+    k: number,
+  ): { kernel: Kernel; args: Ref[] } {
     if (k < this.solutes) return { kernel: mixerConcentration, args: [places[k], volume, least] };
     const bound = this.releasing(k - this.solutes, places);
     return { kernel: mixerSpecies(bound.length / 2), args: [places[k], volume, least, ...bound] };

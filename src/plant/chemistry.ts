@@ -1,6 +1,7 @@
 import { add, type Expr, mul, sub } from '../math/expression.ts';
+import { formulaName } from '../scenario/names.ts';
 import type { Law, Scenario, Train } from '../scenario/scenario.ts';
-import { formulaName, lawKinds } from './laws/index.ts';
+import { lawKinds } from './laws/index.ts';
 import type { LawKind, LawNumber, Local, Member } from './laws/law.ts';
 
 /** The laws of one train at work on expressions. */
@@ -24,9 +25,17 @@ export function chemistry(s: Scenario, train: Train): Chemistry {
   const kindOf = (law: Law): LawKind<Law> => kinds[law.law] as LawKind<Law>;
   const solutes = s.solutes.flatMap((_, i) => (train.equilibrium[i] ? [i] : []));
   const law = (i: number): Law => train.equilibrium[i] as Law;
-  const numbers = solutes.flatMap((solute) => kindOf(law(solute)).numbers(law(solute)).map((q) => ({ ...q, solute })));
+  const numbers = solutes.flatMap((solute) =>
+    kindOf(law(solute))
+      .numbers(law(solute))
+      .map((q) => ({ ...q, solute })),
+  );
   const members = (q: readonly Expr[]): Member<Law>[] =>
-    solutes.map((solute) => ({ solute, law: law(solute), q: q.filter((_, k) => numbers[k].solute === solute) }));
+    solutes.map((solute) => ({
+      solute,
+      law: law(solute),
+      q: q.filter((_, k) => numbers[k].solute === solute),
+    }));
   return {
     solutes,
     numbers,

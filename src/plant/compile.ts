@@ -19,10 +19,35 @@ export function compile(ledger: Ledger, execution: Execution): System {
   const level = signalLevel(ledger);
   const at = (target: (i: number) => number) => ({ address, target });
 
-  const signals = group(ledger.signals, 'assign', execution, activity, at((i) => start.z + i), (e) => level[e.targets[0]]);
-  const fluxes = group(ledger.fluxes, 'move', execution, activity, at((i) => (i < 0 ? nx : i)));
-  const outputs = group(ledger.outputEntries, 'assign', execution, activity, at((i) => i));
-  const guards = group(ledger.guardEntries, 'assign', execution, activity, at((i) => i));
+  const signals = group(
+    ledger.signals,
+    'assign',
+    execution,
+    activity,
+    at((i) => start.z + i),
+    (e) => level[e.targets[0]],
+  );
+  const fluxes = group(
+    ledger.fluxes,
+    'move',
+    execution,
+    activity,
+    at((i) => (i < 0 ? nx : i)),
+  );
+  const outputs = group(
+    ledger.outputEntries,
+    'assign',
+    execution,
+    activity,
+    at((i) => i),
+  );
+  const guards = group(
+    ledger.guardEntries,
+    'assign',
+    execution,
+    activity,
+    at((i) => i),
+  );
 
   const chainX = new SignalChain(signals, ledger.signalCount, 'x');
   const chainW = new SignalChain(signals, ledger.signalCount, 'w');
@@ -100,8 +125,12 @@ function hash(ledger: Ledger): string {
   const entry = (e: { kernel: { name: string }; args: readonly Ref[]; targets: readonly number[] }): string =>
     `${e.kernel.name}(${e.args.map((r) => r.space + r.index)})>${e.targets}`;
   const text = [
-    ...[ledger.places, ledger.inputs, ledger.parameters, ledger.outputs].map((l) => l.map((q) => q.path).join('|')),
-    ...[ledger.signals, ledger.fluxes, ledger.outputEntries, ledger.guardEntries].map((l) => l.map(entry).join('|')),
+    ...[ledger.places, ledger.inputs, ledger.parameters, ledger.outputs].map((l) =>
+      l.map((q) => q.path).join('|'),
+    ),
+    ...[ledger.signals, ledger.fluxes, ledger.outputEntries, ledger.guardEntries].map((l) =>
+      l.map(entry).join('|'),
+    ),
   ].join('\n');
   return createHash('sha256').update(text).digest('hex').slice(0, 16);
 }

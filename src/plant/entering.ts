@@ -1,11 +1,15 @@
+import type { Network, Stream } from '../scenario/network.ts';
 import type { Phase, Scenario, Train } from '../scenario/scenario.ts';
-import type { Network, Stream } from './network.ts';
 
 /**
  * What a train's vessels hold at the barren start, kg/m³ by component: the aqueous as what enters the train but
  * without solutes, the organic as the organic that enters it; or as the scenario says.
  */
-export function entering(s: Scenario, net: Network, t: Train): { aqueous: readonly number[]; organic: readonly number[] } {
+export function entering(
+  s: Scenario,
+  net: Network,
+  t: Train,
+): { aqueous: readonly number[]; organic: readonly number[] } {
   const { aqueous, organic } = t.initial;
   const liquor = (): readonly number[] => upstream(s, net, t.aqueous.from, 'aqueous', []);
   return {
@@ -20,7 +24,13 @@ export function entering(s: Scenario, net: Network, t: Train): { aqueous: readon
 }
 
 /** Composition at time zero of the feed or tank from which a stream comes, through however many trains. */
-function upstream(s: Scenario, net: Network, name: string, phase: Phase, seen: readonly string[]): readonly number[] {
+function upstream(
+  s: Scenario,
+  net: Network,
+  name: string,
+  phase: Phase,
+  seen: readonly string[],
+): readonly number[] {
   const { maker } = net.streams.get(name) as Stream;
   if (maker.kind === 'feed') return s.feeds[maker.index].content;
   if (maker.kind === 'tank') return s.tanks[maker.index].content;

@@ -18,8 +18,10 @@ export const fed = kernel('fed', ['flow', 'content'], (q, c) => mul(q, c));
 export const passed = kernel('passed', ['flow'], (q) => q);
 
 /** A full, well-mixed mixer gives up of everything in it the share (Q_a + Q_o)/V a second: no slip. */
-export const overflowed = kernel('mixer overflow', ['aqueous flow', 'organic flow', 'volume', 'amount'], (a, o, V, m) =>
-  mul(div(add(a, o), V), m),
+export const overflowed = kernel(
+  'mixer overflow',
+  ['aqueous flow', 'organic flow', 'volume', 'amount'],
+  (a, o, V, m) => mul(div(add(a, o), V), m),
 );
 
 /** Organic volume in a mixer whose flows do not move: V·Q_o/(Q_a + Q_o). */
@@ -52,8 +54,10 @@ export const partFlow = kernel(
 export const pumped = kernel('pumped', ['set flow', 'running'], (q, on) => mul(q, on));
 
 /** What a full tank cannot keep: inflow less outflow, while it overflows. */
-export const spilled = kernel('spilled', ['overflowing', 'inflow', 'outflow', 'share'], (on, qin, qout, share) =>
-  mul(on, sub(qin, qout), share),
+export const spilled = kernel(
+  'spilled',
+  ['overflowing', 'inflow', 'outflow', 'share'],
+  (on, qin, qout, share) => mul(on, sub(qin, qout), share),
 );
 
 export const same = kernel('same', ['value'], (v) => v);
@@ -61,6 +65,8 @@ export const same = kernel('same', ['value'], (v) => v);
 export const concentration = kernel('concentration', ['amount', 'perVolume'], (m, i) => mul(m, i));
 
 /** c = m/V in a mixer phase that may vanish. */
-export const mixerConcentration = kernel('mixer concentration', ['amount', 'volume', 'least'], (m, V, least) =>
-  mul(m, perVolume(V, least)),
+export const mixerConcentration = kernel(
+  'mixer concentration',
+  ['amount', 'volume', 'least'],
+  (m, V, least) => mul(m, perVolume(V, least)),
 );

@@ -16,7 +16,14 @@ interface Layer {
 }
 
 /** A settler layer: from the mixer overflow to the last part, which is what leaves. Returns the last part. */
-export function writeLayer(book: Book, path: string, phase: Phase, volume: number, parts: number, l: Layer): Part {
+export function writeLayer(
+  book: Book,
+  path: string,
+  phase: Phase,
+  volume: number,
+  parts: number,
+  l: Layer,
+): Part {
   const { ledger } = book;
   const { flows } = l;
   const n = book.number(parts);
@@ -32,7 +39,15 @@ export function writeLayer(book: Book, path: string, phase: Phase, volume: numbe
       });
     else {
       const between = flows.move
-        ? ledger.signal(partFlow, l.mixerHolds, l.V, flows.aqueous, flows.organic, flows[phase], book.number((k - 1) / parts))[0]
+        ? ledger.signal(
+            partFlow,
+            l.mixerHolds,
+            l.V,
+            flows.aqueous,
+            flows.organic,
+            flows[phase],
+            book.number((k - 1) / parts),
+          )[0]
         : flows[phase];
       book.sourceOf(last, between).send(places);
     }

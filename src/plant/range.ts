@@ -1,9 +1,8 @@
-import { sub } from '../math/expression.ts';
+import { mul, sub } from '../math/expression.ts';
 import { kernel } from '../math/kernel.ts';
 import type { Train } from '../scenario/scenario.ts';
 import type { Book } from './book.ts';
 import { perVolume } from './kernels.ts';
-import { mul } from '../math/expression.ts';
 import type { InMixer } from './stage.ts';
 
 const above = kernel('above', ['amount', 'volume', 'least', 'end'], (m, V, least, end) =>

@@ -15,7 +15,8 @@ const once = (key: string, make: () => Kernel): Kernel => {
   return found;
 };
 
-const pairs = (n: number): string[] => Array.from({ length: n }, (_, i) => [`release ${i + 1}`, `solute ${i + 1}`]).flat();
+const pairs = (n: number): string[] =>
+  Array.from({ length: n }, (_, i) => [`release ${i + 1}`, `solute ${i + 1}`]).flat();
 
 const released = (args: readonly Expr[]): Expr =>
   add(...Array.from({ length: args.length / 2 }, (_, i) => mul(args[2 * i], args[2 * i + 1])));
@@ -23,13 +24,17 @@ const released = (args: readonly Expr[]): Expr =>
 /** Flux of w in a feed with n releasing solutes: q·(c_species + Σ rᵢ·cᵢ). */
 export const fedCarrier = (n: number): Kernel =>
   once(`fed ${n}`, () =>
-    kernel(`fed carrier of ${n}`, ['flow', 'content', ...pairs(n)], (q, c, ...rest) => mul(q, add(c, released(rest)))),
+    kernel(`fed carrier of ${n}`, ['flow', 'content', ...pairs(n)], (q, c, ...rest) =>
+      mul(q, add(c, released(rest))),
+    ),
   );
 
 /** Species concentration from w: (w − Σ rᵢ·m_a,i)/V. */
 export const speciesConcentration = (n: number): Kernel =>
   once(`species ${n}`, () =>
-    kernel(`species of ${n}`, ['carrier', 'perVolume', ...pairs(n)], (w, i, ...rest) => mul(sub(w, released(rest)), i)),
+    kernel(`species of ${n}`, ['carrier', 'perVolume', ...pairs(n)], (w, i, ...rest) =>
+      mul(sub(w, released(rest)), i),
+    ),
   );
 
 /** The same in a mixer phase that may vanish. */

@@ -47,7 +47,9 @@ export function writeStage(
   const share = flows.design.organic / (flows.design.aqueous + flows.design.organic);
   const holds = { organic: mixer.volume * share, aqueous: mixer.volume * (1 - share) };
 
-  const Vo = flows.move ? movingHoldup(book, path, mixer, holds.organic, V, flows) : ledger.signal(steadyHoldup, flows.aqueous, flows.organic, V)[0];
+  const Vo = flows.move
+    ? movingHoldup(book, path, mixer, holds.organic, V, flows)
+    : ledger.signal(steadyHoldup, flows.aqueous, flows.organic, V)[0];
   const volume = { organic: Vo, aqueous: ledger.signal(difference, V, Vo)[0] };
   const least = book.number(mixer.volume * VANISHING);
 
@@ -130,7 +132,15 @@ function writeTransfer(book: Book, path: string, mixer: Mixer, laws: Laws, flows
   ledger.flux(
     transferKernel(s, mixer, chemistry),
     [
-      ...[m.volume.aqueous, m.volume.organic, m.V, m.least, ka, book.number(designArea(mixer, m.share)), running],
+      ...[
+        m.volume.aqueous,
+        m.volume.organic,
+        m.V,
+        m.least,
+        ka,
+        book.number(designArea(mixer, m.share)),
+        running,
+      ],
       ...s.solutes.flatMap((_, i) => [aqueous[i], organic[i]]),
       ...aqueous.slice(book.solutes),
       ...book.releases.flatMap((row) => row.filter((r): r is Ref => r !== null)),

@@ -28,9 +28,16 @@ export interface WrittenTank {
 }
 
 /** Places and pump of a tank. Its level is a state only where inflow and pump can differ. */
-export function writeTank(book: Book, t: Tank, passing: Ref | null, levelMoves: boolean, content: readonly number[]): WrittenTank {
+export function writeTank(
+  book: Book,
+  t: Tank,
+  passing: Ref | null,
+  levelMoves: boolean,
+  content: readonly number[],
+): WrittenTank {
   const { ledger } = book;
-  const set = t.flow === null ? null : book.input({ path: `${t.name}.flow`, unit: 'm^3/s', scale: t.flow }, t.flow);
+  const set =
+    t.flow === null ? null : book.input({ path: `${t.name}.flow`, unit: 'm^3/s', scale: t.flow }, t.flow);
   if (!levelMoves) {
     const inlet = book.amounts(t.name, t.phase, t.held, content);
     const V = ledger.parameter(`${t.name}.held`, 'm^3', t.held);
@@ -74,15 +81,36 @@ export function writeTankEvents(book: Book, t: Tank, w: WrittenTank, inflow: Ref
     ledger.flux(spilledAmount, [overflowing, inflow, out, m, perVolume], move);
   });
   ledger.flux(spilledVolume, [overflowing, inflow, out], { from: w.volume, to: w.lost.volume });
-  const at = (name: string, direction: 1 | -1, message: string, set: [number, number]): Parameters<typeof ledger.guard>[0] => ({
+  const at = (
+    name: string,
+    direction: 1 | -1,
+    message: string,
+    set: [number, number],
+  ): Parameters<typeof ledger.guard>[0] => ({
     name: `${t.name} ${name}`,
     direction,
     message: `${t.name} ${message}`,
     action: { set: [set] },
   });
   const bound = (share: number): Ref => book.number(t.volume * share);
-  ledger.guard(at('empty', -1, 'has run empty; its pump stops', [pump, 0]), margin, w.volume, bound(NEARLY_EMPTY));
-  ledger.guard(at('refilled', 1, 'holds enough again; its pump restarts', [pump, 1]), margin, w.volume, bound(RESTART));
+  ledger.guard(
+    at('empty', -1, 'has run empty; its pump stops', [pump, 0]),
+    margin,
+    w.volume,
+    bound(NEARLY_EMPTY),
+  );
+  ledger.guard(
+    at('refilled', 1, 'holds enough again; its pump restarts', [pump, 1]),
+    margin,
+    w.volume,
+    bound(RESTART),
+  );
   ledger.guard(at('full', 1, 'is full and overflows', [overflowing.index, 1]), margin, w.volume, bound(1));
-  ledger.guard(at('spilling ends', -1, 'no longer overflows', [overflowing.index, 0]), gains, overflowing, inflow, out);
+  ledger.guard(
+    at('spilling ends', -1, 'no longer overflows', [overflowing.index, 0]),
+    gains,
+    overflowing,
+    inflow,
+    out,
+  );
 }

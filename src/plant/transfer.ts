@@ -1,5 +1,4 @@
-import { add, type Expr, mul, sub } from '../math/expression.ts';
-import { div } from '../math/expression.ts';
+import { add, div, type Expr, mul, sub } from '../math/expression.ts';
 import { type Kernel, kernel } from '../math/kernel.ts';
 import type { Mixer, Scenario } from '../scenario/scenario.ts';
 import { type Chemistry, speciesFrom } from './chemistry.ts';
@@ -34,7 +33,15 @@ const kernels = new Map<string, Kernel>();
 export function transferKernel(s: Scenario, mixer: Mixer, c: Chemistry): Kernel {
   const fixed = mixer.transfer.given === 'ka' && mixer.transfer.fixed;
   const releasing = s.releases.map((row) => row.map((r) => (r === 0 ? '0' : 'r')).join('')).join('|');
-  const key = [c.structure, mixer.side, mixer.continuity, fixed, s.solutes.length, s.species.length, releasing].join('/');
+  const key = [
+    c.structure,
+    mixer.side,
+    mixer.continuity,
+    fixed,
+    s.solutes.length,
+    s.species.length,
+    releasing,
+  ].join('/');
   const found = kernels.get(key);
   if (found) return found;
   const n = s.solutes.length;

@@ -75,7 +75,11 @@ export type Law =
       /** Index of the acid among the species. */
       readonly acid: number;
     }
-  | { readonly law: 'formula'; readonly organic: Formula; readonly constants: Readonly<Record<string, number>> };
+  | {
+      readonly law: 'formula';
+      readonly organic: Formula;
+      readonly constants: Readonly<Record<string, number>>;
+    };
 
 export interface Initial {
   readonly aqueous: 'barren' | 'as entering' | readonly number[];

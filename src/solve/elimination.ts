@@ -34,7 +34,8 @@ export class Elimination {
       position[row] = k;
     });
     const blockOf = new Int32Array(n);
-    for (let b = 0; b + 1 < blockStart.length; b++) blockOf.fill(blockStart[b], blockStart[b], blockStart[b + 1]);
+    for (let b = 0; b + 1 < blockStart.length; b++)
+      blockOf.fill(blockStart[b], blockStart[b], blockStart[b + 1]);
 
     const entries: { column: number; from: number }[][] = [];
     for (let i = 0; i < n; i++) {
@@ -78,7 +79,12 @@ export class Elimination {
       for (const k of columns) {
         if (k >= i) break;
         const upper = filled[k].filter((c) => c > k);
-        program.push(slotOf(k), order[k], upper.length, upper.length > 0 ? (slot[k].get(upper[0]) as number) : 0);
+        program.push(
+          slotOf(k),
+          order[k],
+          upper.length,
+          upper.length > 0 ? (slot[k].get(upper[0]) as number) : 0,
+        );
         for (const c of upper) program.push(slotOf(c));
         work += upper.length + 1;
       }

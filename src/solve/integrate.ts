@@ -53,15 +53,50 @@ export interface Problem {
 
 export interface Options extends Settings {
   readonly integrator: string;
-  /** Asked between steps; true ends the run with what has been computed. */
-  readonly interrupted?: () => boolean;
+}
+
+/** How a run in turns shares the process with others. */
+export interface Turns {
+  /** Asked after each step: is it time to let others have a turn? It changes no figure of the run. */
+  readonly due: () => boolean;
+  /** Asked after each turn; true ends the run with what has been computed. */
+  readonly interrupted: () => boolean;
+}
+
+/** Integrates over the whole schedule in one go. */
+export function integrate(problem: Problem, options: Options, watchers: readonly Watcher[]): Run {
+  const work = integration(problem, options, watchers, () => false);
+  for (;;) {
+    const turn = work.next(false);
+    if (turn.done) return turn.value;
+  }
+}
+
+/** The same, giving way to the event loop between turns, so that an interrupt from outside is heard. */
+export async function integrateInTurns(
+  problem: Problem,
+  options: Options,
+  watchers: readonly Watcher[],
+  turns: Turns,
+): Promise<Run> {
+  const work = integration(problem, options, watchers, turns.due);
+  for (let stop = false; ; stop = turns.interrupted()) {
+    const turn = work.next(stop);
+    if (turn.done) return turn.value;
+    await new Promise<void>((resolve) => setImmediate(resolve));
+  }
 }
 
 /**
  * Integrates over the whole schedule: lands on every corner, restarts there with the right limits, locates
  * guards on dense output, and keeps what was computed whatever happens.
  */
-export function integrate(problem: Problem, options: Options, watchers: readonly Watcher[]): Run {
+function* integration(
+  problem: Problem,
+  options: Options,
+  watchers: readonly Watcher[],
+  due: () => boolean,
+): Generator<void, Run, boolean> {
   const { system, parameters, schedule } = problem;
   const integrator: Integrator = integrators[options.integrator](system, parameters, options);
   const x = Float64Array.from(problem.initial);
@@ -86,23 +121,21 @@ export function integrate(problem: Problem, options: Options, watchers: readonly
       if (stop) break;
       for (const o of watchers) o.begin?.(t, x, w);
       let met = -1;
-      let broke = false;
       const outcome = integrator.advance({ from: t, to: end, inputs }, x, (step) => {
         const hit = guards.crossed(step);
         met = hit.guard;
         const shown = met >= 0 ? shortened(step, hit.time) : step;
         for (const o of watchers) o.step?.(shown, inputs);
         if (met >= 0) return hit.time;
-        broke = options.interrupted?.() ?? false;
-        return broke ? step.t1 - (step.t1 - step.t0) * 1e-12 : Number.NaN;
+        return due() ? step.t1 : Number.NaN;
       });
       if (outcome.ended === 'failed') {
         stop = outcome.stop;
         t = outcome.stop.time;
       } else if (outcome.ended === 'asked') {
         t = outcome.time;
-        if (broke) stop = { reason: 'interrupted', time: t };
-        else stop = happen(met, t);
+        if (met >= 0) stop = happen(met, t);
+        else if (yield) stop = { reason: 'interrupted', time: t };
       } else t = end;
       if (!stop && met >= 0) guards.settled(met);
     }

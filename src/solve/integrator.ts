@@ -17,7 +17,7 @@ export interface Step {
   at(t: number, x: F): void;
 }
 
-/** Called after each accepted step; a finite time inside the step ends the stretch there. */
+/** Called after each accepted step; a time in the step, its end included, ends the stretch there. */
 export type OnStep = (step: Step) => number;
 
 /** A stretch without corners: the inputs are linear in time on it. */

@@ -87,15 +87,13 @@ export class Extrapolation implements Integrator {
         },
       };
       const end = onStep(step);
-      if (end < t1) {
-        asked = end;
-        step.at(end, x);
-        return false;
-      }
       reached = t1;
       this.#step = t1 - t0;
       x.set(step.x1);
-      return undefined;
+      if (!(end <= t1)) return undefined;
+      asked = end;
+      if (end < t1) step.at(end, x);
+      return false;
     });
     this.work.steps += result.nStep;
     this.work.rejectedByError += result.nReject;

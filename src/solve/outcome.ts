@@ -35,7 +35,12 @@ export type Stop =
   | { readonly reason: 'reached-end'; readonly time: number }
   | { readonly reason: 'guard'; readonly time: number; readonly guard: string; readonly message: string }
   | { readonly reason: 'interrupted'; readonly time: number }
-  | { readonly reason: 'step-too-small'; readonly time: number; readonly place: string; readonly cause: string }
+  | {
+      readonly reason: 'step-too-small';
+      readonly time: number;
+      readonly place: string;
+      readonly cause: string;
+    }
   | { readonly reason: 'not-finite'; readonly time: number; readonly place: string }
   | { readonly reason: 'too-many-steps'; readonly time: number; readonly limit: number }
   | { readonly reason: 'too-many-events'; readonly time: number; readonly guard: string };

@@ -103,13 +103,10 @@ export class Rosenbrock implements Integrator {
           work.steps += 1;
           dense.open(t, cut ? to : t + h);
           const end = onStep(dense);
-          if (end < dense.t1) {
-            dense.at(end, this.#trial);
-            x.set(this.#trial);
-            return { ended: 'asked', time: end };
-          }
-          x.set(this.#x1);
           t = dense.t1;
+          if (end < t) dense.at(end, this.#trial);
+          x.set(end < t ? this.#trial : this.#x1);
+          if (end <= t) return { ended: 'asked', time: end };
           break;
         }
         grow = 1;

@@ -23,7 +23,9 @@ export function makeSchedule(initial: F, tracks: readonly Track[], from: number,
       throw new RangeError(`the track of input ${t.input} is not in the order of time`);
   const corners = tracks.flatMap((t) => t.times.filter((v) => v > from && v < to));
   const times = [from, ...corners, to].sort((a, b) => a - b);
-  const distinct = times.filter((v, i) => i === 0 || v - times[i - 1] > SAME_CORNER * Math.max(1, Math.abs(v)));
+  const distinct = times.filter(
+    (v, i) => i === 0 || v - times[i - 1] > SAME_CORNER * Math.max(1, Math.abs(v)),
+  );
   if (distinct[distinct.length - 1] < to) distinct[distinct.length - 1] = to;
   const segments = distinct.length - 1;
   const start = tracks.map(() => new Float64Array(segments));

@@ -48,7 +48,10 @@ export function steadyState(system: System, w: F, p: F, start: F): Steady {
     for (let i = 0; i < n; i++) {
       trial[i] = x[i] + dx[i];
       const floor = system.places[i].floor;
-      if (!Number.isFinite(trial[i]) || (floor !== null && trial[i] < floor - 0.01 * (Math.abs(x[i]) + system.places[i].scale))) {
+      if (
+        !Number.isFinite(trial[i]) ||
+        (floor !== null && trial[i] < floor - 0.01 * (Math.abs(x[i]) + system.places[i].scale))
+      ) {
         good = false;
         at = i;
         break;

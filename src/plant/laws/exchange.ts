@@ -1,4 +1,17 @@
-import { add, call, constant, div, type Expr, max, mul, pow, type Special, select, sqrt, sub } from '../../math/expression.ts';
+import {
+  add,
+  call,
+  constant,
+  div,
+  type Expr,
+  max,
+  mul,
+  pow,
+  type Special,
+  select,
+  sqrt,
+  sub,
+} from '../../math/expression.ts';
 import { risingRoot } from '../../math/roots.ts';
 import type { Law } from '../../scenario/scenario.ts';
 import type { LawKind, Local, Member } from './law.ts';

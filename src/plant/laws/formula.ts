@@ -1,6 +1,17 @@
 import { differentiate } from '../../math/differentiate.ts';
 import * as x from '../../math/expression.ts';
-import { add, call, constant, div, type Expr, input, mul, type Special, select, sub } from '../../math/expression.ts';
+import {
+  add,
+  call,
+  constant,
+  div,
+  type Expr,
+  input,
+  mul,
+  type Special,
+  select,
+  sub,
+} from '../../math/expression.ts';
 import { generated } from '../../math/kernel.ts';
 import { risingRoot } from '../../math/roots.ts';
 import { substitute } from '../../math/substitute.ts';
@@ -105,7 +116,10 @@ function shape(law: FormulaLaw): Shape {
 
 /** Value and slope of an expression over slots, as plain functions of the first slot. */
 function evaluator(e: Expr, slots: number): (args: readonly number[]) => number {
-  const run = generated.run({ name: 'formula', args: Array.from({ length: slots }, (_, i) => `s${i}`), outputs: [e] }, 'assign');
+  const run = generated.run(
+    { name: 'formula', args: Array.from({ length: slots }, (_, i) => `s${i}`), outputs: [e] },
+    'assign',
+  );
   const references = Int32Array.from({ length: slots + 1 }, (_, i) => (i < slots ? i : 0));
   const board = new Float64Array(slots);
   const y = new Float64Array(1);

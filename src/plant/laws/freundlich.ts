@@ -27,11 +27,7 @@ function gentle(y: Expr, k: Expr, s: Expr): Expr {
   // The root of (s − 1)x² + (2 − s)x = v that vanishes with v, in the form without cancellation.
   const root = sqrt(add(mul(two, two), mul(4, sub(s, 1), v)));
   const x = div(mul(2, v), add(two, root));
-  return select(
-    sub(y, top),
-    mul(k, pow(y, div(1, s))),
-    mul(NEAR_ZERO, select(y, x, div(v, two))),
-  );
+  return select(sub(y, top), mul(k, pow(y, div(1, s))), mul(NEAR_ZERO, select(y, x, div(v, two))));
 }
 
 /**

@@ -11,6 +11,3 @@ import { table } from './table.ts';
 export function lawKinds(lookup: NameLookup): Record<Law['law'], LawKind<never>> {
   return { ratio, langmuir, freundlich, table, exchange, formula: formulaLaw(lookup) };
 }
-
-/** Letters and digits of a name with everything else as underscores: how a formula can call it. */
-export const formulaName = (name: string): string => name.replace(/[^A-Za-z0-9_]/g, '_');

@@ -1,6 +1,6 @@
-import { hint } from '../scenario/nearest.ts';
-import { type Problem, Refusal } from '../scenario/refusal.ts';
-import type { Path, Phase, Scenario } from '../scenario/scenario.ts';
+import { hint } from './nearest.ts';
+import { type Problem, Refusal } from './refusal.ts';
+import type { Path, Phase } from './scenario.ts';
 
 export type Maker = { readonly kind: 'feed' | 'tank' | 'train'; readonly index: number };
 export type User = { readonly kind: 'tank' | 'train'; readonly index: number };
@@ -20,6 +20,23 @@ export interface Network {
   flowSource(stream: string): Maker;
 }
 
+/** What of a scenario says how streams join. */
+export interface Joints {
+  readonly feeds: readonly { readonly name: string; readonly phase: Phase }[];
+  readonly tanks: readonly {
+    readonly name: string;
+    readonly phase: Phase;
+    readonly from: string;
+    readonly to: string;
+    readonly flow: number | null;
+  }[];
+  readonly trains: readonly {
+    readonly name: string;
+    readonly aqueous: { readonly from: string; readonly to: string };
+    readonly organic: { readonly from: string; readonly to: string };
+  }[];
+}
+
 interface End {
   readonly path: Path;
   readonly phase: Phase;
@@ -32,7 +49,7 @@ interface End {
  * @throws Refusal naming every stream that nobody makes, that two make or take, or that has the wrong phase, every
  * feed that nobody takes, and every loop whose flow no pump sets.
  */
-export function network(s: Scenario): Network {
+export function network(s: Joints): Network {
   const problems: Problem[] = [];
   const makers = new Map<string, End & { maker: Maker }>();
   const users = new Map<string, End & { user: User }>();
@@ -41,7 +58,10 @@ export function network(s: Scenario): Network {
     if (other) {
       const pumps = end.phase === 'organic' && maker.kind === 'tank' && other.maker.kind === 'tank';
       const why = pumps ? ' (the flow of a loop is set by exactly one pump)' : '';
-      problems.push({ path: end.path, message: `'${name}' has two makers: ${other.who} and ${end.who}${why}` });
+      problems.push({
+        path: end.path,
+        message: `'${name}' has two makers: ${other.who} and ${end.who}${why}`,
+      });
     } else makers.set(name, { ...end, maker });
   };
   const use = (name: string, end: End, user: User): void => {
@@ -72,11 +92,17 @@ export function network(s: Scenario): Network {
     const m = makers.get(name);
     if (!m) problems.push({ path: u.path, message: `nobody makes the stream '${name}'${hint(name, known)}` });
     else if (m.phase !== u.phase)
-      problems.push({ path: u.path, message: `'${name}' is ${m.phase} (${m.who}), but ${u.who} takes it as ${u.phase}` });
+      problems.push({
+        path: u.path,
+        message: `'${name}' is ${m.phase} (${m.who}), but ${u.who} takes it as ${u.phase}`,
+      });
   }
   for (const [name, m] of makers)
     if (m.maker.kind === 'feed' && !users.has(name))
-      problems.push({ path: m.path, message: `nobody takes the feed '${name}'${hint(name, [...users.keys()])}` });
+      problems.push({
+        path: m.path,
+        message: `nobody takes the feed '${name}'${hint(name, [...users.keys()])}`,
+      });
   if (problems.length > 0) throw new Refusal(problems);
 
   const streams = new Map<string, Stream>();

@@ -1,0 +1,99 @@
+import { Command, CommanderError, InvalidArgumentError, Option } from 'commander';
+import { makeConsole } from './console.ts';
+import { exits, Known } from './exit.ts';
+import { version } from './files.ts';
+
+const integrators = ['rodas5p', 'rodas4', 'odex'];
+const TOLERANCE = 1e-6;
+
+/** Reads the command line, runs the verb, returns the exit code. Verbs load what they need when they are called. */
+export async function main(argv: readonly string[]): Promise<number> {
+  let code: number = exits.done;
+  const program = new Command('upsettle')
+    .description(
+      'Dynamic simulator of a counter-current mixer-settler cascade: start-up, feed upsets, flow-ratio changes.',
+    )
+    .version(version(), '-V, --version', 'print the version')
+    .exitOverride()
+    .configureHelp({ showGlobalOptions: true })
+    .option('--quiet', 'say nothing but errors')
+    .addHelpText('after', '\nExample:\n  upsettle run scenarios/saltbush-copper.yaml\n');
+  const console = (): ReturnType<typeof makeConsole> => makeConsole(program.opts().quiet === true);
+  const verb = (name: string, what: string, example: string): Command =>
+    program
+      .command(name)
+      .description(what)
+      .argument('<file>', 'scenario file (YAML)')
+      .option('--quiet', 'say nothing but errors')
+      .addHelpText('after', `\nExample:\n  ${example}\n`);
+  const quiet = (o: { quiet?: boolean }): ReturnType<typeof makeConsole> =>
+    o.quiet ? makeConsole(true) : console();
+
+  verb(
+    'check',
+    'check a scenario and print the plant as understood',
+    'upsettle check scenarios/ten.yaml',
+  ).action(async (file: string, o) => {
+    const { check } = await import('./verbs/check.ts');
+    code = check(file, quiet(o));
+  });
+  verb(
+    'run',
+    'run a scenario: series.csv, summary.json and pictures',
+    'upsettle run scenarios/ten.yaml --out results --no-pictures',
+  )
+    .option('--out <dir>', 'folder for the results (default: out/<scenario>/run)')
+    .option('--no-pictures', 'write no PNG pictures')
+    .addOption(
+      new Option('--integrator <name>', 'method of integration').choices(integrators).default('rodas5p'),
+    )
+    .addOption(
+      new Option('--tolerance <number>', 'relative tolerance').argParser(tolerance).default(TOLERANCE),
+    )
+    .action(async (file: string, o) => {
+      const { run } = await import('./verbs/run.ts');
+      code = await run(file, o, quiet(o));
+    });
+  verb(
+    'steady',
+    'find the steady state of the inputs at time zero',
+    'upsettle steady scenarios/saltbush-copper.yaml',
+  )
+    .option('--out <dir>', 'folder for the results (default: out/<scenario>/steady)')
+    .option('--no-pictures', 'write no PNG pictures')
+    .action(async (file: string, o) => {
+      const { steady } = await import('./verbs/steady.ts');
+      code = await steady(file, o, quiet(o));
+    });
+  if (argv.length <= 2) {
+    process.stdout.write(greeting());
+    return exits.done;
+  }
+  try {
+    await program.parseAsync(argv as string[]);
+    return code;
+  } catch (e) {
+    if (e instanceof CommanderError) return e.exitCode === 0 ? exits.done : exits.usage;
+    if (e instanceof Known) {
+      process.stderr.write(`${e.message}\n`);
+      return e.code;
+    }
+    throw e;
+  }
+}
+
+function tolerance(text: string): number {
+  const value = Number(text);
+  if (value >= 1e-12 && value <= 1e-2) return value;
+  throw new InvalidArgumentError('expected a number from 1e-12 to 1e-2.');
+}
+
+const greeting =
+  (): string => `Upsettle ${version()}: what happens between steady states of a mixer-settler cascade.
+
+  upsettle check scenarios/saltbush-copper.yaml    the plant as understood
+  upsettle steady scenarios/saltbush-copper.yaml   where it comes to rest
+  upsettle run scenarios/saltbush-copper.yaml      start-up and upsets, with pictures
+
+upsettle --help lists all options.
+`;

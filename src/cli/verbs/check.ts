@@ -1,0 +1,14 @@
+import { assemble } from '../../plant/assemble.ts';
+import { checkScreen } from '../../report/screen.ts';
+import type { Console } from '../console.ts';
+import { exits } from '../exit.ts';
+import { openScenario } from '../files.ts';
+import { refusing } from '../refusing.ts';
+
+/** `upsettle check FILE`: the plant as understood, or every complaint. */
+export function check(file: string, console: Console): number {
+  const read = openScenario(file);
+  const plant = refusing(read, () => assemble(read.scenario));
+  console.say(checkScreen(plant));
+  return exits.done;
+}

@@ -1,0 +1,74 @@
+import { runScreen } from '../../report/screen.ts';
+import { writeSeries } from '../../report/series.ts';
+import { runSummary } from '../../report/summary.ts';
+import { type RunSettings, runInTurns } from '../../study/run.ts';
+import type { Console } from '../console.ts';
+import { exits } from '../exit.ts';
+import { openScenario, outputFolder, stream, version, write, writeJson } from '../files.ts';
+import { known } from '../refusing.ts';
+
+export interface RunOptions {
+  readonly out?: string;
+  readonly pictures: boolean;
+  readonly integrator: string;
+  readonly tolerance: number;
+}
+
+/** ms of computing between two looks at the outside world. */
+const TURN = 100;
+
+/** `upsettle run FILE`: series.csv, summary.json and pictures of one run. */
+export async function run(file: string, options: RunOptions, console: Console): Promise<number> {
+  const began = performance.now();
+  const read = openScenario(file);
+  let interrupted = false;
+  const onInterrupt = (): void => {
+    interrupted = true;
+  };
+  process.on('SIGINT', onInterrupt);
+  let last = performance.now();
+  const due = (): boolean => {
+    const now = performance.now();
+    if (now - last < TURN) return false;
+    last = now;
+    return true;
+  };
+  const settings: RunSettings = {
+    integrator: options.integrator,
+    tolerance: options.tolerance,
+    progress: (share) => console.progress(share, 'running'),
+  };
+  const result = await runInTurns(read.scenario, settings, { due, interrupted: () => interrupted }).catch(
+    (e) => {
+      throw known(read, e);
+    },
+  );
+  console.clear();
+  const seconds = (performance.now() - began) / 1e3;
+  const folder = outputFolder(file, 'run', options.out);
+  await stream(folder, 'series.csv', (to) => writeSeries(result, to));
+  writeJson(folder, 'summary.json', runSummary(result, { file, version: version(), seconds }));
+  const made = ['series.csv', 'summary.json'];
+  if (options.pictures) {
+    const { runPictures } = await import('../../report/pictures/index.ts');
+    for await (const picture of runPictures(result)) {
+      if (interrupted) break;
+      console.progress(0, `drawing ${picture.name}`);
+      write(folder, picture.name, picture.png);
+      made.push(picture.name);
+    }
+    console.clear();
+  }
+  process.off('SIGINT', onInterrupt);
+  console.say([...runScreen(result), '', `Written to ${folder}: ${made.join(', ')}`]);
+  if (interrupted) {
+    process.stderr.write(`interrupted; what was finished is in ${folder}\n`);
+    return exits.interrupted;
+  }
+  if (!result.complete) {
+    const { explain } = await import('../../solve/outcome.ts');
+    process.stderr.write(`incomplete: ${explain(result.stop)}\n`);
+    return exits.incomplete;
+  }
+  return exits.done;
+}

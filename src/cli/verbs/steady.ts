@@ -1,0 +1,32 @@
+import { steadyScreen } from '../../report/screen.ts';
+import { steadySummary } from '../../report/summary.ts';
+import { steady as findSteady } from '../../study/steady.ts';
+import type { Console } from '../console.ts';
+import { exits } from '../exit.ts';
+import { openScenario, outputFolder, version, write, writeJson } from '../files.ts';
+import { refusing } from '../refusing.ts';
+
+export interface SteadyOptions {
+  readonly out?: string;
+  readonly pictures: boolean;
+}
+
+/** `upsettle steady FILE`: the steady state of the inputs at time zero. */
+export async function steady(file: string, options: SteadyOptions, console: Console): Promise<number> {
+  const began = performance.now();
+  const read = openScenario(file);
+  const result = refusing(read, () => findSteady(read.scenario));
+  const seconds = (performance.now() - began) / 1e3;
+  const folder = outputFolder(file, 'steady', options.out);
+  writeJson(folder, 'summary.json', steadySummary(result, { file, version: version(), seconds }));
+  const made = ['summary.json'];
+  if (options.pictures) {
+    const { steadyPictures } = await import('../../report/pictures/index.ts');
+    for await (const picture of steadyPictures(result)) {
+      write(folder, picture.name, picture.png);
+      made.push(picture.name);
+    }
+  }
+  console.say([...steadyScreen(result), '', `Written to ${folder}: ${made.join(', ')}`]);
+  return exits.done;
+}

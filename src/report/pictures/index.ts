@@ -1,0 +1,28 @@
+import type { RunResult, SteadyResult } from '../../study/result.ts';
+import { draw } from './canvas.ts';
+import { stageTimeMap } from './map.ts';
+import { operating } from './operating.ts';
+import { outlets } from './outlets.ts';
+import type { Picture } from './picture.ts';
+import { profiles } from './profiles.ts';
+
+/** Pictures of `run`, in the order in which they are drawn. */
+export const runTable: readonly Picture<RunResult>[] = [outlets, profiles, stageTimeMap, operating];
+/** Pictures of `steady`. */
+export const steadyTable: readonly Picture<SteadyResult>[] = [operating];
+
+export interface Drawn {
+  readonly name: string;
+  readonly png: Buffer;
+}
+
+export const runPictures = (r: RunResult, scale = 1): AsyncGenerator<Drawn> => all(runTable, r, scale);
+export const steadyPictures = (r: SteadyResult, scale = 1): AsyncGenerator<Drawn> =>
+  all(steadyTable, r, scale);
+
+async function* all<R>(table: readonly Picture<R>[], r: R, scale: number): AsyncGenerator<Drawn> {
+  for (const p of table)
+    for (const part of p.parts?.(r) ?? [undefined]) {
+      yield { name: p.name(r, part), png: await draw(p.config(r, part), scale) };
+    }
+}

@@ -1,0 +1,146 @@
+import type { ChartConfiguration } from 'chart.js';
+import type { Diagram } from '../../study/diagram.ts';
+import { moment } from './moment.ts';
+import { fileName, type Part, type Picture } from './picture.ts';
+import { captions, colours, legend, short } from './style.ts';
+
+interface HasDiagrams {
+  readonly diagrams: readonly Diagram[];
+  readonly plant: { readonly scenario: { readonly title: string } };
+}
+
+const MOST_MOMENTS = 4;
+
+/** Operating diagram of a train: isotherm, operating line and stage points, one field for each moment. */
+export const operating: Picture<HasDiagrams> = {
+  name: (_, part) => fileName('operating', (part as Part).train, (part as Part).solute),
+  parts: (r) => r.diagrams.map(({ train, solute }) => ({ train, solute })),
+  config(r, part) {
+    const d = r.diagrams.find((q) => q.train === part?.train && q.solute === part.solute) as Diagram;
+    return config(d, r.plant.scenario.title);
+  },
+};
+
+/**
+ * The fields of the picture share axes by row and column: with two columns of x axes and up to two rows of y axes in
+ * one chart, each moment takes the pair that makes its field.
+ */
+function config(d: Diagram, title: string): ChartConfiguration {
+  const moments = d.moments.slice(0, MOST_MOMENTS);
+  const across = moments.length > 1 ? 2 : 1;
+  const down = Math.ceil(moments.length / across);
+  const all = moments.flatMap((m) => [...m.operating, ...m.stages]);
+  const maxX = 1.08 * Math.max(1e-9, ...all.map((p) => p.x));
+  const maxY = 1.15 * Math.max(1e-9, ...all.map((p) => p.y));
+  const datasets = moments.flatMap((m, i) => {
+    const axes = { xAxisID: `x${i % across}`, yAxisID: `y${down - 1 - Math.floor(i / across)}` };
+    const curve = m.isotherm.filter((p) => p.y <= maxY * 1.0001 && p.x <= maxX * 1.0001);
+    return [
+      {
+        label: 'equilibrium',
+        data: curve,
+        ...axes,
+        showLine: true,
+        pointRadius: 0,
+        pointStyle: 'line' as const,
+        borderColor: colours[0],
+        backgroundColor: colours[0],
+        borderWidth: 2,
+        tension: 0,
+      },
+      {
+        label: 'operating line',
+        data: [...m.operating],
+        ...axes,
+        showLine: true,
+        pointRadius: 0,
+        pointStyle: 'line' as const,
+        borderColor: colours[1],
+        backgroundColor: colours[1],
+        borderDash: [9, 4],
+        borderWidth: 2,
+      },
+      {
+        label: 'stage (mixer)',
+        data: [...m.stages],
+        ...axes,
+        showLine: false,
+        pointRadius: m.stages.length > 40 ? 2.5 : 5,
+        pointStyle: 'rectRot' as const,
+        borderColor: colours[2],
+        backgroundColor: colours[2],
+      },
+    ];
+  });
+  const scales: Record<string, unknown> = {};
+  for (let i = 0; i < across; i++)
+    scales[`x${i}`] = {
+      type: 'linear',
+      position: 'bottom',
+      stack: 'across',
+      stackWeight: 1,
+      min: 0,
+      max: maxX,
+      title: {
+        display: true,
+        text:
+          i === 0
+            ? [`aqueous ${short(d.solute, 20)} [g/L]`, short(title, 60)]
+            : [`aqueous ${short(d.solute, 20)} [g/L]`, ''],
+      },
+      ticks: { stepSize: step(maxX), autoSkip: false, maxRotation: 0, callback: inner },
+      grid: { color: '#e2e2e2' },
+      border: { color: '#888888' },
+    };
+  for (let i = 0; i < down; i++)
+    scales[`y${i}`] = {
+      type: 'linear',
+      position: 'left',
+      stack: 'down',
+      stackWeight: 1,
+      min: 0,
+      max: maxY,
+      title: { display: true, text: `organic ${short(d.solute, 20)} [g/L]` },
+      ticks: { stepSize: step(maxY), autoSkip: false, callback: inner },
+      grid: { color: (c: { tick?: { value: number } }) => (c.tick?.value === 0 ? '#888888' : '#e2e2e2') },
+      border: { color: '#888888' },
+    };
+  const annotations = moments.map((m, i) => ({
+    type: 'label',
+    xScaleID: `x${i % across}`,
+    yScaleID: `y${down - 1 - Math.floor(i / across)}`,
+    xValue: 0.02 * maxX,
+    yValue: 0.95 * maxY,
+    position: { x: 'start', y: 'start' },
+    content: moment(m),
+    font: { size: 14, weight: 'bold' },
+    backgroundColor: 'rgba(255,255,255,0.85)',
+    padding: 3,
+  }));
+  return {
+    type: 'scatter',
+    data: { datasets: datasets as never },
+    options: {
+      layout: { padding: { left: 6, right: 22, bottom: 4 } },
+      scales: scales as never,
+      plugins: {
+        ...captions(`${short(d.train, 40)}: operating diagram, ${d.solute}`, [
+          `${d.along}; a stage on the curve is at equilibrium`,
+        ]),
+        legend: legend((i) => i < 3),
+        annotation: { annotations },
+      } as never,
+    },
+  };
+}
+
+/** A round tick distance that gives five to ten ticks. */
+function step(span: number): number {
+  const size = 10 ** Math.floor(Math.log10(span / 5));
+  return [1, 2, 5, 10].map((f) => f * size).find((v) => span / v <= 8) ?? span / 5;
+}
+
+function inner(this: { min: number; max: number }, value: number | string): string | null {
+  const v = Number(value);
+  return v > this.max - (this.max - this.min) * 0.04 ? null : String(Number(v.toPrecision(6)));
+}

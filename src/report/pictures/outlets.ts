@@ -1,0 +1,117 @@
+import type { RunResult } from '../../study/result.ts';
+import { figure, shown, withUnit } from '../figures.ts';
+import { limitLines } from '../screen.ts';
+import { type Panel, type PanelLine, panelSheet } from './panels.ts';
+import type { Picture } from './picture.ts';
+import { short } from './style.ts';
+import { timeUnit } from './time-axis.ts';
+
+/** Curves whose largest values differ by more than this share no panel. */
+const COMPARABLE = 4;
+const MOST_PANELS = 5;
+
+/** Outlets against their limits over time, with the upsets shaded and what was changed at the foot. */
+export const outlets: Picture<RunResult> = {
+  name: () => 'outlets.png',
+  config(r) {
+    const s = r.plant.scenario;
+    const unit = timeUnit(s.horizon);
+    const limited = [...new Set(r.limits.map((l) => l.path))];
+    const panels = [...limitPanels(r, limited), ...otherPanels(r, limited)];
+    const changed = changedPanels(r);
+    const answer = [
+      ...r.limits.slice(0, 2).map((l) => limitLines(l).join(' ').replace(/\s+/g, ' ')),
+      ...r.shades
+        .slice(0, 3)
+        .map(
+          (q, i) =>
+            `${i + 1}: ${q.words}, ${figure(q.from / unit.seconds)} to ${figure(q.to / unit.seconds)} ${unit.name}`,
+        ),
+    ];
+    return panelSheet({
+      title: s.title,
+      answer: answer.map((l) => short(l, 150)),
+      source: `${short(s.title, 60)}: outlets over ${figure(s.horizon / unit.seconds)} ${unit.name}, start ${s.start}`,
+      span: s.horizon,
+      panels: [...panels.slice(0, MOST_PANELS - Math.min(1, changed.length)), ...changed.slice(0, 1)],
+      shades: r.shades,
+    });
+  },
+};
+
+function line(r: RunResult, path: string): PanelLine & { largest: number; unit: string } {
+  const output = r.plant.system.outputs.findIndex((o) => o.path === path);
+  const { unit, factor } = shown(r.plant.system.outputs[output].unit);
+  let largest = 0;
+  const data = r.records.times.map((x, k) => {
+    const y = r.records.rows[k][output] * factor;
+    if (Math.abs(y) > largest) largest = Math.abs(y);
+    return { x, y };
+  });
+  return { label: path, data, largest, unit };
+}
+
+/** The lines name their streams in the legend; the axis says what they show. */
+const quantityOf = (path: string): string => path.slice(path.lastIndexOf('.') + 1);
+
+function limitPanels(r: RunResult, limited: readonly string[]): Panel[] {
+  return limited.slice(0, 3).map((path) => {
+    const own = r.limits.filter((l) => l.path === path);
+    const l = line(r, path);
+    return {
+      title: quantityOf(path),
+      unit: l.unit,
+      weight: 2,
+      lines: [l],
+      limits: own.map((q) => ({
+        value: q.limit.value * shown(q.unit).factor,
+        label: `limit ${q.limit.side === 'below' ? '<' : '>'} ${withUnit(q.limit.value, q.unit)}`,
+      })),
+    };
+  });
+}
+
+/** Solutes in outlets, tanks and streams between trains, those of like size together. */
+function otherPanels(r: RunResult, limited: readonly string[]): Panel[] {
+  const { scenario: s, network } = r.plant;
+  const made = [...network.streams.values()].filter((q) => q.maker.kind === 'train').map((q) => q.name);
+  const names = [...made, ...s.tanks.map((t) => t.name)];
+  const lines = s.solutes
+    .flatMap((solute) => names.map((n) => `${n}.${solute}`))
+    .filter((p) => !limited.includes(p))
+    .map((p) => line(r, p))
+    .sort((a, b) => b.largest - a.largest);
+  const groups: (typeof lines)[] = [];
+  for (const l of lines) {
+    const group = groups[groups.length - 1];
+    if (group && group[0].largest <= COMPARABLE * l.largest) group.push(l);
+    else groups.push([l]);
+  }
+  return groups.slice(0, 3).map((g) => ({
+    title: quantityOf(g[0].label),
+    unit: g[0].unit,
+    weight: 1,
+    lines: g.slice(0, 4),
+    limits: [],
+  }));
+}
+
+/** The inputs that upsets changed: a reader sees cause and effect on one sheet. */
+function changedPanels(r: RunResult): Panel[] {
+  const { outputs } = r.plant.system;
+  const changed = [...new Set(r.plant.scenario.upsets.map((u) => u.quantity))].filter((q) =>
+    outputs.some((o) => o.path === q),
+  );
+  const lines = changed.map((q) => line(r, q));
+  if (lines.length === 0) return [];
+  const first = lines[0];
+  const alike = lines.filter(
+    (l) =>
+      l.unit === first.unit &&
+      l.largest < COMPARABLE * first.largest &&
+      first.largest < COMPARABLE * l.largest,
+  );
+  return [
+    { title: quantityOf(first.label), unit: first.unit, weight: 1, lines: alike.slice(0, 3), limits: [] },
+  ];
+}

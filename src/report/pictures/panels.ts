@@ -1,0 +1,172 @@
+import type { ChartConfiguration, ScaleOptionsByType } from 'chart.js';
+import type { Shade } from '../../study/upsets.ts';
+import { captions, LIMIT, lineStyle, SHADE, short } from './style.ts';
+import { tickStep, timeUnit } from './time-axis.ts';
+
+export interface PanelLine {
+  readonly label: string;
+  /** s and shown unit. */
+  readonly data: readonly { readonly x: number; readonly y: number }[];
+}
+
+/** One of several diagrams over each other with a common time axis. */
+export interface Panel {
+  readonly title: string;
+  readonly unit: string;
+  readonly weight: number;
+  readonly lines: readonly PanelLine[];
+  readonly limits: readonly { readonly value: number; readonly label: string }[];
+}
+
+export interface Sheet {
+  readonly title: string;
+  readonly answer: readonly string[];
+  readonly source: string;
+  readonly span: number;
+  readonly panels: readonly Panel[];
+  readonly shades: readonly Shade[];
+}
+
+/** Time diagrams over each other: lines, limits across their panel, upsets shaded and numbered through all. */
+export function panelSheet(sheet: Sheet): ChartConfiguration {
+  const unit = timeUnit(sheet.span);
+  const end = sheet.span / unit.seconds;
+  let style = 0;
+  // The chart library stacks axes from the bottom up.
+  const order = [...sheet.panels].reverse();
+  const axis = (i: number): string => `y${i}`;
+  const datasets = sheet.panels.flatMap((panel, i) =>
+    panel.lines.map((line) => ({
+      label: line.label,
+      data: line.data.map((p) => ({ x: p.x / unit.seconds, y: p.y })),
+      yAxisID: axis(order.length - 1 - i),
+      pointRadius: 0,
+      pointStyle: 'line' as const,
+      ...lineStyle(style++),
+    })),
+  );
+  const annotations: Record<string, object> = {};
+  sheet.shades.forEach((s, i) => {
+    const from = s.from / unit.seconds;
+    const to = Math.max(s.to / unit.seconds, from + end / 600);
+    order.forEach((_, k) => {
+      annotations[`shade${i}-${k}`] = {
+        type: 'box',
+        yScaleID: axis(k),
+        xMin: from,
+        xMax: to,
+        backgroundColor: SHADE,
+        borderWidth: 0,
+        drawTime: 'beforeDatasetsDraw',
+      };
+    });
+    annotations[`number${i}`] = {
+      type: 'label',
+      xValue: (from + to) / 2,
+      yValue: (c: { chart: { scales: Record<string, { max: number }> } }) =>
+        c.chart.scales[axis(order.length - 1)].max,
+      yScaleID: axis(order.length - 1),
+      yAdjust: 11,
+      content: String(i + 1),
+      backgroundColor: 'rgba(255,255,255,0.85)',
+      borderRadius: 8,
+      padding: { left: 5, right: 5, top: 1, bottom: 1 },
+      font: { size: 12, weight: 'bold' },
+    };
+  });
+  order.forEach((panel, i) => {
+    panel.limits.forEach((l, k) => {
+      annotations[`limit${i}-${k}`] = {
+        type: 'line',
+        yScaleID: axis(i),
+        yMin: l.value,
+        yMax: l.value,
+        borderColor: LIMIT,
+        borderWidth: 1.5,
+        borderDash: [2, 3],
+        label: {
+          display: true,
+          content: l.label,
+          position: 'start',
+          yAdjust: -10,
+          color: LIMIT,
+          backgroundColor: 'rgba(255,255,255,0.8)',
+          padding: 2,
+          font: { size: 12 },
+        },
+      };
+    });
+  });
+  const scales: Record<string, unknown> = {
+    x: {
+      type: 'linear',
+      min: 0,
+      max: end,
+      title: { display: true, text: [`time [${unit.name}]`, sheet.source], font: { size: 13 } },
+      ticks: { stepSize: tickStep(end, 20, unit), maxRotation: 0 },
+    },
+  };
+  order.forEach((panel, i) => {
+    scales[axis(i)] = {
+      type: 'linear',
+      position: 'left',
+      stack: 'panels',
+      stackWeight: panel.weight,
+      offset: false,
+      ...range(panel),
+      title: {
+        display: true,
+        text: [short(panel.title, 6 + 8 * panel.weight), `[${panel.unit}]`],
+        font: { size: 12 },
+      },
+      border: { color: '#888888' },
+      grid: {
+        color: (c: { tick?: { value: number } }) =>
+          c.tick?.value === range(panel).min ? '#888888' : '#e2e2e2',
+      },
+      ticks: { maxTicksLimit: 3 + 2 * panel.weight, callback: tick, font: { size: 12 } },
+      afterFit: (scale: { width: number }) => {
+        scale.width = 84;
+      },
+    };
+  });
+  return {
+    type: 'line',
+    data: { datasets },
+    options: {
+      parsing: false,
+      normalized: true,
+      layout: { padding: { left: 6, right: 22, bottom: 4 } },
+      scales: scales as Record<string, ScaleOptionsByType<'linear'>>,
+      plugins: {
+        ...captions(sheet.title, sheet.answer),
+        decimation: { enabled: true, algorithm: 'min-max' },
+        annotation: { annotations },
+      } as NonNullable<ChartConfiguration['options']>['plugins'],
+    },
+  };
+}
+
+/** From zero unless everything happens far above it; room above for labels, limits inside. */
+function range(panel: Panel): { min: number; max: number } {
+  const values = [...panel.lines.flatMap((l) => l.data.map((p) => p.y)), ...panel.limits.map((l) => l.value)];
+  let high = -Infinity;
+  let low = Infinity;
+  for (const v of values) {
+    if (v > high) high = v;
+    if (v < low) low = v;
+  }
+  if (!Number.isFinite(high)) return { min: 0, max: 1 };
+  const span = high - low;
+  const min = low > 0.6 * high && span > 0 ? low - 0.15 * span : Math.min(0, low);
+  const max = high + 0.16 * (high - min || Math.abs(high) || 1);
+  return { min, max };
+}
+
+/** No label at the very ends of an axis: those of two panels would meet. */
+function tick(this: { min: number; max: number; chart?: unknown }, value: number | string): string | null {
+  const v = Number(value);
+  const near = (this.max - this.min) * 0.03;
+  if (v > this.max - near || (v < this.min + near && this.min !== 0)) return null;
+  return String(Number(v.toPrecision(6)));
+}

@@ -1,0 +1,182 @@
+import type { Plant } from '../plant/assemble.ts';
+import { trainFacts } from '../plant/facts.ts';
+import { explain } from '../solve/outcome.ts';
+import type { LimitReport } from '../study/limit-watch.ts';
+import type { RunResult, SteadyResult } from '../study/result.ts';
+import { shortCaution } from './cautions.ts';
+import { clock, columns, figure, shown, withUnit } from './figures.ts';
+
+/** First lines of `run`: limits first, then what the outlets came to, then what may be trusted. */
+export function runScreen(r: RunResult): string[] {
+  const s = r.plant.scenario;
+  const lines = [
+    `RUN  ${s.title}: ${clock(r.stop.time)} from ${s.start === 'steady' ? 'steady state' : 'barren'}`,
+  ];
+  if (!r.complete) lines.push(`INCOMPLETE  ${explain(r.stop)}`);
+  for (const q of r.shades) lines.push(`upset  ${q.words}, ${clock(q.from)} to ${clock(q.to)}`);
+  for (const c of r.clamped)
+    lines.push(`note   ${c.quantity} would fall below 0 after ${clock(c.time)}: held at 0`);
+  for (const l of r.limits) lines.push(...limitLines(l));
+  if (r.events.length > 0) lines.push('Events:');
+  for (const e of r.events.slice(0, 6)) lines.push(`  ${clock(e.time)}  ${e.message}`);
+  if (r.events.length > 6) lines.push(`  … and ${r.events.length - 6} more, in summary.json`);
+  lines.push('', ...outletTable(r));
+  const worst = r.closures.reduce((a, b) => (b.closure > a.closure ? b : a));
+  lines.push(
+    '',
+    `Balances close to ${worst.closure.toExponential(1)} (${worst.name}). ${r.integrator}, ${r.work.steps} steps, ${rejected(r)} rejected, tolerance ${r.tolerance}.`,
+    shortCaution,
+  );
+  return lines;
+}
+
+const rejected = ({ work: w }: RunResult): number =>
+  w.rejectedByError + w.rejectedByNegative + w.rejectedByNonFinite + w.rejectedBySingular;
+
+/** One limit in words. */
+export function limitLines(l: LimitReport): string[] {
+  const name = `${l.path} ${l.limit.side === 'below' ? '<' : '>'} ${withUnit(l.limit.value, l.unit)}`;
+  const worst = `worst ${withUnit(l.worst.value, l.unit)} at ${clock(l.worst.time)}`;
+  if (l.spells.length === 0) return [`KEPT   ${name}: ${worst}`];
+  const spells = l.spells.map((q) =>
+    q.to === null ? `${clock(q.from)} to the end` : `${clock(q.from)} to ${clock(q.to)}`,
+  );
+  const list =
+    spells.length > 3 ? `${spells.slice(0, 3).join(', ')} and ${spells.length - 3} more` : spells.join(', ');
+  const beyond = l.beyond === null ? '' : `, ${figure(l.beyond)} kg above the limit`;
+  return [`BROKEN ${name}: ${list}; ${worst}`, `       outside for ${clock(l.outside)} in all${beyond}`];
+}
+
+/** Outlets and tanks: at the start, before the first upset if there is one, and at the end. */
+function outletTable(r: RunResult): string[] {
+  const { plant, snapshots } = r;
+  const { outputs } = plant.system;
+  const names = [...plant.network.outlets.map((o) => o.name), ...plant.scenario.tanks.map((t) => t.name)];
+  const rows = names.flatMap((n) =>
+    outputs.flatMap((o, i) => (o.path.startsWith(`${n}.`) && !o.path.endsWith('.flow') ? [i] : [])),
+  );
+  return columns([
+    ['', ...snapshots.map((q) => q.label), 'unit'],
+    ['', ...snapshots.map((q) => (q.time === 0 ? '0 h' : clock(q.time))), ''],
+    ...rows.slice(0, 14).map((i) => {
+      const { unit, factor } = shown(outputs[i].unit);
+      return [outputs[i].path, ...snapshots.map((q) => figure(q.outputs[i] * factor, 4)), unit];
+    }),
+  ]);
+}
+
+export function steadyScreen(r: SteadyResult): string[] {
+  const { plant } = r;
+  const s = plant.scenario;
+  const { outputs } = plant.system;
+  const read = (path: string): string => {
+    const i = outputs.findIndex((o) => o.path === path);
+    return i < 0 ? '-' : figure(r.outputs[i] * shown(outputs[i].unit).factor, 4);
+  };
+  const lines = [`STEADY STATE  ${s.title}`];
+  for (const q of r.recoveries) {
+    const rate = figure(Math.abs(q.transferred) * 3600);
+    const what =
+      q.transferred >= 0
+        ? 'of what the aqueous brings is extracted'
+        : 'of what the organic brings is stripped';
+    lines.push(`${q.train}: ${figure(q.share * 100, 4)} % ${what} (${q.solute}, ${rate} kg/h)`);
+  }
+  for (const d of r.drifts)
+    lines.push(
+      `${d.tank} ${d.rate > 0 ? 'gains' : 'loses'} ${figure(Math.abs(d.rate) * 86400)} m^3/d: ${d.rate > 0 ? 'full' : 'empty'} in ${clock(d.until)}`,
+    );
+  const dissolved = [...s.solutes, ...s.species];
+  lines.push('', 'Streams [m^3/h, g/L]');
+  const streams = [...plant.network.streams.values()];
+  lines.push(
+    ...columns([
+      ['', 'flow', ...dissolved],
+      ...streams.map((q) => [
+        q.name,
+        read(`${q.name}.flow`),
+        ...dissolved.map((c) => read(`${q.name}.${c}`)),
+      ]),
+    ]),
+  );
+  for (const t of s.trains) {
+    if (t.stages.length > 12) {
+      lines.push('', `Stages of ${t.name}: ${t.stages.length}, in summary.json`);
+      continue;
+    }
+    lines.push('', `Stages of ${t.name}, leaving the settlers [g/L]`);
+    lines.push(
+      ...columns([
+        ['', ...dissolved.map((c) => `aqueous ${c}`), ...s.solutes.map((c) => `organic ${c}`)],
+        ...t.stages.map((_, j) => [
+          `stage ${j + 1}`,
+          ...dissolved.map((c) => read(`${t.name}.${j + 1}.settler.aqueous.${c}`)),
+          ...s.solutes.map((c) => read(`${t.name}.${j + 1}.settler.organic.${c}`)),
+        ]),
+      ]),
+    );
+  }
+  lines.push(
+    '',
+    `Boundary closes to ${r.imbalance.toExponential(1)}; ${r.iterations} iterations.`,
+    shortCaution,
+  );
+  return lines;
+}
+
+/** `check`: the plant as understood. */
+export function checkScreen(plant: Plant): string[] {
+  const s = plant.scenario;
+  const lines = [`OK  ${s.title}`, ''];
+  const span = (r: readonly [number, number], f: (v: number) => string): string =>
+    f(r[0]) === f(r[1]) ? f(r[0]) : `${f(r[0])} to ${f(r[1])}`;
+  lines.push(
+    ...columns([
+      [
+        'train',
+        'stages',
+        'aqueous',
+        'organic',
+        'O/A',
+        'in the mixer',
+        'settler load',
+        'turnover aq',
+        'turnover org',
+      ],
+      ...trainFacts(plant).map((f) => [
+        f.train,
+        String(f.stages),
+        `${figure(f.aqueous * 3600)} m^3/h`,
+        `${figure(f.organic * 3600)} m^3/h`,
+        figure(f.ratio),
+        span(f.mixerResidence, (v) => clock(v)),
+        f.specificFlow === null ? '-' : `${span(f.specificFlow, (v) => figure(v * 3600))} m/h`,
+        clock(f.held.aqueous / f.aqueous),
+        clock(f.held.organic / f.organic),
+      ]),
+    ]),
+  );
+  lines.push('', 'Streams');
+  for (const q of plant.network.streams.values()) {
+    const who = (e: { kind: string; index: number }): string =>
+      e.kind === 'feed' ? 'feed' : e.kind === 'tank' ? s.tanks[e.index].name : s.trains[e.index].name;
+    lines.push(`  ${q.name} (${q.phase}): ${who(q.maker)} -> ${q.user ? who(q.user) : 'outlet'}`);
+  }
+  if (s.upsets.length > 0) lines.push('', 'Upsets');
+  for (const u of s.upsets) {
+    const ramp = u.over > 0 ? ` over ${clock(u.over)}` : ' at once';
+    lines.push(
+      `  ${clock(u.at)}: ${u.words}${ramp}, ${u.lasts === null ? 'to the end of the run' : `for ${clock(u.lasts)}`}`,
+    );
+  }
+  if (s.limits.length > 0) lines.push('', 'Limits');
+  for (const l of s.limits) {
+    const output = plant.system.outputs.find((o) => o.path === `${l.stream}.${l.quantity}`);
+    lines.push(`  ${l.stream}.${l.quantity} ${l.side} ${withUnit(l.value, output?.unit ?? '')}`);
+  }
+  lines.push(
+    '',
+    `${plant.system.places.length} states, ${s.horizon / s.recordEvery < 1e6 ? Math.floor(s.horizon / s.recordEvery) + 1 : '> 1e6'} records over ${clock(s.horizon)}, start ${s.start}.`,
+  );
+  return lines;
+}

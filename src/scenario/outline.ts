@@ -1,0 +1,115 @@
+import type { Phase } from './scenario.ts';
+
+/** What a path in a scenario points at. */
+export interface Target {
+  readonly what: 'flow' | 'content' | 'mixer' | 'volume';
+  readonly phase: Phase;
+  readonly component?: string;
+}
+
+/**
+ * The names in a scenario and how they hang together, taken from the file as far as it makes sense: so that wrong
+ * names are found in the same pass as wrong figures.
+ */
+export interface Outline {
+  readonly solutes: readonly string[];
+  readonly species: readonly string[];
+  readonly feeds: readonly { readonly name: string; readonly phase: Phase }[];
+  readonly tanks: readonly {
+    readonly name: string;
+    readonly phase: Phase;
+    readonly from: string;
+    readonly to: string;
+    readonly flow: number | null;
+  }[];
+  readonly trains: readonly {
+    readonly name: string;
+    readonly stages: number;
+    readonly aqueous: { readonly from: string; readonly to: string };
+    readonly organic: { readonly from: string; readonly to: string };
+  }[];
+  /** False where something was too broken to be taken: then streams cannot be judged. */
+  readonly whole: boolean;
+  /** Inputs that upsets may change. */
+  readonly changeable: ReadonlyMap<string, Target>;
+  /** Quantities that a limit may be put on. */
+  readonly limitable: ReadonlyMap<string, Target>;
+}
+
+type Loose = Record<string, unknown>;
+
+const isObject = (v: unknown): v is Loose => typeof v === 'object' && v !== null && !Array.isArray(v);
+const names = (v: unknown): string[] =>
+  Array.isArray(v) ? v.filter((n): n is string => typeof n === 'string') : [];
+const isPhase = (v: unknown): v is Phase => v === 'aqueous' || v === 'organic';
+
+export function outline(raw: unknown): Outline {
+  const top = isObject(raw) ? raw : {};
+  const solutes = names(top.solutes);
+  const species = names(top.species);
+  let whole = true;
+  const entries = (v: unknown): [string, Loose][] => {
+    if (v === undefined) return [];
+    if (!isObject(v)) {
+      whole = false;
+      return [];
+    }
+    return Object.entries(v).flatMap(([name, value]): [string, Loose][] => {
+      if (isObject(value)) return [[name, value]];
+      whole = false;
+      return [];
+    });
+  };
+  const keep = <T>(value: T | null): T[] => {
+    if (value === null) whole = false;
+    return value === null ? [] : [value];
+  };
+  const feeds = entries(top.feeds).flatMap(([name, f]) =>
+    keep(isPhase(f.phase) ? { name, phase: f.phase } : null),
+  );
+  const tanks = entries(top.tanks).flatMap(([name, t]) =>
+    keep(
+      isPhase(t.phase) && typeof t.from === 'string' && typeof t.to === 'string'
+        ? { name, phase: t.phase, from: t.from, to: t.to, flow: t.flow === undefined ? null : 1 }
+        : null,
+    ),
+  );
+  const trains = entries(top.trains).flatMap(([name, t]) => {
+    const aqueous = arrow(t.aqueous);
+    const organic = arrow(t.organic);
+    const stages = Number.isInteger(t.stages) ? (t.stages as number) : 1;
+    return keep(aqueous && organic ? { name, stages, aqueous, organic } : null);
+  });
+
+  const changeable = new Map<string, Target>();
+  const limitable = new Map<string, Target>();
+  const stream = (name: string, phase: Phase, into: Map<string, Target>): void => {
+    into.set(`${name}.flow`, { what: 'flow', phase });
+    for (const c of phase === 'aqueous' ? [...solutes, ...species] : solutes)
+      into.set(`${name}.${c}`, { what: 'content', phase, component: c });
+  };
+  for (const f of feeds) {
+    stream(f.name, f.phase, changeable);
+    stream(f.name, f.phase, limitable);
+  }
+  for (const t of tanks) {
+    if (t.flow !== null) changeable.set(`${t.name}.flow`, { what: 'flow', phase: t.phase });
+    stream(t.to, t.phase, limitable);
+    stream(t.name, t.phase, limitable);
+    limitable.delete(`${t.name}.flow`);
+    limitable.set(`${t.name}.volume`, { what: 'volume', phase: t.phase });
+  }
+  for (const t of trains) {
+    stream(t.aqueous.to, 'aqueous', limitable);
+    stream(t.organic.to, 'organic', limitable);
+    for (let j = 1; j <= Math.min(t.stages, 10_000); j++)
+      changeable.set(`${t.name}.${j}.mixer`, { what: 'mixer', phase: 'aqueous' });
+  }
+  return { solutes, species, feeds, tanks, trains, whole, changeable, limitable };
+}
+
+function arrow(v: unknown): { from: string; to: string } | null {
+  if (typeof v !== 'string') return null;
+  const parts = v.split('->').map((p) => p.trim());
+  return parts.length === 2 && parts[0] !== '' && parts[1] !== '' ? { from: parts[0], to: parts[1] } : null;
+}

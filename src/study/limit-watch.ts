@@ -1,0 +1,179 @@
+import { crossing } from '../math/roots.ts';
+import type { Plant } from '../plant/assemble.ts';
+import type { Limit } from '../scenario/scenario.ts';
+import type { Inputs } from '../solve/inputs.ts';
+import type { Watcher } from '../solve/integrate.ts';
+import type { Step } from '../solve/integrator.ts';
+import type { F } from '../solve/system.ts';
+
+/** One uninterrupted time outside a limit, s; `to` is null while it lasts. */
+export interface Spell {
+  readonly from: number;
+  to: number | null;
+}
+
+export interface LimitReport {
+  readonly limit: Limit;
+  readonly path: string;
+  readonly unit: string;
+  /** Outside the limit from the very start. */
+  readonly atStart: boolean;
+  readonly spells: readonly Spell[];
+  /** s outside, in all spells together. */
+  readonly outside: number;
+  /** kg beyond a concentration limit: ∫ Q·max(c − L, 0) dt, null for other quantities and lower limits. */
+  readonly beyond: number | null;
+  readonly worst: { readonly value: number; readonly time: number };
+  /** All outputs at the worst moment. */
+  readonly atWorst: F;
+}
+
+/** Points looked at in each step, the end included: a spell between two of them must be shorter than a fifth of a step. */
+const LOOKS = 5;
+
+/** Follows one limit through a run, on dense output: crossings, worst value, amount beyond. */
+export class LimitWatch implements Watcher {
+  readonly #plant: Plant;
+  readonly #limit: Limit;
+  readonly #output: number;
+  readonly #flow: number;
+  readonly #sign: 1 | -1;
+  readonly #spells: Spell[] = [];
+  readonly #x: F;
+  readonly #w: F;
+  readonly #y: F;
+  #began = false;
+  #atStart = false;
+  #over = false;
+  #beyond = 0;
+  #outside = 0;
+  #worst = { value: Number.NaN, time: 0 };
+  #atWorst: F = new Float64Array(0);
+
+  constructor(plant: Plant, limit: Limit) {
+    const { system } = plant;
+    const find = (q: string): number => system.outputs.findIndex((o) => o.path === `${limit.stream}.${q}`);
+    this.#plant = plant;
+    this.#limit = limit;
+    this.#output = find(limit.quantity);
+    this.#flow = limit.quantity === 'flow' || limit.quantity === 'volume' ? -1 : find('flow');
+    this.#sign = limit.side === 'below' ? 1 : -1;
+    this.#x = new Float64Array(system.places.length);
+    this.#w = new Float64Array(system.inputs.length);
+    this.#y = new Float64Array(system.outputs.length);
+  }
+
+  begin: NonNullable<Watcher['begin']> = (t, x, w) => {
+    this.#plant.system.output(x, w, this.#plant.parameters, this.#y);
+    const over = this.#excess() > 0;
+    if (!this.#began) {
+      this.#began = true;
+      this.#atStart = over;
+      if (over) this.#spells.push({ from: t, to: null });
+      this.#consider(t);
+    } else if (over !== this.#over) this.#turn(t, over);
+    this.#over = over;
+  };
+
+  step: NonNullable<Watcher['step']> = (step, inputs) => {
+    const span = step.t1 - step.t0;
+    const times = Array.from({ length: LOOKS + 1 }, (_, i) =>
+      i === LOOKS ? step.t1 : step.t0 + (span * i) / LOOKS,
+    );
+    let from = times[0];
+    let best = { at: -1, excess: -Infinity };
+    for (let i = 1; i <= LOOKS; i++) {
+      const to = times[i];
+      this.#look(step, inputs, to);
+      const excess = this.#excess();
+      this.#consider(to);
+      if (excess > best.excess) best = { at: i, excess };
+      const over = excess > 0;
+      if (over !== this.#over) {
+        const at = crossing((t) => this.#excessAt(step, inputs, t), from, to, Math.max(1e-9, 1e-12 * to));
+        this.#accrue(step, inputs, over ? at : from, over ? to : at);
+        this.#turn(at, over);
+        this.#over = over;
+      } else if (over) this.#accrue(step, inputs, from, to);
+      from = to;
+    }
+    if (best.at > 0 && best.at < LOOKS && best.excess >= this.#sign * (this.#worst.value - this.#limit.value))
+      this.#climb(step, inputs, times[best.at - 1], times[best.at + 1]);
+  };
+
+  report(): LimitReport {
+    const output = this.#plant.system.outputs[this.#output];
+    return {
+      limit: this.#limit,
+      path: output.path,
+      unit: output.unit,
+      atStart: this.#atStart,
+      spells: this.#spells,
+      outside: this.#outside,
+      beyond: this.#flow >= 0 && this.#sign > 0 ? this.#beyond : null,
+      worst: this.#worst,
+      atWorst: this.#atWorst,
+    };
+  }
+
+  #turn(t: number, over: boolean): void {
+    if (over) this.#spells.push({ from: t, to: null });
+    else if (this.#spells.length > 0) this.#spells[this.#spells.length - 1].to = t;
+  }
+
+  #excess(): number {
+    return this.#sign * (this.#y[this.#output] - this.#limit.value);
+  }
+
+  #look(step: Step, inputs: Inputs, t: number): void {
+    step.at(t, this.#x);
+    inputs.value(t, this.#w);
+    this.#plant.system.output(this.#x, this.#w, this.#plant.parameters, this.#y);
+  }
+
+  #excessAt(step: Step, inputs: Inputs, t: number): number {
+    this.#look(step, inputs, t);
+    return this.#excess();
+  }
+
+  /** Time outside and amount beyond over a piece that is wholly outside, by Simpson's rule. */
+  #accrue(step: Step, inputs: Inputs, from: number, to: number): void {
+    this.#outside += to - from;
+    if (this.#flow < 0) return;
+    const rate = (t: number): number => {
+      const excess = this.#excessAt(step, inputs, t);
+      return Math.max(0, excess) * this.#y[this.#flow];
+    };
+    this.#beyond += ((to - from) / 6) * (rate(from) + 4 * rate((from + to) / 2) + rate(to));
+  }
+
+  #consider(t: number): void {
+    const value = this.#y[this.#output];
+    if (!Number.isNaN(this.#worst.value) && this.#sign * value <= this.#sign * this.#worst.value) return;
+    this.#worst = { value, time: t };
+    this.#atWorst = Float64Array.from(this.#y);
+  }
+
+  /** The peak between two looks, by golden section: the curve is smooth and has one there. */
+  #climb(step: Step, inputs: Inputs, from: number, to: number): void {
+    const golden = (Math.sqrt(5) - 1) / 2;
+    let [a, b] = [from, to];
+    let c = b - golden * (b - a);
+    let d = a + golden * (b - a);
+    let fc = this.#excessAt(step, inputs, c);
+    let fd = this.#excessAt(step, inputs, d);
+    while (b - a > Math.max(1e-3, 1e-6 * (to - from))) {
+      if (fc > fd) {
+        [b, d, fd] = [d, c, fc];
+        c = b - golden * (b - a);
+        fc = this.#excessAt(step, inputs, c);
+      } else {
+        [a, c, fc] = [c, d, fd];
+        d = a + golden * (b - a);
+        fd = this.#excessAt(step, inputs, d);
+      }
+    }
+    this.#look(step, inputs, (a + b) / 2);
+    this.#consider((a + b) / 2);
+  }
+}

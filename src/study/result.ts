@@ -1,0 +1,61 @@
+import type { Closure } from '../plant/accounts.ts';
+import type { Plant } from '../plant/assemble.ts';
+import type { Event } from '../solve/integrate.ts';
+import type { Stop, Work } from '../solve/outcome.ts';
+import type { F } from '../solve/system.ts';
+import type { Diagram } from './diagram.ts';
+import type { LimitReport } from './limit-watch.ts';
+import type { Records } from './records.ts';
+import type { Shade } from './upsets.ts';
+
+/** The plant at one moment that a picture or a reader looks at. */
+export interface Snapshot {
+  /** Such as "start", "before the upset", "worst", "end". */
+  readonly label: string;
+  /** s */
+  readonly time: number;
+  /** Outputs in the System's order. */
+  readonly outputs: F;
+}
+
+/** Everything that `run` found; reports need nothing else. SI units throughout. */
+export interface RunResult {
+  readonly plant: Plant;
+  readonly records: Records;
+  readonly limits: readonly LimitReport[];
+  readonly events: readonly Event[];
+  readonly shades: readonly Shade[];
+  readonly clamped: readonly { readonly quantity: string; readonly time: number }[];
+  readonly closures: readonly Closure[];
+  readonly snapshots: readonly Snapshot[];
+  readonly diagrams: readonly Diagram[];
+  readonly stop: Stop;
+  /** Whether the horizon was reached. */
+  readonly complete: boolean;
+  readonly work: Work;
+  readonly integrator: string;
+  readonly tolerance: number;
+}
+
+export interface SteadyResult {
+  readonly plant: Plant;
+  readonly outputs: F;
+  readonly iterations: number;
+  readonly residual: number;
+  /** Tanks that only drift: m³/s gained, and s until full or empty. */
+  readonly drifts: readonly { readonly tank: string; readonly rate: number; readonly until: number }[];
+  readonly recoveries: readonly Recovery[];
+  readonly diagrams: readonly Diagram[];
+  /** Largest imbalance at the boundary, relative to what enters, by component. */
+  readonly imbalance: number;
+}
+
+/** What of a solute in an aqueous feed of a train leaves the train with its organic. */
+export interface Recovery {
+  readonly train: string;
+  readonly solute: string;
+  /** kg/s from the aqueous to the organic, negative where it is stripped. */
+  readonly transferred: number;
+  /** Share of what enters with the aqueous (or, stripped, with the organic). */
+  readonly share: number;
+}

@@ -1,0 +1,137 @@
+import { closure } from '../plant/accounts.ts';
+import { assemble, type Plant } from '../plant/assemble.ts';
+import type { Scenario } from '../scenario/scenario.ts';
+import {
+  integrate,
+  integrateInTurns,
+  type Options,
+  type Problem,
+  type Run,
+  type Turns,
+  type Watcher,
+} from '../solve/integrate.ts';
+import { type Steady, steadyState } from '../solve/steady.ts';
+import type { F } from '../solve/system.ts';
+import { diagrams } from './diagram.ts';
+import { type LimitReport, LimitWatch } from './limit-watch.ts';
+import { Recorder } from './records.ts';
+import type { RunResult, Snapshot } from './result.ts';
+import { upsetSchedule } from './upsets.ts';
+
+export interface RunSettings {
+  readonly integrator: string;
+  /** Relative; the absolute tolerance of a place is this times 1 % of what it typically holds. */
+  readonly tolerance: number;
+  /** Called with the share of the horizon that has been computed. */
+  readonly progress?: (share: number) => void;
+}
+
+export const usual = { integrator: 'rodas5p', tolerance: 1e-6 } as const;
+
+const MOST_STEPS = 20_000_000;
+/** First trial step [s]; the error control finds its own from there. */
+const FIRST_STEP = 1;
+
+/** The computation could not even begin, or came to no end; the message says where and why. */
+export class Incomplete extends Error {
+  override readonly name = 'Incomplete';
+}
+
+/** Runs a scenario from its start to its horizon. */
+export function run(s: Scenario, settings: RunSettings = usual): RunResult {
+  const { problem, options, watchers, finish } = prepare(s, settings);
+  return finish(integrate(problem, options, watchers));
+}
+
+/** The same in turns, so that it can be interrupted; what was computed until then is kept. */
+export async function runInTurns(s: Scenario, settings: RunSettings, turns: Turns): Promise<RunResult> {
+  const { problem, options, watchers, finish } = prepare(s, settings);
+  return finish(await integrateInTurns(problem, options, watchers, turns));
+}
+
+interface Prepared {
+  readonly problem: Problem;
+  readonly options: Options;
+  readonly watchers: readonly Watcher[];
+  finish(run: Run): RunResult;
+}
+
+function prepare(s: Scenario, settings: RunSettings): Prepared {
+  const plant = assemble(s);
+  const { schedule, shades, clamped } = upsetSchedule(plant, s.upsets, s.horizon);
+  const initial = startState(plant);
+  const first = s.upsets.length > 0 ? Math.min(...s.upsets.map((u) => u.at)) : null;
+  const before = first === null || first <= 0 ? null : Math.min(first, s.horizon);
+  const recorder = new Recorder(plant, s.recordEvery, before === null ? [] : [before]);
+  const limits = s.limits.map((l) => new LimitWatch(plant, l));
+  const watchers: Watcher[] = [recorder, ...limits];
+  const { progress } = settings;
+  if (progress) watchers.push({ step: (step) => progress(step.t1 / s.horizon) });
+  return {
+    problem: { system: plant.system, parameters: plant.parameters, schedule, initial },
+    options: {
+      integrator: settings.integrator,
+      tolerance: { relative: settings.tolerance },
+      maximumSteps: MOST_STEPS,
+      firstStep: FIRST_STEP,
+    },
+    watchers,
+    finish(result) {
+      const reports = limits.map((l) => l.report());
+      const snapshots = snapshotsOf(recorder, before, reports, result.time);
+      return {
+        plant,
+        records: recorder.records,
+        limits: reports,
+        events: result.events,
+        shades,
+        clamped,
+        closures: plant.accounts.map((a) => closure(a, initial, result.state)),
+        snapshots,
+        diagrams: diagrams(plant, snapshots),
+        stop: result.stop,
+        complete: result.stop.reason === 'reached-end',
+        work: result.work,
+        integrator: result.integrator,
+        tolerance: settings.tolerance,
+      };
+    },
+  };
+}
+
+/** Start, just before the first upset, the worst moment of the limit that matters, and the end. */
+function snapshotsOf(
+  recorder: Recorder,
+  before: number | null,
+  reports: readonly LimitReport[],
+  end: number,
+): Snapshot[] {
+  const { times, rows } = recorder.records;
+  const snapshots: Snapshot[] = [{ label: 'start', time: times[0], outputs: rows[0] }];
+  const shown = before === null ? undefined : recorder.snapshots.get(before);
+  if (shown && before !== null) snapshots.push({ label: 'before the upset', time: before, outputs: shown });
+  const broken = reports.find((r) => r.spells.length > 0) ?? reports[0];
+  if (broken && broken.worst.time > 0 && broken.worst.time < end)
+    snapshots.push({ label: 'worst', time: broken.worst.time, outputs: broken.atWorst });
+  if (times.length > 1)
+    snapshots.push({ label: 'end', time: times[times.length - 1], outputs: rows[rows.length - 1] });
+  return snapshots.sort((a, b) => a.time - b.time);
+}
+
+/**
+ * The state at time zero as the scenario asks for it.
+ *
+ * @throws Incomplete where a steady start was asked for and none was found.
+ */
+export function startState(plant: Plant): F {
+  return plant.scenario.start === 'steady' ? steadyOf(plant).state : plant.barren;
+}
+
+/** @throws Incomplete naming the vessel that does not come to rest. */
+export function steadyOf(plant: Plant): Steady & { found: true } {
+  const steady = steadyState(plant.system, plant.inputs, plant.parameters, plant.barren);
+  if (steady.found) return steady;
+  throw new Incomplete(
+    `no steady state found: ${steady.reason}, least of all ${steady.place}; run the scenario from barren and look whether it settles`,
+  );
+}
