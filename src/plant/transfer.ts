@@ -55,7 +55,10 @@ export function transferKernel(s: Scenario, mixer: Mixer, c: Chemistry): Kernel 
   const made = kernel(`transfer ${key}`, names, (...args) => {
     const [Va, Vo, V, least, ka, designArea, running] = args;
     let at = 7;
-    const take = (count: number): Expr[] => args.slice(at, (at += count));
+    const take = (count: number): Expr[] => {
+      at += count;
+      return args.slice(at - count, at);
+    };
     const amounts = take(2 * n);
     const carriers = take(s.species.length);
     const releases = s.releases.map((row) => row.map((r) => (r === 0 ? null : take(1)[0])));
