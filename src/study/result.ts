@@ -6,7 +6,7 @@ import type { F } from '../solve/system.ts';
 import type { Diagram } from './diagram.ts';
 import type { LimitReport } from './limit-watch.ts';
 import type { Records } from './records.ts';
-import type { Shade } from './upsets.ts';
+import type { Course, Shade } from './upsets.ts';
 
 /** The plant at one moment that a picture or a reader looks at. */
 export interface Snapshot {
@@ -25,6 +25,8 @@ export interface RunResult {
   readonly limits: readonly LimitReport[];
   readonly events: readonly Event[];
   readonly shades: readonly Shade[];
+  /** Inputs that changed, as they were. */
+  readonly courses: readonly Course[];
   readonly clamped: readonly { readonly quantity: string; readonly time: number }[];
   readonly closures: readonly Closure[];
   readonly snapshots: readonly Snapshot[];

@@ -58,7 +58,7 @@ interface Prepared {
 
 function prepare(s: Scenario, settings: RunSettings): Prepared {
   const plant = assemble(s);
-  const { schedule, shades, clamped } = upsetSchedule(plant, s.upsets, s.horizon);
+  const { schedule, courses, shades, clamped } = upsetSchedule(plant, s.upsets, s.horizon);
   const initial = startState(plant);
   const first = s.upsets.length > 0 ? Math.min(...s.upsets.map((u) => u.at)) : null;
   const before = first === null || first <= 0 ? null : Math.min(first, s.horizon);
@@ -85,6 +85,7 @@ function prepare(s: Scenario, settings: RunSettings): Prepared {
         limits: reports,
         events: result.events,
         shades,
+        courses,
         clamped,
         closures: plant.accounts.map((a) => closure(a, initial, result.state)),
         snapshots,

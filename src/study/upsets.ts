@@ -10,8 +10,17 @@ export interface Shade {
   readonly words: string;
 }
 
+/** An input that changes: its exact course, in SI. Two equal times are a jump. */
+export interface Course {
+  readonly quantity: string;
+  readonly unit: string;
+  readonly times: readonly number[];
+  readonly values: readonly number[];
+}
+
 export interface Upsets {
   readonly schedule: Schedule;
+  readonly courses: readonly Course[];
   readonly shades: readonly Shade[];
   /** Quantities that a change would have made negative, with the time at which they were held at zero. */
   readonly clamped: readonly { readonly quantity: string; readonly time: number }[];
@@ -34,7 +43,11 @@ export function upsetSchedule(plant: Plant, changes: readonly Change[], horizon:
       c.lasts !== null ? c.at + c.lasts + c.over : data.length > 0 ? data[data.length - 1] : horizon;
     return { from: c.at, to: Math.min(end, horizon), words: c.words };
   });
-  return { schedule: makeSchedule(plant.inputs, tracks, 0, horizon), shades, clamped };
+  const courses = tracks.map(({ input, times, values }): Course => {
+    const { path, unit } = plant.system.inputs[input];
+    return { quantity: path, unit, times, values };
+  });
+  return { schedule: makeSchedule(plant.inputs, tracks, 0, horizon), courses, shades, clamped };
 }
 
 interface Line {

@@ -115,20 +115,18 @@ function config(r: RunResult, { train, solute }: Part): ChartConfiguration {
 }
 
 function shadeLines(r: RunResult, seconds: number): object[] {
-  return r.shades
-    .slice(0, 10)
-    .flatMap((q) =>
-      [q.from, q.to]
-        .filter((t) => t < r.plant.scenario.horizon)
-        .map((t) => ({
-          type: 'line',
-          xMin: t / seconds,
-          xMax: t / seconds,
-          borderColor: '#ffffff',
-          borderWidth: 2,
-          borderDash: [5, 4],
-        })),
-    );
+  return r.shades.slice(0, 10).flatMap((q) =>
+    [q.from, q.to]
+      .filter((t) => t < r.plant.scenario.horizon)
+      .map((t) => ({
+        type: 'line',
+        xMin: t / seconds,
+        xMax: t / seconds,
+        borderColor: '#ffffff',
+        borderWidth: 2,
+        borderDash: [5, 4],
+      })),
+  );
 }
 
 /** From dark blue over green to light yellow: rises evenly in lightness, so it also reads in grey. */

@@ -1,5 +1,6 @@
 import type { ChartConfiguration } from 'chart.js';
 import type { Diagram } from '../../study/diagram.ts';
+import { inner } from './axis.ts';
 import { moment } from './moment.ts';
 import { fileName, type Part, type Picture } from './picture.ts';
 import { captions, colours, legend, short } from './style.ts';
@@ -10,6 +11,8 @@ interface HasDiagrams {
 }
 
 const MOST_MOMENTS = 4;
+/** The legend stretches markers, so the marker is part of the text. */
+const STAGE = '◆ stage (mixer)';
 
 /** Operating diagram of a train: isotherm, operating line and stage points, one field for each moment. */
 export const operating: Picture<HasDiagrams> = {
@@ -30,8 +33,8 @@ function config(d: Diagram, title: string): ChartConfiguration {
   const across = moments.length > 1 ? 2 : 1;
   const down = Math.ceil(moments.length / across);
   const all = moments.flatMap((m) => [...m.operating, ...m.stages]);
-  const maxX = 1.08 * Math.max(1e-9, ...all.map((p) => p.x));
-  const maxY = 1.15 * Math.max(1e-9, ...all.map((p) => p.y));
+  const maxX = wholeSteps(1.04 * Math.max(1e-9, ...all.map((p) => p.x)));
+  const maxY = wholeSteps(1.1 * Math.max(1e-9, ...all.map((p) => p.y)));
   const datasets = moments.flatMap((m, i) => {
     const axes = { xAxisID: `x${i % across}`, yAxisID: `y${down - 1 - Math.floor(i / across)}` };
     const curve = m.isotherm.filter((p) => p.y <= maxY * 1.0001 && p.x <= maxX * 1.0001);
@@ -61,7 +64,7 @@ function config(d: Diagram, title: string): ChartConfiguration {
         borderWidth: 2,
       },
       {
-        label: 'stage (mixer)',
+        label: STAGE,
         data: [...m.stages],
         ...axes,
         showLine: false,
@@ -134,13 +137,11 @@ function config(d: Diagram, title: string): ChartConfiguration {
   };
 }
 
+/** The end of an axis on a whole number of ticks. */
+const wholeSteps = (v: number): number => Math.ceil(v / step(v)) * step(v);
+
 /** A round tick distance that gives five to ten ticks. */
 function step(span: number): number {
   const size = 10 ** Math.floor(Math.log10(span / 5));
   return [1, 2, 5, 10].map((f) => f * size).find((v) => span / v <= 8) ?? span / 5;
-}
-
-function inner(this: { min: number; max: number }, value: number | string): string | null {
-  const v = Number(value);
-  return v > this.max - (this.max - this.min) * 0.04 ? null : String(Number(v.toPrecision(6)));
 }

@@ -20,7 +20,11 @@ export const outlets: Picture<RunResult> = {
     const panels = [...limitPanels(r, limited), ...otherPanels(r, limited)];
     const changed = changedPanels(r);
     const answer = [
-      ...r.limits.slice(0, 2).map((l) => limitLines(l).join(' ').replace(/\s+/g, ' ')),
+      ...r.limits.slice(0, 2).map((l) =>
+        limitLines(l)
+          .map((q) => q.replace(/\s+/g, ' ').trim())
+          .join('; '),
+      ),
       ...r.shades
         .slice(0, 3)
         .map(
@@ -33,7 +37,7 @@ export const outlets: Picture<RunResult> = {
       answer: answer.map((l) => short(l, 150)),
       source: `${short(s.title, 60)}: outlets over ${figure(s.horizon / unit.seconds)} ${unit.name}, start ${s.start}`,
       span: s.horizon,
-      panels: [...panels.slice(0, MOST_PANELS - Math.min(1, changed.length)), ...changed.slice(0, 1)],
+      panels: [...panels.slice(0, MOST_PANELS - Math.min(2, changed.length)), ...changed.slice(0, 2)],
       shades: r.shades,
     });
   },
@@ -96,22 +100,27 @@ function otherPanels(r: RunResult, limited: readonly string[]): Panel[] {
   }));
 }
 
-/** The inputs that upsets changed: a reader sees cause and effect on one sheet. */
+/** The inputs that upsets changed, as they were: a reader sees cause and effect on one sheet. */
 function changedPanels(r: RunResult): Panel[] {
-  const { outputs } = r.plant.system;
-  const changed = [...new Set(r.plant.scenario.upsets.map((u) => u.quantity))].filter((q) =>
-    outputs.some((o) => o.path === q),
-  );
-  const lines = changed.map((q) => line(r, q));
-  if (lines.length === 0) return [];
+  const lines = r.courses
+    .filter((c) => c.unit !== '')
+    .map((c) => {
+      const { unit, factor } = shown(c.unit);
+      const data = c.times.map((x, k) => ({ x, y: c.values[k] * factor }));
+      return { label: c.quantity, data, unit, largest: Math.max(...data.map((p) => p.y)) };
+    });
   const first = lines[0];
-  const alike = lines.filter(
-    (l) =>
-      l.unit === first.unit &&
-      l.largest < COMPARABLE * first.largest &&
-      first.largest < COMPARABLE * l.largest,
-  );
-  return [
-    { title: quantityOf(first.label), unit: first.unit, weight: 1, lines: alike.slice(0, 3), limits: [] },
-  ];
+  if (!first) return [];
+  const like = (a: number, b: number): boolean => a <= COMPARABLE * b && b <= COMPARABLE * a;
+  const groups = [...new Set(lines.map((l) => l.unit))].map((unit) => {
+    const own = lines.filter((l) => l.unit === unit);
+    return own.filter((l) => like(l.largest, own[0].largest)).slice(0, 3);
+  });
+  return groups.map((g) => ({
+    title: quantityOf(g[0].label),
+    unit: g[0].unit,
+    weight: 1,
+    lines: g,
+    limits: [],
+  }));
 }

@@ -116,7 +116,7 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
       ...range(panel),
       title: {
         display: true,
-        text: [short(panel.title, 6 + 8 * panel.weight), `[${panel.unit}]`],
+        text: [short(panel.title, 6 + 8 * panel.weight), `[${panel.unit.replace('^3', '³')}]`],
         font: { size: 12 },
       },
       border: { color: '#888888' },

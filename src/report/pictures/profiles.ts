@@ -1,5 +1,6 @@
 import type { ChartConfiguration } from 'chart.js';
 import type { RunResult } from '../../study/result.ts';
+import { inner } from './axis.ts';
 import { moment } from './moment.ts';
 import { fileName, type Part, type Picture } from './picture.ts';
 import { captions, legend, lineStyle, points, short } from './style.ts';
@@ -33,6 +34,7 @@ function config(r: RunResult, { train, solute }: Part): ChartConfiguration {
       yAxisID: phase,
       pointStyle: points[k % points.length],
       pointRadius: n > 40 ? 0 : 5,
+      clip: 8,
       ...lineStyle(k),
     })),
   );
@@ -41,7 +43,11 @@ function config(r: RunResult, { train, solute }: Part): ChartConfiguration {
     stack: 'phases',
     stackWeight: 1,
     min: 0,
-    grace: '12%',
+    max:
+      1.14 *
+      Math.max(1e-9, ...datasets.filter((d) => d.yAxisID === phase).flatMap((d) => d.data.map((p) => p.y))),
+    grid: { color: (c: { tick?: { value: number } }) => (c.tick?.value === 0 ? '#888888' : '#e2e2e2') },
+    ticks: { maxTicksLimit: 7, callback: inner },
     title: { display: true, text: [`${phase} ${short(solute, 20)}`, '[g/L]'] },
     afterFit: (scale: { width: number }) => {
       scale.width = 84;

@@ -70,8 +70,8 @@ export function legend(
               fillStyle: o.borderColor ?? '#000000',
               lineDash: marker ? [] : (o.borderDash ?? []),
               lineWidth: 2.5,
-              pointStyle: marker ? 'circle' : 'line',
-              fontColor: '#222222',
+              pointStyle: marker ? false : 'line',
+              fontColor: marker ? o.borderColor : '#222222',
             },
           ];
         }),

@@ -1,0 +1,155 @@
+import { SCHEMA } from './summary.ts';
+
+type Schema = { readonly [key: string]: unknown };
+
+const number = (description: string): Schema => ({ type: 'number', description });
+const text = (description: string): Schema => ({ type: 'string', description });
+const yes = (description: string): Schema => ({ type: 'boolean', description });
+const orNull = (s: Schema): Schema => ({ ...s, type: [s.type, 'null'] });
+const list = (items: Schema): Schema => ({ type: 'array', items });
+const range = (description: string): Schema => ({
+  type: ['array', 'null'],
+  items: { type: 'number' },
+  minItems: 2,
+  maxItems: 2,
+  description,
+});
+const figures = (description: string): Schema => ({
+  type: 'object',
+  additionalProperties: { type: 'number' },
+  description,
+});
+const object = (properties: Record<string, Schema>): Schema => ({
+  type: 'object',
+  properties,
+  required: Object.keys(properties),
+  additionalProperties: false,
+});
+
+const head = {
+  title: text('title of the scenario'),
+  about: text('what the scenario says of itself'),
+  scenario_file: text('the file as it was named'),
+  upsettle_version: text('version of the program'),
+  complete: yes('false: the computation ended early; what was computed is here'),
+};
+
+const plant = object({
+  solutes: list(text('name')),
+  species: list(text('name')),
+  states: number('number of states'),
+  trains: list(
+    object({
+      train: text('name'),
+      stages: number('number of stages'),
+      aqueous_m3_per_s: number('aqueous flow at time zero'),
+      organic_m3_per_s: number('organic flow at time zero'),
+      organic_to_aqueous: number('ratio of the flows'),
+      mixer_residence_s: range('least and most over the stages, both flows'),
+      aqueous_held_m3: number('aqueous in all mixers and settlers'),
+      organic_held_m3: number('organic in all mixers and settlers'),
+      aqueous_turnover_s: number('held over flow'),
+      organic_turnover_s: number('held over flow'),
+      settler_specific_flow_m_per_s: range('both flows over the settler area; null where no area is given'),
+    }),
+  ),
+});
+
+const run = object({
+  schema: { const: SCHEMA, description: 'number of this schema' },
+  verb: { const: 'run' },
+  ...head,
+  stop: object({
+    reason: text('kind of stop'),
+    time_s: number('time reached'),
+    message: text('in words, with what to do'),
+  }),
+  horizon_s: number('time asked for'),
+  record_every_s: number('distance of records'),
+  records: number('rows in series.csv'),
+  closure: figures(
+    '|held(t) − held(0) − in + out| / (in + held(0)) for every solute, species carrier and phase',
+  ),
+  balances: list(
+    object({
+      of: text('solute, species carrier or phase'),
+      unit: { enum: ['kg', 'm3'] },
+      entered: number('over the boundary'),
+      left: number('over the boundary'),
+      held_before: number('at time zero'),
+      held_after: number('at the end'),
+      closure: number('relative'),
+    }),
+  ),
+  limits: list(
+    object({
+      keep: text('quantity'),
+      side: { enum: ['below', 'above'] },
+      limit: number('in `unit`'),
+      unit: text('SI'),
+      kept: yes('never outside'),
+      outside_from_the_start: yes('outside at time zero'),
+      spells: list(
+        object({
+          from_s: number('outside from'),
+          to_s: orNull(number('until; null: still outside at the end')),
+        }),
+      ),
+      outside_s: number('in all'),
+      beyond_kg: orNull(number('∫ Q·max(c − limit, 0) dt; null where that has no meaning')),
+      worst: number('in `unit`'),
+      worst_time_s: number('when'),
+    }),
+  ),
+  upsets: list(
+    object({ change: text('in words'), from_s: number('begins'), to_s: number('over, ramps included') }),
+  ),
+  clamped_at_zero: list(object({ quantity: text('input'), time_s: number('held at zero from') })),
+  events: list(object({ time_s: number('when'), name: text('which'), message: text('in words') })),
+  final: figures('every output at the end, key `path [unit]`'),
+  plant,
+  solver: object({
+    integrator: text('method'),
+    relative_tolerance: number(''),
+    work: { type: 'object', additionalProperties: { type: 'integer' }, description: 'counts by cause' },
+    seconds: number('of computation'),
+  }),
+  cautions: text('read them'),
+});
+
+const steady = object({
+  schema: { const: SCHEMA, description: 'number of this schema' },
+  verb: { const: 'steady' },
+  ...head,
+  values: figures('every output at steady state, key `path [unit]`'),
+  transfers: list(
+    object({
+      train: text('name'),
+      solute: text('name'),
+      transferred_kg_per_s: number('from the aqueous to the organic'),
+      share: number('of what enters with the phase that gives'),
+    }),
+  ),
+  drifts: list(
+    object({
+      tank: text('name'),
+      gain_m3_per_s: number('of volume'),
+      until_full_or_empty_s: number('from time zero'),
+    }),
+  ),
+  closure: figures('imbalance over the boundary, relative to what enters'),
+  plant,
+  solver: object({
+    iterations: number(''),
+    residual_per_s: number('relative to contents'),
+    seconds: number('of computation'),
+  }),
+  cautions: text('read them'),
+});
+
+/** JSON Schema (2020-12) of `summary.json`. */
+export const summarySchema = {
+  $schema: 'https://json-schema.org/draft/2020-12/schema',
+  title: 'Upsettle summary.json',
+  oneOf: [run, steady],
+} as const;
