@@ -49,7 +49,7 @@ export class Extrapolation implements Integrator {
   advance({ from, to, inputs }: Stretch, x: F, onStep: OnStep): StretchEnd {
     const n = x.length;
     const { places } = this.#system;
-    const relative = this.#settings.tolerance.relative / Math.sqrt(n) / Number(process.env.Q ?? 1);
+    const relative = this.#settings.tolerance.relative;
     const solver = new Solver(n);
     solver.denseOutput = true;
     solver.relativeTolerance = relative;

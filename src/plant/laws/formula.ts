@@ -49,10 +49,14 @@ interface Shape {
   /** Names other than c_a and constants, in the order of the slots 1 … */
   readonly others: readonly string[];
   readonly numbers: readonly LawNumber[];
+  /** As the user wrote it. */
+  readonly raw: Expr;
   /** Slots: c_a, others, numbers, then the concentration `top` beyond which the tangent takes over. */
   readonly curve: Expr;
   readonly slots: number;
   readonly inverse: Special;
+  /** `top` from the others and the numbers; null where there are no others: then it is the last number. */
+  readonly overload: Special | null;
   readonly name: string;
 }
 
@@ -66,7 +70,7 @@ function shape(law: FormulaLaw): Shape {
   const others: string[] = [];
   const numbers: LawNumber[] = [];
   const collect = (f: Formula): void => {
-    if (f.kind === 'name' && f.name !== 'c_a' && !(f.name in law.constants) && !others.includes(f.name))
+    if (f.kind === 'name' && f.name !== 'c_a' && !Object.hasOwn(law.constants, f.name) && !others.includes(f.name))
       others.push(f.name);
     if (f.kind === 'apply') f.args.forEach(collect);
   };
@@ -82,7 +86,7 @@ function shape(law: FormulaLaw): Shape {
     if (f.kind === 'number') return number(`number ${f.value}`, f.value);
     if (f.kind === 'name') {
       if (f.name === 'c_a') return input(0);
-      if (f.name in law.constants) return number(f.name, law.constants[f.name]);
+      if (Object.hasOwn(law.constants, f.name)) return number(f.name, law.constants[f.name]);
       return input(1 + others.indexOf(f.name));
     }
     const [a, b] = f.args;
@@ -101,20 +105,19 @@ function shape(law: FormulaLaw): Shape {
   const below = mul(atPoint(slope, constant(0)), c);
   const curve = select(c, select(sub(top, c), raw, beyond), below);
   count += 1;
-  const made: Shape = {
-    others,
-    numbers: [...numbers, { name: 'tangent from', unit: 'kg/m^3', value: 0 }],
-    curve,
-    slots,
-    inverse: inverse(curve, slots),
-    name: `formula ${count}`,
-  };
-  (made.numbers[made.numbers.length - 1] as { value: number }).value = tangentFrom(raw, made);
+  const overload = others.length > 0 ? overloadOf(raw, slope, slots - 1) : null;
+  if (!overload) {
+    const f = evaluator(raw, slots);
+    const values = numbers.map((q) => q.value);
+    numbers.push({ name: 'tangent from', unit: 'kg/m^3', value: tangentFrom((c) => f([c, ...values, 0])) });
+  }
+  const name = `formula ${count}`;
+  const made = { others, numbers, raw, curve, slots, inverse: inverse(curve, slots), overload, name };
   known.set(law, made);
   return made;
 }
 
-/** Value and slope of an expression over slots, as plain functions of the first slot. */
+/** An expression over slots as a plain function of their values. */
 function evaluator(e: Expr, slots: number): (args: readonly number[]) => number {
   const run = generated.run(
     { name: 'formula', args: Array.from({ length: slots }, (_, i) => `s${i}`), outputs: [e] },
@@ -130,11 +133,8 @@ function evaluator(e: Expr, slots: number): (args: readonly number[]) => number 
   };
 }
 
-/** The concentration at 0.999 of the ceiling, or "very much" where the formula has none. Other species as 1 g/L. */
-function tangentFrom(raw: Expr, s: Shape): number {
-  const f = evaluator(raw, s.slots);
-  const rest = [...s.others.map(() => 1), ...s.numbers.map((q) => q.value)];
-  const at = (c: number): number => f([c, ...rest]);
+/** The concentration at 0.999 of the ceiling, or "very much" where the formula has none. */
+function tangentFrom(at: (c: number) => number): number {
   const ceiling = at(VERY_MUCH);
   if (!Number.isFinite(ceiling) || ceiling > 2 * at(VERY_MUCH / 1e3)) return VERY_MUCH;
   let lo = 0;
@@ -145,6 +145,41 @@ function tangentFrom(raw: Expr, s: Shape): number {
     else hi = mid;
   }
   return hi;
+}
+
+/**
+ * The same for the other species as they are, which may move the ceiling or how soon it is met. From
+ * f(top, s) = 0.999·f(∞, s): ∂top/∂s = (0.999·∂f/∂s(∞) − ∂f/∂s(top))/f′(top).
+ */
+function overloadOf(raw: Expr, slope: Expr, count: number): Special {
+  const f = evaluator(raw, count + 1);
+  const partial = Array.from({ length: count }, (_, i) => differentiate(raw, i + 1));
+  return {
+    name: 'overload of a formula',
+    evaluate: (...rest) => tangentFrom((c) => f([c, ...rest])),
+    partials(rest, self) {
+      const at = (e: Expr, c: Expr): Expr => substitute(e, [c, ...rest]);
+      const far = constant(VERY_MUCH);
+      const moves = (d: Expr): Expr => div(sub(mul(LOADED, at(d, far)), at(d, self)), at(slope, self));
+      // Without a ceiling the point stays where it is, and the quotient may be no number.
+      return partial.map((d) => select(sub(self, far), 0, moves(d)));
+    },
+  };
+}
+
+/** A formula as the user wrote it, without what we add beyond its ends: c_o and its slope over c_a. */
+export function asWritten(law: FormulaLaw): {
+  readonly others: readonly string[];
+  readonly value: (ca: number, others: readonly number[]) => number;
+  readonly slope: (ca: number, others: readonly number[]) => number;
+} {
+  const { raw, others, numbers, slots } = shape(law);
+  const values = numbers.map((q) => q.value);
+  const plain = (e: Expr): ((ca: number, at: readonly number[]) => number) => {
+    const f = evaluator(e, slots);
+    return (ca, at) => f([ca, ...at, ...values]);
+  };
+  return { others, value: plain(raw), slope: plain(differentiate(raw, 0)) };
 }
 
 /** c_a from c_o: the root of the rising curve; its partials by the implicit function theorem. */
@@ -177,10 +212,11 @@ export type NameLookup = (name: string, at: Local) => Expr;
 
 /** The user's own expression of c_a, of other dissolved species and of constants: c_o = f(c_a, …), in g/L. */
 export const formulaLaw = (lookup: NameLookup): LawKind<FormulaLaw> => {
-  const rest = (m: Member<FormulaLaw>, at: Local): Expr[] => [
-    ...shape(m.law).others.map((name) => lookup(name, at)),
-    ...m.q,
-  ];
+  const rest = (m: Member<FormulaLaw>, at: Local): Expr[] => {
+    const { others, overload } = shape(m.law);
+    const known = [...others.map((name) => lookup(name, at)), ...m.q];
+    return overload ? [...known, call(overload, ...known)] : known;
+  };
   return {
     numbers: (l) => shape(l).numbers,
     structure: (l) => shape(l).name,

@@ -1,0 +1,96 @@
+import type { Change } from '../scenario/scenario.ts';
+
+/** Corners of one quantity over time; two equal times are a jump. */
+export interface Line {
+  readonly times: number[];
+  readonly values: number[];
+  readonly clampedAt: number | null;
+}
+
+/**
+ * One quantity over time: value = base·(1 + Σp) + Σa, where base is the last `to` or `follow` in force, the p are
+ * relative and the a absolute changes, each weighted by its ramp. A `to` that ends gives back the base before it.
+ *
+ * The value is exact at every corner and a straight line between: only where a ramp of the base and a relative
+ * ramp overlap does that differ from the product, which bends there.
+ */
+export function track(initial: number, changes: readonly Change[], horizon: number): Line {
+  const list = [...changes].sort((a, b) => a.at - b.at);
+  const corners = list.flatMap((c) => {
+    const ends = c.lasts === null ? [] : [c.at + c.lasts, c.at + c.lasts + c.over];
+    return [c.at, c.at + c.over, ...ends, ...('follow' in c.how ? c.how.follow.times : [])];
+  });
+  const times = [...new Set([0, ...corners.filter((t) => t > 0 && t < horizon), horizon])].sort(
+    (a, b) => a - b,
+  );
+  const value = (t: number, side: -1 | 1): number => {
+    let base = initial;
+    let relative = 1;
+    let absolute = 0;
+    for (const c of list) {
+      const weight = share(c, t, side);
+      if ('by' in c.how) {
+        if (c.how.relative) relative += weight * c.how.by;
+        else absolute += weight * c.how.by;
+      } else base += weight * (('to' in c.how ? c.how.to : interpolate(c.how.follow, t)) - base);
+    }
+    return base * relative + absolute;
+  };
+  const line = { times: [] as number[], values: [] as number[] };
+  const push = (t: number, v: number): void => {
+    line.times.push(t);
+    line.values.push(v);
+  };
+  for (const t of times) {
+    const [left, right] = [value(t, -1), value(t, 1)];
+    if (t > 0 && left !== right) push(t, left);
+    push(t, right);
+  }
+  return clampAtZero(line);
+}
+
+/** How far a change is in force, 0 … 1, just before (−1) or just after (1) a time. */
+function share(c: Change, t: number, side: -1 | 1): number {
+  const ramp = (from: number): number => {
+    if (c.over > 0) return Math.min(1, Math.max(0, (t - from) / c.over));
+    return t > from || (t === from && side > 0) ? 1 : 0;
+  };
+  return ramp(c.at) - (c.lasts === null ? 0 : ramp(c.at + c.lasts));
+}
+
+function interpolate(
+  data: { readonly times: readonly number[]; readonly values: readonly number[] },
+  t: number,
+): number {
+  const { times, values } = data;
+  let lo = 0;
+  let hi = times.length - 1;
+  if (t <= times[0]) return values[0];
+  if (t >= times[hi]) return values[hi];
+  while (hi - lo > 1) {
+    const mid = (lo + hi) >> 1;
+    if (times[mid] <= t) lo = mid;
+    else hi = mid;
+  }
+  return values[lo] + ((values[hi] - values[lo]) * (t - times[lo])) / (times[hi] - times[lo]);
+}
+
+/** No flow and no concentration is negative: the line is cut at zero, with corners where it meets it. */
+function clampAtZero(line: { times: number[]; values: number[] }): Line {
+  const first = line.values.findIndex((v) => v < 0);
+  if (first < 0) return { ...line, clampedAt: null };
+  const times: number[] = [];
+  const values: number[] = [];
+  line.times.forEach((t, i) => {
+    const v = line.values[i];
+    if (i > 0 && v < 0 !== line.values[i - 1] < 0 && t > line.times[i - 1]) {
+      times.push(
+        line.times[i - 1] + ((t - line.times[i - 1]) * line.values[i - 1]) / (line.values[i - 1] - v),
+      );
+      values.push(0);
+    }
+    times.push(t);
+    values.push(Math.max(0, v));
+  });
+  return { times, values, clampedAt: line.times[first] };
+}

@@ -1,0 +1,133 @@
+import type { Maker, Network } from '../scenario/network.ts';
+import { type Problem, Refusal } from '../scenario/refusal.ts';
+import type { Law, Phase, Scenario, Train } from '../scenario/scenario.ts';
+import { NEARLY_EMPTY } from './book.ts';
+import { formulaIndex } from './chemistry.ts';
+import { track } from './course.ts';
+import { upstream } from './entering.ts';
+import { asWritten } from './laws/formula.ts';
+
+type Of<L extends Law['law']> = Extract<Law, { law: L }>;
+
+/** Points at which a formula is looked at, closer together near zero, where isotherms bend. */
+const POINTS = 400;
+/** A formula counts as zero at zero below this share of its value at the largest feed: rounding, not an offset. */
+const AT_ZERO = 1e-9;
+
+/**
+ * Refuses what the equations are not made for: a formula that does not rise from zero, solutes of one train on
+ * different extractants, and settlers that a moving flow would empty into their mixers.
+ *
+ * @throws Refusal naming all of it.
+ */
+export function suitable(s: Scenario, net: Network): void {
+  const problems = s.trains.flatMap((t) => [
+    ...risingFormulas(s, net, t),
+    ...sameExtractant(s, t),
+    ...roomySettlers(s, net, t),
+  ]);
+  if (problems.length > 0) throw new Refusal(problems);
+}
+
+/** Least and most of an input over the schedule. */
+function extremes(s: Scenario, quantity: string, initial: number): readonly [number, number] {
+  const own = s.upsets.filter((u) => u.quantity === quantity);
+  const { values } = track(initial, own, s.horizon);
+  return [Math.min(...values), Math.max(...values)];
+}
+
+/** The largest concentration of a solute that any aqueous feed brings; of any other source where none has it. */
+function largestFeed(s: Scenario, solute: number): number {
+  const most = s.feeds.map((f) => ({
+    phase: f.phase,
+    value: extremes(s, `${f.name}.${s.solutes[solute]}`, f.content[solute])[1],
+  }));
+  const aqueous = Math.max(0, ...most.flatMap((q) => (q.phase === 'aqueous' ? [q.value] : [])));
+  if (aqueous > 0) return aqueous;
+  return Math.max(0, ...most.map((q) => q.value), ...s.tanks.map((t) => t.content[solute])) || 1;
+}
+
+/** f(0) = 0 and f′ > 0 on 0 … 2 × the largest feed, other components as they enter the train. */
+function risingFormulas(s: Scenario, net: Network, t: Train): Problem[] {
+  const entering = upstream(s, net, t.aqueous.from, 'aqueous');
+  return t.equilibrium.flatMap((law, i): Problem[] => {
+    if (law?.law !== 'formula') return [];
+    const f = asWritten(law);
+    const at = f.others.map((name) => entering[formulaIndex(s, name)]);
+    const reach = 2 * largestFeed(s, i);
+    const complain = (message: string): Problem[] => [
+      { path: ['trains', t.name, 'equilibrium', s.solutes[i], 'organic'], message },
+    ];
+    const zero = f.value(0, at);
+    if (!(Math.abs(zero) <= AT_ZERO * Math.abs(f.value(reach / 2, at))))
+      return complain(`an isotherm passes through 0, 0, but the formula gives ${show(zero)} g/L at c_a = 0`);
+    for (let k = 0; k <= POINTS; k++) {
+      const ca = reach * (k / POINTS) ** 2;
+      const slope = f.slope(ca, at);
+      if (!(slope > 0 && slope < Infinity))
+        return complain(
+          `an isotherm rises from 0 to ${show(reach)} g/L (twice the largest feed), but the slope of the formula is ${show(slope)} at c_a = ${show(ca)} g/L`,
+        );
+    }
+    return [];
+  });
+}
+
+/** The free extractant is what all solutes together leave of it, so there is one total. */
+function sameExtractant(s: Scenario, t: Train): Problem[] {
+  const laws = t.equilibrium.flatMap((law, i) => (law?.law === 'exchange' ? [{ law, i }] : []));
+  return laws.slice(1).flatMap(({ law, i }): Problem[] => {
+    const [first] = laws as { law: Of<'exchange'>; i: number }[];
+    if (law.extractant === first.law.extractant) return [];
+    return [
+      {
+        path: ['trains', t.name, 'equilibrium', s.solutes[i], 'extractant'],
+        message: `'${s.solutes[first.i]}' and '${s.solutes[i]}' share one extractant, but ${show(first.law.extractant)} and ${show(law.extractant)} g/L are stated`,
+      },
+    ];
+  });
+}
+
+/**
+ * A mixer follows its flows between the shares Q_o/(Q_a + Q_o) at their extremes, and never leaves that range. What
+ * it takes up of a phase beyond its design hold-up comes out of the settler's layer, which must hold that much.
+ */
+function roomySettlers(s: Scenario, net: Network, t: Train): Problem[] {
+  const source = { aqueous: net.flowSource(t.aqueous.from), organic: net.flowSource(t.organic.from) };
+  const range = { aqueous: flowRange(s, net, source.aqueous), organic: flowRange(s, net, source.organic) };
+  return (['aqueous', 'organic'] as const).flatMap((phase): Problem[] => {
+    const other: Phase = phase === 'aqueous' ? 'organic' : 'aqueous';
+    const own = range[phase];
+    const design = own.design / (own.design + range[other].design);
+    const most = own.most / (own.most + range[other].least);
+    const small = t.stages.findIndex(
+      ({ mixer, settler }) =>
+        mixer.volume * (most - design) > settler[phase] * (1 - NEARLY_EMPTY) * (1 + Number.EPSILON),
+    );
+    if (small < 0) return [];
+    const { mixer, settler } = t.stages[small];
+    const why = range[other].least === 0 ? `stops` : `is least`;
+    return [
+      {
+        path: ['trains', t.name, 'settler'],
+        message: `the settler of stage ${small + 1} is too small: when the ${other} flow ${why}, its mixer takes up ${show(mixer.volume * (most - design))} m^3 of ${phase}, but the ${phase} layer holds ${show(settler[phase])} m^3`,
+      },
+    ];
+  });
+}
+
+function flowRange(s: Scenario, net: Network, m: Maker): { design: number; least: number; most: number } {
+  const { name, flow } = m.kind === 'feed' ? s.feeds[m.index] : s.tanks[m.index];
+  const design = flow as number;
+  const [least, most] = extremes(s, `${name}.flow`, design);
+  return { design, least: runsDry(s, net, m) ? 0 : least, most };
+}
+
+/** A tank that is filled by one flow and emptied by another can run dry, and then its pump stops. */
+function runsDry(s: Scenario, net: Network, m: Maker): boolean {
+  if (m.kind !== 'tank') return false;
+  const filledBy = net.flowSource(s.tanks[m.index].from);
+  return filledBy.kind !== m.kind || filledBy.index !== m.index;
+}
+
+const show = (v: number): string => String(Number(v.toPrecision(4)));
