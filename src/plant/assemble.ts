@@ -1,17 +1,20 @@
 import { type Execution, generated } from '../math/kernel.ts';
 import { type Maker, type Network, network, type Stream } from '../scenario/network.ts';
-import type { Phase, Scenario, Tank, Train } from '../scenario/scenario.ts';
+import type { Phase, Scenario, Train } from '../scenario/scenario.ts';
 import type { F, System } from '../solve/system.ts';
 import { type Account, accounts } from './accounts.ts';
-import { Book, type Source } from './book.ts';
-import { type Totals, totals, writeFeed } from './boundary.ts';
+import { Book, type Sink, type Source } from './book.ts';
+import { FeedWriter, type Totals, totals } from './boundary.ts';
 import { chemistry } from './chemistry.ts';
 import { holdWhatOnlyCirculates } from './circulating.ts';
+import { designs, type TrainDesign } from './design.ts';
 import { entering } from './entering.ts';
-import { passed, same } from './kernels.ts';
+import { forBoth, otherPhase, PHASES, type StreamFlow } from './flow.ts';
+import { product, same } from './kernels.ts';
 import type { Ref } from './ledger.ts';
-import { type Flows, type Laws, type WrittenStage, writeStage } from './stage.ts';
-import { type WrittenTank, writeTank, writeTankEvents } from './tank.ts';
+import { suitable } from './suitable.ts';
+import { TankWriter } from './tank.ts';
+import { type Laws, TrainWriter } from './train.ts';
 
 /** A plant ready to be solved: the System, its numbers at the start, and what is needed to read the answer. */
 export interface Plant {
@@ -21,9 +24,10 @@ export interface Plant {
   readonly parameters: F;
   /** Inputs before anything changes. */
   readonly inputs: F;
-  /** The barren start: full vessels at their steady hold-ups, nothing extracted yet. */
+  /** The barren (or, with weirs, empty) start. */
   readonly barren: F;
   readonly accounts: readonly Account[];
+  readonly designs: readonly TrainDesign[];
 }
 
 export interface AssembleOptions {
@@ -39,6 +43,7 @@ export interface AssembleOptions {
  */
 export function assemble(s: Scenario, options: AssembleOptions = {}): Plant {
   const net = network(s);
+  suitable(s, net);
   const book = new Book(s, net);
   const moving = options.moving ?? new Set(s.upsets.map((u) => u.quantity));
   const writer = new PlantWriter(s, net, book, moving);
@@ -53,6 +58,7 @@ export function assemble(s: Scenario, options: AssembleOptions = {}): Plant {
     inputs: Float64Array.from(book.inputValues),
     barren: Float64Array.from(book.initial),
     accounts: books,
+    designs: writer.designs,
   };
 }
 
@@ -61,90 +67,167 @@ class PlantWriter {
   readonly levels: { phase: Phase; place: Ref }[] = [];
   /** m³ of each phase in vessels whose total never changes. */
   readonly fixedVolume = { aqueous: 0, organic: 0 };
+  readonly designs: readonly TrainDesign[];
   readonly #s: Scenario;
   readonly #net: Network;
   readonly #book: Book;
   readonly #moving: ReadonlySet<string>;
-  readonly #feeds: Source[] = [];
-  readonly #tanks: WrittenTank[] = [];
-  readonly #trains: WrittenStage[][] = [];
-  readonly #outlets = new Map<string, Totals>();
+  readonly #feeds: FeedWriter[] = [];
+  readonly #pumps: { flow: Ref; dry: Ref | null }[] = [];
+  readonly #tanks: TankWriter[] = [];
+  readonly #trains: TrainWriter[] = [];
+  readonly #outlets = new Map<string, Sink>();
 
   constructor(s: Scenario, net: Network, book: Book, moving: ReadonlySet<string>) {
     this.#s = s;
     this.#net = net;
     this.#book = book;
     this.#moving = moving;
+    this.designs = designs(s, net);
   }
 
   write(): void {
     const { feeds, tanks, trains } = this.#s;
-    for (const f of feeds) {
-      const { source, totals: entered } = writeFeed(this.#book, f);
-      this.#feeds.push(source);
-      this.totals.push(entered);
-    }
-    // A tank without a pump passes on what it gets, so it is written after the source of its flow.
-    const order = tanks
-      .map((_, i) => i)
-      .sort((a, b) => Number(tanks[a].flow === null) - Number(tanks[b].flow === null));
-    for (const i of order) this.#tanks[i] = this.#writeTank(tanks[i]);
-    trains.forEach((t, i) => {
-      this.#trains[i] = this.#writeStages(t);
+    feeds.forEach((f, index) => {
+      const writer = new FeedWriter(this.#book, f, (flow) => this.#gated(flow, { kind: 'feed', index }));
+      this.#feeds.push(writer);
+      this.totals.push(writer.totals);
     });
-    for (const out of this.#net.outlets) {
-      const left = totals(this.#book, out.name, out.phase, 'out');
-      this.#outlets.set(out.name, left);
-      this.totals.push(left);
-    }
-    for (const stream of this.#net.streams.values()) this.#source(stream).send(this.#sink(stream));
-    for (const stages of this.#trains) this.#joinStages(stages);
-    this.#writeVolumes();
+    tanks.forEach((t, index) => {
+      this.#pumps[index] = t.flow === null ? { flow: this.#book.number(0), dry: null } : this.#pump(index);
+    });
+    trains.forEach((t, i) => {
+      this.#trains[i] = this.#openTrain(t, i);
+    });
+    tanks.forEach((t, i) => {
+      const flow = t.flow === null ? this.#streamFlow(t.from).flow : this.#pumps[i].flow;
+      const tank = new TankWriter(
+        this.#book,
+        t,
+        flow,
+        this.#pumps[i].dry,
+        this.#levelMoves(i),
+        this.#carries(t.from),
+      );
+      this.#tanks[i] = tank;
+      if (tank.volume) this.levels.push({ phase: t.phase, place: tank.volume });
+      else this.fixedVolume[t.phase] += t.held;
+      if (tank.bottomsVolume) this.levels.push({ phase: otherPhase(t.phase), place: tank.bottomsVolume });
+      if (tank.lost) this.totals.push(tank.lost);
+    });
+    for (const out of this.#net.outlets) this.#outlets.set(out.name, this.#outlet(out));
+    for (const t of this.#trains) t.run();
+    trains.forEach((t, i) => {
+      this.#trains[i].join(forBoth((phase) => () => this.#sink(t[phase].to)));
+    });
+    for (const stream of this.#net.streams.values())
+      if (stream.maker.kind !== 'train') this.#source(stream).send(this.#sink(stream.name));
+    tanks.forEach((t, i) => {
+      this.#tanks[i].events(
+        this.#streamFlow(t.from),
+        t.makeUp === null ? null : this.#streamFlow(t.makeUp).flow,
+      );
+    });
     this.#showStreams();
   }
 
-  #writeTank(t: Tank): WrittenTank {
-    const source = this.#net.flowSource(t.from);
-    const own = this.#net.flowSource(t.to);
-    const levelMoves = t.flow !== null && !(source.kind === own.kind && source.index === own.index);
-    const w = writeTank(
-      this.#book,
-      t,
-      levelMoves || t.flow !== null ? null : this.#flow(source),
-      levelMoves,
-      t.content,
+  /** A pump's flow: as set, while it is in service and its tank is not empty, and nothing on its way is stopped. */
+  #pump(index: number): { flow: Ref; dry: Ref | null } {
+    const t = this.#s.tanks[index];
+    const set = this.#book.input(
+      { path: `${t.name}.flow`, unit: 'm^3/s', scale: t.flow as number },
+      t.flow as number,
     );
-    if (w.volume === null) this.fixedVolume[t.phase] += t.held;
-    else this.levels.push({ phase: t.phase, place: w.volume });
-    if (w.lost) this.totals.push(w.lost);
-    return w;
+    const mode = (path: string): Ref => this.#book.input({ path, unit: '', scale: 1 }, 1);
+    const trip = this.#moving.has(`${t.name}.pump`) ? mode(`${t.name}.pump`) : null;
+    const dry = this.#levelMoves(index) ? mode(`${t.name}.not empty`) : null;
+    let flow = set;
+    for (const on of [trip, dry]) if (on) flow = this.#book.signal(product, flow, on);
+    return { flow: this.#gated(flow, { kind: 'tank', index }), dry };
   }
 
-  #flow(m: Maker): Ref {
-    return m.kind === 'feed' ? this.#feeds[m.index].flow : this.#tanks[m.index].source.flow;
+  /** An agitator that also pumps holds back, when it stops, what is on its way into its train. */
+  #gated(flow: Ref, from: Maker): Ref {
+    let result = flow;
+    for (const t of this.#s.trains) {
+      const enters = PHASES.some((phase) => isSame(this.#net.flowSource(t[phase].from), from));
+      if (!enters) continue;
+      t.stages.forEach((q, j) => {
+        const path = `${t.name}.${j + 1}`;
+        if (q.mixer.pumps && this.#moving.has(`${path}.mixer`))
+          result = this.#book.signal(product, result, this.#book.running(path));
+      });
+    }
+    return result;
   }
 
-  #designFlow(m: Maker): number {
-    return m.kind === 'feed' ? this.#s.feeds[m.index].flow : (this.#s.tanks[m.index].flow as number);
+  /** Whether something on the way back to a stream's pump or feed makes its flow differ from what that sets. */
+  #disturbed(stream: string): boolean {
+    const { maker, phase } = this.#net.streams.get(stream) as Stream;
+    if (maker.kind === 'feed') return false;
+    if (maker.kind === 'tank')
+      return this.#s.tanks[maker.index].flow === null && this.#disturbed(this.#s.tanks[maker.index].from);
+    const t = this.#s.trains[maker.index];
+    const carries = t.stages.some((q) => q.settler.carry !== null || q.settler.band !== null);
+    return t.hydraulics === 'weirs' || carries || this.#disturbed(t[phase].from);
   }
 
-  /** A flow moves if somebody changes it, or if the tank it comes from can run dry. */
+  #levelMoves(index: number): boolean {
+    const t = this.#s.tanks[index];
+    if (t.flow === null) return false;
+    return (
+      !isSame(this.#net.flowSource(t.from), { kind: 'tank', index }) ||
+      t.makeUp !== null ||
+      this.#disturbed(t.from)
+    );
+  }
+
+  /** Whether a stream can bring something of the other phase. */
+  #carries(stream: string): boolean {
+    const { maker, phase } = this.#net.streams.get(stream) as Stream;
+    if (maker.kind === 'feed') return false;
+    if (maker.kind === 'tank')
+      return this.#s.tanks[maker.index].passes > 0 && this.#carries(this.#s.tanks[maker.index].from);
+    const { stages, hydraulics } = this.#s.trains[maker.index];
+    const { settler } = stages[phase === 'aqueous' ? stages.length - 1 : 0];
+    return hydraulics === 'weirs' || settler.carry !== null || settler.band !== null;
+  }
+
+  #streamFlow(name: string): StreamFlow {
+    const { maker, phase } = this.#net.streams.get(name) as Stream;
+    if (maker.kind === 'feed') return { flow: this.#feeds[maker.index].flow, carried: null };
+    if (maker.kind === 'train') return this.#trains[maker.index].outlet(phase);
+    const t = this.#s.tanks[maker.index];
+    const flow = t.flow === null ? this.#streamFlow(t.from).flow : this.#pumps[maker.index].flow;
+    const passes = t.passes > 0 && this.#carries(t.from) ? this.#streamFlow(t.from).carried : null;
+    return {
+      flow,
+      carried: passes === null ? null : this.#book.signal(product, passes, this.#book.number(t.passes)),
+    };
+  }
+
+  #origin(m: Maker): Ref {
+    return m.kind === 'feed' ? this.#feeds[m.index].flow : this.#pumps[m.index].flow;
+  }
+
+  /** A flow moves if somebody changes it, if its pump or an agitator can stop, or if its tank can run dry. */
   #flowMoves(m: Maker): boolean {
     const name = m.kind === 'feed' ? this.#s.feeds[m.index].name : this.#s.tanks[m.index].name;
-    return this.#moving.has(`${name}.flow`) || (m.kind === 'tank' && this.#tanks[m.index].volume !== null);
+    const gated = this.#s.trains.some(
+      (t) =>
+        PHASES.some((phase) => isSame(this.#net.flowSource(t[phase].from), m)) &&
+        t.stages.some((q, j) => q.mixer.pumps && this.#moving.has(`${t.name}.${j + 1}.mixer`)),
+    );
+    return (
+      gated ||
+      this.#moving.has(`${name}.flow`) ||
+      this.#moving.has(`${name}.pump`) ||
+      (m.kind === 'tank' && this.#levelMoves(m.index))
+    );
   }
 
-  #writeStages(t: Train): WrittenStage[] {
-    const source = {
-      aqueous: this.#net.flowSource(t.aqueous.from),
-      organic: this.#net.flowSource(t.organic.from),
-    };
-    const flows: Flows = {
-      aqueous: this.#flow(source.aqueous),
-      organic: this.#flow(source.organic),
-      design: { aqueous: this.#designFlow(source.aqueous), organic: this.#designFlow(source.organic) },
-      move: this.#flowMoves(source.aqueous) || this.#flowMoves(source.organic),
-    };
+  #openTrain(t: Train, i: number): TrainWriter {
+    const source = forBoth((phase) => this.#net.flowSource(t[phase].from));
     const chem = chemistry(this.#s, t);
     const laws: Laws = {
       chemistry: chem,
@@ -152,68 +235,80 @@ class PlantWriter {
         this.#book.ledger.parameter(`${t.name}.${this.#book.name(q.solute)}.${q.name}`, q.unit, q.value),
       ),
     };
-    const start = entering(this.#s, this.#net, t);
-    for (const stage of t.stages) {
-      const share = flows.design.organic / (flows.design.aqueous + flows.design.organic);
-      this.fixedVolume.organic += stage.settler.organic + stage.mixer.volume * share;
-      this.fixedVolume.aqueous += stage.settler.aqueous + stage.mixer.volume * (1 - share);
+    const design = this.designs[i];
+    const nominal = forBoth((phase) => this.#origin(source[phase]));
+    const total = this.#book.number(design.nominal.aqueous + design.nominal.organic);
+    const bypassed = t.stages.some((_, j) =>
+      PHASES.some((phase) => this.#moving.has(`${t.name}.${j + 1}.${phase} bypass`)),
+    );
+    const writer = new TrainWriter(this.#book, t, {
+      design,
+      nominal: { ...nominal, total },
+      laws,
+      start: entering(this.#s, this.#net, t),
+      moves:
+        bypassed || PHASES.some((phase) => this.#flowMoves(source[phase]) || this.#disturbed(t[phase].from)),
+      moving: this.#moving,
+      inlet: (phase) => this.#streamFlow(t[phase].from),
+    });
+    for (const [j, v] of writer.vessels.entries()) {
+      const { volumes } = v.places;
+      for (const phase of PHASES) {
+        const held = [volumes.mixer[phase], volumes.band?.[phase], volumes.layer?.[phase]];
+        if (t.hydraulics === 'weirs') for (const place of held) if (place) this.levels.push({ phase, place });
+        const d = design.stages[j];
+        if (t.hydraulics === 'full')
+          this.fixedVolume[phase] += d.mixer[phase] + d.band[phase] + d.layer[phase];
+      }
     }
-    return t.stages.map((_, j) => writeStage(this.#book, t, j, laws, flows, start));
+    return writer;
   }
 
-  #joinStages(stages: readonly WrittenStage[]): void {
-    for (let j = 0; j + 1 < stages.length; j++) {
-      stages[j].outlet.aqueous.send(stages[j + 1].inlet.aqueous);
-      stages[j + 1].outlet.organic.send(stages[j].inlet.organic);
-    }
+  #outlet(out: Stream): Sink {
+    const left = (phase: Phase): Sink['aqueous'] => {
+      if (phase !== out.phase && !this.#carries(out.name)) return [];
+      const t = totals(this.#book, out.name, phase, 'out', phase !== out.phase);
+      this.totals.push(t);
+      return [{ share: null, places: t.components, volume: t.volume }];
+    };
+    return forBoth(left);
   }
 
   #source({ maker, phase }: Stream): Source {
-    if (maker.kind === 'feed') return this.#feeds[maker.index];
-    if (maker.kind === 'tank') return this.#tanks[maker.index].source;
-    const stages = this.#trains[maker.index];
-    return stages[phase === 'aqueous' ? stages.length - 1 : 0].outlet[phase];
+    if (maker.kind === 'feed') return this.#feeds[maker.index].source();
+    if (maker.kind === 'tank') return this.#tanks[maker.index].source();
+    const train = this.#trains[maker.index];
+    return train.source(phase, phase === 'aqueous' ? train.vessels.length - 1 : 0);
   }
 
-  #sink({ name, user, phase }: Stream): readonly Ref[] {
-    if (user === null) return (this.#outlets.get(name) as Totals).components;
-    if (user.kind === 'tank') return this.#tanks[user.index].inlet;
-    const stages = this.#trains[user.index];
-    return stages[phase === 'aqueous' ? 0 : stages.length - 1].inlet[phase];
-  }
-
-  /** Carrier volume runs from where a flow is set (feed, pump) straight to the next level or outlet. */
-  #writeVolumes(): void {
-    const { ledger } = this.#book;
-    this.#s.feeds.forEach((f, i) => {
-      ledger.flux(passed, [this.#feeds[i].flow], {
-        from: this.totals[i].volume,
-        to: this.#volumeEnd(f.name),
-      });
-    });
-    this.#s.tanks.forEach((t, i) => {
-      const w = this.#tanks[i];
-      if (w.volume === null) return;
-      ledger.flux(passed, [w.source.flow], { from: w.volume, to: this.#volumeEnd(t.to) });
-      writeTankEvents(this.#book, t, w, this.#flow(this.#net.flowSource(t.from)));
-    });
-  }
-
-  #volumeEnd(name: string): Ref {
+  #sink(name: string): Sink {
     const { user, phase } = this.#net.streams.get(name) as Stream;
-    if (user === null) return (this.#outlets.get(name) as Totals).volume;
-    if (user.kind === 'train') return this.#volumeEnd(this.#s.trains[user.index][phase].to);
-    return this.#tanks[user.index].volume ?? this.#volumeEnd(this.#s.tanks[user.index].to);
+    if (user === null) return this.#outlets.get(name) as Sink;
+    if (user.kind === 'tank')
+      return this.#tanks[user.index].sink(() => this.#sink(this.#s.tanks[user.index].to));
+    const train = this.#trains[user.index];
+    return train.sink(phase, train.first(phase), () => this.#sink(this.#s.trains[user.index][phase].to));
   }
 
   /** Flow and composition of every stream, under its own name; a tank's stream repeats what the tank shows. */
   #showStreams(): void {
     for (const stream of this.#net.streams.values()) {
       const source = this.#source(stream);
-      const scale = this.#designFlow(this.#net.flowSource(stream.name));
+      const from = this.#net.flowSource(stream.name);
+      const scale =
+        from.kind === 'feed' ? this.#s.feeds[from.index].flow : (this.#s.tanks[from.index].flow as number);
       this.#book.ledger.output({ path: `${stream.name}.flow`, unit: 'm^3/s', scale }, same, source.flow);
+      if (source.carried)
+        this.#book.showValue(
+          `${stream.name}.carried ${otherPhase(stream.phase)}`,
+          'm^3/s',
+          scale * 1e-4,
+          source.carried,
+        );
       for (let k = 0; k < this.#book.components(stream.phase); k++)
         this.#book.show(stream.name, k, source.content(k));
     }
   }
 }
+
+const isSame = (a: Maker, b: Maker): boolean => a.kind === b.kind && a.index === b.index;

@@ -2,9 +2,10 @@ import type { Kernel } from '../math/kernel.ts';
 import type { Network } from '../scenario/network.ts';
 import type { Phase, Scenario } from '../scenario/scenario.ts';
 import type { Named, Place, SteadyRow } from '../solve/system.ts';
-import { carried, concentration, mixerConcentration } from './kernels.ts';
+import type { Of } from './flow.ts';
+import { concentration, drained, passed, perVolumeOf, product, same } from './kernels.ts';
 import { Ledger, type Ref } from './ledger.ts';
-import { mixerSpecies, speciesConcentration } from './released.ts';
+import { speciesConcentration } from './released.ts';
 
 /** Share of a vessel below which it counts as nearly empty. */
 export const NEARLY_EMPTY = 0.01;
@@ -17,13 +18,31 @@ export interface Part {
   readonly perVolume: Ref;
 }
 
-/** Where a stream comes from: its flow, and what it takes along. */
+/** Where a phase of a stream goes, or a share of it: places (null: out of the balance), and where its volume counts. */
+export interface Inlet {
+  /** Null: all of it. */
+  readonly share: Ref | null;
+  readonly places: readonly (Ref | null)[];
+  readonly volume: Ref | null;
+}
+
+/** Where a stream goes: its main phase, and what it carries of the other. */
+export type Sink = Of<readonly Inlet[]>;
+
+/** Where a stream comes from: its flow, what it carries of the other phase, and what both take along. */
 export interface Source {
+  readonly phase: Phase;
   readonly flow: Ref;
-  /** Writes the fluxes of all components of the phase to the places given (null: leaves the balance). */
-  send(to: readonly (Ref | null)[]): void;
-  /** How the concentration of component k at the source is computed. */
-  content(k: number): { readonly kernel: Kernel; readonly args: readonly Ref[] };
+  readonly carried: Ref | null;
+  /** Writes the fluxes of all components and volumes. */
+  send(to: Sink): void;
+  /** How the concentration of component k of the main phase is computed. */
+  content(k: number): Content;
+}
+
+export interface Content {
+  readonly kernel: Kernel;
+  readonly args: readonly Ref[];
 }
 
 /** What every writer of a piece of plant needs: the ledger, the scenario, and a few shared refs. */
@@ -38,7 +57,9 @@ export class Book {
   readonly typical: readonly number[];
   readonly inputValues: number[] = [];
   readonly initial: number[] = [];
+  readonly perVolumeKernel = perVolumeOf;
   #plain = new Map<number, Ref>();
+  #running = new Map<string, Ref>();
 
   constructor(s: Scenario, net: Network) {
     this.s = s;
@@ -78,8 +99,15 @@ export class Book {
     return found;
   }
 
-  /** Places for all components of a part of volume `volume` m³ that starts with `content` kg/m³. */
-  amounts(path: string, phase: Phase, volume: number, content: readonly number[], steady?: SteadyRow): Ref[] {
+  /** Places for all components of a part of `volume` m³, of which a share is filled with `content` kg/m³. */
+  amounts(
+    path: string,
+    phase: Phase,
+    volume: number,
+    content: readonly number[],
+    filled = 1,
+    steady?: SteadyRow,
+  ): Ref[] {
     return Array.from({ length: this.components(phase) }, (_, k) =>
       this.place(
         {
@@ -89,7 +117,7 @@ export class Book {
           scale: this.typical[k] * volume * NEARLY_EMPTY,
           floor: 0,
         },
-        volume * this.carrier(k, phase, content),
+        filled * volume * this.carrier(k, phase, content),
         steady,
       ),
     );
@@ -107,20 +135,33 @@ export class Book {
     return this.releases.flatMap((row, i) => (row[species] === null ? [] : [row[species], places[i]]));
   }
 
-  /** A flow that leaves a well-mixed part with its composition. */
-  sourceOf(part: Part, flow: Ref): Source {
-    return {
-      flow,
-      send: (to) => {
-        part.places.forEach((m, k) => {
-          this.ledger.flux(carried, [flow, m, part.perVolume], { from: m, to: to[k] });
-        });
-      },
-      content: (k) => this.contentOf(part, k),
-    };
+  /** A signal with one value. */
+  signal(k: Kernel, ...args: Ref[]): Ref {
+    return this.ledger.signal(k, ...args)[0];
   }
 
-  contentOf(part: Part, k: number): { kernel: Kernel; args: Ref[] } {
+  /** Everything in a part leaves at `rate` (1/s), to places of its phase. */
+  drain(part: { readonly places: readonly Ref[] }, rate: Ref, to: readonly (Ref | null)[]): void {
+    part.places.forEach((m, k) => {
+      this.ledger.flux(drained, [rate, m], { from: m, to: to[k] });
+    });
+  }
+
+  /** A flow that leaves a well-mixed part with its composition, split over the inlets of a sink. */
+  send(part: Part, flow: Ref, from: Ref | null, to: Sink): void {
+    for (const inlet of to[part.phase]) {
+      const q = inlet.share === null ? flow : this.signal(product, flow, inlet.share);
+      this.drain(part, this.signal(product, q, part.perVolume), inlet.places);
+      this.pass(q, from, inlet.volume);
+    }
+  }
+
+  /** Volume that goes along with a flow; nothing is booked where neither end counts it. */
+  pass(flow: Ref, from: Ref | null, to: Ref | null): void {
+    if (from !== null || to !== null) this.ledger.flux(passed, [flow], { from, to });
+  }
+
+  contentOf(part: { readonly places: readonly Ref[]; readonly perVolume: Ref }, k: number): Content {
     if (k < this.solutes) return { kernel: concentration, args: [part.places[k], part.perVolume] };
     const bound = this.releasing(k - this.solutes, part.places);
     return {
@@ -129,22 +170,28 @@ export class Book {
     };
   }
 
-  /** The same for a mixer phase, whose volume may vanish. */
-  mixerContentOf(
-    places: readonly Ref[],
-    volume: Ref,
-    least: Ref,
-    k: number,
-  ): { kernel: Kernel; args: Ref[] } {
-    if (k < this.solutes) return { kernel: mixerConcentration, args: [places[k], volume, least] };
-    const bound = this.releasing(k - this.solutes, places);
-    return { kernel: mixerSpecies(bound.length / 2), args: [places[k], volume, least, ...bound] };
-  }
-
   /** Output of a concentration under a path. */
-  show(path: string, k: number, from: { kernel: Kernel; args: readonly Ref[] }): void {
+  show(path: string, k: number, from: Content): void {
     const spec = { path: `${path}.${this.name(k)}`, unit: 'kg/m^3', scale: this.typical[k] };
     this.ledger.output(spec, from.kernel, ...from.args);
+  }
+
+  /** Output of a value that a signal or an input already has. */
+  showValue(path: string, unit: string, scale: number, ref: Ref): void {
+    this.ledger.output({ path, unit, scale }, same, ref);
+  }
+
+  /** Whether the agitator of a stage runs: 1 or 0. */
+  running(path: string): Ref {
+    const found = this.#running.get(path) ?? this.input({ path: `${path}.mixer`, unit: '', scale: 1 }, 1);
+    this.#running.set(path, found);
+    return found;
+  }
+
+  /** Diffusivities of a solute, aqueous and organic, m²/s. */
+  diffusivities(solute: number): Ref[] {
+    const d = this.s.properties.diffusivity[solute];
+    return [this.number(d?.aqueous ?? Number.NaN), this.number(d?.organic ?? Number.NaN)];
   }
 }
 

@@ -1,5 +1,5 @@
-import { add, div, type Expr, mul, select, sub } from '../math/expression.ts';
-import { kernel } from '../math/kernel.ts';
+import { add, div, type Expr, max, mul, pow, select, sub } from '../math/expression.ts';
+import { type Kernel, kernel } from '../math/kernel.ts';
 
 /**
  * 1/V that stays finite where a volume vanishes: exact above `least`, below it (2 − V/least)/least, which meets
@@ -8,8 +8,8 @@ import { kernel } from '../math/kernel.ts';
 export const perVolume = (V: Expr, least: Expr): Expr =>
   select(sub(V, least), div(1, V), div(sub(2, div(V, least)), least));
 
-/** Flux of a dissolved amount that a flow carries out of a well-mixed part: q·m/V. */
-export const carried = kernel('carried', ['flow', 'amount', 'perVolume'], (q, m, i) => mul(q, m, i));
+/** The one flux of a well-mixed part: of everything in it the share k a second goes somewhere, k·m. */
+export const drained = kernel('drained', ['rate', 'amount'], (k, m) => mul(k, m));
 
 /** Flux of a component in a feed: q·c. */
 export const fed = kernel('fed', ['flow', 'content'], (q, c) => mul(q, c));
@@ -17,56 +17,73 @@ export const fed = kernel('fed', ['flow', 'content'], (q, c) => mul(q, c));
 /** Flux of a volume that passes: q. */
 export const passed = kernel('passed', ['flow'], (q) => q);
 
-/** A full, well-mixed mixer gives up of everything in it the share (Q_a + Q_o)/V a second: no slip. */
-export const overflowed = kernel(
-  'mixer overflow',
-  ['aqueous flow', 'organic flow', 'volume', 'amount'],
-  (a, o, V, m) => mul(div(add(a, o), V), m),
-);
+export const same = kernel('same', ['value'], (v) => v);
+export const difference = kernel('difference', ['whole', 'part'], (whole, part) => sub(whole, part));
+export const product = kernel('product', ['a', 'b'], (a, b) => mul(a, b));
+export const rest = kernel('rest', ['share'], (a) => sub(1, a));
+export const perVolumeOf = kernel('per volume', ['volume', 'least'], perVolume);
+export const concentration = kernel('concentration', ['amount', 'per volume'], (m, i) => mul(m, i));
 
-/** Organic volume in a mixer whose flows do not move: V·Q_o/(Q_a + Q_o). */
-export const steadyHoldup = kernel('steady hold-up', ['aqueous flow', 'organic flow', 'volume'], (a, o, V) =>
+const sums = new Map<number, Kernel>();
+
+/** a + b + …, of n values. */
+export function sum(n: number): Kernel {
+  const found = sums.get(n);
+  if (found) return found;
+  const made = kernel(
+    `sum of ${n}`,
+    Array.from({ length: n }, (_, i) => `v${i}`),
+    (...args) => add(...args),
+  );
+  sums.set(n, made);
+  return made;
+}
+
+/** a + b − c: a main flow with what is carried in and out. */
+export const balance = kernel('balance', ['flow', 'in', 'out'], (a, b, c) => sub(add(a, b), c));
+
+/** Organic volume in a full mixer whose flows do not move: V·O/(A + O). */
+export const steadyHoldup = kernel('steady hold-up', ['aqueous in', 'organic in', 'volume'], (a, o, V) =>
   div(mul(V, o), add(a, o)),
 );
 
-export const difference = kernel('difference', ['whole', 'part'], (whole, part) => sub(whole, part));
-
-/** 1/volume of one of n equal parts of a layer that holds what the mixer leaves of the stage's phase. */
-export const perPart = kernel('per part', ['held', 'in mixer', 'parts', 'least'], (held, mixer, n, least) =>
-  mul(n, perVolume(sub(held, mixer), least)),
+/** A full, well-mixed mixer gives up of everything in it the share (A + O)/V a second: no slip. */
+export const turnover = kernel('turnover', ['aqueous in', 'organic in', 'volume'], (a, o, V) =>
+  div(add(a, o), V),
 );
 
-export const perVolumeOf = kernel('per volume', ['volume', 'least'], (V, least) => perVolume(V, least));
+/** Clear layer: what the stage holds of a phase, less mixer and band. */
+export const clearLayer = kernel('clear layer', ['held', 'in mixer', 'in band'], (held, mixer, band) =>
+  sub(held, add(mixer, band)),
+);
+
+/** 1/volume of one of n equal parts of a layer. */
+export const perPart = kernel('per part', ['layer', 'parts', 'least'], (V, n, least) =>
+  mul(n, perVolume(V, least)),
+);
 
 /**
- * Flow from part k to part k + 1 of a layer of n equal parts: q_in + (q_out − q_in)·k/n, since each part takes up
- * the same share of the change of volume. q_in is this phase's share of the mixer overflow.
+ * Flow from part k to part k + 1 of a layer of n equal parts of which a share f of the inflow goes straight to the
+ * last: (1 − f)·q_in + (q_out − q_in)·k/n, since each part takes up the same share of the change of volume.
  */
-export const partFlow = kernel(
-  'part flow',
-  ['in mixer', 'volume', 'aqueous flow', 'organic flow', 'flow out', 'k/n'],
-  (v, V, a, o, out, f) => {
-    const entering = mul(div(v, V), add(a, o));
-    return add(entering, mul(sub(out, entering), f));
-  },
+export const partFlow = kernel('part flow', ['in', 'out', 'short cut', 'k/n'], (qin, qout, f, part) =>
+  add(mul(sub(1, f), qin), mul(sub(qout, qin), part)),
 );
 
-export const pumped = kernel('pumped', ['set flow', 'running'], (q, on) => mul(q, on));
-
-/** What a full tank cannot keep: inflow less outflow, while it overflows. */
-export const spilled = kernel(
-  'spilled',
-  ['overflowing', 'inflow', 'outflow', 'share'],
-  (on, qin, qout, share) => mul(on, sub(qin, qout), share),
+/** Recycle to hold a ratio r of organic to aqueous in the mixer, of either phase: max(0, what is missing). */
+export const missingAqueous = kernel('missing aqueous', ['aqueous', 'organic', 'ratio'], (a, o, r) =>
+  max(sub(div(o, r), a), 0),
+);
+export const missingOrganic = kernel('missing organic', ['aqueous', 'organic', 'ratio'], (a, o, r) =>
+  max(sub(mul(a, r), o), 0),
 );
 
-export const same = kernel('same', ['value'], (v) => v);
-
-export const concentration = kernel('concentration', ['amount', 'perVolume'], (m, i) => mul(m, i));
-
-/** c = m/V in a mixer phase that may vanish. */
-export const mixerConcentration = kernel(
-  'mixer concentration',
-  ['amount', 'volume', 'least'],
-  (m, V, least) => mul(m, perVolume(V, least)),
+/** Entrained flow: e·carrier·(throughput/design)^n. */
+export const entrained = kernel(
+  'entrained',
+  ['share', 'carrier', 'aqueous', 'organic', 'design', 'exponent'],
+  (e, q, a, o, d, n) => mul(e, q, pow(max(div(add(a, o), d), 1e-6), n)),
 );
+
+/** One of two values by a mode: at 1 the first, at 0 the second. */
+export const chosen = kernel('chosen', ['mode', 'at 1', 'at 0'], (m, a, b) => select(sub(m, 0.5), a, b));

@@ -1,57 +1,55 @@
 import type { Phase } from '../scenario/scenario.ts';
 import { type Book, NEARLY_EMPTY, type Part } from './book.ts';
-import { overflowed, partFlow, perPart } from './kernels.ts';
+import { partFlow, perPart, product, rest } from './kernels.ts';
 import type { Ref } from './ledger.ts';
-import type { Flows } from './stage.ts';
 
-/** What a layer needs to know of its stage. */
-interface Layer {
-  readonly mixerHolds: Ref;
-  /** m³ of this phase in the mixer at design. */
-  readonly design: number;
-  readonly V: Ref;
-  readonly flows: Flows;
-  readonly from: readonly Ref[];
-  readonly start: readonly number[];
+/** What flows into a layer: everything in some places at a rate (1/s). */
+export interface Feeder {
+  readonly places: readonly Ref[];
+  readonly rate: Ref;
 }
 
-/** A settler layer: from the mixer overflow to the last part, which is what leaves. Returns the last part. */
+export interface LayerFlows {
+  readonly volume: Ref;
+  /** m³ at design. */
+  readonly size: number;
+  readonly into: Ref;
+  readonly out: Ref;
+  /** Whether inflow and outflow can differ. */
+  readonly moves: boolean;
+  readonly shortCircuit: number;
+}
+
+/** A settler layer: from what flows in to the last part, which is what leaves. Returns that part. */
 export function writeLayer(
   book: Book,
   path: string,
   phase: Phase,
-  volume: number,
-  parts: number,
-  l: Layer,
+  parts: readonly (readonly Ref[])[],
+  feeders: readonly Feeder[],
+  l: LayerFlows,
 ): Part {
-  const { ledger } = book;
-  const { flows } = l;
-  const n = book.number(parts);
-  const stageHolds = ledger.parameter(`${path}.${phase}.volume`, 'm^3', volume + l.design);
-  const [perVolume] = ledger.signal(perPart, stageHolds, l.mixerHolds, n, book.number(volume * NEARLY_EMPTY));
-  let last: Part | null = null;
-  for (let k = 1; k <= parts; k++) {
-    const name = `${path}.settler.${k}`;
-    const places = book.amounts(name, phase, volume / parts, l.start);
-    if (last === null)
-      l.from.forEach((m, i) => {
-        ledger.flux(overflowed, [flows.aqueous, flows.organic, l.V, m], { from: m, to: places[i] });
-      });
+  const n = parts.length;
+  const perVolume = book.signal(perPart, l.volume, book.number(n), book.number(l.size * NEARLY_EMPTY));
+  const made = parts.map(
+    (places, k): Part => ({ phase, path: `${path}.settler.${k + 1}`, places, perVolume }),
+  );
+  const last = made[n - 1];
+  const short = n > 1 ? l.shortCircuit : 0;
+  for (const f of feeders) {
+    if (short === 0) book.drain(f, f.rate, made[0].places);
     else {
-      const between = flows.move
-        ? ledger.signal(
-            partFlow,
-            l.mixerHolds,
-            l.V,
-            flows.aqueous,
-            flows.organic,
-            flows[phase],
-            book.number((k - 1) / parts),
-          )[0]
-        : flows[phase];
-      book.sourceOf(last, between).send(places);
+      const share = book.number(short);
+      book.drain(f, book.signal(product, f.rate, book.signal(rest, share)), made[0].places);
+      book.drain(f, book.signal(product, f.rate, share), last.places);
     }
-    last = { phase, path: name, places, perVolume };
   }
-  return last as Part;
+  for (let k = 1; k < n; k++) {
+    const flow =
+      l.moves || short > 0
+        ? book.signal(partFlow, l.into, l.out, book.number(short), book.number(k / n))
+        : l.out;
+    book.drain(made[k - 1], book.signal(product, flow, perVolume), made[k].places);
+  }
+  return last;
 }

@@ -1,6 +1,5 @@
 import { add, type Expr, mul, sub } from '../math/expression.ts';
 import { type Kernel, kernel } from '../math/kernel.ts';
-import { perVolume } from './kernels.ts';
 
 /*
  * Species set free by the transfer (the acid of a cation exchanger) are carried as w = m_species + Σ rᵢ·m_a,i in
@@ -34,13 +33,5 @@ export const speciesConcentration = (n: number): Kernel =>
   once(`species ${n}`, () =>
     kernel(`species of ${n}`, ['carrier', 'perVolume', ...pairs(n)], (w, i, ...rest) =>
       mul(sub(w, released(rest)), i),
-    ),
-  );
-
-/** The same in a mixer phase that may vanish. */
-export const mixerSpecies = (n: number): Kernel =>
-  once(`mixer species ${n}`, () =>
-    kernel(`mixer species of ${n}`, ['carrier', 'volume', 'least', ...pairs(n)], (w, V, least, ...rest) =>
-      mul(sub(w, released(rest)), perVolume(V, least)),
     ),
   );

@@ -1,8 +1,10 @@
-import { add, div, type Expr, mul, sub } from '../math/expression.ts';
+import { add, div, type Expr, mul, select, sub } from '../math/expression.ts';
 import { type Kernel, kernel } from '../math/kernel.ts';
 import type { Mixer, Scenario } from '../scenario/scenario.ts';
 import { type Chemistry, speciesFrom } from './chemistry.ts';
 import { perVolume } from './kernels.ts';
+import type { Local } from './laws/law.ts';
+import { stirredTransfer } from './stirred.ts';
 
 /** A phase counts as vanishing below this share of the mixer. */
 export const VANISHING = 1e-4;
@@ -19,46 +21,62 @@ export function area(dispersed: Expr, continuous: Expr, fixed: boolean): Expr {
   return fixed ? div(both, mul(add(dispersed, RUNS_OUT), bound)) : div(both, bound);
 }
 
+/** What a transfer model works on: concentrations, hold-ups, mode, and the law of each solute. */
+export interface Contact {
+  readonly local: Local;
+  readonly volume: Expr;
+  readonly share: { readonly aqueous: Expr; readonly organic: Expr };
+  /** Picks by the continuous phase: organic continuous, aqueous continuous. */
+  readonly byContinuity: (organic: Expr, aqueous: Expr) => Expr;
+  /** 1 running, 0 stopped. */
+  readonly running: Expr;
+  readonly chemistry: Chemistry;
+  /** Numbers of the laws. */
+  readonly q: readonly Expr[];
+}
+
 const kernels = new Map<string, Kernel>();
 
+/** Names of the arguments that a transfer model has of its own; `stirred.ts` has the other set. */
+export const rateArgs = ['ka', 'design area'] as const;
+
 /**
- * Transfer in one mixer, all solutes of the train: with the overall coefficient on the aqueous side
- *   Nᵢ = K_a·a·V·(c_a,i − c*_a,i(c_o)),
- * on the organic side N_i = K_o·a·V·(c*_o,i(c_a) − c_o,i); K·a is given at the design hold-up and goes with the
- * area g(φ)/g(φ₀). Output i is the flux of the i-th transferring solute from the aqueous to the organic.
+ * Transfer in one mixer, all solutes of the train. Output i is the flux of the i-th transferring solute from the
+ * aqueous to the organic.
  *
- * Arguments: V_a, V_o, V, least volume, K·a, g(φ₀), running; m_a and m_o of all solutes; w of all species; the
- * releases that are not zero; the numbers of the laws.
+ * Arguments: V_a, V_o, least volume, continuity, running; those of the model; m_a and m_o of all solutes; w of all
+ * species; the releases that are not zero; the numbers of the laws.
  */
-export function transferKernel(s: Scenario, mixer: Mixer, c: Chemistry): Kernel {
-  const fixed = mixer.transfer.given === 'ka' && mixer.transfer.fixed;
+export function transferKernel(
+  s: Scenario,
+  mixer: Mixer,
+  c: Chemistry,
+  modelArgs: readonly string[],
+): Kernel {
+  const t = mixer.transfer;
+  const model =
+    t.given === 'impeller' ? `impeller ${t.impeller.drops}` : t.given === 'ka' && t.fixed ? 'fixed' : 'rate';
   const releasing = s.releases.map((row) => row.map((r) => (r === 0 ? '0' : 'r')).join('')).join('|');
-  const key = [
-    c.structure,
-    mixer.side,
-    mixer.continuity,
-    fixed,
-    s.solutes.length,
-    s.species.length,
-    releasing,
-  ].join('/');
+  const key = [c.structure, mixer.side, model, s.solutes.length, s.species.length, releasing].join('/');
   const found = kernels.get(key);
   if (found) return found;
   const n = s.solutes.length;
   const names = [
-    ...['aqueous volume', 'organic volume', 'volume', 'least', 'ka', 'design area', 'running'],
+    ...['aqueous volume', 'organic volume', 'least', 'continuity', 'running'],
+    ...modelArgs,
     ...s.solutes.flatMap((x) => [`aqueous ${x}`, `organic ${x}`]),
     ...s.species,
     ...s.releases.flatMap((row, i) => row.flatMap((r, k) => (r === 0 ? [] : [`release ${i} ${k}`]))),
     ...c.numbers.map((q) => q.name),
   ];
   const made = kernel(`transfer ${key}`, names, (...args) => {
-    const [Va, Vo, V, least, ka, designArea, running] = args;
-    let at = 7;
+    const [Va, Vo, least, continuity, running] = args;
+    let at = 5;
     const take = (count: number): Expr[] => {
       at += count;
       return args.slice(at - count, at);
     };
+    const own = take(modelArgs.length);
     const amounts = take(2 * n);
     const carriers = take(s.species.length);
     const releases = s.releases.map((row) => row.map((r) => (r === 0 ? null : take(1)[0])));
@@ -66,21 +84,44 @@ export function transferKernel(s: Scenario, mixer: Mixer, c: Chemistry): Kernel 
     const perA = perVolume(Va, least);
     const perO = perVolume(Vo, least);
     const inAqueous = s.solutes.map((_, i) => amounts[2 * i]);
-    const local = {
-      aqueous: inAqueous.map((m) => mul(m, perA)),
-      organic: s.solutes.map((_, i) => mul(amounts[2 * i + 1], perO)),
-      species: speciesFrom(carriers, inAqueous, releases, perA),
+    const V = add(Va, Vo);
+    const contact: Contact = {
+      local: {
+        aqueous: inAqueous.map((m) => mul(m, perA)),
+        organic: s.solutes.map((_, i) => mul(amounts[2 * i + 1], perO)),
+        species: speciesFrom(carriers, inAqueous, releases, perA),
+      },
+      volume: V,
+      share: { aqueous: div(Va, V), organic: div(Vo, V) },
+      byContinuity: (organic, aqueous) => select(sub(continuity, 0.5), organic, aqueous),
+      running,
+      chemistry: c,
+      q,
     };
-    const share = { aqueous: div(Va, V), organic: div(Vo, V) };
-    const dispersed = mixer.continuity === 'aqueous' ? share.organic : share.aqueous;
-    const continuous = share[mixer.continuity];
-    const rate = mul(ka, V, running, div(area(dispersed, continuous, fixed), designArea));
-    return c.solutes.map((i) => {
-      const star = c.equilibrium(i, mixer.side, local, q);
-      return mul(rate, mixer.side === 'aqueous' ? sub(local.aqueous[i], star) : sub(star, local.organic[i]));
-    });
+    return t.given === 'impeller'
+      ? stirredTransfer(contact, t.impeller.drops, own)
+      : rateTransfer(contact, mixer.side, model === 'fixed', own);
   });
   // Kernels of tables and formulas belong to one scenario; keeping them would keep its data for ever.
   if (!/table|formula/.test(c.structure)) kernels.set(key, made);
   return made;
+}
+
+/**
+ * With the overall coefficient on the aqueous side Nᵢ = K_a·a·V·(c_a,i − c*_a,i(c_o)), on the organic side
+ * N_i = K_o·a·V·(c*_o,i(c_a) − c_o,i); K·a is given at the design hold-up and goes with the area g(φ)/g(φ₀).
+ */
+function rateTransfer(
+  c: Contact,
+  side: Mixer['side'],
+  fixed: boolean,
+  [ka, designArea]: readonly Expr[],
+): Expr[] {
+  const { aqueous, organic } = c.share;
+  const g = c.byContinuity(area(aqueous, organic, fixed), area(organic, aqueous, fixed));
+  const rate = mul(ka, c.volume, c.running, div(g, designArea));
+  return c.chemistry.solutes.map((i) => {
+    const star = c.chemistry.equilibrium(i, side, c.local, c.q);
+    return mul(rate, side === 'aqueous' ? sub(c.local.aqueous[i], star) : sub(star, c.local.organic[i]));
+  });
 }

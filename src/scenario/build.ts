@@ -81,7 +81,18 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
       problems.push({ path: [...path, 'filled'], message: 'a tank cannot hold more than its volume' });
     const flow =
       t.flow === undefined ? null : carrierFlow(t.flow, t.phase, c, basis, [...path, 'flow'], problems);
-    return { name, phase: t.phase, from: t.from, to: t.to, volume, held, flow, content: c };
+    return {
+      name,
+      phase: t.phase,
+      from: t.from,
+      to: t.to,
+      volume,
+      held,
+      flow,
+      content: c,
+      makeUp: null,
+      passes: 0,
+    };
   });
 
   const releases: (number | null)[][] = solutes.map(() => species.map(() => null));
@@ -109,6 +120,8 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
       organic: t.organic,
       stages: stagesOf(t, path, problems),
       equilibrium,
+      hydraulics: 'full',
+      recycle: null,
       initial: initialOf(t.initial, basis, speciesInOrganic, [...path, 'initial'], problems),
     };
   });
@@ -125,6 +138,12 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
     trains,
     releases: releases.map((row) => row.map((r) => r ?? 0)),
     start: raw.start ?? 'barren',
+    properties: {
+      density: { aqueous: null, organic: null },
+      viscosity: { aqueous: null, organic: null },
+      tension: null,
+      diffusivity: solutes.map(() => null),
+    },
     horizon,
     recordEvery,
     upsets: (raw.upsets ?? []).flatMap(
@@ -211,6 +230,9 @@ function mixerOf(m: RawMixer, path: Path, problems: Problem[]): Mixer {
     volume: m.volume?.value ?? Number.NaN,
     continuity: m.continuity ?? 'aqueous',
     side: m.side ?? 'aqueous',
+    pumps: false,
+    inversion: null,
+    overflow: { length: 1, area: 1 },
     transfer: ka
       ? {
           given: 'ka',
@@ -238,6 +260,10 @@ function settlerOf(q: RawSettler, path: Path, problems: Problem[]): Settler {
     organic: layer('organic'),
     parts: q.tanks_in_series ?? 1,
     area: q.area?.value ?? null,
+    shortCircuit: 0,
+    band: null,
+    carry: null,
+    weirs: null,
   };
 }
 

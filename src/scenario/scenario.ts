@@ -26,11 +26,27 @@ export interface Tank {
   /** m³/s of its pump; null: it overflows at its present level and has no pump. */
   readonly flow: number | null;
   readonly content: readonly number[];
+  /** A feed that enters as well, against losses. */
+  readonly makeUp: string | null;
+  /** Share of the other phase that is passed on with the tank's stream; the rest stays as bottoms. */
+  readonly passes: number;
+}
+
+export interface Impeller {
+  /** 1/s */
+  readonly speed: number;
+  /** m: impeller and vessel. */
+  readonly diameter: number;
+  readonly vessel: number;
+  readonly powerNumber: number;
+  /** Name of the drop-size correlation. */
+  readonly drops: string;
 }
 
 export type Transfer =
   | { readonly given: 'ka'; readonly ka: number; readonly fixed: boolean }
-  | { readonly given: 'efficiency'; readonly efficiency: number };
+  | { readonly given: 'efficiency'; readonly efficiency: number }
+  | { readonly given: 'impeller'; readonly impeller: Impeller };
 
 export interface Mixer {
   /** m³ */
@@ -39,6 +55,52 @@ export interface Mixer {
   /** The phase whose overall coefficient and concentration difference drive the transfer. */
   readonly side: Phase;
   readonly transfer: Transfer;
+  /** The agitator also lifts what enters: stopped, it stops the flows through its train. */
+  readonly pumps: boolean;
+  /** Organic share of the mixer at which the continuous phase flips: below `low` aqueous, above `high` organic. */
+  readonly inversion: { readonly low: number; readonly high: number } | null;
+  /** With weirs: length of its overflow and plan area, m and m². */
+  readonly overflow: { readonly length: number; readonly area: number };
+}
+
+/** Dispersion band under one continuity: thickness at one specific flow of the dispersed phase, and the law through it. */
+export interface BandPoint {
+  /** m */
+  readonly thickness: number;
+  /** m³/(m²·s) */
+  readonly at: number;
+  readonly law: { readonly exponent: number } | { readonly floodsAt: number };
+}
+
+export interface Band extends BandPoint {
+  /** Dispersed share in the band. */
+  readonly holdUp: number;
+  /** Factor of a mesh or plate coalescer on the thickness. */
+  readonly coalescer: number;
+  /** The other continuity, where it was measured. */
+  readonly other: BandPoint | null;
+}
+
+/** Volume of one phase carried in the other, at design throughput. */
+export interface CarryPoint {
+  readonly organicInAqueous: number;
+  readonly aqueousInOrganic: number;
+}
+
+export interface Carry extends CarryPoint {
+  /** Grows with the throughput to this power. */
+  readonly exponent: number;
+  readonly other: CarryPoint | null;
+}
+
+/** m */
+export interface Weirs {
+  readonly organicLength: number;
+  readonly aqueousLength: number;
+  /** Height of the underflow port above the floor. */
+  readonly port: number;
+  /** Head lost in the aqueous leg. */
+  readonly loss: number;
 }
 
 export interface Settler {
@@ -48,6 +110,11 @@ export interface Settler {
   readonly parts: number;
   /** m², null where only volumes were given. */
   readonly area: number | null;
+  /** Share of the flow into a layer that goes straight to its outlet. */
+  readonly shortCircuit: number;
+  readonly band: Band | null;
+  readonly carry: Carry | null;
+  readonly weirs: Weirs | null;
 }
 
 export interface Stage {
@@ -81,6 +148,9 @@ export type Law =
       readonly constants: Readonly<Record<string, number>>;
     };
 
+/** Settled phase returned to its own mixer: a flow in m³/s, or what holds an organic-to-aqueous ratio there. */
+export type Recycle = { readonly phase: Phase; readonly flow: number } | { readonly hold: number };
+
 export interface Initial {
   readonly aqueous: 'barren' | 'as entering' | readonly number[];
   readonly organic: 'as entering' | readonly number[];
@@ -94,6 +164,8 @@ export interface Train {
   /** One for each solute; null: the solute does not transfer in this train. */
   readonly equilibrium: readonly (Law | null)[];
   readonly initial: Initial;
+  readonly hydraulics: 'full' | 'weirs';
+  readonly recycle: Recycle | null;
 }
 
 export interface Change {
@@ -119,6 +191,23 @@ export interface Limit {
   readonly value: number;
 }
 
+/** A state kept by an earlier run. */
+export interface SavedState {
+  readonly file: string;
+  readonly topology: string;
+  readonly places: readonly string[];
+  readonly values: readonly number[];
+}
+
+/** Physical properties, SI; what nobody stated is null, and refused where it is needed. */
+export interface Properties {
+  readonly density: Readonly<Record<Phase, number | null>>;
+  readonly viscosity: Readonly<Record<Phase, number | null>>;
+  readonly tension: number | null;
+  /** m²/s by solute. */
+  readonly diffusivity: readonly (Readonly<Record<Phase, number>> | null)[];
+}
+
 export interface Scenario {
   readonly title: string;
   readonly about: string;
@@ -129,7 +218,8 @@ export interface Scenario {
   readonly trains: readonly Train[];
   /** kg of species set free per kg of solute extracted: releases[solute][species]. */
   readonly releases: readonly (readonly number[])[];
-  readonly start: 'barren' | 'steady';
+  readonly start: 'barren' | 'steady' | 'empty' | SavedState;
+  readonly properties: Properties;
   readonly horizon: number;
   readonly recordEvery: number;
   readonly upsets: readonly Change[];
