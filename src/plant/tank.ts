@@ -60,7 +60,16 @@ export class TankWriter {
     for (let k = 0; k < book.components(t.phase); k++) book.show(t.name, k, book.contentOf(this.#part, k));
     const other = otherPhase(t.phase);
     this.bottomsVolume = carries ? level(`${t.name}.bottoms.volume`, 0) : null;
-    this.#bottoms = carries ? book.amounts(`${t.name}.bottoms`, other, t.volume, book.typical.map(() => 0), 0, 'hold') : null;
+    this.#bottoms = carries
+      ? book.amounts(
+          `${t.name}.bottoms`,
+          other,
+          t.volume,
+          book.typical.map(() => 0),
+          0,
+          'hold',
+        )
+      : null;
     if (this.bottomsVolume) book.showValue(`${t.name}.bottoms`, 'm^3', t.volume * 0.01, this.bottomsVolume);
     this.#passes = carries && t.passes > 0 ? book.number(t.passes) : null;
     this.lost = levelMoves ? totals(book, `${t.name} overflow`, t.phase, 'out') : null;

@@ -1,0 +1,57 @@
+import type { Plant } from '../plant/assemble.ts';
+import { Refusal } from '../scenario/refusal.ts';
+import type { SavedState } from '../scenario/scenario.ts';
+import type { F } from '../solve/system.ts';
+
+/** Format of a saved state; raised when older files can no longer be read. */
+export const STATE_FORMAT = 1;
+
+/** Differences named in a refusal; more only hide the first. */
+const MOST_NAMED = 5;
+
+/** A state as it is kept in a file: every place by its path, in SI. */
+export function saveState(plant: Plant, x: F, time: number): object {
+  return {
+    upsettle_state: STATE_FORMAT,
+    title: plant.scenario.title,
+    topology: plant.system.topology,
+    time_s: time,
+    places: plant.system.places.map((p) => p.path),
+    values: Array.from(x),
+  };
+}
+
+/**
+ * A kept state on the places of a plant. Boundary totals start at zero again. A hold-up that was no state in the
+ * earlier run, because no flow moved there, starts at rest.
+ *
+ * @throws Refusal naming the places in which the two plants differ.
+ */
+export function restoreState(plant: Plant, saved: SavedState): F {
+  const known = new Map(saved.places.map((p, i) => [p, saved.values[i]]));
+  const x = Float64Array.from(plant.barren);
+  const missing: string[] = [];
+  plant.system.places.forEach((p, i) => {
+    if (p.kind === 'total') {
+      x[i] = 0;
+      return;
+    }
+    const value = known.get(p.path);
+    if (value !== undefined) x[i] = value;
+    else if (!isRestingHoldup(p.path)) missing.push(p.path);
+  });
+  const own = new Set(plant.system.places.map((p) => p.path));
+  const extra = saved.places.filter((p) => !own.has(p) && !isTotal(p) && !isRestingHoldup(p));
+  if (missing.length === 0 && extra.length === 0) return x;
+  const list = (what: string, paths: readonly string[]): string[] =>
+    paths.length === 0
+      ? []
+      : [
+          `${what} ${paths.slice(0, MOST_NAMED).join(', ')}${paths.length > MOST_NAMED ? ` and ${paths.length - MOST_NAMED} more` : ''}`,
+        ];
+  const message = `the state in ${saved.file} is of another plant: ${[...list('it lacks', missing), ...list('it has in excess', extra)].join('; ')}`;
+  throw new Refusal([{ path: ['start', 'saved'], message }]);
+}
+
+const isRestingHoldup = (path: string): boolean => /\.mixer\.organic\.volume$/.test(path);
+const isTotal = (path: string): boolean => /\.(in|out)\./.test(path);
