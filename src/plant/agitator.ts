@@ -1,5 +1,6 @@
 import { add, div, type Expr, exp, max, mul, pow, select, sqrt, sub } from '../math/expression.ts';
 import { smoothStep } from '../math/shapes.ts';
+import type { DropSizeName } from '../scenario/plain.ts';
 
 /** m/s² */
 const GRAVITY = 9.80665;
@@ -57,10 +58,7 @@ export const dropSizes = {
   // S. Gnanasundaram, T. E. Degaleesan and G. S. Laddha, Can. J. Chem. Eng. 57, 141 (1979).
   gnanasundaram: (we: Expr, phi: Expr): Expr =>
     mul(select(sub(we, 1e4), 0.39, mul(0.052, exp(mul(4, phi)))), pow(we, -0.6)),
-} satisfies Record<string, DropSize>;
-
-export type DropSizeName = keyof typeof dropSizes;
-export const usualDropSize: DropSizeName = 'mlynek-resnick';
+} satisfies Record<DropSizeName, DropSize>;
 
 /** d₃₂ in m. */
 export function dropDiameter(name: DropSizeName, s: Stirred): Expr {

@@ -1,9 +1,9 @@
 import { add, div, type Expr, input, max, mul, select, sub } from '../math/expression.ts';
 import { type Kernel, kernel } from '../math/kernel.ts';
 import { substitute } from '../math/substitute.ts';
+import type { DropSizeName } from '../scenario/plain.ts';
 import {
   continuousFilm,
-  type DropSizeName,
   dispersedFilm,
   dispersing,
   dropDiameter,
@@ -64,13 +64,13 @@ function stirred(
  * Transfer through both films with the interface solved: with x the aqueous concentration at the interface,
  * f(x) + r·x = c_o + r·c_a, r = k_a/k_o, N = k_a·a·V·(c_a − x). The product k·a goes to zero with the agitator.
  */
-export function stirredTransfer(c: Contact, drops: string, own: readonly Expr[]): Expr[] {
+export function stirredTransfer(c: Contact, drops: DropSizeName, own: readonly Expr[]): Expr[] {
   const { solutes } = c.chemistry;
   const args = own.slice(0, stirredArgs.length);
   const diffusivity = own.slice(stirredArgs.length);
   const [organic, aqueous] = [true, false].map((organicContinuous) => {
     const s = stirred(args, c.share, organicContinuous, c.running);
-    const d32 = dropDiameter(drops as DropSizeName, s);
+    const d32 = dropDiameter(drops, s);
     const active = mul(specificArea(s, d32), dispersing(s));
     return solutes.map((_, k) => {
       const [da, dd] = [diffusivity[2 * k], diffusivity[2 * k + 1]];
@@ -113,10 +113,10 @@ function atInterface(c: Contact, solute: number, b: Expr, r: Expr): Expr {
   );
 }
 
-const shown = new Map<string, Kernel>();
+const shown = new Map<DropSizeName, Kernel>();
 
 /** What a reader wants to know of an agitator: d₃₂ [m], a [1/m], power [W], N/N_min. */
-export function agitatorFigures(drops: string): Kernel {
+export function agitatorFigures(drops: DropSizeName): Kernel {
   const found = shown.get(drops);
   if (found) return found;
   const names = ['aqueous volume', 'organic volume', 'least', 'continuity', 'running', ...stirredArgs];
@@ -125,7 +125,7 @@ export function agitatorFigures(drops: string): Kernel {
     const share = { aqueous: mul(Va, perVolume(V, least)), organic: mul(Vo, perVolume(V, least)) };
     const figures = [true, false].map((organicContinuous) => {
       const s = stirred(own, share, organicContinuous, running);
-      const d32 = dropDiameter(drops as DropSizeName, s);
+      const d32 = dropDiameter(drops, s);
       return [d32, specificArea(s, d32), mul(power(s), running), div(mul(s.speed, running), leastSpeed(s))];
     });
     return figures[0].map((organic, i) => select(sub(continuity, 0.5), organic, figures[1][i]));

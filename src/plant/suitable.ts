@@ -91,6 +91,8 @@ function sameExtractant(s: Scenario, t: Train): Problem[] {
  * it takes up of a phase beyond its design hold-up comes out of the settler's layer, which must hold that much.
  */
 function roomySettlers(s: Scenario, net: Network, t: Train): Problem[] {
+  // With weirs the levels give way, and a lost interface is an event.
+  if (t.hydraulics === 'weirs') return [];
   const source = { aqueous: net.flowSource(t.aqueous.from), organic: net.flowSource(t.organic.from) };
   const range = { aqueous: flowRange(s, net, source.aqueous), organic: flowRange(s, net, source.organic) };
   return (['aqueous', 'organic'] as const).flatMap((phase): Problem[] => {
@@ -113,7 +115,8 @@ function flowRange(s: Scenario, net: Network, m: Maker): { design: number; least
   const { name, flow } = m.kind === 'feed' ? s.feeds[m.index] : s.tanks[m.index];
   const design = flow as number;
   const { least, most } = extremes(s, `${name}.flow`, design);
-  return { design, least: runsDry(s, net, m) ? 0 : least, most };
+  const stops = runsDry(s, net, m) || s.upsets.some((u) => u.quantity === `${name}.pump`);
+  return { design, least: stops ? 0 : least, most };
 }
 
 /** A tank that is filled by one flow and emptied by another can run dry, and then its pump stops. */

@@ -4,6 +4,10 @@ const SHOWN: Record<string, { unit: string; factor: number }> = {
   'm^3/s': { unit: 'm^3/h', factor: 3600 },
   'm^3': { unit: 'm^3', factor: 1 },
   s: { unit: 'h', factor: 1 / 3600 },
+  'kg/s': { unit: 'kg/h', factor: 3600 },
+  'm^3/m^3': { unit: 'mL/m^3', factor: 1e6 },
+  '1/s': { unit: 'rpm', factor: 60 },
+  W: { unit: 'kW', factor: 1e-3 },
 };
 
 export const shown = (unit: string): { unit: string; factor: number } => SHOWN[unit] ?? { unit, factor: 1 };

@@ -9,6 +9,9 @@ export interface Column {
   readonly factor: number;
 }
 
+const derivedHeader = (d: { path: string; unit: string }): string =>
+  `${d.path} [${shown(d.unit).unit || '-'}]`;
+
 /**
  * Columns of `series.csv` after the time: outlets, tanks, other streams and feeds, then vessels along the trains.
  * Header `<path> [unit]`.
@@ -45,11 +48,14 @@ const CHUNK = 500;
 export async function writeSeries(result: RunResult, to: WriteStream): Promise<void> {
   const list = seriesColumns(result.plant);
   const { times, rows } = result.records;
-  let text = `${['time [h]', ...list.map((c) => c.header)].map(cell).join(',')}\r\n`;
+  const { derived } = result;
+  const headers = ['time [h]', ...list.map((c) => c.header), ...derived.map(derivedHeader)];
+  let text = `${headers.map(cell).join(',')}\r\n`;
   for (let k = 0; k < times.length; k++) {
     text += times[k] / 3600;
     const row = rows[k];
     for (const c of list) text += `,${c.factor === 1 ? row[c.output] : row[c.output] * c.factor}`;
+    for (const d of derived) text += `,${d.value(row) * shown(d.unit).factor}`;
     text += '\r\n';
     if (k % CHUNK === CHUNK - 1 || k === times.length - 1) {
       if (!to.write(text)) await new Promise<void>((resolve) => to.once('drain', () => resolve()));

@@ -2,7 +2,17 @@ import type { Phase } from './scenario.ts';
 
 /** What a path in a scenario points at. */
 export interface Target {
-  readonly what: 'flow' | 'content' | 'mixer' | 'volume';
+  readonly what:
+    | 'flow'
+    | 'content'
+    | 'mixer'
+    | 'volume'
+    | 'speed'
+    | 'stage'
+    | 'pump'
+    | 'weir'
+    | 'continuity'
+    | 'feed';
   readonly phase: Phase;
   readonly component?: string;
 }
@@ -21,6 +31,7 @@ export interface Outline {
     readonly from: string;
     readonly to: string;
     readonly flow: number | null;
+    readonly makeUp: string | null;
   }[];
   readonly trains: readonly {
     readonly name: string;
@@ -28,6 +39,12 @@ export interface Outline {
     readonly aqueous: { readonly from: string; readonly to: string };
     readonly organic: { readonly from: string; readonly to: string };
   }[];
+  /** Feeds that nobody takes until an upset swaps one in. */
+  readonly spare: ReadonlySet<string>;
+  /** `stage 2` …: settings of single stages, as the trains have them. */
+  readonly stageKeys: readonly string[];
+  /** False where the lists of solutes or species make no sense: then keys and paths with their names cannot be judged. */
+  readonly named: boolean;
   /** False where something was too broken to be taken: then streams cannot be judged. */
   readonly whole: boolean;
   /** Inputs that upsets may change. */
@@ -36,9 +53,13 @@ export interface Outline {
   readonly limitable: ReadonlyMap<string, Target>;
 }
 
+/** The setting of a single stage. */
+export const STAGE = /^stage (\d+)$/;
+
 type Loose = Record<string, unknown>;
 
 const isObject = (v: unknown): v is Loose => typeof v === 'object' && v !== null && !Array.isArray(v);
+const isListOfNames = (v: unknown): boolean => Array.isArray(v) && v.every((n) => typeof n === 'string');
 const names = (v: unknown): string[] =>
   Array.isArray(v) ? v.filter((n): n is string => typeof n === 'string') : [];
 const isPhase = (v: unknown): v is Phase => v === 'aqueous' || v === 'organic';
@@ -47,6 +68,10 @@ export function outline(raw: unknown): Outline {
   const top = isObject(raw) ? raw : {};
   const solutes = names(top.solutes);
   const species = names(top.species);
+  const named =
+    isListOfNames(top.solutes) &&
+    solutes.length > 0 &&
+    (top.species === undefined || isListOfNames(top.species));
   let whole = true;
   const entries = (v: unknown): [string, Loose][] => {
     if (v === undefined) return [];
@@ -70,7 +95,14 @@ export function outline(raw: unknown): Outline {
   const tanks = entries(top.tanks).flatMap(([name, t]) =>
     keep(
       isPhase(t.phase) && typeof t.from === 'string' && typeof t.to === 'string'
-        ? { name, phase: t.phase, from: t.from, to: t.to, flow: t.flow === undefined ? null : 1 }
+        ? {
+            name,
+            phase: t.phase,
+            from: t.from,
+            to: t.to,
+            flow: t.flow === undefined ? null : 1,
+            makeUp: typeof t.make_up === 'string' ? t.make_up : null,
+          }
         : null,
     ),
   );
@@ -90,10 +122,14 @@ export function outline(raw: unknown): Outline {
   };
   for (const f of feeds) {
     stream(f.name, f.phase, changeable);
+    changeable.set(f.name, { what: 'feed', phase: f.phase });
     stream(f.name, f.phase, limitable);
   }
   for (const t of tanks) {
-    if (t.flow !== null) changeable.set(`${t.name}.flow`, { what: 'flow', phase: t.phase });
+    if (t.flow !== null) {
+      changeable.set(`${t.name}.flow`, { what: 'flow', phase: t.phase });
+      changeable.set(`${t.name}.pump`, { what: 'pump', phase: t.phase });
+    }
     stream(t.to, t.phase, limitable);
     stream(t.name, t.phase, limitable);
     limitable.delete(`${t.name}.flow`);
@@ -103,9 +139,45 @@ export function outline(raw: unknown): Outline {
     stream(t.aqueous.to, 'aqueous', limitable);
     stream(t.organic.to, 'organic', limitable);
     for (let j = 1; j <= Math.min(t.stages, 10_000); j++)
-      changeable.set(`${t.name}.${j}.mixer`, { what: 'mixer', phase: 'aqueous' });
+      for (const [path, what] of stageTargets(`${t.name}.${j}`))
+        changeable.set(path, { what, phase: 'aqueous' });
   }
-  return { solutes, species, feeds, tanks, trains, whole, changeable, limitable };
+  const stageKeys = entries(top.trains)
+    .flatMap(([, t]) => Object.keys(t))
+    .filter((k) => STAGE.test(k));
+  return {
+    solutes,
+    species,
+    feeds,
+    tanks,
+    trains,
+    stageKeys: [...new Set(stageKeys)],
+    spare: spareFeeds(top.upsets, feeds),
+    named,
+    whole,
+    changeable,
+    limitable,
+  };
+}
+
+/** What can be changed in a stage. */
+const stageTargets = (stage: string): [string, Target['what']][] => [
+  [stage, 'stage'],
+  [`${stage}.mixer`, 'mixer'],
+  [`${stage}.mixer.speed`, 'speed'],
+  [`${stage}.continuity`, 'continuity'],
+  [`${stage}.settler.aqueous_weir`, 'weir'],
+];
+
+function spareFeeds(upsets: unknown, feeds: Outline['feeds']): Set<string> {
+  const names = new Set(feeds.map((f) => f.name));
+  if (!Array.isArray(upsets)) return new Set();
+  return new Set(
+    upsets.flatMap((u): string[] => {
+      if (!isObject(u) || typeof u.change !== 'string' || typeof u.to !== 'string') return [];
+      return names.has(u.change) && names.has(u.to) && u.change !== u.to ? [u.to] : [];
+    }),
+  );
 }
 
 function arrow(v: unknown): { from: string; to: string } | null {

@@ -1,3 +1,5 @@
+import type { DropSizeName } from './plain.ts';
+
 /** A checked scenario: plain data, SI inside (m, s, kg, kg/m³, m³/s). Names are the user's own. */
 
 export type Phase = 'aqueous' | 'organic';
@@ -39,8 +41,7 @@ export interface Impeller {
   readonly diameter: number;
   readonly vessel: number;
   readonly powerNumber: number;
-  /** Name of the drop-size correlation. */
-  readonly drops: string;
+  readonly drops: DropSizeName;
 }
 
 export type Transfer =

@@ -79,7 +79,6 @@ export class Rosenbrock implements Integrator {
     const { work } = this;
     const table = this.#table;
     const exponent = -1 / table.order;
-    work.restarts += 1;
     inputs.slope(this.#dw);
     this.#moving = this.#dw.some((v) => v !== 0);
     const smallest = SMALLEST * Math.max(Math.abs(from), Math.abs(to), to - from);
@@ -107,6 +106,7 @@ export class Rosenbrock implements Integrator {
           if (end < t) dense.at(end, this.#trial);
           x.set(end < t ? this.#trial : this.#x1);
           if (end <= t) return { ended: 'asked', time: end };
+          if (this.#natural < smallest && t < to) return failed(this.#tooSmall(t, x, inputs, 'error'));
           break;
         }
         grow = 1;
@@ -119,21 +119,40 @@ export class Rosenbrock implements Integrator {
           else work.rejectedBySingular += 1;
           this.#natural = h * CUT;
         }
-        if (this.#natural < smallest) return failed(this.#tooSmall(t, verdict));
+        if (this.#natural < smallest) return failed(this.#tooSmall(t, x, inputs, verdict));
       }
     }
     return { ended: 'at-end' };
   }
 
-  #tooSmall(time: number, verdict: Exclude<Verdict, 'accepted'>): Stop {
-    const place = this.#system.places[this.#worst]?.path ?? 'the plant';
-    if (verdict === 'not-finite') return { reason: 'not-finite', time, place };
+  #tooSmall(time: number, x: F, inputs: Inputs, verdict: Exclude<Verdict, 'accepted'>): Stop {
+    const lost = this.#lost(time, x, inputs);
+    const place = this.#system.places[lost < 0 ? this.#worst : lost].path;
+    if (verdict === 'not-finite' || lost >= 0) return { reason: 'not-finite', time, place };
     const cause = {
       error: 'no step is small enough for the tolerance',
       negative: 'every trial step makes it negative',
       singular: 'the equations have no unique solution there',
     }[verdict];
     return { reason: 'step-too-small', time, place, cause };
+  }
+
+  /**
+   * The place whose balance or slopes have no finite value, or −1. The solution cannot tell, one place that is no
+   * number spoils all that are eliminated with it: so the stages of the last attempt are gone through again.
+   */
+  #lost(t: number, x: F, inputs: Inputs): number {
+    inputs.value(t, this.#w);
+    for (const stage of this.#combine) {
+      stage.state(x.length, x, this.#u, this.#trial);
+      this.#system.rhs(this.#trial, this.#w, this.#p, this.#dx);
+      const lost = this.#dx.findIndex((v) => !Number.isFinite(v));
+      if (lost >= 0) return lost;
+      if (stage !== this.#combine[0]) continue;
+      const steep = this.#jacobian.findIndex((v) => !Number.isFinite(v));
+      if (steep >= 0) return this.#system.A.rowStart.findIndex((start) => start > steep) - 1;
+    }
+    return -1;
   }
 
   /** Jacobian and f_t at (t, x): they serve every attempt from this point. */
@@ -229,6 +248,7 @@ class DenseStep implements Step {
   t0 = 0;
   t1 = 0;
   readonly x1: F;
+  readonly pausable = true;
   readonly #x0: F;
   readonly #u: F;
   readonly #k: F;

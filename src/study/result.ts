@@ -3,6 +3,7 @@ import type { Plant } from '../plant/assemble.ts';
 import type { Event } from '../solve/integrate.ts';
 import type { Stop, Work } from '../solve/outcome.ts';
 import type { F } from '../solve/system.ts';
+import type { Derived } from './derived.ts';
 import type { Diagram } from './diagram.ts';
 import type { LimitReport } from './limit-watch.ts';
 import type { Records } from './records.ts';
@@ -37,6 +38,10 @@ export interface RunResult {
   readonly work: Work;
   readonly integrator: string;
   readonly tolerance: number;
+  /** The state at the end (or when asked), as it is kept in a file. */
+  readonly kept: object | null;
+  /** Figures that follow from each row of records. */
+  readonly derived: readonly Derived[];
 }
 
 export interface SteadyResult {

@@ -12,10 +12,12 @@ import {
 } from '../solve/integrate.ts';
 import { type Steady, steadyState } from '../solve/steady.ts';
 import type { F } from '../solve/system.ts';
+import { derivedFigures } from './derived.ts';
 import { diagrams } from './diagram.ts';
 import { type LimitReport, LimitWatch } from './limit-watch.ts';
 import { Recorder } from './records.ts';
 import type { RunResult, Snapshot } from './result.ts';
+import { restoreState, saveState } from './saved.ts';
 import { upsetSchedule } from './upsets.ts';
 
 export interface RunSettings {
@@ -24,6 +26,8 @@ export interface RunSettings {
   readonly tolerance: number;
   /** Called with the share of the horizon that has been computed. */
   readonly progress?: (share: number) => void;
+  /** s at which the state is kept besides the end; null: at the end. */
+  readonly keepAt?: number;
 }
 
 export const usual = { integrator: 'rodas5p', tolerance: 1e-6 } as const;
@@ -49,6 +53,29 @@ export async function runInTurns(s: Scenario, settings: RunSettings, turns: Turn
   return finish(await integrateInTurns(problem, options, watchers, turns));
 }
 
+/** Keeps the state at one moment of a run, from the dense output; at the end where the moment is not reached. */
+class StateKeeper implements Watcher {
+  kept: object | null = null;
+  readonly #plant: Plant;
+  readonly #at: number;
+
+  constructor(plant: Plant, at: number) {
+    this.#plant = plant;
+    this.#at = at;
+  }
+
+  step: NonNullable<Watcher['step']> = (step) => {
+    if (this.kept !== null || step.t1 < this.#at || this.#at < step.t0) return;
+    const x = new Float64Array(this.#plant.system.places.length);
+    step.at(this.#at, x);
+    this.kept = saveState(this.#plant, x, this.#at);
+  };
+
+  end: NonNullable<Watcher['end']> = (t, x) => {
+    this.kept ??= saveState(this.#plant, x, t);
+  };
+}
+
 interface Prepared {
   readonly problem: Problem;
   readonly options: Options;
@@ -65,6 +92,8 @@ function prepare(s: Scenario, settings: RunSettings): Prepared {
   const recorder = new Recorder(plant, s.recordEvery, before === null ? [] : [before]);
   const limits = s.limits.map((l) => new LimitWatch(plant, l));
   const watchers: Watcher[] = [recorder, ...limits];
+  const keeper = new StateKeeper(plant, settings.keepAt ?? s.horizon);
+  watchers.push(keeper);
   const { progress } = settings;
   if (progress) watchers.push({ step: (step) => progress(step.t1 / s.horizon) });
   return {
@@ -95,6 +124,8 @@ function prepare(s: Scenario, settings: RunSettings): Prepared {
         work: result.work,
         integrator: result.integrator,
         tolerance: settings.tolerance,
+        kept: keeper.kept,
+        derived: derivedFigures(plant),
       };
     },
   };
@@ -125,7 +156,9 @@ function snapshotsOf(
  * @throws Incomplete where a steady start was asked for and none was found.
  */
 export function startState(plant: Plant): F {
-  return plant.scenario.start === 'steady' ? steadyOf(plant).state : plant.barren;
+  const { start } = plant.scenario;
+  if (typeof start === 'object') return restoreState(plant, start);
+  return start === 'steady' ? steadyOf(plant).state : plant.barren;
 }
 
 /** @throws Incomplete naming the vessel that does not come to rest. */

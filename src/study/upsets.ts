@@ -38,7 +38,11 @@ export function upsetSchedule(plant: Plant, changes: readonly Change[], horizon:
     if (line.clampedAt !== null) clamped.push({ quantity, time: line.clampedAt });
     return { input, times: line.times, values: line.values };
   });
-  const shades = changes.map((c): Shade => {
+  // One upset can stand for changes of several inputs: it is one shade.
+  const upsets = changes.filter(
+    (c, i) => changes.findIndex((o) => o.words === c.words && o.at === c.at) === i,
+  );
+  const shades = upsets.map((c): Shade => {
     const data = 'follow' in c.how ? c.how.follow.times : [];
     const end =
       c.lasts !== null ? c.at + c.lasts + c.over : data.length > 0 ? data[data.length - 1] : horizon;

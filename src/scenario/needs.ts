@@ -1,0 +1,72 @@
+import type { Problem } from './refusal.ts';
+import type { Path, Phase, Scenario, Train } from './scenario.ts';
+
+/** What some settings need of others: properties for an agitator, weirs for every stage, vessels that can be empty. */
+export function checkNeeds(s: Scenario, problems: Problem[]): void {
+  for (const t of s.trains) {
+    const path = ['trains', t.name];
+    if (t.stages.some((q) => q.mixer.transfer.given === 'impeller')) agitatorNeeds(s, t, path, problems);
+    if (t.hydraulics === 'weirs') weirNeeds(s, t, path, problems);
+    bypassNeeds(s, t, path, problems);
+  }
+  if (s.start === 'empty')
+    for (const t of s.trains)
+      if (t.hydraulics !== 'weirs')
+        problems.push({
+          path: ['start'],
+          message: `an empty start needs hydraulics: weirs in every train; '${t.name}' has full vessels`,
+        });
+}
+
+const PHASES: readonly Phase[] = ['aqueous', 'organic'];
+
+function agitatorNeeds(s: Scenario, t: Train, path: Path, problems: Problem[]): void {
+  const { density, viscosity, tension, diffusivity } = s.properties;
+  const missing = [
+    ...PHASES.flatMap((p) => (density[p] === null ? [`densities.${p}`] : [])),
+    ...PHASES.flatMap((p) => (viscosity[p] === null ? [`viscosities.${p}`] : [])),
+    ...(tension === null ? ['interfacial_tension'] : []),
+    ...s.solutes.flatMap((n, i) =>
+      t.equilibrium[i] && diffusivity[i] === null ? [`diffusivities.${n}`] : [],
+    ),
+  ];
+  if (missing.length > 0)
+    problems.push({
+      path: [...path, 'mixer', 'impeller'],
+      message: `transfer from an impeller needs ${missing.join(', ')}`,
+    });
+}
+
+function weirNeeds(s: Scenario, t: Train, path: Path, problems: Problem[]): void {
+  const { density } = s.properties;
+  for (const p of PHASES)
+    if (density[p] === null)
+      problems.push({
+        path: [...path, 'hydraulics'],
+        message: `weirs need densities.${p}, such as '1000 kg/m^3'`,
+      });
+  if (density.aqueous !== null && density.organic !== null && density.organic >= density.aqueous)
+    problems.push({
+      path: ['densities', 'organic'],
+      message: 'the organic must be lighter than the aqueous',
+    });
+  const without = t.stages.findIndex((q) => q.settler.weirs === null);
+  if (without >= 0)
+    problems.push({
+      path: [...path, 'settler'],
+      message: `hydraulics: weirs needs the weirs of every settler, such as 'weirs: {organic_length: 8 m, aqueous_length: 8 m}'; stage ${without + 1} has none`,
+    });
+}
+
+/** Full stages keep their volumes by a balance that a bypassed stage with carry-over would not close. */
+function bypassNeeds(s: Scenario, t: Train, path: Path, problems: Problem[]): void {
+  const bypassed = s.upsets.some(
+    (u) => u.quantity.startsWith(`${t.name}.`) && u.quantity.endsWith(' bypass'),
+  );
+  const carries = t.stages.some((q) => q.settler.carry !== null || q.settler.band !== null);
+  if (bypassed && carries && t.hydraulics === 'full')
+    problems.push({
+      path: [...path, 'hydraulics'],
+      message: 'a stage that is bypassed while phases are carried over needs hydraulics: weirs',
+    });
+}
