@@ -76,9 +76,9 @@ export function writeJson(folder: string, name: string, value: object): void {
 
 export function write(folder: string, name: string, content: string | Buffer): void {
   try {
-    writeFileSync(join(folder, name), content);
+    writeFileSync(resolve(folder, name), content);
   } catch (e) {
-    throw new Known(`cannot write ${join(folder, name)} (${(e as NodeJS.ErrnoException).code})`, exits.usage);
+    throw new Known(`cannot write ${resolve(folder, name)} (${(e as NodeJS.ErrnoException).code})`, exits.usage);
   }
 }
 

@@ -58,6 +58,8 @@ export async function main(argv: readonly string[]): Promise<number> {
     .addOption(
       new Option('--tolerance <number>', 'relative tolerance').argParser(tolerance).default(TOLERANCE),
     )
+    .option('--save-state <file>', 'keep the state at the end (or at --save-at) in a file')
+    .addOption(new Option('--save-at <time>', "when to keep it, such as '12 h'"))
     .action(async (file: string, o) => {
       const { run } = await import('./verbs/run.ts');
       code = await run(file, o, quiet(o));

@@ -1,6 +1,6 @@
 import { type Execution, generated } from '../math/kernel.ts';
 import { type Maker, type Network, network, type Stream } from '../scenario/network.ts';
-import type { Phase, Scenario, Train } from '../scenario/scenario.ts';
+import type { Phase, Scenario, Tank, Train } from '../scenario/scenario.ts';
 import type { F, System } from '../solve/system.ts';
 import { type Account, accounts } from './accounts.ts';
 import { Book, type Sink, type Source } from './book.ts';
@@ -50,6 +50,7 @@ export function assemble(s: Scenario, options: AssembleOptions = {}): Plant {
   writer.write();
   const books = accounts(book, writer.totals, writer.levels, writer.fixedVolume);
   holdWhatOnlyCirculates(book.ledger, books);
+  writer.keepLoops();
   return {
     scenario: s,
     network: net,
@@ -129,6 +130,39 @@ class PlantWriter {
       );
     });
     this.#showStreams();
+  }
+
+  /**
+   * With weirs the levels of a closed loop settle among themselves, so at steady state its tank holds what is left
+   * of all that the loop held at the start; its own balance says nothing then.
+   */
+  keepLoops(): void {
+    this.#s.tanks.forEach((t, index) => {
+      const { volume } = this.#tanks[index];
+      if (volume === null || !isSame(this.#net.flowSource(t.from), { kind: 'tank', index })) return;
+      const members = this.#loopTrains(t).flatMap((i) =>
+        this.#trains[i].vessels.flatMap(({ places: { volumes } }) =>
+          volumes.layer === null
+            ? []
+            : [volumes.mixer[t.phase], volumes.band?.[t.phase] ?? null, volumes.layer[t.phase]].flatMap(
+                (r) => (r ? [r.index] : []),
+              ),
+        ),
+      );
+      if (members.length > 0)
+        this.#book.ledger.steady[volume.index] = { keepsSumOf: [volume.index, ...members] };
+    });
+  }
+
+  /** Trains that a tank's stream passes before it comes back. */
+  #loopTrains(t: Tank): number[] {
+    const found: number[] = [];
+    let { user } = this.#net.streams.get(t.to) as Stream;
+    while (user?.kind === 'train' && !found.includes(user.index)) {
+      found.push(user.index);
+      user = (this.#net.streams.get(this.#s.trains[user.index][t.phase].to) as Stream).user;
+    }
+    return found;
   }
 
   /** A pump's flow: as set, while it is in service and its tank is not empty, and nothing on its way is stopped. */

@@ -3,15 +3,14 @@ import { trainFacts } from '../plant/facts.ts';
 import { explain } from '../solve/outcome.ts';
 import type { LimitReport } from '../study/limit-watch.ts';
 import type { RunResult, SteadyResult } from '../study/result.ts';
+import type { TrainFigures } from '../study/train-figures.ts';
 import { shortCaution } from './cautions.ts';
 import { clock, columns, figure, shown, withUnit } from './figures.ts';
 
 /** First lines of `run`: limits first, then what the outlets came to, then what may be trusted. */
 export function runScreen(r: RunResult): string[] {
   const s = r.plant.scenario;
-  const lines = [
-    `RUN  ${s.title}: ${clock(r.stop.time)} from ${s.start === 'steady' ? 'steady state' : 'barren'}`,
-  ];
+  const lines = [`RUN  ${s.title}: ${clock(r.stop.time)} from ${startWords(s.start)}`];
   if (!r.complete) lines.push(`INCOMPLETE  ${explain(r.stop)}`);
   for (const q of r.shades) lines.push(`upset  ${q.words}, ${clock(q.from)} to ${clock(q.to)}`);
   for (const c of r.clamped)
@@ -29,6 +28,10 @@ export function runScreen(r: RunResult): string[] {
   );
   return lines;
 }
+
+/** The start of a run in words. */
+export const startWords = (start: Plant['scenario']['start']): string =>
+  typeof start === 'object' ? `the state kept in ${start.file}` : start === 'steady' ? 'steady state' : start;
 
 const rejected = ({ work: w }: RunResult): number =>
   w.rejectedByError + w.rejectedByNegative + w.rejectedByNonFinite + w.rejectedBySingular;
@@ -74,14 +77,7 @@ export function steadyScreen(r: SteadyResult): string[] {
     return i < 0 ? '-' : figure(r.outputs[i] * shown(outputs[i].unit).factor, 4);
   };
   const lines = [`STEADY STATE  ${s.title}`];
-  for (const q of r.recoveries) {
-    const rate = figure(Math.abs(q.transferred) * 3600);
-    const what =
-      q.transferred >= 0
-        ? 'of what the aqueous brings is extracted'
-        : 'of what the organic brings is stripped';
-    lines.push(`${q.train}: ${figure(q.share * 100, 4)} % ${what} (${q.solute}, ${rate} kg/h)`);
-  }
+  for (const f of r.figures) lines.push(...figureLines(f));
   for (const d of r.drifts)
     lines.push(
       `${d.tank} ${d.rate > 0 ? 'gains' : 'loses'} ${figure(Math.abs(d.rate) * 86400)} m^3/d: ${d.rate > 0 ? 'full' : 'empty'} in ${clock(d.until)}`,
@@ -122,6 +118,44 @@ export function steadyScreen(r: SteadyResult): string[] {
     shortCaution,
   );
   return lines;
+}
+
+/** What people look for in a train, in two or three lines. */
+function figureLines(f: TrainFigures): string[] {
+  const lines = f.solutes.map((q) => {
+    const what =
+      q.transferred >= 0
+        ? 'of what the aqueous brings is extracted'
+        : 'of what the organic brings is stripped';
+    const load = q.load === null ? '' : `, organic loaded to ${figure(100 * q.load)} % of its maximum`;
+    const rate = `${figure(Math.abs(q.transferred) * 3600)} kg/h`;
+    return `${f.train}: ${figure(q.recovery * 100, 4)} % ${what} (${q.solute}, ${rate}, net ${figure(q.netTransfer)} g/L${load})`;
+  });
+  const span = (list: readonly (number | null)[], digits = 3): string => {
+    const known = list.filter((v): v is number => v !== null);
+    if (known.length === 0) return '-';
+    const [a, b] = [figure(Math.min(...known), digits), figure(Math.max(...known), digits)];
+    return a === b ? a : `${a} to ${b}`;
+  };
+  const efficiency = f.solutes.map((q) =>
+    span(
+      q.efficiency.map((e) => (e === null ? null : 100 * e)),
+      3,
+    ),
+  );
+  const loads = f.stages.map((q) => (q.settlerLoad === null ? null : q.settlerLoad * 3600));
+  const parts = [
+    `O/A ${figure(f.advance)} through, ${span(f.stages.map((q) => q.mixerRatio))} in the mixers`,
+    `stage efficiency ${efficiency.join(', ')} %`,
+    ...(loads.some((v) => v !== null) ? [`settlers ${span(loads)} m³/h·m²`] : []),
+    `held ${clock(f.stages.reduce((n, q) => n + q.aqueousHeld, 0))} aqueous, ${clock(f.stages.reduce((n, q) => n + q.organicHeld, 0))} organic`,
+    ...(f.solventLost > 0
+      ? [
+          `solvent lost ${figure(f.solventLost * 86400)} m³/d (${figure(f.specificLoss * 1e6)} mL/m³ of aqueous)`,
+        ]
+      : []),
+  ];
+  return [...lines, `  ${parts.join('; ')}`];
 }
 
 /** `check`: the plant as understood. */
@@ -176,7 +210,7 @@ export function checkScreen(plant: Plant): string[] {
   }
   lines.push(
     '',
-    `${plant.system.places.length} states, ${s.horizon / s.recordEvery < 1e6 ? Math.floor(s.horizon / s.recordEvery) + 1 : '> 1e6'} records over ${clock(s.horizon)}, start ${s.start}.`,
+    `${plant.system.places.length} states, ${s.horizon / s.recordEvery < 1e6 ? Math.floor(s.horizon / s.recordEvery) + 1 : '> 1e6'} records over ${clock(s.horizon)}, start ${startWords(s.start)}.`,
   );
   return lines;
 }

@@ -55,6 +55,32 @@ const plant = object({
   ),
 });
 
+const trainFigures = object({
+  train: text('name'),
+  advance_organic_to_aqueous: number('as they pass through'),
+  solvent_lost_m3_per_s: number('with the aqueous outlet'),
+  solvent_lost_m3_per_m3_aqueous: number('of the aqueous outlet'),
+  stages: list(
+    object({
+      mixer_organic_to_aqueous: number('recycle and carry-over included'),
+      mixer_residence_s: number('of all that enters'),
+      aqueous_held_s: number('in mixer and settler'),
+      organic_held_s: number('in mixer and settler'),
+      settler_load_m_per_s: orNull(number('all that enters over the area')),
+    }),
+  ),
+  solutes: list(
+    object({
+      solute: text('name'),
+      transferred_kg_per_s: number('from the aqueous to the organic'),
+      recovery: number('share of what enters with the phase that gives'),
+      net_transfer_kg_per_m3: number('loaded less lean organic'),
+      share_of_maximum_load: orNull(number('null where the law has no ceiling')),
+      stage_efficiency: list(orNull(number('Murphree, aqueous side'))),
+    }),
+  ),
+});
+
 const run = object({
   schema: { const: SCHEMA, description: 'number of this schema' },
   verb: { const: 'run' },
@@ -107,6 +133,7 @@ const run = object({
   clamped_at_zero: list(object({ quantity: text('input'), time_s: number('held at zero from') })),
   events: list(object({ time_s: number('when'), name: text('which'), message: text('in words') })),
   final: figures('every output at the end, key `path [unit]`'),
+  figures: list(trainFigures),
   plant,
   solver: object({
     integrator: text('method'),
@@ -122,14 +149,7 @@ const steady = object({
   verb: { const: 'steady' },
   ...head,
   values: figures('every output at steady state, key `path [unit]`'),
-  transfers: list(
-    object({
-      train: text('name'),
-      solute: text('name'),
-      transferred_kg_per_s: number('from the aqueous to the organic'),
-      share: number('of what enters with the phase that gives'),
-    }),
-  ),
+  figures: list(trainFigures),
   drifts: list(
     object({
       tank: text('name'),

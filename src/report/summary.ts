@@ -1,5 +1,6 @@
 import { explain } from '../solve/outcome.ts';
 import type { RunResult, SteadyResult } from '../study/result.ts';
+import type { TrainFigures } from '../study/train-figures.ts';
 import { cautions } from './cautions.ts';
 import { plantFacts } from './plant-facts.ts';
 
@@ -54,6 +55,7 @@ export function runSummary(r: RunResult, origin: Origin): object {
     clamped_at_zero: r.clamped.map((c) => ({ quantity: c.quantity, time_s: c.time })),
     events: r.events.map((e) => ({ time_s: e.time, name: e.name, message: e.message })),
     final: Object.fromEntries(outputs.map((o, i) => [`${o.path} [${si(o.unit)}]`, last[i]])),
+    figures: r.figures.map(figuresOf),
     plant: plantFacts(r.plant),
     solver: {
       integrator: r.integrator,
@@ -74,12 +76,7 @@ export function steadySummary(r: SteadyResult, origin: Origin): object {
     ...head(r.plant.scenario, origin),
     complete: true,
     values: Object.fromEntries(outputs.map((o, i) => [`${o.path} [${si(o.unit)}]`, r.outputs[i]])),
-    transfers: r.recoveries.map((q) => ({
-      train: q.train,
-      solute: q.solute,
-      transferred_kg_per_s: q.transferred,
-      share: q.share,
-    })),
+    figures: r.figures.map(figuresOf),
     drifts: r.drifts.map((d) => ({ tank: d.tank, gain_m3_per_s: d.rate, until_full_or_empty_s: d.until })),
     closure: { steady_boundary: r.imbalance },
     plant: plantFacts(r.plant),
@@ -93,3 +90,26 @@ function head(s: { title: string; about: string }, origin: Origin): object {
 }
 
 const si = (unit: string): string => unit.replaceAll('^', '');
+
+/** What people look for in a train. */
+const figuresOf = (f: TrainFigures): object => ({
+  train: f.train,
+  advance_organic_to_aqueous: f.advance,
+  solvent_lost_m3_per_s: f.solventLost,
+  solvent_lost_m3_per_m3_aqueous: f.specificLoss,
+  stages: f.stages.map((q) => ({
+    mixer_organic_to_aqueous: q.mixerRatio,
+    mixer_residence_s: q.mixerResidence,
+    aqueous_held_s: q.aqueousHeld,
+    organic_held_s: q.organicHeld,
+    settler_load_m_per_s: q.settlerLoad,
+  })),
+  solutes: f.solutes.map((q) => ({
+    solute: q.solute,
+    transferred_kg_per_s: q.transferred,
+    recovery: q.recovery,
+    net_transfer_kg_per_m3: q.netTransfer,
+    share_of_maximum_load: q.load,
+    stage_efficiency: q.efficiency,
+  })),
+});

@@ -7,6 +7,7 @@ import type { Derived } from './derived.ts';
 import type { Diagram } from './diagram.ts';
 import type { LimitReport } from './limit-watch.ts';
 import type { Records } from './records.ts';
+import type { TrainFigures } from './train-figures.ts';
 import type { Course, Shade } from './upsets.ts';
 
 /** The plant at one moment that a picture or a reader looks at. */
@@ -42,6 +43,8 @@ export interface RunResult {
   readonly kept: object | null;
   /** Figures that follow from each row of records. */
   readonly derived: readonly Derived[];
+  /** At the end. */
+  readonly figures: readonly TrainFigures[];
 }
 
 export interface SteadyResult {
@@ -51,18 +54,8 @@ export interface SteadyResult {
   readonly residual: number;
   /** Tanks that only drift: m³/s gained, and s until full or empty. */
   readonly drifts: readonly { readonly tank: string; readonly rate: number; readonly until: number }[];
-  readonly recoveries: readonly Recovery[];
+  readonly figures: readonly TrainFigures[];
   readonly diagrams: readonly Diagram[];
   /** Largest imbalance at the boundary, relative to what enters, by component. */
   readonly imbalance: number;
-}
-
-/** What of a solute in an aqueous feed of a train leaves the train with its organic. */
-export interface Recovery {
-  readonly train: string;
-  readonly solute: string;
-  /** kg/s from the aqueous to the organic, negative where it is stripped. */
-  readonly transferred: number;
-  /** Share of what enters with the aqueous (or, stripped, with the organic). */
-  readonly share: number;
 }

@@ -18,6 +18,7 @@ import { type LimitReport, LimitWatch } from './limit-watch.ts';
 import { Recorder } from './records.ts';
 import type { RunResult, Snapshot } from './result.ts';
 import { restoreState, saveState } from './saved.ts';
+import { trainFigures } from './train-figures.ts';
 import { upsetSchedule } from './upsets.ts';
 
 export interface RunSettings {
@@ -126,6 +127,7 @@ function prepare(s: Scenario, settings: RunSettings): Prepared {
         tolerance: settings.tolerance,
         kept: keeper.kept,
         derived: derivedFigures(plant),
+        figures: trainFigures(plant, recorder.records.rows[recorder.records.rows.length - 1]),
       };
     },
   };

@@ -4,8 +4,9 @@ import type { Scenario } from '../scenario/scenario.ts';
 import type { F } from '../solve/system.ts';
 import { diagrams } from './diagram.ts';
 import { outputsAt } from './records.ts';
-import type { Recovery, SteadyResult } from './result.ts';
+import type { SteadyResult } from './result.ts';
 import { steadyOf } from './run.ts';
+import { trainFigures } from './train-figures.ts';
 
 /** Steady state for the inputs at time zero. @throws Incomplete where none is found. */
 export function steady(s: Scenario): SteadyResult {
@@ -20,7 +21,7 @@ export function steady(s: Scenario): SteadyResult {
     iterations: found.iterations,
     residual: found.residual,
     drifts: drifts(plant, found.state, change),
-    recoveries: recoveries(plant, outputs),
+    figures: trainFigures(plant, outputs),
     diagrams: diagrams(plant, [{ label: 'steady state', time: 0, outputs }]),
     imbalance: imbalance(plant, change),
   };
@@ -34,22 +35,6 @@ function drifts(plant: Plant, x: F, change: F): SteadyResult['drifts'] {
     const room = rate > 0 ? t.volume - x[at] : x[at] - NEARLY_EMPTY * t.volume;
     return [{ tank: t.name, rate, until: room / Math.abs(rate) }];
   });
-}
-
-function recoveries(plant: Plant, y: F): Recovery[] {
-  const { scenario: s, system } = plant;
-  const read = (path: string): number => y[system.outputs.findIndex((o) => o.path === path)];
-  return s.trains.flatMap((t) =>
-    s.solutes.flatMap((solute, i): Recovery[] => {
-      if (!t.equilibrium[i]) return [];
-      const rate = (stream: string): number => read(`${stream}.flow`) * read(`${stream}.${solute}`);
-      const transferred = rate(t.organic.to) - rate(t.organic.from);
-      const offered = transferred >= 0 ? rate(t.aqueous.from) : rate(t.organic.from);
-      return [
-        { train: t.name, solute, transferred, share: offered > 0 ? Math.abs(transferred) / offered : 0 },
-      ];
-    }),
-  );
 }
 
 /** Boundary in − out at steady state, relative to what enters: it vanishes but for tanks that drift. */

@@ -1,9 +1,10 @@
 import { runScreen } from '../../report/screen.ts';
 import { writeSeries } from '../../report/series.ts';
 import { runSummary } from '../../report/summary.ts';
+import { quantity } from '../../scenario/units.ts';
 import { type RunSettings, runInTurns } from '../../study/run.ts';
 import type { Console } from '../console.ts';
-import { exits } from '../exit.ts';
+import { exits, Known } from '../exit.ts';
 import { makeFolder, openScenario, outputFolder, stream, version, write, writeJson } from '../files.ts';
 import { known } from '../refusing.ts';
 
@@ -13,10 +14,23 @@ export interface RunOptions {
   readonly scale: string;
   readonly integrator: string;
   readonly tolerance: number;
+  readonly saveState?: string;
+  readonly saveAt?: string;
 }
 
 /** ms of computing between two looks at the outside world. */
 const TURN = 100;
+
+/** When the state is kept. @throws Known where that is no time of the run. */
+function keepAt({ saveAt, saveState }: RunOptions, horizon: number): { keepAt?: number } {
+  if (saveAt === undefined) return {};
+  const q = quantity(saveAt, 'a time');
+  if (saveState === undefined) throw new Known('--save-at goes with --save-state', exits.usage);
+  if ('wrong' in q) throw new Known(`--save-at: ${q.wrong}`, exits.usage);
+  if (q.value < 0 || q.value > horizon)
+    throw new Known(`--save-at: the run ends at ${horizon / 3600} h`, exits.usage);
+  return { keepAt: q.value };
+}
 
 /** `upsettle run FILE`: series.csv, summary.json and pictures of one run. */
 export async function run(file: string, options: RunOptions, console: Console): Promise<number> {
@@ -39,6 +53,7 @@ export async function run(file: string, options: RunOptions, console: Console): 
     integrator: options.integrator,
     tolerance: options.tolerance,
     progress: (share) => console.progress(share, 'running'),
+    ...keepAt(options, read.scenario.horizon),
   };
   const result = await runInTurns(read.scenario, settings, { due, interrupted: () => interrupted }).catch(
     (e) => {
@@ -51,6 +66,10 @@ export async function run(file: string, options: RunOptions, console: Console): 
   await stream(folder, 'series.csv', (to) => writeSeries(result, to));
   writeJson(folder, 'summary.json', runSummary(result, { file, version: version(), seconds }));
   const made = ['series.csv', 'summary.json'];
+  if (options.saveState !== undefined && result.kept) {
+    writeJson('.', options.saveState, result.kept);
+    console.say([`State kept in ${options.saveState}; start another run from it with start: {saved: FILE}`]);
+  }
   if (options.pictures) {
     const { runPictures } = await import('../../report/pictures/index.ts');
     for await (const picture of runPictures(result, Number(options.scale))) {

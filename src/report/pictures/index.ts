@@ -1,5 +1,6 @@
 import type { RunResult, SteadyResult } from '../../study/result.ts';
 import { draw } from './canvas.ts';
+import { levels } from './levels.ts';
 import { stageTimeMap } from './map.ts';
 import { operating } from './operating.ts';
 import { outlets } from './outlets.ts';
@@ -7,7 +8,7 @@ import type { Picture } from './picture.ts';
 import { profiles } from './profiles.ts';
 
 /** Pictures of `run`, in the order in which they are drawn. */
-export const runTable: readonly Picture<RunResult>[] = [outlets, profiles, stageTimeMap, operating];
+export const runTable: readonly Picture<RunResult>[] = [outlets, levels, profiles, stageTimeMap, operating];
 /** Pictures of `steady`. */
 export const steadyTable: readonly Picture<SteadyResult>[] = [operating];
 

@@ -1,6 +1,6 @@
 import type { RunResult } from '../../study/result.ts';
 import { figure, shown, withUnit } from '../figures.ts';
-import { limitLines } from '../screen.ts';
+import { limitLines, startWords } from '../screen.ts';
 import { type Panel, type PanelLine, panelSheet } from './panels.ts';
 import type { Picture } from './picture.ts';
 import { short } from './style.ts';
@@ -35,7 +35,7 @@ export const outlets: Picture<RunResult> = {
     return panelSheet({
       title: s.title,
       answer: answer.map((l) => short(l, 150)),
-      source: `${short(s.title, 60)}: outlets over ${figure(s.horizon / unit.seconds)} ${unit.name}, start ${s.start}`,
+      source: `${short(s.title, 60)}: outlets over ${figure(s.horizon / unit.seconds)} ${unit.name}, start ${startWords(s.start)}`,
       span: s.horizon,
       panels: [...panels.slice(0, MOST_PANELS - Math.min(2, changed.length)), ...changed.slice(0, 2)],
       shades: r.shades,
