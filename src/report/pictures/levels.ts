@@ -70,5 +70,6 @@ function panelsOf(r: RunResult): Panel[] {
 function line(r: RunResult, output: number): PanelLine {
   const { path, unit } = r.plant.system.outputs[output];
   const { factor } = shown(unit);
-  return { label: path, data: r.records.times.map((x, k) => ({ x, y: r.records.rows[k][output] * factor })) };
+  const label = path.replace(/\.(settler|mixer)\./, ' ').replace('_', ' ');
+  return { label, data: r.records.times.map((x, k) => ({ x, y: r.records.rows[k][output] * factor })) };
 }
