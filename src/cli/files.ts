@@ -78,7 +78,10 @@ export function write(folder: string, name: string, content: string | Buffer): v
   try {
     writeFileSync(resolve(folder, name), content);
   } catch (e) {
-    throw new Known(`cannot write ${resolve(folder, name)} (${(e as NodeJS.ErrnoException).code})`, exits.usage);
+    throw new Known(
+      `cannot write ${resolve(folder, name)} (${(e as NodeJS.ErrnoException).code})`,
+      exits.usage,
+    );
   }
 }
 

@@ -24,7 +24,13 @@ export function startOf(raw: RawScenario['start'], folder: string, problems: Pro
         : `cannot read ${file} (looked for it beside the scenario)`,
     );
   }
-  const { upsettle_state: format, topology, places, values } = (data ?? {}) as Record<string, unknown>;
+  const {
+    upsettle_state: format,
+    topology,
+    places,
+    values,
+    modes = {},
+  } = (data ?? {}) as Record<string, unknown>;
   const whole =
     format === 1 &&
     typeof topology === 'string' &&
@@ -32,7 +38,16 @@ export function startOf(raw: RawScenario['start'], folder: string, problems: Pro
     Array.isArray(values) &&
     places.length === values.length &&
     places.every((p) => typeof p === 'string') &&
-    values.every((v) => typeof v === 'number' && Number.isFinite(v));
+    values.every((v) => typeof v === 'number' && Number.isFinite(v)) &&
+    typeof modes === 'object' &&
+    modes !== null &&
+    Object.values(modes).every((v) => v === 0 || v === 1);
   if (!whole) return complain(`${file} is not a kept state of this program`);
-  return { file, topology, places: places as string[], values: values as number[] };
+  return {
+    file,
+    topology,
+    places: places as string[],
+    values: values as number[],
+    modes: modes as Record<string, number>,
+  };
 }

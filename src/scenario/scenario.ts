@@ -198,6 +198,8 @@ export interface SavedState {
   readonly topology: string;
   readonly places: readonly string[];
   readonly values: readonly number[];
+  /** Inputs that events had set, by path. */
+  readonly modes: Readonly<Record<string, number>>;
 }
 
 /** Physical properties, SI; what nobody stated is null, and refused where it is needed. */

@@ -3,18 +3,24 @@ import type { F, Schedule } from './system.ts';
 /** The inputs on one segment of a schedule, with what guards have set laid over them. */
 export class Inputs {
   readonly #schedule: Schedule;
-  readonly #overrides = new Map<number, number>();
+  readonly #overrides: Map<number, number>;
   segment = 0;
 
-  constructor(schedule: Schedule) {
+  /** `modes` are inputs that guards had set when the state was kept from which a run goes on. */
+  constructor(schedule: Schedule, modes: ReadonlyMap<number, number> = new Map()) {
     this.#schedule = schedule;
+    this.#overrides = new Map(modes);
   }
 
-  /** A guard takes an input over, from now on. Returns whether that changes anything. */
-  override(input: number, value: number): boolean {
-    if (this.#overrides.get(input) === value) return false;
+  /** What guards have set so far. */
+  get modes(): ReadonlyMap<number, number> {
+    return this.#overrides;
+  }
+
+  /** A guard takes an input over, from now on. Returns whether that changes the value `now` in force. */
+  override(input: number, value: number, now: number): boolean {
     this.#overrides.set(input, value);
-    return true;
+    return value !== now;
   }
 
   value(t: number, w: F): void {

@@ -26,7 +26,7 @@ export interface Watcher {
   /** A step was accepted; `inputs` gives w anywhere in it. */
   step?(step: Step, inputs: Inputs): void;
   /** The run is over, whatever the reason. */
-  end?(t: number, x: F, w: F): void;
+  end?(t: number, x: F, w: F, inputs: Inputs): void;
 }
 
 export interface Event {
@@ -50,6 +50,8 @@ export interface Problem {
   readonly parameters: F;
   readonly schedule: Schedule;
   readonly initial: F;
+  /** Inputs that guards had set when the initial state was kept. */
+  readonly modes?: ReadonlyMap<number, number>;
 }
 
 export interface Options extends Settings {
@@ -102,7 +104,7 @@ function* integration(
   const integrator: Integrator = integrators[options.integrator](system, parameters, options);
   const x = Float64Array.from(problem.initial);
   const w = new Float64Array(system.inputs.length);
-  const inputs = new Inputs(schedule);
+  const inputs = new Inputs(schedule, problem.modes);
   const guards = new GuardWatch(system, parameters, inputs);
   const events: Event[] = [];
   const times = schedule.times;
@@ -146,7 +148,7 @@ function* integration(
     }
   }
   inputs.value(t, w);
-  for (const o of watchers) o.end?.(t, x, w);
+  for (const o of watchers) o.end?.(t, x, w, inputs);
   return {
     stop: stop ?? { reason: 'reached-end', time: t },
     time: t,
@@ -169,7 +171,7 @@ function* integration(
     } else {
       // A guard that finds its mode already set has nothing to say.
       let changed = false;
-      for (const [input, value] of g.action.set) changed = inputs.override(input, value) || changed;
+      for (const [input, value] of g.action.set) changed = inputs.override(input, value, w[input]) || changed;
       if (changed) report();
     }
     return null;

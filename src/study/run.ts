@@ -17,7 +17,7 @@ import { diagrams } from './diagram.ts';
 import { type LimitReport, LimitWatch } from './limit-watch.ts';
 import { Recorder } from './records.ts';
 import type { RunResult, Snapshot } from './result.ts';
-import { restoreState, saveState } from './saved.ts';
+import { restoreModes, restoreState, saveState } from './saved.ts';
 import { trainFigures } from './train-figures.ts';
 import { upsetSchedule } from './upsets.ts';
 
@@ -65,15 +65,15 @@ class StateKeeper implements Watcher {
     this.#at = at;
   }
 
-  step: NonNullable<Watcher['step']> = (step) => {
+  step: NonNullable<Watcher['step']> = (step, inputs) => {
     if (this.kept !== null || step.t1 < this.#at || this.#at < step.t0) return;
     const x = new Float64Array(this.#plant.system.places.length);
     step.at(this.#at, x);
-    this.kept = saveState(this.#plant, x, this.#at);
+    this.kept = saveState(this.#plant, x, this.#at, inputs.modes);
   };
 
-  end: NonNullable<Watcher['end']> = (t, x) => {
-    this.kept ??= saveState(this.#plant, x, t);
+  end: NonNullable<Watcher['end']> = (t, x, _, inputs) => {
+    this.kept ??= saveState(this.#plant, x, t, inputs.modes);
   };
 }
 
@@ -98,7 +98,7 @@ function prepare(s: Scenario, settings: RunSettings): Prepared {
   const { progress } = settings;
   if (progress) watchers.push({ step: (step) => progress(step.t1 / s.horizon) });
   return {
-    problem: { system: plant.system, parameters: plant.parameters, schedule, initial },
+    problem: { system: plant.system, parameters: plant.parameters, schedule, initial, ...startModes(plant) },
     options: {
       integrator: settings.integrator,
       tolerance: { relative: settings.tolerance },
@@ -150,6 +150,12 @@ function snapshotsOf(
   if (times.length > 1)
     snapshots.push({ label: 'end', time: times[times.length - 1], outputs: rows[rows.length - 1] });
   return snapshots.sort((a, b) => a.time - b.time);
+}
+
+/** What guards had set before a kept state. */
+function startModes(plant: Plant): { modes?: ReadonlyMap<number, number> } {
+  const { start } = plant.scenario;
+  return typeof start === 'object' ? { modes: restoreModes(plant, start) } : {};
 }
 
 /**

@@ -10,7 +10,7 @@ export const STATE_FORMAT = 1;
 const MOST_NAMED = 5;
 
 /** A state as it is kept in a file: every place by its path, in SI. */
-export function saveState(plant: Plant, x: F, time: number): object {
+export function saveState(plant: Plant, x: F, time: number, modes: ReadonlyMap<number, number>): object {
   return {
     upsettle_state: STATE_FORMAT,
     title: plant.scenario.title,
@@ -18,8 +18,17 @@ export function saveState(plant: Plant, x: F, time: number): object {
     time_s: time,
     places: plant.system.places.map((p) => p.path),
     values: Array.from(x),
+    modes: Object.fromEntries([...modes].map(([i, v]) => [plant.system.inputs[i].path, v])),
   };
 }
+
+/** Modes of a kept state (continuity, pumps that ran dry) on the inputs of a plant. */
+export const restoreModes = (plant: Plant, saved: SavedState): Map<number, number> =>
+  new Map(
+    plant.system.inputs.flatMap((q, i): [number, number][] =>
+      Object.hasOwn(saved.modes, q.path) ? [[i, saved.modes[q.path]]] : [],
+    ),
+  );
 
 /**
  * A kept state on the places of a plant. Boundary totals start at zero again. A hold-up that was no state in the

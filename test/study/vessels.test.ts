@@ -28,7 +28,10 @@ function everywhere(
     trains: s.trains.map((t) => ({
       ...t,
       ...train,
-      stages: t.stages.map((q) => ({ mixer: { ...q.mixer, ...mixer }, settler: { ...q.settler, ...settler } })),
+      stages: t.stages.map((q) => ({
+        mixer: { ...q.mixer, ...mixer },
+        settler: { ...q.settler, ...settler },
+      })),
     })),
   };
 }
@@ -42,7 +45,14 @@ function apart(a: Scenario, b: Scenario): number {
 describe('a feature at its neutral value gives the answer of the plain circuit', () => {
   const short = { ...circuit, horizon: 6 * 3600, upsets: [] };
   it.each<[string, Scenario]>([
-    ['no entrainment', everywhere(short, {}, { carry: { organicInAqueous: 0, aqueousInOrganic: 0, exponent: 2, other: null } })],
+    [
+      'no entrainment',
+      everywhere(
+        short,
+        {},
+        { carry: { organicInAqueous: 0, aqueousInOrganic: 0, exponent: 2, other: null } },
+      ),
+    ],
     ['no short circuit', everywhere(short, {}, { shortCircuit: 0 })],
     ['no recycle', everywhere(short, {}, {}, { recycle: { phase: 'organic', flow: 0 } })],
   ])('%s', (_, s) => {
@@ -53,7 +63,9 @@ describe('a feature at its neutral value gives the answer of the plain circuit',
     const s = { ...vessels, start: 'barren' as const, horizon: 6 * 3600, upsets: [] };
     const plain = everywhere(s, { inversion: null }, { band: null, carry: null, shortCircuit: 0 });
     // Both start with the same organic in the tank: in full vessels its level stays.
-    expect(apart({ ...plain, trains: plain.trains.map((t) => ({ ...t, hydraulics: 'full' as const })) }, plain)).toBeLessThan(1e-8);
+    expect(
+      apart({ ...plain, trains: plain.trains.map((t) => ({ ...t, hydraulics: 'full' as const })) }, plain),
+    ).toBeLessThan(1e-8);
   });
 });
 
@@ -77,7 +89,9 @@ describe('the circuit with everything on', () => {
     expect(order[0]).toBeLessThan(order[1]);
     expect(order[1]).toBeLessThan(order[2]);
     expect(reaches('raffinate.flow', 0.05)).toBeGreaterThanOrEqual(order[2] - 300);
-    expect(reaches('extraction.3.mixer.organic_share', 0.9)).toBeLessThan(reaches('extraction.2.settler.interface', 0.1));
+    expect(reaches('extraction.3.mixer.organic_share', 0.9)).toBeLessThan(
+      reaches('extraction.2.settler.interface', 0.1),
+    );
   });
 
   it('takes a bounded number of steps: a weir that starts and a band that vanishes are no obstacles', () => {
@@ -103,7 +117,9 @@ describe('the circuit with everything on', () => {
     const d = series(result, 'extraction.3.mixer.drop diameter');
     // d32 goes with N^-1.2 at the same hold-up.
     expect(d[when(25)] / d[when(23.9)]).toBeCloseTo(0.6 ** -1.2, 2);
-    expect(series(result, 'raffinate.copper')[when(25.9)]).toBeGreaterThan(series(result, 'raffinate.copper')[when(23.9)]);
+    expect(series(result, 'raffinate.copper')[when(25.9)]).toBeGreaterThan(
+      series(result, 'raffinate.copper')[when(23.9)],
+    );
     expect(series(result, 'extraction.1.settler.interface')[when(32.9)]).toBeGreaterThan(0.45);
   });
 
@@ -111,7 +127,10 @@ describe('the circuit with everything on', () => {
     const { plant, outputs } = steady({ ...vessels, upsets: [] });
     const read = (path: string): number => outputs[plant.system.outputs.findIndex((o) => o.path === path)];
     const crest = 0.65 - headFor(plant.designs[0].stages[0].leaving.organic, 8);
-    expect(read('extraction.1.settler.level') - crest).toBeCloseTo(headFor(read('loaded organic.flow'), 8), 8);
+    expect(read('extraction.1.settler.level') - crest).toBeCloseTo(
+      headFor(read('loaded organic.flow'), 8),
+      8,
+    );
   });
 
   it('at rest the loop holds the organic that it was filled with', () => {
@@ -132,7 +151,16 @@ describe('a band that outgrows its settler', () => {
       ...vessels,
       start: 'barren',
       horizon: 8 * 3600,
-      upsets: [{ at: 3600, quantity: 'leach liquor.flow', how: { by: 0.6, relative: true }, over: 600, lasts: 2 * 3600, words: 'more liquor' }],
+      upsets: [
+        {
+          at: 3600,
+          quantity: 'leach liquor.flow',
+          how: { by: 0.6, relative: true },
+          over: 600,
+          lasts: 2 * 3600,
+          words: 'more liquor',
+        },
+      ],
     };
     const r = run(s);
     const flood = r.events.find((e) => e.name.includes('floods'));
