@@ -1,14 +1,30 @@
-import { createWriteStream, existsSync, mkdirSync, readFileSync, statSync, writeFileSync } from 'node:fs';
-import { basename, dirname, extname, join } from 'node:path';
+import {
+  accessSync,
+  constants,
+  createWriteStream,
+  existsSync,
+  mkdirSync,
+  readFileSync,
+  statSync,
+  writeFileSync,
+} from 'node:fs';
+import { basename, dirname, extname, join, resolve } from 'node:path';
 import { finished } from 'node:stream/promises';
 import { type ReadScenario, readScenario, ScenarioError } from '../scenario/read.ts';
 import { exits, Known } from './exit.ts';
 
+/** Bytes of a scenario file that are read at all; what a scenario may have is the reader's business. */
+const LARGEST = 20e6;
+
 /** Reads and checks a scenario file. @throws Known with every complaint and its place. */
 export function openScenario(file: string): ReadScenario {
+  if (file === '') throw new Known('the name of the scenario file is empty', exits.usage);
   let text: string;
   try {
-    if (!statSync(file).isFile()) throw new Known(`${file}:1:1 is not a file`, exits.refused);
+    const about = statSync(file);
+    if (!about.isFile()) throw new Known(`${file}:1:1 is not a file`, exits.refused);
+    if (about.size > LARGEST)
+      throw new Known(`${file}:1:1 has ${Math.round(about.size / 1e6)} MB: not a scenario`, exits.refused);
     text = readFileSync(file, 'utf8');
   } catch (e) {
     if (e instanceof Known) throw e;
@@ -26,15 +42,32 @@ export function openScenario(file: string): ReadScenario {
   }
 }
 
-/** Where the outputs of a verb go: `out/<scenario>/<verb>` unless told otherwise. */
+/**
+ * Where the outputs of a verb go: `out/<scenario>/<verb>` unless told otherwise. It is not made before there is
+ * something to write, but a place where it cannot be made is found before hours are computed.
+ *
+ * @throws Known where the folder cannot be made or written to.
+ */
 export function outputFolder(file: string, verb: string, given: string | undefined): string {
   const folder = given ?? join('out', basename(file, extname(file)), verb);
+  let there = resolve(folder);
+  while (!existsSync(there) && there !== dirname(there)) there = dirname(there);
+  if (!statSync(there).isDirectory())
+    throw new Known(`cannot make the folder ${folder}: ${there} is a file`, exits.usage);
+  try {
+    accessSync(there, constants.W_OK);
+  } catch (e) {
+    throw new Known(`cannot write to ${there} (${(e as NodeJS.ErrnoException).code})`, exits.usage);
+  }
+  return folder;
+}
+
+export function makeFolder(folder: string): void {
   try {
     mkdirSync(folder, { recursive: true });
   } catch (e) {
     throw new Known(`cannot make the folder ${folder} (${(e as NodeJS.ErrnoException).code})`, exits.usage);
   }
-  return folder;
 }
 
 export function writeJson(folder: string, name: string, value: object): void {

@@ -6,6 +6,12 @@ import { version } from './files.ts';
 const integrators = ['rodas5p', 'rodas4', 'odex'];
 const TOLERANCE = 1e-6;
 
+/** 1 for a screen, 2 for paper. */
+const scale = (): Option =>
+  new Option('--scale <number>', 'pictures of 1200 x 700 pixels, or of twice as many')
+    .choices(['1', '2'])
+    .default('1');
+
 /** Reads the command line, runs the verb, returns the exit code. Verbs load what they need when they are called. */
 export async function main(argv: readonly string[]): Promise<number> {
   let code: number = exits.done;
@@ -15,6 +21,7 @@ export async function main(argv: readonly string[]): Promise<number> {
     )
     .version(version(), '-V, --version', 'print the version')
     .exitOverride()
+    .showHelpAfterError('upsettle --help lists all commands and options')
     .configureHelp({ showGlobalOptions: true })
     .option('--quiet', 'say nothing but errors')
     .addHelpText('after', '\nExample:\n  upsettle run scenarios/saltbush-copper.yaml\n');
@@ -44,6 +51,7 @@ export async function main(argv: readonly string[]): Promise<number> {
   )
     .option('--out <dir>', 'folder for the results (default: out/<scenario>/run)')
     .option('--no-pictures', 'write no PNG pictures')
+    .addOption(scale())
     .addOption(
       new Option('--integrator <name>', 'method of integration').choices(integrators).default('rodas5p'),
     )
@@ -61,6 +69,7 @@ export async function main(argv: readonly string[]): Promise<number> {
   )
     .option('--out <dir>', 'folder for the results (default: out/<scenario>/steady)')
     .option('--no-pictures', 'write no PNG pictures')
+    .addOption(scale())
     .action(async (file: string, o) => {
       const { steady } = await import('./verbs/steady.ts');
       code = await steady(file, o, quiet(o));
@@ -85,7 +94,7 @@ export async function main(argv: readonly string[]): Promise<number> {
 function tolerance(text: string): number {
   const value = Number(text);
   if (value >= 1e-12 && value <= 1e-2) return value;
-  throw new InvalidArgumentError('expected a number from 1e-12 to 1e-2.');
+  throw new InvalidArgumentError('Expected a number from 1e-12 to 1e-2.');
 }
 
 const greeting =

@@ -2,6 +2,12 @@
 import { exits } from './exit.ts';
 import { main } from './program.ts';
 
+// Who reads may stop reading (`| head`): what remains to be written to files still is.
+for (const stream of [process.stdout, process.stderr])
+  stream.on('error', (e: NodeJS.ErrnoException) => {
+    if (e.code !== 'EPIPE') throw e;
+  });
+
 try {
   process.exitCode = await main(process.argv);
 } catch (e) {

@@ -1,134 +1,48 @@
-import { inTarget, kindsOf, readChange } from './changes.ts';
+import { readChange } from './changes.ts';
 import { type Basis, carrierFlow, content } from './content.ts';
 import { readLaw } from './laws.ts';
+import { readLimit } from './limits.ts';
 import { hint } from './nearest.ts';
 import type { Outline } from './outline.ts';
 import type { Problem } from './refusal.ts';
-import type {
-  Feed,
-  Initial,
-  Law,
-  Limit,
-  Mixer,
-  Path,
-  Phase,
-  Scenario,
-  Settler,
-  Stage,
-  Tank,
-  Train,
-} from './scenario.ts';
+import { Releases } from './releases.ts';
+import type { Feed, Initial, Law, Path, Phase, Scenario, Tank, Train } from './scenario.ts';
 import type { RawScenario } from './schema.ts';
-import { quantity } from './units.ts';
+import { show } from './show.ts';
+import { checkSize } from './size.ts';
+import { stagesOf } from './vessels.ts';
 
-/** Records and vessels beyond which a run would fill the memory, whatever the machine. */
-const MOST_RECORDS = 2e6;
-const MOST_PLACES = 400_000;
-const MOST_VALUES = 4e8;
 /** Records of a run that says nothing about them. */
 const USUAL_RECORDS = 300;
 
 /** Checked raw data → scenario in SI. Every complaint goes to `problems`; the result counts only without any. */
 export function build(raw: RawScenario, outline: Outline, folder: string, problems: Problem[]): Scenario {
-  const solutes = raw.solutes;
-  const species = raw.species ?? [];
-  const components = [...solutes, ...species];
-  const basis: Basis = {
-    components,
-    densities: Object.fromEntries(Object.entries(raw.densities ?? {}).map(([k, q]) => [k, q?.value])),
-    molarMasses: Object.fromEntries(Object.entries(raw.molar_masses ?? {}).map(([k, q]) => [k, q.value])),
-  };
-  for (const name of Object.keys(basis.molarMasses))
-    if (!components.includes(name))
-      problems.push({
-        path: ['molar_masses', name],
-        message: `unknown solute or species '${name}'${hint(name, components)}`,
-        atKey: true,
-      });
-  const speciesInOrganic = (given: Readonly<Record<string, unknown>>, path: Path): void => {
-    for (const s of species)
-      if (given[s] !== undefined)
-        problems.push({
-          path: [...path, s],
-          message: `the species '${s}' stays in the aqueous; an organic has none`,
-          atKey: true,
-        });
-  };
-
-  const feeds = Object.entries(raw.feeds).map(([name, f]): Feed => {
-    const path = ['feeds', name];
-    if (f.phase === 'organic') speciesInOrganic(f, path);
-    const c = content(f, f.phase, basis, path, problems);
-    return {
-      name,
-      phase: f.phase,
-      flow: carrierFlow(f.flow, f.phase, c, basis, [...path, 'flow'], problems),
-      content: c,
-    };
-  });
-  const tanks = Object.entries(raw.tanks ?? {}).map(([name, t]): Tank => {
-    const path = ['tanks', name];
-    if (t.phase === 'organic') speciesInOrganic(t, path);
-    const c = content(t, t.phase, basis, path, problems);
-    const volume = t.volume.value;
-    const held =
-      t.filled === undefined
-        ? volume
-        : t.filled.kind === 'a percentage'
-          ? t.filled.value * volume
-          : t.filled.value;
-    if (held > volume)
-      problems.push({ path: [...path, 'filled'], message: 'a tank cannot hold more than its volume' });
-    const flow =
-      t.flow === undefined ? null : carrierFlow(t.flow, t.phase, c, basis, [...path, 'flow'], problems);
-    return { name, phase: t.phase, from: t.from, to: t.to, volume, held, flow, content: c };
-  });
-
-  const releases: (number | null)[][] = solutes.map(() => species.map(() => null));
-  const trains = Object.entries(raw.trains).map(([name, t]): Train => {
-    const path = ['trains', name];
-    const equilibrium: (Law | null)[] = solutes.map(() => null);
-    for (const [solute, law] of Object.entries(t.equilibrium ?? {})) {
-      const at = [...path, 'equilibrium', solute];
-      const i = solutes.indexOf(solute);
-      if (i < 0) {
-        problems.push({
-          path: at,
-          message: `unknown solute '${solute}'${hint(solute, solutes)}`,
-          atKey: true,
-        });
-        continue;
-      }
-      equilibrium[i] = readLaw(law, solute, { solutes, species, basis, folder }, at, problems);
-      if ('releases' in law)
-        collectReleases(law.releases, i, species, releases, [...at, 'releases'], problems);
-    }
-    return {
-      name,
-      aqueous: t.aqueous,
-      organic: t.organic,
-      stages: stagesOf(t, path, problems),
-      equilibrium,
-      initial: initialOf(t.initial, basis, speciesInOrganic, [...path, 'initial'], problems),
-    };
-  });
-
+  const builder = new Builder(raw, folder, problems);
+  const feeds = Object.entries(raw.feeds).map(([name, f]) => builder.feed(name, f));
+  const tanks = Object.entries(raw.tanks ?? {}).map(([name, t]) => builder.tank(name, t));
+  const trains = Object.entries(raw.trains).map(([name, t]) => builder.train(name, t));
+  const { basis } = builder;
   const horizon = raw.horizon.value;
-  const recordEvery = raw.record_every?.value ?? horizon / USUAL_RECORDS;
+  const contents = new Map([...feeds, ...tanks].map((q) => [q.name, q.content]));
   const scenario: Scenario = {
     title: raw.title,
     about: raw.about ?? '',
-    solutes,
-    species,
+    solutes: builder.solutes,
+    species: builder.species,
     feeds,
     tanks,
     trains,
-    releases: releases.map((row) => row.map((r) => r ?? 0)),
+    releases: builder.releases.table(),
     start: raw.start ?? 'barren',
     horizon,
-    recordEvery,
+    recordEvery: raw.record_every?.value ?? horizon / USUAL_RECORDS,
     upsets: (raw.upsets ?? []).flatMap(
-      (u, i) => readChange(u, ['upsets', i], outline, basis, folder, problems) ?? [],
+      (u, i) =>
+        readChange(
+          u,
+          { path: ['upsets', i], outline, basis, contents, horizon: raw.horizon, folder },
+          problems,
+        ) ?? [],
     ),
     limits: (raw.limits ?? []).flatMap((l, i) => readLimit(l, ['limits', i], outline, basis, problems) ?? []),
   };
@@ -136,181 +50,106 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
   return scenario;
 }
 
-function collectReleases(
-  given: Readonly<Record<string, { value: number }>> | undefined,
-  solute: number,
-  species: readonly string[],
-  releases: (number | null)[][],
-  path: Path,
-  problems: Problem[],
-): void {
-  for (const [name, q] of Object.entries(given ?? {})) {
-    const k = species.indexOf(name);
-    if (k < 0)
-      problems.push({
-        path: [...path, name],
-        message: `unknown species '${name}'${hint(name, species)}`,
-        atKey: true,
-      });
-    else if (releases[solute][k] !== null && releases[solute][k] !== q.value)
-      problems.push({
-        path: [...path, name],
-        message: `another train states ${releases[solute][k]}; what a solute releases is the same everywhere`,
-      });
-    else releases[solute][k] = q.value;
-  }
-}
+class Builder {
+  readonly solutes: readonly string[];
+  readonly species: readonly string[];
+  readonly basis: Basis;
+  readonly releases: Releases;
+  readonly #folder: string;
+  readonly #problems: Problem[];
 
-type RawTrain = RawScenario['trains'][string];
-type RawMixer = NonNullable<RawTrain['mixer']>;
-type RawSettler = NonNullable<RawTrain['settler']>;
-
-function stagesOf(t: RawTrain, path: Path, problems: Problem[]): Stage[] {
-  const differs = new Map<number, { mixer?: RawMixer; settler?: RawSettler }>();
-  for (const [key, value] of Object.entries(t)) {
-    const j = /^stage (\d+)$/.exec(key)?.[1];
-    if (j === undefined || value === undefined) continue;
-    if (Number(j) < 1 || Number(j) > t.stages)
-      problems.push({ path: [...path, key], message: `the train has stages 1 to ${t.stages}`, atKey: true });
-    differs.set(Number(j), value as { mixer?: RawMixer; settler?: RawSettler });
-  }
-  // All stages without a setting of their own share one object, and one complaint.
-  const common = {
-    mixer: mixerOf(t.mixer ?? {}, [...path, 'mixer'], problems),
-    settler: settlerOf(t.settler ?? {}, [...path, 'settler'], problems),
-  };
-  return Array.from({ length: t.stages }, (_, i): Stage => {
-    const own = differs.get(i + 1);
-    if (!own) return common;
-    const at = [...path, `stage ${i + 1}`];
-    const base = t.mixer ?? {};
-    // A stage that states its own rate does not inherit the efficiency, and the other way round.
-    const inherited = own.mixer?.ka
-      ? { ...base, stage_efficiency: undefined }
-      : own.mixer?.stage_efficiency
-        ? { ...base, ka: undefined }
-        : base;
-    return {
-      mixer: mixerOf({ ...inherited, ...own.mixer }, [...at, 'mixer'], own.mixer ? problems : []),
-      settler: settlerOf({ ...t.settler, ...own.settler }, [...at, 'settler'], own.settler ? problems : []),
+  constructor(raw: RawScenario, folder: string, problems: Problem[]) {
+    this.solutes = raw.solutes;
+    this.species = raw.species ?? [];
+    this.#folder = folder;
+    this.#problems = problems;
+    this.releases = new Releases(this.solutes.length, this.species);
+    const components = [...this.solutes, ...this.species];
+    this.basis = {
+      components,
+      densities: Object.fromEntries(Object.entries(raw.densities ?? {}).map(([k, q]) => [k, q?.value])),
+      molarMasses: Object.fromEntries(Object.entries(raw.molar_masses ?? {}).map(([k, q]) => [k, q.value])),
     };
-  });
-}
-
-function mixerOf(m: RawMixer, path: Path, problems: Problem[]): Mixer {
-  if (m.volume === undefined)
-    problems.push({ path, message: "the mixer needs its volume, such as 'volume: 42 m^3'" });
-  if ((m.ka === undefined) === (m.stage_efficiency === undefined))
-    problems.push({
-      path,
-      message: 'the mixer needs one of ka (such as 0.15 1/s) and stage_efficiency (such as 94 %)',
-    });
-  const ka =
-    m.ka === undefined ? null : 'fixed' in m.ka || !('kind' in m.ka) ? m.ka : { value: m.ka, fixed: false };
-  return {
-    volume: m.volume?.value ?? Number.NaN,
-    continuity: m.continuity ?? 'aqueous',
-    side: m.side ?? 'aqueous',
-    transfer: ka
-      ? {
-          given: 'ka',
-          ka: (ka.value as { value: number }).value,
-          fixed: (ka as { fixed?: boolean }).fixed ?? false,
-        }
-      : { given: 'efficiency', efficiency: m.stage_efficiency?.value ?? Number.NaN },
-  };
-}
-
-function settlerOf(q: RawSettler, path: Path, problems: Problem[]): Settler {
-  const layer = (phase: Phase): number => {
-    const volume = q[`${phase}_volume`]?.value;
-    const depth = q[`${phase}_depth`]?.value;
-    if (volume !== undefined && depth === undefined) return volume;
-    if (volume === undefined && depth !== undefined && q.area) return depth * q.area.value;
-    problems.push({
-      path,
-      message: `the settler needs its ${phase} layer, either as area and ${phase}_depth or as ${phase}_volume`,
-    });
-    return Number.NaN;
-  };
-  return {
-    aqueous: layer('aqueous'),
-    organic: layer('organic'),
-    parts: q.tanks_in_series ?? 1,
-    area: q.area?.value ?? null,
-  };
-}
-
-function initialOf(
-  raw: RawTrain['initial'],
-  basis: Basis,
-  speciesInOrganic: (given: Readonly<Record<string, unknown>>, path: Path) => void,
-  path: Path,
-  problems: Problem[],
-): Initial {
-  const of = (phase: Phase): 'as entering' | number[] | null => {
-    const given = raw?.[phase];
-    if (given === undefined || given === 'as entering') return given ?? null;
-    if (phase === 'organic') speciesInOrganic(given, [...path, phase]);
-    return content(given, phase, basis, [...path, phase], problems);
-  };
-  return { aqueous: of('aqueous') ?? 'barren', organic: of('organic') ?? 'as entering' };
-}
-
-function readLimit(
-  raw: NonNullable<RawScenario['limits']>[number],
-  path: Path,
-  outline: Outline,
-  basis: Basis,
-  problems: Problem[],
-): Limit | null {
-  const target = outline.limitable.get(raw.keep);
-  if (!target) return null;
-  const sides = (['below', 'above'] as const).filter((s) => raw[s] !== undefined);
-  if (sides.length !== 1) {
-    problems.push({
-      path,
-      message: `expected one of below and above, got ${sides.length === 0 ? 'none' : 'both'}`,
-    });
-    return null;
+    for (const name of Object.keys(this.basis.molarMasses))
+      if (!components.includes(name))
+        problems.push({
+          path: ['molar_masses', name],
+          message: `unknown solute or species ${show(name)}${hint(name, components)}`,
+          atKey: true,
+        });
   }
-  const q =
-    target.what === 'volume'
-      ? quantity(raw[sides[0]], 'a volume')
-      : quantity(raw[sides[0]], ...kindsOf(target));
-  const at = [...path, sides[0]];
-  if ('wrong' in q) {
-    problems.push({ path: at, message: q.wrong });
-    return null;
-  }
-  if (q.value < 0) problems.push({ path: at, message: 'must not be negative' });
-  const dot = raw.keep.indexOf('.');
-  return {
-    stream: raw.keep.slice(0, dot),
-    quantity: raw.keep.slice(dot + 1),
-    side: sides[0],
-    value: target.what === 'volume' ? q.value : inTarget(q, target, basis, at, problems),
-  };
-}
 
-function checkSize(s: Scenario, problems: Problem[]): void {
-  const records = s.horizon / s.recordEvery;
-  const perStage = (t: Train): number => t.stages.reduce((n, q) => n + 1 + q.settler.parts, 0);
-  const places = s.trains.reduce((n, t) => n + perStage(t) * (2 * s.solutes.length + s.species.length), 0);
-  const path = ['record_every'];
-  if (records > MOST_RECORDS)
-    problems.push({
-      path,
-      message: `${records.toPrecision(3)} records are too many (at most ${MOST_RECORDS}); record less often or shorten the horizon`,
-    });
-  else if (places > MOST_PLACES)
-    problems.push({
-      path: ['trains'],
-      message: `${places} concentrations are too many (at most ${MOST_PLACES})`,
-    });
-  else if (records * places > MOST_VALUES)
-    problems.push({
-      path,
-      message: `${records.toPrecision(3)} records of ${places} concentrations are too many values; record less often`,
-    });
+  feed(name: string, f: RawScenario['feeds'][string]): Feed {
+    const path = ['feeds', name];
+    const c = this.#content(f, f.phase, path);
+    const flow = carrierFlow(f.flow, f.phase, c, this.basis, [...path, 'flow'], this.#problems);
+    return { name, phase: f.phase, flow, content: c };
+  }
+
+  tank(name: string, t: NonNullable<RawScenario['tanks']>[string]): Tank {
+    const path = ['tanks', name];
+    const c = this.#content(t, t.phase, path);
+    const volume = t.volume.value;
+    const filled = t.filled ?? { kind: 'a percentage', value: 1, text: '100 %' };
+    const held = filled.kind === 'a percentage' ? filled.value * volume : filled.value;
+    if (held > volume)
+      this.#problems.push({
+        path: [...path, 'filled'],
+        message: `a tank cannot hold more than its volume of ${t.volume.text}, got ${show(filled.text)}`,
+      });
+    const flow =
+      t.flow === undefined
+        ? null
+        : carrierFlow(t.flow, t.phase, c, this.basis, [...path, 'flow'], this.#problems);
+    return { name, phase: t.phase, from: t.from, to: t.to, volume, held, flow, content: c };
+  }
+
+  train(name: string, t: RawScenario['trains'][string]): Train {
+    const path = ['trains', name];
+    const equilibrium: (Law | null)[] = this.solutes.map(() => null);
+    for (const [solute, law] of Object.entries(t.equilibrium ?? {})) {
+      const at = [...path, 'equilibrium', solute];
+      const i = this.solutes.indexOf(solute);
+      if (i < 0) {
+        const message = `unknown solute ${show(solute)}${hint(solute, this.solutes)}`;
+        this.#problems.push({ path: at, message, atKey: true });
+        continue;
+      }
+      equilibrium[i] = readLaw(law, solute, this.#lawContext(), at, this.#problems);
+      if ('releases' in law) this.releases.add(i, law.releases, [...at, 'releases'], this.#problems);
+    }
+    return {
+      name,
+      aqueous: t.aqueous,
+      organic: t.organic,
+      stages: stagesOf(t, path, this.#problems),
+      equilibrium,
+      initial: this.#initial(t.initial, [...path, 'initial']),
+    };
+  }
+
+  #lawContext(): Parameters<typeof readLaw>[2] {
+    return { solutes: this.solutes, species: this.species, basis: this.basis, folder: this.#folder };
+  }
+
+  #initial(raw: RawScenario['trains'][string]['initial'], path: Path): Initial {
+    const of = (phase: Phase): 'as entering' | number[] | null => {
+      const given = raw?.[phase];
+      if (given === undefined || given === 'as entering') return given ?? null;
+      return this.#content(given, phase, [...path, phase]);
+    };
+    return { aqueous: of('aqueous') ?? 'barren', organic: of('organic') ?? 'as entering' };
+  }
+
+  #content(given: Readonly<Record<string, unknown>>, phase: Phase, path: Path): number[] {
+    if (phase === 'organic')
+      for (const s of this.species)
+        if (given[s] !== undefined)
+          this.#problems.push({
+            path: [...path, s],
+            message: `the species '${s}' stays in the aqueous; an organic has none`,
+            atKey: true,
+          });
+    return content(given, phase, this.basis, path, this.#problems);
+  }
 }

@@ -1,106 +1,156 @@
-import type { Basis } from './content.ts';
-import { carrierFlow, concentration } from './content.ts';
+import { type Basis, carrierFlow, concentration, contentKinds } from './content.ts';
 import { BadData, columnIndex, elapsed, headerUnit, numbers, readTable } from './csv.ts';
+import type { Figure } from './fields.ts';
+import { guess } from './nearest.ts';
 import type { Outline, Target } from './outline.ts';
 import type { Problem } from './refusal.ts';
 import type { Change, Path } from './scenario.ts';
 import type { RawScenario } from './schema.ts';
-import { type Kind, type Quantity, quantity, show } from './units.ts';
+import { show } from './show.ts';
+import { type Kind, type Quantity, quantity } from './units.ts';
 
 type RawChange = NonNullable<RawScenario['upsets']>[number];
 
-const flowKinds: Kind[] = ['a flow by volume', 'a flow by mass'];
-const contentKinds: Kind[] = ['a concentration', 'a molar concentration', 'a mass ratio', 'a mass fraction'];
-
-/** What a target is measured in. */
-export const kindsOf = (t: Target): Kind[] => (t.what === 'flow' ? flowKinds : contentKinds);
-
-/** A figure for a target, in SI. */
-export function inTarget(q: Quantity, t: Target, basis: Basis, path: Path, problems: Problem[]): number {
-  if (t.what === 'flow') return carrierFlow(q, t.phase, [], basis, path, problems);
-  return concentration(q, t.component as string, t.phase, basis, path, problems);
+/** What a change is judged against. */
+export interface Setting {
+  readonly path: Path;
+  readonly outline: Outline;
+  readonly basis: Basis;
+  /** kg/m³ by feed or tank at time zero. */
+  readonly contents: ReadonlyMap<string, readonly number[]>;
+  readonly horizon: Figure;
+  readonly folder: string;
 }
 
 /** One change of an input: exactly one of to, by, follow. Complains in place; null where it cannot be used. */
-export function readChange(
-  raw: RawChange,
-  path: Path,
-  outline: Outline,
-  basis: Basis,
-  folder: string,
-  problems: Problem[],
-): Change | null {
-  const complain = (message: string, ...at: string[]): null => {
-    problems.push({ path: [...path, ...at], message });
-    return null;
-  };
-  const target = outline.changeable.get(raw.change);
-  // An unknown quantity is the outline's complaint.
+export function readChange(raw: RawChange, setting: Setting, problems: Problem[]): Change | null {
+  const target = setting.outline.changeable.get(raw.change);
+  // An unknown quantity is complained about with the paths.
   if (!target) return null;
+  const reader = new ChangeReader(raw, target, setting, problems);
+  reader.checkTimes();
   const given = (['to', 'by', 'follow'] as const).filter((k) => raw[k] !== undefined);
   if (given.length !== 1)
-    return complain(`expected exactly one of to, by, follow; got ${given.join(' and ') || 'none'}`);
-  if (raw.at.value < 0) return complain('must not be negative', 'at');
-  const base = {
-    at: raw.at.value,
-    quantity: raw.change,
-    over: raw.over?.value ?? 0,
-    lasts: raw.for?.value ?? null,
-  };
-  if (target.what === 'mixer') {
-    if (raw.to !== 'stopped' && raw.to !== 'running')
-      return complain(
-        `a mixer is set to 'stopped' or 'running', got ${show(raw.to ?? raw.by ?? raw.follow)}`,
-        given[0],
-      );
-    const words = `${raw.change} ${raw.to}`;
-    return { ...base, how: { to: raw.to === 'running' ? 1 : 0 }, words };
+    return reader.complain(`expected exactly one of to, by, follow; got ${given.join(' and ') || 'none'}`);
+  const read = target.what === 'mixer' ? reader.mixer(given[0]) : reader[given[0]]();
+  return read && { ...reader.frame(), ...read };
+}
+
+type Read = Pick<Change, 'how' | 'words'> | null;
+
+class ChangeReader {
+  readonly #raw: RawChange;
+  readonly #target: Target;
+  readonly #s: Setting;
+  readonly #problems: Problem[];
+
+  constructor(raw: RawChange, target: Target, setting: Setting, problems: Problem[]) {
+    this.#raw = raw;
+    this.#target = target;
+    this.#s = setting;
+    this.#problems = problems;
   }
-  if (raw.to !== undefined) {
-    const q = quantity(raw.to, ...kindsOf(target));
-    if ('wrong' in q) return complain(q.wrong, 'to');
-    if (q.value < 0) return complain('must not be negative', 'to');
-    const to = inTarget(q, target, basis, [...path, 'to'], problems);
-    return { ...base, how: { to }, words: `${raw.change} to ${raw.to}` };
+
+  complain(message: string, ...at: string[]): null {
+    this.#problems.push({ path: [...this.#s.path, ...at], message });
+    return null;
   }
-  if (raw.by !== undefined) {
-    if (typeof raw.by === 'number')
-      return complain(
-        `a change by ${raw.by} can be read in two ways: write '${raw.by} %' or give a unit, such as '${raw.by} ${target.what === 'flow' ? 'm^3/h' : 'g/L'}'`,
+
+  frame(): Omit<Change, 'how' | 'words'> {
+    const { at, change, over } = this.#raw;
+    return {
+      at: at.value,
+      quantity: change,
+      over: over?.value ?? 0,
+      lasts: this.#raw.for?.value ?? null,
+    };
+  }
+
+  checkTimes(): void {
+    const { at, over } = this.#raw;
+    const lasts = this.#raw.for;
+    const { horizon } = this.#s;
+    if (at.value >= horizon.value)
+      this.complain(`begins at ${at.text}, but the run ends at ${horizon.text}`, 'at');
+    if (over && lasts && lasts.value < over.value)
+      this.complain(`lasts ${lasts.text}, less than its ramp over ${over.text}`, 'for');
+  }
+
+  mixer(given: 'to' | 'by' | 'follow'): Read {
+    const { change } = this.#raw;
+    const value = this.#raw[given];
+    const words = ['stopped', 'running'];
+    if (given !== 'to' || !words.includes(String(value))) {
+      const near = typeof value === 'string' ? guess(value, words) : '';
+      return this.complain(`a mixer is set to 'stopped' or 'running', got ${show(value)}${near}`, given);
+    }
+    return { how: { to: value === 'running' ? 1 : 0 }, words: `${change} ${value}` };
+  }
+
+  to(): Read {
+    const { change, to } = this.#raw;
+    const q = quantity(to, ...this.#kinds());
+    if ('wrong' in q) return this.complain(q.wrong, 'to');
+    if (q.value < 0) return this.complain(`must not be negative, got ${show(to)}`, 'to');
+    return { how: { to: this.#inside(q, 'to') }, words: `${change} to ${to}` };
+  }
+
+  by(): Read {
+    const { change, by } = this.#raw;
+    const bare = String(by).trim();
+    if (/^[+-]?\d*\.?\d+$/.test(bare)) {
+      const unit = this.#target.what === 'flow' ? 'm^3/h' : 'g/L';
+      const message = `a change by ${bare} can be read in two ways: write '${bare} %' or give a unit, such as '${bare} ${unit}'`;
+      return this.complain(message, 'by');
+    }
+    const q = quantity(by, 'a percentage', ...this.#kinds());
+    if ('wrong' in q) return this.complain(q.wrong, 'by');
+    const words = `${change} ${by}`;
+    if (q.kind === 'a percentage') return { how: { by: q.value, relative: true }, words };
+    if (q.kind === 'a mass fraction')
+      return this.complain(
+        `what a mass fraction adds depends on where it starts; use g/L or kg/kg, or state the new value with to, got ${show(by)}`,
         'by',
       );
-    const q = quantity(raw.by, 'a percentage', ...kindsOf(target));
-    if ('wrong' in q) return complain(q.wrong, 'by');
-    const words = `${raw.change} ${raw.by}`;
-    if (q.kind === 'a percentage') return { ...base, how: { by: q.value, relative: true }, words };
-    return {
-      ...base,
-      how: { by: inTarget(q, target, basis, [...path, 'by'], problems), relative: false },
-      words,
-    };
+    return { how: { by: this.#inside(q, 'by'), relative: false }, words };
   }
-  const { file, column, time } = raw.follow as NonNullable<RawChange['follow']>;
-  try {
-    const t = readTable(folder, file);
-    const values = columnIndex(t, column);
-    const { kind, factor } = headerUnit(t, values, ...kindsOf(target));
-    const times = elapsed(t, time === undefined ? 0 : columnIndex(t, time));
-    const list = numbers(t, values);
-    const low = list.findIndex((v) => v < 0);
-    if (low >= 0) return complain(`${file}:${t.rows[low].line}: ${show(list[low])} is negative`, 'follow');
-    const at = [...path, 'follow', 'column'];
-    return {
-      ...base,
-      how: {
-        follow: {
-          times: times.map((v) => v + base.at),
-          values: list.map((v) => inTarget({ kind, value: v * factor }, target, basis, at, problems)),
-        },
-      },
-      words: `${raw.change} follows ${file}`,
-    };
-  } catch (e) {
-    if (e instanceof BadData) return complain(e.message, 'follow');
-    throw e;
+
+  follow(): Read {
+    const { change } = this.#raw;
+    const { file, column, time } = this.#raw.follow as NonNullable<RawChange['follow']>;
+    try {
+      const t = readTable(this.#s.folder, file);
+      const at = columnIndex(t, column);
+      const { kind, factor } = headerUnit(t, at, ...this.#kinds());
+      const times = elapsed(t, time === undefined ? 0 : columnIndex(t, time));
+      const list = numbers(t, at);
+      if (list.length < 2)
+        throw new BadData(`${t.file}:${t.rows[0].line}: the only row; two or more make a course`);
+      const low = list.findIndex((v) => v < 0);
+      if (low >= 0)
+        throw new BadData(`${t.file}:${t.rows[low].line}: must not be negative, got ${list[low]}`);
+      const values = list.map((v) => this.#inside({ kind, value: v * factor }, 'follow', 'column'));
+      const start = this.#raw.at.value;
+      const how = { follow: { times: times.map((v) => v + start), values } };
+      return { how, words: `${change} follows ${file}` };
+    } catch (e) {
+      if (e instanceof BadData) return this.complain(e.message, 'follow');
+      throw e;
+    }
+  }
+
+  #kinds(): Kind[] {
+    return this.#target.what === 'flow' ? ['a flow by volume', 'a flow by mass'] : contentKinds;
+  }
+
+  /** In SI; beside it in the stream stands what the feed or tank holds at time zero. */
+  #inside(q: Quantity, ...at: string[]): number {
+    const { basis, path, contents } = this.#s;
+    const { phase, component } = this.#target;
+    const beside = contents.get(this.#raw.change.slice(0, this.#raw.change.lastIndexOf('.'))) ?? [];
+    if (component === undefined)
+      return carrierFlow(q, phase, beside, basis, [...path, ...at], this.#problems);
+    const rest = beside.reduce((s, c, k) => (basis.components[k] === component ? s : s + c), 0);
+    return concentration(q, component, phase, basis, [...path, ...at], this.#problems, rest);
   }
 }

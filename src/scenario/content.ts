@@ -1,6 +1,6 @@
 import type { Problem } from './refusal.ts';
 import type { Path, Phase } from './scenario.ts';
-import type { Quantity } from './units.ts';
+import type { Kind, Quantity } from './units.ts';
 
 /** What conversions between bases need to know. */
 export interface Basis {
@@ -11,11 +11,21 @@ export interface Basis {
   readonly molarMasses: Readonly<Record<string, number>>;
 }
 
+/** In which a concentration can be stated. */
+export const contentKinds: Kind[] = [
+  'a concentration',
+  'a molar concentration',
+  'a mass ratio',
+  'a mass fraction',
+];
+
+const sum = (list: readonly number[]): number => list.reduce((s, v) => s + v, 0);
+
 /**
  * Concentrations by name → kg/m³ of carrier for every component.
  *
- * Mass ratios X are per carrier: c = X·ρ. Mass fractions are of the whole stream, so X_i = w_i/(1 − Σw) with the sum
- * over all fractions given. Molar concentrations take a molar mass.
+ * Mass ratios X are per carrier: c = X·ρ. Mass fractions are of the whole stream: with T = 1 + ΣX kg of stream per kg
+ * of carrier, X_i = w_i·T for those given as fractions, so T = (1 + ΣX of the others)/(1 − Σw).
  */
 export function content(
   given: Readonly<Record<string, unknown>>,
@@ -25,24 +35,25 @@ export function content(
   problems: Problem[],
 ): number[] {
   const quantities = basis.components.map((name) => given[name] as Quantity | undefined);
-  const fractions = quantities.reduce((sum, q) => sum + (q?.kind === 'a mass fraction' ? q.value : 0), 0);
+  const isFraction = (q: Quantity | undefined): q is Quantity => q?.kind === 'a mass fraction';
+  const fractions = sum(quantities.filter(isFraction).map((q) => q.value));
   if (fractions >= 1) problems.push({ path, message: 'the mass fractions leave no carrier' });
-  return quantities.map((q, k) =>
-    q === undefined
+  const at = (k: number): Path => [...path, basis.components[k]];
+  const stated = quantities.map((q, k) =>
+    q === undefined || isFraction(q)
       ? 0
-      : concentration(
-          q,
-          basis.components[k],
-          phase,
-          basis,
-          [...path, basis.components[k]],
-          problems,
-          fractions,
-        ),
+      : concentration(q, basis.components[k], phase, basis, at(k), problems),
+  );
+  const rest = sum(stated);
+  return quantities.map((q, k) =>
+    isFraction(q) ? ofWhole(q.value, 1 - fractions, rest, phase, basis, at(k), problems) : stated[k],
   );
 }
 
-/** One concentration in kg/m³; complains where the molar mass or the density that it needs is not stated. */
+/**
+ * One concentration in kg/m³ of carrier; complains where the molar mass or the density that it needs is not stated.
+ * A mass fraction needs to know what else is dissolved: `rest`, kg/m³.
+ */
 export function concentration(
   q: Quantity,
   name: string,
@@ -50,24 +61,43 @@ export function concentration(
   basis: Basis,
   path: Path,
   problems: Problem[],
-  fractions = q.kind === 'a mass fraction' ? q.value : 0,
+  rest = 0,
 ): number {
-  if (q.kind === 'a concentration') return q.value;
-  if (q.kind === 'a molar concentration') {
-    const mass = basis.molarMasses[name];
-    if (mass !== undefined) return q.value * mass;
-    problems.push({
-      path,
-      message: `a molar concentration needs molar_masses.${name}, such as '63.55 g/mol'`,
-    });
-    return Number.NaN;
+  switch (q.kind) {
+    case 'a molar concentration': {
+      const mass = basis.molarMasses[name];
+      if (mass !== undefined) return q.value * mass;
+      const message = `a molar concentration needs molar_masses.${name}, such as '63.55 g/mol'`;
+      problems.push({ path, message });
+      return Number.NaN;
+    }
+    case 'a mass ratio':
+      return q.value * density(q.kind, phase, basis, path, problems);
+    case 'a mass fraction':
+      if (q.value >= 1) problems.push({ path, message: 'the mass fraction leaves no carrier' });
+      return ofWhole(q.value, 1 - q.value, rest, phase, basis, path, problems);
+    default:
+      return q.value;
   }
-  const density = basis.densities[phase];
-  if (density === undefined) {
-    problems.push({ path, message: `${q.kind} needs densities.${phase}, such as '1000 kg/m^3'` });
-    return Number.NaN;
-  }
-  return density * (q.kind === 'a mass ratio' ? q.value : q.value / (1 - fractions));
+}
+
+function ofWhole(
+  w: number,
+  carrierShare: number,
+  rest: number,
+  phase: Phase,
+  basis: Basis,
+  path: Path,
+  problems: Problem[],
+): number {
+  return (w * (density('a mass fraction', phase, basis, path, problems) + rest)) / carrierShare;
+}
+
+function density(what: Kind, phase: Phase, basis: Basis, path: Path, problems: Problem[]): number {
+  const stated = basis.densities[phase];
+  if (stated !== undefined) return stated;
+  problems.push({ path, message: `${what} needs densities.${phase}, such as '1000 kg/m^3'` });
+  return Number.NaN;
 }
 
 /** Carrier flow in m³/s; a mass flow is of the whole stream: M = Q·(ρ + Σc). */
@@ -80,8 +110,5 @@ export function carrierFlow(
   problems: Problem[],
 ): number {
   if (q.kind === 'a flow by volume') return q.value;
-  const density = basis.densities[phase];
-  if (density !== undefined) return q.value / (density + contents.reduce((s, c) => s + c, 0));
-  problems.push({ path, message: `a flow by mass needs densities.${phase}, such as '1000 kg/m^3'` });
-  return Number.NaN;
+  return q.value / (density('a flow by mass', phase, basis, path, problems) + sum(contents));
 }

@@ -2,15 +2,18 @@ import { readFileSync, statSync } from 'node:fs';
 import { isAbsolute, join } from 'node:path';
 import Papa from 'papaparse';
 import { hint } from './nearest.ts';
-import { type Kind, quantity, show } from './units.ts';
+import { printable, shorten, show } from './show.ts';
+import { type Kind, MOST, quantity } from './units.ts';
 
 /** Bytes of a data file; a year by the minute has about 20 MB. */
 const LARGEST = 200e6;
+const SEPARATORS = [',', ';', '\t'];
+const NUMBER = /^[+-]?(\d+\.?\d*|\.\d+)([eE][+-]?\d+)?$/;
 
 export interface Table {
   readonly file: string;
   readonly header: readonly string[];
-  /** Cells as text, and the line of the file on which each row stands. */
+  /** Cells as text, and the line of the file on which each row begins. */
   readonly rows: readonly { readonly cells: readonly string[]; readonly line: number }[];
 }
 
@@ -20,41 +23,70 @@ export class BadData extends Error {}
 /**
  * Reads a CSV file (comma, semicolon or tab; header in the first line).
  *
- * @throws BadData where it is missing, too large, has no rows or a row of another length.
+ * @throws BadData where it is missing, too large, not text, has no rows or a row of another length.
  */
 export function readTable(folder: string, file: string): Table {
-  const path = isAbsolute(file) ? file : join(folder, file);
-  let text: string;
-  try {
-    const about = statSync(path);
-    if (!about.isFile()) throw new BadData(`${file} is not a file`);
-    if (about.size > LARGEST)
-      throw new BadData(`${file} has ${(about.size / 1e6).toFixed(0)} MB, more than ${LARGEST / 1e6}`);
-    text = readFileSync(path, 'utf8');
-  } catch (e) {
-    if (e instanceof BadData) throw e;
-    throw new BadData(`cannot read ${file} (looked for it beside the scenario)`);
-  }
-  const parsed = Papa.parse<string[]>(text.replace(/^\uFEFF/, ''), { skipEmptyLines: false });
+  const name = printable(shorten(file));
+  const text = readText(folder, file, name).replace(/\r\n?/g, '\n').normalize('NFC');
+  const garbled = /[\0\uFFFD]/.exec(text);
+  if (garbled)
+    throw new BadData(
+      `${name}:${text.slice(0, garbled.index).split('\n').length}: is not text in UTF-8; save it as CSV`,
+    );
+  const parsed = Papa.parse<string[]>(text, { delimiter: separator(text), newline: '\n' });
+  let next = 1;
+  const lines = parsed.data.map((cells) => {
+    const line = next;
+    // A cell in quotes may run over several lines.
+    next += 1 + cells.reduce((n, c) => n + c.split('\n').length - 1, 0);
+    return { cells, line };
+  });
   const quote = parsed.errors.find((e) => e.type === 'Quotes');
-  if (quote) throw new BadData(`${file}:${(quote.row ?? 0) + 1}: ${quote.message.toLowerCase()}`);
-  const lines = parsed.data
-    .map((cells, i) => ({ cells, line: i + 1 }))
-    .filter((r) => r.cells.some((c) => c.trim() !== ''));
-  const header = lines[0]?.cells.map((c) => c.trim());
-  if (!header || lines.length < 2) throw new BadData(`${file} holds no rows below its header`);
-  for (const r of lines)
+  if (quote)
+    throw new BadData(
+      `${name}:${lines[quote.row ?? 0]?.line ?? next}: a quotation mark is not closed, or stands within a cell`,
+    );
+  const filled = lines.filter((r) => r.cells.some((c) => c.trim() !== ''));
+  const header = filled[0]?.cells.map((c) => c.trim());
+  if (!header || filled.length < 2) throw new BadData(`${name}:1: no rows below the header`);
+  for (const r of filled)
     if (r.cells.length !== header.length)
       throw new BadData(
-        `${file}:${r.line}: expected ${header.length} cells as in the header, got ${r.cells.length}`,
+        `${name}:${r.line}: expected ${header.length} cells as in the header, got ${r.cells.length}`,
       );
-  return { file, header, rows: lines.slice(1) };
+  return { file: name, header, rows: filled.slice(1) };
 }
 
-/** @throws BadData where no column has that header. */
+function readText(folder: string, file: string, name: string): string {
+  const path = isAbsolute(file) ? file : join(folder, file);
+  try {
+    const about = statSync(path);
+    if (!about.isFile()) throw new BadData(`${name} is not a file`);
+    if (about.size > LARGEST)
+      throw new BadData(`${name} has ${(about.size / 1e6).toFixed(0)} MB, more than ${LARGEST / 1e6}`);
+    return readFileSync(path, 'utf8').replace(/^\uFEFF/, '');
+  } catch (e) {
+    if (e instanceof BadData) throw e;
+    throw new BadData(`cannot read ${name} (looked for it beside the scenario)`);
+  }
+}
+
+/** The separator that the header uses most. */
+function separator(text: string): string {
+  const header = text
+    .trimStart()
+    .split('\n', 1)[0]
+    .replace(/"[^"]*"/g, '');
+  const count = (c: string): number => header.split(c).length;
+  return SEPARATORS.reduce((best, c) => (count(c) > count(best) ? c : best));
+}
+
+/** @throws BadData where no column has that header, or two have. */
 export function columnIndex(t: Table, name: string): number {
   const at = t.header.indexOf(name.trim());
-  if (at < 0) throw new BadData(`${t.file}:1: no column '${name}'${hint(name, t.header)}`);
+  if (at < 0) throw new BadData(`${t.file}:1: no column ${show(name)}${hint(name, t.header)}`);
+  if (t.header.lastIndexOf(name.trim()) > at)
+    throw new BadData(`${t.file}:1: two columns are called ${show(name)}`);
   return at;
 }
 
@@ -63,13 +95,19 @@ export function numbers(t: Table, column: number): number[] {
   return t.rows.map(({ cells, line }) => {
     const cell = cells[column].trim();
     const value = Number(cell);
-    if (cell === '' || !Number.isFinite(value))
-      throw new BadData(
-        `${t.file}:${line}: expected a number in column '${t.header[column]}', got ${show(cell)}`,
-      );
-    return value;
+    if (NUMBER.test(cell) && Math.abs(value) <= MOST) return value;
+    const comma = /^[+-]?\d+,\d+$/.test(cell) ? '; use a decimal point, not a comma' : '';
+    throw new BadData(
+      `${t.file}:${line}: expected a number in column ${show(t.header[column])}, got ${show(cell)}${comma}`,
+    );
   });
 }
+
+const HEADERS: Partial<Record<Kind, string>> = {
+  'a time': 'time [h]',
+  'a flow by volume': 'feed [m^3/h]',
+  'a concentration': 'Cu [g/L]',
+};
 
 /** The unit that a header ends in, `Cu g/L` or `Cu [g/L]`, and the factor and kind that it stands for. */
 export function headerUnit(t: Table, column: number, ...allowed: Kind[]): { kind: Kind; factor: number } {
@@ -81,8 +119,9 @@ export function headerUnit(t: Table, column: number, ...allowed: Kind[]): { kind
     const q = quantity(`1 ${unit}`, ...allowed);
     if (!('wrong' in q) && q.kind !== 'a plain number') return { kind: q.kind, factor: q.value };
   }
+  const example = HEADERS[allowed[0]] ?? HEADERS['a concentration'];
   throw new BadData(
-    `${t.file}:1: the header '${header}' must end in a unit for ${allowed[0]}, such as 'Cu g/L'`,
+    `${t.file}:1: the header ${show(header)} must end in a unit for ${allowed[0]}, such as '${example}'`,
   );
 }
 
@@ -103,14 +142,17 @@ function inUnits(t: Table, column: number): number[] {
   return numbers(t, column).map((v) => v * factor);
 }
 
+const STAMP = /^(\d{4}-\d{2}-\d{2})(?:[T ](\d{2}:\d{2}(?::\d{2}(?:\.\d+)?)?)(Z|[+-]\d{2}:?\d{2})?)?$/i;
+
+/** Stamps without a zone are taken as they stand: only differences count, and no plant clock is known here. */
 function fromStamps(t: Table, stamps: readonly string[]): number[] {
   const ms = stamps.map((s, i) => {
-    const value = Date.parse(/[zZ]|[+-]\d{2}:?\d{2}$/.test(s) ? s : `${s.replace(' ', 'T')}Z`);
-    if (!Number.isFinite(value))
-      throw new BadData(
-        `${t.file}:${t.rows[i].line}: expected a time stamp such as 2026-03-01T06:00, got ${show(s)}`,
-      );
-    return value;
+    const [, day, time = '00:00', zone = 'Z'] = STAMP.exec(s) ?? [];
+    const value = Date.parse(`${day}T${time}${zone}`);
+    if (Number.isFinite(value)) return value;
+    throw new BadData(
+      `${t.file}:${t.rows[i].line}: expected a time stamp such as 2026-03-01T06:00, got ${show(s)}`,
+    );
   });
   return ms.map((v) => (v - ms[0]) / 1e3);
 }

@@ -1,15 +1,15 @@
 import { type Basis, concentration } from './content.ts';
-import { BadData, columnIndex, headerUnit, numbers, readTable } from './csv.ts';
 import { parseFormula } from './formula.ts';
-import { formulaName } from './names.ts';
+import { formulaName, isBuiltIn } from './names.ts';
 import { hint } from './nearest.ts';
 import type { Problem } from './refusal.ts';
-import type { Law, Path, Phase } from './scenario.ts';
+import type { Law, Path } from './scenario.ts';
 import type { RawScenario } from './schema.ts';
-import { quantity } from './units.ts';
+import { show } from './show.ts';
+import { readTableLaw } from './table-law.ts';
 
 type RawTrain = RawScenario['trains'][string];
-type RawLaw = NonNullable<RawTrain['equilibrium']>[string];
+export type RawLaw = NonNullable<RawTrain['equilibrium']>[string];
 
 export interface LawContext {
   readonly solutes: readonly string[];
@@ -26,154 +26,96 @@ export function readLaw(
   path: Path,
   problems: Problem[],
 ): Law | null {
-  const complain = (message: string, ...at: string[]): null => {
-    problems.push({ path: [...path, ...at], message });
-    return null;
-  };
   switch (raw.law) {
     case 'ratio':
       return { law: 'ratio', ratio: raw.ratio.value };
     case 'langmuir': {
-      const capacity = concentration(
-        raw.capacity,
-        solute,
-        'organic',
-        c.basis,
-        [...path, 'capacity'],
-        problems,
-      );
+      const at = [...path, 'capacity'];
+      const capacity = concentration(raw.capacity, solute, 'organic', c.basis, at, problems);
       return { law: 'langmuir', capacity, affinity: raw.affinity.value };
     }
     case 'freundlich':
       return { law: 'freundlich', coefficient: raw.coefficient.value, exponent: raw.exponent.value };
     case 'table':
       return readTableLaw(raw, solute, c, path, problems);
-    case 'exchange': {
-      const acid =
-        raw.acid ?? (c.species.includes('acid') ? 'acid' : c.species.length === 1 ? c.species[0] : undefined);
-      if (acid === undefined)
-        return complain(
-          "the law 'exchange' needs a species that competes: declare species: [acid] and give the feeds their acid",
-        );
-      if (!c.species.includes(acid))
-        return complain(`unknown species '${acid}'${hint(acid, c.species)}`, 'acid');
-      return {
-        law: 'exchange',
-        constant: raw.constant.value,
-        extractant: raw.extractant.value,
-        perSolute: raw.per_solute?.value ?? 1,
-        p: raw.p?.value ?? 2,
-        q: raw.q?.value ?? 2,
-        acid: c.species.indexOf(acid),
-      };
-    }
-    case 'formula': {
-      const constants = raw.constants ?? {};
-      const names = [
-        'c_a',
-        ...[...c.solutes.filter((s) => s !== solute), ...c.species].map(formulaName),
-        ...Object.keys(constants),
-      ];
-      const parsed = parseFormula(raw.organic, names);
-      if ('wrong' in parsed) return complain(parsed.wrong, 'organic');
-      for (const [name, value] of Object.entries(constants))
-        if (!Number.isFinite(value)) return complain('must be a finite number', 'constants', name);
-      return { law: 'formula', organic: parsed.formula, constants };
-    }
+    case 'exchange':
+      return readExchange(raw, c, path, problems);
+    case 'formula':
+      return readFormula(raw, solute, c, path, problems);
   }
 }
 
-function readTableLaw(
-  raw: RawLaw & { law: 'table' },
-  solute: string,
-  c: LawContext,
+function readExchange(
+  raw: RawLaw & { law: 'exchange' },
+  { species }: LawContext,
   path: Path,
   problems: Problem[],
 ): Law | null {
-  const column = (phase: Phase): number[] => {
-    const given = raw[phase];
-    const at = [...path, phase];
-    const convert = (factor: number, unit: string, v: number): number => {
-      const q = quantity(
-        `1 ${unit}`,
-        'a concentration',
-        'a molar concentration',
-        'a mass ratio',
-        'a mass fraction',
-      );
-      if ('wrong' in q) throw new BadData(q.wrong);
-      return concentration(
-        { kind: q.kind, value: v * factor * q.value },
-        solute,
-        phase,
-        c.basis,
-        at,
-        problems,
-      );
-    };
-    if (typeof given === 'string') {
-      if (raw.file === undefined)
-        throw new BadData(`expected a list of numbers, got '${given}'; name a CSV file with file:`);
-      const t = readTable(c.folder, raw.file);
-      const index = columnIndex(t, given);
-      const { kind, factor } = headerUnit(
-        t,
-        index,
-        'a concentration',
-        'a molar concentration',
-        'a mass ratio',
-        'a mass fraction',
-      );
-      return numbers(t, index).map((v) =>
-        concentration({ kind, value: v * factor }, solute, phase, c.basis, at, problems),
-      );
-    }
-    if (raw.unit === undefined) throw new BadData('the two columns need a unit: unit: g/L');
-    const unit = raw.unit;
-    return given.map((v) => convert(1, unit, v));
-  };
-  const columns: Partial<Record<Phase, number[]>> = {};
-  for (const phase of ['aqueous', 'organic'] as const) {
-    try {
-      columns[phase] = column(phase);
-    } catch (e) {
-      if (!(e instanceof BadData)) throw e;
-      problems.push({ path: [...path, phase], message: e.message });
-    }
-  }
-  const { aqueous, organic } = columns;
-  if (!aqueous || !organic || [...aqueous, ...organic].some(Number.isNaN)) return null;
-  if (aqueous.length !== organic.length) {
-    problems.push({
-      path: [...path, 'organic'],
-      message: `the columns differ in length: ${aqueous.length} aqueous, ${organic.length} organic`,
-    });
-    return null;
-  }
-  const withZero = aqueous[0] > 0 && organic[0] > 0;
-  const a = withZero ? [0, ...aqueous] : aqueous;
-  const o = withZero ? [0, ...organic] : organic;
-  if (a[0] !== 0 || o[0] !== 0) {
-    problems.push({
-      path: [...path, 'aqueous'],
-      message: 'an isotherm starts at 0, 0 (it is added when left out)',
-    });
-    return null;
-  }
-  if (a.length < 2) {
-    problems.push({
-      path: [...path, 'aqueous'],
-      message: 'an isotherm needs at least one point besides 0, 0',
-    });
-    return null;
-  }
-  for (let i = 1; i < a.length; i++)
-    if (!(a[i] > a[i - 1] && o[i] > o[i - 1])) {
+  const usual = species.includes('acid') || species.length !== 1 ? 'acid' : species[0];
+  const acid = species.indexOf(raw.acid ?? usual);
+  if (acid < 0) {
+    if (raw.acid !== undefined)
       problems.push({
-        path,
-        message: `the isotherm must rise from point to point in both columns; point ${i + (withZero ? 0 : 1)} (${a[i]}, ${o[i]} g/L) does not lie above (${a[i - 1]}, ${o[i - 1]} g/L)`,
+        path: [...path, 'acid'],
+        message: `unknown species ${show(raw.acid)}${hint(raw.acid, species)}`,
       });
-      return null;
+    else {
+      const message =
+        species.length === 0 ? NO_SPECIES : `name the species that competes, such as acid: ${species[0]}`;
+      problems.push({ path, message });
     }
-  return { law: 'table', aqueous: a, organic: o };
+    return null;
+  }
+  return {
+    law: 'exchange',
+    constant: raw.constant.value,
+    extractant: raw.extractant.value,
+    perSolute: raw.per_solute?.value ?? 1,
+    p: raw.p?.value ?? 2,
+    q: raw.q?.value ?? 2,
+    acid,
+  };
+}
+
+const NO_SPECIES =
+  "the law 'exchange' needs a species that competes: declare species: [acid] and give the feeds their acid";
+
+function readFormula(
+  raw: RawLaw & { law: 'formula' },
+  solute: string,
+  { solutes, species }: LawContext,
+  path: Path,
+  problems: Problem[],
+): Law | null {
+  const before = problems.length;
+  const others = [...solutes.filter((s) => s !== solute), ...species].map(formulaName);
+  // Without a prototype: a name that every object answers to must not pass for a constant.
+  const constants: Record<string, number> = Object.assign(Object.create(null), raw.constants);
+  for (const name of Object.keys(constants)) {
+    const message = wrongConstant(name, others);
+    if (message !== null) problems.push({ path: [...path, 'constants', name], message, atKey: true });
+  }
+  const parsed = parseFormula(raw.organic, ['c_a', ...others, ...Object.keys(constants)]);
+  if ('wrong' in parsed) {
+    const own = formulaName(solute);
+    const self = parsed.unknown === own ? `; ${own} itself is called c_a` : '';
+    problems.push({ path: [...path, 'organic'], message: parsed.wrong + self });
+  } else {
+    const twice = parsed.names.find((n) => others.filter((o) => o === n).length > 1);
+    if (twice !== undefined)
+      problems.push({
+        path: [...path, 'organic'],
+        message: `'${twice}' can mean two of the dissolved components; rename one`,
+      });
+    if (problems.length === before) return { law: 'formula', organic: parsed.formula, constants };
+  }
+  return null;
+}
+
+function wrongConstant(name: string, others: readonly string[]): string | null {
+  if (!/^[\p{L}_][\p{L}\p{N}_]*$/u.test(name))
+    return `a constant is called by letters, digits and _, got ${show(name)}`;
+  if (name === 'c_a' || name === 'pi' || name === 'e' || others.includes(name) || isBuiltIn(name))
+    return `${show(name)} has another meaning in a formula; rename the constant`;
+  return null;
 }

@@ -1,9 +1,21 @@
+import { show } from './show.ts';
+
+/** Candidates that a message lists when none is near. */
+const FEW = 12;
+/** Letters of a word in which two changes would leave nothing of it. */
+const SHORT = 4;
+/** Letters beyond which a word is no slip of a known one. */
+const LONGEST = 200;
+
 /** The candidate most like `word`, or null where none is like it at all. Optimal string alignment distance. */
 export function nearest(word: string, candidates: readonly string[]): string | null {
+  if (word.length > LONGEST) return null;
   let best: string | null = null;
-  let least = Math.max(2, Math.floor(word.length * 0.4)) + 1;
+  let least = changes(word.length) + 1;
   for (const c of candidates) {
-    const d = distance(word.toLowerCase(), c.toLowerCase());
+    const [a, b] = [word.toLowerCase(), c.toLowerCase()];
+    const tooFar = Math.abs(a.length - b.length) >= least;
+    const d = isStart(a, b) ? 1 : tooFar ? least : distance(a, b);
     if (d < least) {
       least = d;
       best = c;
@@ -12,15 +24,28 @@ export function nearest(word: string, candidates: readonly string[]): string | n
   return best;
 }
 
-/** " (did you mean 'flow'?)" or, where nothing is near, the list of what is known while it is short. */
-export function hint(word: string, candidates: readonly string[]): string {
+/** Letters that may differ: of one letter nothing would be left but its case. */
+const changes = (length: number): number =>
+  length === 1 ? 0 : length <= SHORT ? 1 : Math.max(2, Math.floor(length * 0.4));
+
+/** A word cut short, or one that goes on. */
+const isStart = (a: string, b: string): boolean =>
+  Math.min(a.length, b.length) >= 3 && (a.startsWith(b) || b.startsWith(a));
+
+/** "; did you mean 'flow'?" or, where nothing is near, nothing. */
+export function guess(word: string, candidates: readonly string[]): string {
   const near = nearest(word, candidates);
-  if (near !== null) return `; did you mean '${near}'?`;
-  return candidates.length > 0 && candidates.length <= 12 ? `; known here: ${candidates.join(', ')}` : '';
+  return near === null ? '' : `; did you mean ${show(near)}?`;
+}
+
+/** The guess or, where nothing is near, what is known while that is a short list. */
+export function hint(word: string, candidates: readonly string[]): string {
+  const near = guess(word, candidates);
+  if (near !== '' || candidates.length === 0 || candidates.length > FEW) return near;
+  return `; known here: ${candidates.join(', ')}`;
 }
 
 function distance(a: string, b: string): number {
-  if (Math.abs(a.length - b.length) > 12) return 99;
   const rows = Array.from({ length: a.length + 1 }, (_, i) => [i]);
   for (let j = 1; j <= b.length; j++) rows[0][j] = j;
   for (let i = 1; i <= a.length; i++)

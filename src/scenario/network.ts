@@ -87,10 +87,13 @@ export function network(s: Joints): Network {
     }
   });
 
-  const known = [...makers.keys()];
+  // What is near a wrong name is a stream that lacks its other end.
+  const untaken = [...makers.keys()].filter((n) => !users.has(n));
+  const unmade = [...users.keys()].filter((n) => !makers.has(n));
   for (const [name, u] of users) {
     const m = makers.get(name);
-    if (!m) problems.push({ path: u.path, message: `nobody makes the stream '${name}'${hint(name, known)}` });
+    if (!m)
+      problems.push({ path: u.path, message: `nobody makes the stream '${name}'${hint(name, untaken)}` });
     else if (m.phase !== u.phase)
       problems.push({
         path: u.path,
@@ -99,30 +102,57 @@ export function network(s: Joints): Network {
   }
   for (const [name, m] of makers)
     if (m.maker.kind === 'feed' && !users.has(name))
-      problems.push({
-        path: m.path,
-        message: `nobody takes the feed '${name}'${hint(name, [...users.keys()])}`,
-      });
+      problems.push({ path: m.path, message: `nobody takes the feed '${name}'${hint(name, unmade)}` });
   if (problems.length > 0) throw new Refusal(problems);
 
   const streams = new Map<string, Stream>();
   for (const [name, m] of makers)
     streams.set(name, { name, phase: m.phase, maker: m.maker, user: users.get(name)?.user ?? null });
 
-  const flowSource = (name: string, seen: readonly string[] = []): Maker => {
-    const { maker, phase } = streams.get(name) as Stream;
-    if (seen.includes(name))
-      throw new Refusal([
-        {
-          path: makers.get(name)?.path ?? [],
-          message: `the ${phase} loop through '${name}' has no pump: give a tank in it a flow`,
-        },
-      ]);
-    if (maker.kind === 'feed') return maker;
-    if (maker.kind === 'train') return flowSource(s.trains[maker.index][phase].from, [...seen, name]);
-    const tank = s.tanks[maker.index];
-    return tank.flow === null ? flowSource(tank.from, [...seen, name]) : maker;
+  const sources = flowSources(s, streams);
+  for (const loop of sources.loops)
+    problems.push({
+      path: makers.get(loop[0])?.path ?? [],
+      message: `the ${streams.get(loop[0])?.phase} loop through '${loop[0]}' has no pump: give a tank in it a flow`,
+    });
+  if (problems.length > 0) throw new Refusal(problems);
+  return {
+    streams,
+    outlets: [...streams.values()].filter((q) => q.user === null),
+    flowSource: (name) => sources.of.get(name) as Maker,
   };
-  for (const name of streams.keys()) flowSource(name);
-  return { streams, outlets: [...streams.values()].filter((q) => q.user === null), flowSource };
+}
+
+/** Follows each stream upstream to the feed or pump that sets its flow, or around a loop in which nothing does. */
+function flowSources(
+  s: Joints,
+  streams: ReadonlyMap<string, Stream>,
+): { readonly of: ReadonlyMap<string, Maker>; readonly loops: readonly (readonly string[])[] } {
+  const of = new Map<string, Maker>();
+  const loops: string[][] = [];
+  const looping = new Set<string>();
+  for (const start of streams.keys()) {
+    const passed = new Set<string>();
+    let name = start;
+    let source: Maker | undefined;
+    while (source === undefined && !looping.has(name)) {
+      source = of.get(name);
+      if (source !== undefined) break;
+      if (passed.has(name)) {
+        const list = [...passed];
+        loops.push(list.slice(list.indexOf(name)));
+        break;
+      }
+      passed.add(name);
+      const { maker, phase } = streams.get(name) as Stream;
+      const passes = maker.kind === 'train' || (maker.kind === 'tank' && s.tanks[maker.index].flow === null);
+      if (!passes) source = maker;
+      else name = maker.kind === 'train' ? s.trains[maker.index][phase].from : s.tanks[maker.index].from;
+    }
+    for (const p of passed) {
+      if (source) of.set(p, source);
+      else looping.add(p);
+    }
+  }
+  return { of, loops };
 }

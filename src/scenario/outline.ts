@@ -28,6 +28,10 @@ export interface Outline {
     readonly aqueous: { readonly from: string; readonly to: string };
     readonly organic: { readonly from: string; readonly to: string };
   }[];
+  /** `stage 2` …: settings of single stages, as the trains have them. */
+  readonly stageKeys: readonly string[];
+  /** False where the lists of solutes or species make no sense: then keys and paths with their names cannot be judged. */
+  readonly named: boolean;
   /** False where something was too broken to be taken: then streams cannot be judged. */
   readonly whole: boolean;
   /** Inputs that upsets may change. */
@@ -36,9 +40,13 @@ export interface Outline {
   readonly limitable: ReadonlyMap<string, Target>;
 }
 
+/** The setting of a single stage. */
+export const STAGE = /^stage (\d+)$/;
+
 type Loose = Record<string, unknown>;
 
 const isObject = (v: unknown): v is Loose => typeof v === 'object' && v !== null && !Array.isArray(v);
+const isListOfNames = (v: unknown): boolean => Array.isArray(v) && v.every((n) => typeof n === 'string');
 const names = (v: unknown): string[] =>
   Array.isArray(v) ? v.filter((n): n is string => typeof n === 'string') : [];
 const isPhase = (v: unknown): v is Phase => v === 'aqueous' || v === 'organic';
@@ -47,7 +55,11 @@ export function outline(raw: unknown): Outline {
   const top = isObject(raw) ? raw : {};
   const solutes = names(top.solutes);
   const species = names(top.species);
-  let whole = true;
+  const named =
+    isListOfNames(top.solutes) &&
+    solutes.length > 0 &&
+    (top.species === undefined || isListOfNames(top.species));
+  let whole = top.feeds !== undefined && top.trains !== undefined;
   const entries = (v: unknown): [string, Loose][] => {
     if (v === undefined) return [];
     if (!isObject(v)) {
@@ -105,7 +117,21 @@ export function outline(raw: unknown): Outline {
     for (let j = 1; j <= Math.min(t.stages, 10_000); j++)
       changeable.set(`${t.name}.${j}.mixer`, { what: 'mixer', phase: 'aqueous' });
   }
-  return { solutes, species, feeds, tanks, trains, whole, changeable, limitable };
+  const stageKeys = entries(top.trains)
+    .flatMap(([, t]) => Object.keys(t))
+    .filter((k) => STAGE.test(k));
+  return {
+    solutes,
+    species,
+    feeds,
+    tanks,
+    trains,
+    stageKeys: [...new Set(stageKeys)],
+    named,
+    whole,
+    changeable,
+    limitable,
+  };
 }
 
 function arrow(v: unknown): { from: string; to: string } | null {

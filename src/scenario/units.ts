@@ -1,5 +1,7 @@
 import type { Unit } from 'mathjs';
 import bundle from 'mathjs/lib/browser/math.js';
+import { duration } from './duration.ts';
+import { show } from './show.ts';
 
 /*
  * One own instance of the units engine. Its browser bundle is a single file: it loads in a tenth of the time that
@@ -10,43 +12,25 @@ math.createUnit('rpm', { definition: '1 min^-1' });
 math.createUnit('cP', { definition: '1 mPa s' });
 math.createUnit('M', { definition: '1 mol/L', prefixes: 'short' } as never);
 
-/** What a figure can be; the unit is the one used inside. */
+/** What a figure can be: the unit used inside (none for shares and plain numbers), and how it is written. */
 export const kinds = {
-  'a flow by volume': 'm^3/s',
-  'a flow by mass': 'kg/s',
-  'a concentration': 'kg/m^3',
-  'a molar concentration': 'mol/m^3',
-  'a volume': 'm^3',
-  'an area': 'm^2',
-  'a length': 'm',
-  'a time': 's',
-  'a rate': 's^-1',
-  'an affinity': 'm^3/kg',
-  'a molar mass': 'kg/mol',
-  'a mass ratio': '',
-  'a mass fraction': '',
-  'a percentage': '',
-  'a plain number': '',
+  'a flow by volume': { unit: 'm^3/s', example: '420 m^3/h' },
+  'a flow by mass': { unit: 'kg/s', example: '1200 kg/h' },
+  'a concentration': { unit: 'kg/m^3', example: '5.2 g/L' },
+  'a molar concentration': { unit: 'mol/m^3', example: '0.08 mol/L' },
+  'a volume': { unit: 'm^3', example: '42 m^3' },
+  'an area': { unit: 'm^2', example: '180 m^2' },
+  'a length': { unit: 'm', example: '0.35 m' },
+  'a time': { unit: 's', example: '12 h 40 min' },
+  'a rate': { unit: 's^-1', example: '0.15 1/s' },
+  'an affinity': { unit: 'm^3/kg', example: '1.2 L/g' },
+  'a molar mass': { unit: 'kg/mol', example: '63.55 g/mol' },
+  'a mass ratio': { unit: '', example: '0.01 kg/kg' },
+  'a mass fraction': { unit: '', example: '1 wt%' },
+  'a percentage': { unit: '', example: '94 %' },
+  'a plain number': { unit: '', example: '0.75' },
 } as const;
 export type Kind = keyof typeof kinds;
-
-export const examples: Record<Kind, string> = {
-  'a flow by volume': '420 m^3/h',
-  'a flow by mass': '1200 kg/h',
-  'a concentration': '5.2 g/L',
-  'a molar concentration': '0.08 mol/L',
-  'a volume': '42 m^3',
-  'an area': '180 m^2',
-  'a length': '0.35 m',
-  'a time': '12 h 40 min',
-  'a rate': '0.15 1/s',
-  'an affinity': '1.2 L/g',
-  'a molar mass': '63.55 g/mol',
-  'a mass ratio': '0.01 kg/kg',
-  'a mass fraction': '1 wt%',
-  'a percentage': '94 %',
-  'a plain number': '0.75',
-};
 
 export interface Quantity {
   readonly kind: Kind;
@@ -56,121 +40,137 @@ export interface Quantity {
 
 export type Parsed = Quantity | { readonly wrong: string };
 
+export const expected = (kind: Kind): string => `expected ${kind} such as '${kinds[kind].example}'`;
+
 const NUMBER = /^[+-]?(\d+\.?\d*|\.\d+)([eE][+-]?\d+)?/;
-const bases = new Map<Kind, Unit>();
+
+/** Units of which two or three kinds are in use. */
+const UNCLEAR = [
+  [/\btons?\b/, 't for 1000 kg'],
+  [/\bgal(lons?)?\b/, 'L'],
+] as const;
+
+/*
+ * Figures outside of this belong to no plant: they are slips of an exponent, and products of a few of them leave the
+ * range of the arithmetic. Time ends after a century.
+ */
+const LEAST = 1e-12;
+export const MOST = 1e12;
+const CENTURY = 100 * 365.25 * 86400;
 
 /** Reads a figure with its unit as one of the kinds allowed, the first that fits. Never throws. */
 export function quantity(text: unknown, ...allowed: Kind[]): Parsed {
-  const expected = `expected ${allowed[0]} such as '${examples[allowed[0]]}'`;
+  const wish = expected(allowed[0]);
   if (typeof text === 'number') {
-    if (allowed.includes('a plain number')) return finite({ kind: 'a plain number', value: text }, text);
-    return { wrong: `${expected}, got the bare number ${text}; write its unit` };
+    if (allowed.includes('a plain number')) return within({ kind: 'a plain number', value: text }, text);
+    if (Number.isFinite(text)) return { wrong: `${wish}, got the bare number ${text}; write its unit` };
   }
-  if (typeof text !== 'string') return { wrong: `${expected}, got ${show(text)}` };
+  if (typeof text !== 'string') return { wrong: `${wish}, got ${show(text)}` };
   const t = normalise(text);
-  if (/\d,\d/.test(t)) return { wrong: `'${text}': use a decimal point, not a comma` };
+  if (/\d,\d/.test(t)) return { wrong: `${show(text)}: use a decimal point, not a comma` };
   const number = NUMBER.exec(t)?.[0];
-  if (number === undefined) return { wrong: `${expected}, got '${text}'` };
+  if (number === undefined) return { wrong: `${wish}, got ${show(text)}` };
   const unit = t.slice(number.length).trim();
-  const special = specialUnit(Number(number), unit, allowed);
-  if (special) return finite(special, text);
+  const shares = shareUnit(Number(number), unit);
+  const share = shares.find((q) => allowed.includes(q.kind));
+  if (share) return within(share, text);
+  if (unit === '') return { wrong: `${wish}, got ${show(text)} without a unit` };
+  if (shares.length > 0) return { wrong: `${wish}, got ${show(text)}, ${shares[0].kind}` };
+  const unclear = UNCLEAR.find(([pattern]) => pattern.test(unit));
+  if (unclear) return { wrong: `${show(text)}: this unit has several meanings; write ${unclear[1]}` };
   if (allowed.includes('a time')) {
     const seconds = duration(t);
-    if (seconds !== null) return finite({ kind: 'a time', value: seconds }, text);
+    if (seconds !== null) return within({ kind: 'a time', value: seconds }, text);
   }
-  if (unit === '') return { wrong: `${expected}, got '${text}' without a unit` };
+  const u = parseUnit(`1 ${unit}`);
+  if (!u && allowed[0] === 'a time')
+    return { wrong: `${wish}, got ${show(text)}; its units are d, h, min, s` };
+  if (!u) return { wrong: `${wish}, got ${show(text)} with the unknown unit ${show(unit)}` };
+  const fits = allowed.find((kind) => isOf(u, kind));
+  if (fits) return within({ kind: fits, value: scale(Number(number), u.toNumber(kinds[fits].unit)) }, text);
+  const other = (Object.keys(kinds) as Kind[]).find((kind) => isOf(u, kind));
+  return { wrong: `${wish}, got ${show(text)}, ${other ?? 'which is something else'}` };
+}
+
+/**
+ * A number times the factor of its unit. A factor of which the inverse is whole is divided by: 420 m³/h are 420/3600
+ * m³/s however they are written, and 5.2 g/L are 5.2 kg/m³ to the last bit.
+ */
+function scale(value: number, factor: number): number {
+  const inverse = Math.round(1 / factor);
+  return inverse >= 1 && Math.abs(inverse * factor - 1) < 1e-12 ? value / inverse : value * factor;
+}
+
+function within(q: Quantity, text: unknown): Parsed {
+  const size = Math.abs(q.value);
+  const unit = kinds[q.kind].unit && ` ${kinds[q.kind].unit}`;
+  const [most, inWords] = q.kind === 'a time' ? [CENTURY, '100 years'] : [MOST, `1e12${unit}`];
+  if (!(size <= most)) return { wrong: `${show(text)} is too large for a plant (more than ${inWords})` };
+  if (size > 0 && size < LEAST)
+    return { wrong: `${show(text)} is too small for a plant (less than ${LEAST}${unit})` };
+  return q;
+}
+
+function parseUnit(text: string): Unit | null {
   try {
-    const u = math.unit(`${number} ${unit}`) as Unit;
-    for (const kind of allowed) {
-      if (kinds[kind] === '') continue;
-      let base: Unit | undefined = bases.get(kind);
-      if (!base) {
-        base = math.unit(`1 ${kinds[kind]}`) as Unit;
-        bases.set(kind, base);
-      }
-      if (u.equalBase(base)) return finite({ kind, value: u.toNumber(kinds[kind]) }, text);
-    }
-    return { wrong: `${expected}, got '${text}', which is something else` };
+    return math.unit(text) as Unit;
   } catch {
-    return { wrong: `${expected}, got '${text}' with the unknown unit '${unit}'` };
+    return null;
   }
 }
 
-function finite(q: Quantity, text: unknown): Parsed {
-  return Number.isFinite(q.value) ? q : { wrong: `${show(text)} is too large to be a figure` };
+const bases = new Map<Kind, Unit>();
+
+function isOf(u: Unit, kind: Kind): boolean {
+  const { unit } = kinds[kind];
+  if (unit === '') return false;
+  const base = bases.get(kind) ?? (math.unit(`1 ${unit}`) as Unit);
+  bases.set(kind, base);
+  return u.equalBase(base);
 }
 
-/** Units of shares, which have no dimension to tell them apart. */
-function specialUnit(n: number, unit: string, allowed: readonly Kind[]): Quantity | null {
-  const is = (kind: Kind, value: number): Quantity | null =>
-    allowed.includes(kind) ? { kind, value } : null;
+/** What a figure with a unit of shares can mean: those have no dimension to tell them apart. */
+function shareUnit(n: number, unit: string): Quantity[] {
+  const ratio = (divisor: number): Quantity[] => [{ kind: 'a mass ratio', value: n / divisor }];
+  const fraction = (divisor: number): Quantity[] => [{ kind: 'a mass fraction', value: n / divisor }];
   switch (unit) {
     case '':
-      return is('a plain number', n);
+      return [{ kind: 'a plain number', value: n }];
     case '%':
-      return is('a percentage', n / 100) ?? is('a mass fraction', n / 100);
+      return [{ kind: 'a percentage', value: n / 100 }, ...fraction(100)];
     case 'wt%':
     case 'wt %':
-      return is('a mass fraction', n / 100);
+      return fraction(100);
     case 'ppm':
-      return is('a mass fraction', n * 1e-6);
+      return fraction(1e6);
     case 'kg/kg':
     case 'g/g':
-      return is('a mass ratio', n);
+      return ratio(1);
     case 'g/kg':
-      return is('a mass ratio', n / 1e3);
+      return ratio(1e3);
     case 'mg/kg':
-      return is('a mass ratio', n / 1e6);
+      return ratio(1e6);
     default:
-      return null;
+      return [];
   }
 }
 
-/** `12 h 40 min` in seconds, or null. */
-function duration(text: string): number | null {
-  let rest = text.trim();
-  let total = 0;
-  let sign = 1;
-  if (/^[+-]/.test(rest)) {
-    sign = rest[0] === '-' ? -1 : 1;
-    rest = rest.slice(1).trim();
-  }
-  while (rest !== '') {
-    const m =
-      /^(\d+\.?\d*(?:[eE][+-]?\d+)?)\s*(weeks?|days?|d|hours?|hr|h|minutes?|min|seconds?|sec|s)\b\s*/.exec(
-        rest,
-      );
-    if (!m) return null;
-    const unit = { w: 604800, d: 86400, h: 3600, m: 60, s: 1 }[m[2][0]] as number;
-    total += Number(m[1]) * unit;
-    rest = rest.slice(m[0].length);
-  }
-  return sign * total;
-}
+const RAISED = '⁰¹²³⁴⁵⁶⁷⁸⁹⁻';
 
-/** Writes what people type (superscripts, µ, middle dots, "1/s") in the way the units engine reads. */
+/** Writes what people type (superscripts, µ, middle dots, `m3`, `1/s`) in the way the units engine reads. */
 function normalise(text: string): string {
   return text
     .trim()
-    .replace(
-      /[⁰¹²³⁴⁵⁶⁷⁸⁹⁻]+/g,
-      (s) =>
-        `^${[...s]
-          .map((c) => '⁰¹²³⁴⁵⁶⁷⁸⁹⁻'.indexOf(c))
-          .map((i) => (i === 10 ? '-' : i))
-          .join('')}`,
-    )
+    .replace(/\s+/g, ' ')
+    .replace(/[⁰¹²³⁴⁵⁶⁷⁸⁹⁻]+/g, (s) => `^${[...s].map((c) => '0123456789-'[RAISED.indexOf(c)]).join('')}`)
     .replace(/[µμ]/g, 'u')
     .replace(/[·⋅]/g, ' ')
     .replace(/−/g, '-')
+    .replace(/(?<![A-Za-z])([dcm]?m)([23])\b/g, '$1^$2')
+    .replace(/ per /g, '/')
     .replace(/\s1\/([A-Za-z]+)$/, ' $1^-1')
     .replace(/\s\/([A-Za-z]+)$/, ' $1^-1');
 }
-
-export const show = (value: unknown): string => {
-  const text = typeof value === 'string' ? `'${value}'` : (JSON.stringify(value) ?? String(value));
-  return text.length > 60 ? `${text.slice(0, 57)}…` : text;
-};
 
 /** Parses an expression with the general-purpose parser; only its syntax tree is used, nothing is evaluated. */
 export const parseExpression = (text: string): unknown => math.parse(text);

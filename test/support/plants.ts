@@ -20,4 +20,5 @@ export const fromText = (text: string): Scenario =>
   readScenario(text, { file: 'test.yaml', folder: inRepo('scenarios') }).scenario;
 
 /** Reference values kept with the script that made them. */
-export const reference = (name: string): unknown => JSON.parse(readFileSync(inRepo(`test/reference/${name}.json`), 'utf8'));
+export const reference = (name: string): unknown =>
+  JSON.parse(readFileSync(inRepo(`test/reference/${name}.json`), 'utf8'));

@@ -4,12 +4,13 @@ import { runSummary } from '../../report/summary.ts';
 import { type RunSettings, runInTurns } from '../../study/run.ts';
 import type { Console } from '../console.ts';
 import { exits } from '../exit.ts';
-import { openScenario, outputFolder, stream, version, write, writeJson } from '../files.ts';
+import { makeFolder, openScenario, outputFolder, stream, version, write, writeJson } from '../files.ts';
 import { known } from '../refusing.ts';
 
 export interface RunOptions {
   readonly out?: string;
   readonly pictures: boolean;
+  readonly scale: string;
   readonly integrator: string;
   readonly tolerance: number;
 }
@@ -20,6 +21,7 @@ const TURN = 100;
 /** `upsettle run FILE`: series.csv, summary.json and pictures of one run. */
 export async function run(file: string, options: RunOptions, console: Console): Promise<number> {
   const began = performance.now();
+  const folder = outputFolder(file, 'run', options.out);
   const read = openScenario(file);
   let interrupted = false;
   const onInterrupt = (): void => {
@@ -45,13 +47,13 @@ export async function run(file: string, options: RunOptions, console: Console): 
   );
   console.clear();
   const seconds = (performance.now() - began) / 1e3;
-  const folder = outputFolder(file, 'run', options.out);
+  makeFolder(folder);
   await stream(folder, 'series.csv', (to) => writeSeries(result, to));
   writeJson(folder, 'summary.json', runSummary(result, { file, version: version(), seconds }));
   const made = ['series.csv', 'summary.json'];
   if (options.pictures) {
     const { runPictures } = await import('../../report/pictures/index.ts');
-    for await (const picture of runPictures(result)) {
+    for await (const picture of runPictures(result, Number(options.scale))) {
       if (interrupted) break;
       console.progress(0, `drawing ${picture.name}`);
       write(folder, picture.name, picture.png);

@@ -3,26 +3,28 @@ import { steadySummary } from '../../report/summary.ts';
 import { steady as findSteady } from '../../study/steady.ts';
 import type { Console } from '../console.ts';
 import { exits } from '../exit.ts';
-import { openScenario, outputFolder, version, write, writeJson } from '../files.ts';
+import { makeFolder, openScenario, outputFolder, version, write, writeJson } from '../files.ts';
 import { refusing } from '../refusing.ts';
 
 export interface SteadyOptions {
   readonly out?: string;
   readonly pictures: boolean;
+  readonly scale: string;
 }
 
 /** `upsettle steady FILE`: the steady state of the inputs at time zero. */
 export async function steady(file: string, options: SteadyOptions, console: Console): Promise<number> {
   const began = performance.now();
+  const folder = outputFolder(file, 'steady', options.out);
   const read = openScenario(file);
   const result = refusing(read, () => findSteady(read.scenario));
   const seconds = (performance.now() - began) / 1e3;
-  const folder = outputFolder(file, 'steady', options.out);
+  makeFolder(folder);
   writeJson(folder, 'summary.json', steadySummary(result, { file, version: version(), seconds }));
   const made = ['summary.json'];
   if (options.pictures) {
     const { steadyPictures } = await import('../../report/pictures/index.ts');
-    for await (const picture of steadyPictures(result)) {
+    for await (const picture of steadyPictures(result, Number(options.scale))) {
       write(folder, picture.name, picture.png);
       made.push(picture.name);
     }

@@ -1,0 +1,36 @@
+import { hint } from './nearest.ts';
+import type { Outline } from './outline.ts';
+import type { Problem } from './refusal.ts';
+import { show } from './show.ts';
+
+const MIXER = /^(.*)\.([^.]*)\.mixer$/;
+
+/** Paths in upsets and limits must lead somewhere. */
+export function checkPaths(raw: Record<string, unknown>, plan: Outline, problems: Problem[]): void {
+  if (!plan.whole || !plan.named) return;
+  const check = (list: string, key: string, wrong: (path: string) => string | null): void => {
+    const items = raw[list];
+    if (!Array.isArray(items)) return;
+    items.forEach((item, i) => {
+      const value = (item as Record<string, unknown> | null)?.[key];
+      const message = typeof value === 'string' ? wrong(value) : null;
+      if (message !== null) problems.push({ path: [list, i, key], message });
+    });
+  };
+  // Mixers differ by a number alone, which no likeness of letters helps to find: one stands for all.
+  const mixers = plan.trains.map((t) => `${t.name}.1.mixer`);
+  const changeable = [...[...plan.changeable.keys()].filter((k) => !MIXER.test(k)), ...mixers];
+  const limitable = [...plan.limitable.keys()];
+  check('upsets', 'change', (path) => {
+    if (plan.changeable.has(path)) return null;
+    const [, name, stage] = MIXER.exec(path) ?? [];
+    const train = plan.trains.find((t) => t.name === name);
+    if (train) return `no stage ${show(stage)}: ${train.name} has stages 1 to ${train.stages}`;
+    if (plan.limitable.has(path))
+      return `${show(path)} is a result and cannot be changed; change a feed, the flow of a tank or a mixer`;
+    return `unknown quantity ${show(path)}${hint(path, changeable)}`;
+  });
+  check('limits', 'keep', (path) =>
+    plan.limitable.has(path) ? null : `unknown quantity ${show(path)}${hint(path, limitable)}`,
+  );
+}
