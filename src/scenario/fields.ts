@@ -44,17 +44,16 @@ export const name = z.string({ error: (i) => missing(i, TEXT) });
 /** A text of reasonable length without marks that move the cursor, except those that are allowed. */
 export const text = (most = 1000, allowed = '') =>
   name.check((c) => {
-    const mark = hidden([...c.value].filter((m) => !allowed.includes(m)).join(''));
-    const message =
-      c.value.trim() === ''
-        ? 'must not be empty'
-        : c.value.length > most
-          ? `has ${c.value.length} characters, more than ${most}`
-          : mark === null
-            ? null
-            : `must not hold the mark ${show(mark)}`;
+    const message = wrongText(c.value, most, allowed);
     if (message !== null) c.issues.push({ code: 'custom', message, input: c.value });
   });
+
+function wrongText(value: string, most: number, allowed: string): string | null {
+  if (value.trim() === '') return 'must not be empty';
+  if (value.length > most) return `has ${value.length} characters, more than ${most}`;
+  const mark = hidden([...value].filter((m) => !allowed.includes(m)).join(''));
+  return mark === null ? null : `must not hold the mark ${show(mark)}`;
+}
 
 export function oneOf(i: Wrong, words: readonly string[]): string {
   const near = typeof i.input === 'string' ? guess(i.input, words) : '';

@@ -11,7 +11,7 @@ const LONGEST = 200;
 export function nearest(word: string, candidates: readonly string[]): string | null {
   if (word.length > LONGEST) return null;
   let best: string | null = null;
-  let least = (word.length <= SHORT ? 1 : Math.max(2, Math.floor(word.length * 0.4))) + 1;
+  let least = changes(word.length) + 1;
   for (const c of candidates) {
     const [a, b] = [word.toLowerCase(), c.toLowerCase()];
     const tooFar = Math.abs(a.length - b.length) >= least;
@@ -23,6 +23,10 @@ export function nearest(word: string, candidates: readonly string[]): string | n
   }
   return best;
 }
+
+/** Letters that may differ: of one letter nothing would be left but its case. */
+const changes = (length: number): number =>
+  length === 1 ? 0 : length <= SHORT ? 1 : Math.max(2, Math.floor(length * 0.4));
 
 /** A word cut short, or one that goes on. */
 const isStart = (a: string, b: string): boolean =>

@@ -72,7 +72,7 @@ export function outline(raw: unknown): Outline {
     isListOfNames(top.solutes) &&
     solutes.length > 0 &&
     (top.species === undefined || isListOfNames(top.species));
-  let whole = true;
+  let whole = top.feeds !== undefined && top.trains !== undefined;
   const entries = (v: unknown): [string, Loose][] => {
     if (v === undefined) return [];
     if (!isObject(v)) {

@@ -227,7 +227,7 @@ describe('settings that are missing or empty', () => {
     ],
   ]);
 
-  it('empty feeds and trains', () => {
+  it('no feeds or no trains', () => {
     const feeds = sound.slice(sound.indexOf('feeds:'), sound.indexOf('trains:'));
     const trains = sound.slice(sound.indexOf('trains:'), sound.indexOf('horizon:'));
     expectRefusal(instead(feeds, 'feeds:\n'), [['4:1 feeds', 'expected feeds by name', 'got nothing']]);
@@ -235,6 +235,8 @@ describe('settings that are missing or empty', () => {
     expectRefusal(instead(trains, 'trains: {}\n', 'raffinate.copper', 'liquor.copper'), [
       ['7:9 trains', 'at least one train'],
     ]);
+    expectRefusal(instead(feeds, ''), [['1:1 feeds', 'is missing', 'feeds by name']]);
+    expectRefusal(instead(trains, ''), [['1:1 trains', 'is missing', 'trains by name']]);
     expectRefusal(instead(feeds, 'feeds: [a, b]\n'), [['4:8 feeds', 'feeds by name', '["a","b"]']]);
   });
 });

@@ -1,0 +1,97 @@
+import { execFileSync, spawn, spawnSync } from 'node:child_process';
+import { existsSync, mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { exits } from '../../src/cli/exit.ts';
+import { inRepo } from '../support/plants.ts';
+
+const folder = mkdtempSync(join(tmpdir(), 'upsettle-'));
+const program = inRepo('dist/cli/upsettle.js');
+const sound = readFileSync(inRepo('scenarios/ten.yaml'), 'utf8');
+
+interface Answer {
+  readonly code: number | null;
+  readonly out: string;
+  readonly error: string;
+}
+
+function upsettle(...args: readonly string[]): Answer {
+  const done = spawnSync(process.execPath, [program, ...args], {
+    cwd: folder,
+    encoding: 'utf8',
+  });
+  return { code: done.status, out: done.stdout, error: done.stderr };
+}
+
+beforeAll(() => {
+  execFileSync(process.execPath, [inRepo('src/build/prepare.mjs')]);
+  writeFileSync(join(folder, 'sound.yaml'), sound);
+  writeFileSync(
+    join(folder, 'wrong.yaml'),
+    sound.replace('0.2 m^3/s', '0.2 m^3/t').replace('at: 6 h', 'at: 60 h'),
+  );
+  writeFileSync(join(folder, 'data.csv'), 'a\n');
+}, 60_000);
+afterAll(() => rmSync(folder, { recursive: true }));
+
+const files = (): string[] => readdirSync(folder).sort();
+
+describe('the command', () => {
+  it('a scenario that is refused: every complaint with its place, no stack, nothing written', () => {
+    const before = files();
+    const { code, out, error } = upsettle('run', 'wrong.yaml', '--out', 'results');
+    expect({ code, out }).toEqual({ code: exits.refused, out: '' });
+    expect(error.trimEnd().split('\n')).toEqual([
+      expect.stringMatching(/^wrong\.yaml:\d+:\d+ feeds\.feed\.flow: expected a flow by volume/),
+      expect.stringMatching(/^wrong\.yaml:\d+:\d+ upsets\.0\.at: begins at 60 h, but the run ends at 24 h$/),
+    ]);
+    expect(files()).toEqual(before);
+  });
+
+  it('a scenario that is not there', () => {
+    const { code, out, error } = upsettle('check', 'nope.yaml');
+    expect({ code, out, error }).toEqual({
+      code: exits.refused,
+      out: '',
+      error: 'nope.yaml:1:1 there is no such file\n',
+    });
+  });
+
+  it('wrong usage', () => {
+    const before = files();
+    const { code, out, error } = upsettle('run', 'sound.yaml', '--out', 'data.csv');
+    expect({ code, out }).toEqual({ code: exits.usage, out: '' });
+    expect(error).toMatch(/^cannot make the folder data\.csv: .*data\.csv is a file\n$/);
+    expect(files()).toEqual(before);
+  });
+
+  it('a run writes figures where it was told to, and says so', () => {
+    const { code, out, error } = upsettle('run', 'sound.yaml', '--out', 'a/b', '--no-pictures');
+    expect({ code, error }).toEqual({ code: exits.done, error: '' });
+    expect(out).toMatch(/^RUN {2}Ten stages/);
+    expect(out).toContain('Written to a/b: series.csv, summary.json');
+    expect(readdirSync(join(folder, 'a/b')).sort()).toEqual(['series.csv', 'summary.json']);
+  });
+
+  it('a quiet one is quiet, and the default folder carries the names of scenario and verb', () => {
+    const done = upsettle('steady', 'sound.yaml', '--no-pictures', '--quiet');
+    expect(done).toEqual({ code: exits.done, out: '', error: '' });
+    expect(existsSync(join(folder, 'out/sound/steady/summary.json'))).toBe(true);
+  });
+
+  it('a check writes nothing, and a reader that stops reading is no fault', async () => {
+    const before = files();
+    const child = spawn(process.execPath, [program, 'check', 'sound.yaml'], { cwd: folder });
+    child.stdout.destroy();
+    let error = '';
+    child.stderr.on('data', (piece) => {
+      error += piece;
+    });
+    const code = await new Promise((resolve) => {
+      child.on('close', resolve);
+    });
+    expect({ code, error }).toEqual({ code: exits.done, error: '' });
+    expect(files()).toEqual(before);
+  });
+});
