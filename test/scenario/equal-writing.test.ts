@@ -3,6 +3,7 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { afterAll, describe, expect, it } from 'vitest';
 import { parseDocument, stringify } from 'yaml';
+import { plainSettler } from '../../src/scenario/plain.ts';
 import { readScenario } from '../../src/scenario/read.ts';
 import type { Scenario } from '../../src/scenario/scenario.ts';
 import { fromText, inRepo, scenario } from '../support/plants.ts';
@@ -110,7 +111,13 @@ describe('the same plant, written differently', () => {
     );
     const [stage] = fromText(sound).trains[0].stages;
     // 180 m² · 0.35 m and 180 m² · 0.30 m
-    const same = { aqueous: expect.closeTo(63, 12), organic: expect.closeTo(54, 12), parts: 1, area: 180 };
+    const same = {
+      ...plainSettler,
+      aqueous: expect.closeTo(63, 12),
+      organic: expect.closeTo(54, 12),
+      parts: 1,
+      area: 180,
+    };
     for (const q of [stage, ...apart.trains[0].stages])
       expect(q).toEqual({ mixer: stage.mixer, settler: same });
   });

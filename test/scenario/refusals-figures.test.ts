@@ -139,9 +139,9 @@ describe('values', () => {
       ['15:8 start', 'barren, steady', "did you mean 'steady'?"],
     ],
     [
-      'a start with settings',
+      'a kept state that is not there',
       instead('horizon', 'start: {saved: a}\nhorizon'),
-      ['15:8 start', '{"saved":"a"}'],
+      ['15:16 start.saved', 'cannot read a'],
     ],
     ['a title that moves the cursor', instead('Plain plant', '"\\e[31mred"'), ['1:8 title', "'\\u001b'"]],
     ['a title of two lines', instead('title: Plain plant', 'title: "a\\nb"'), ['1:8 title', "'\\u000a'"]],

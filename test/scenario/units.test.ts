@@ -131,14 +131,18 @@ describe('what a figure is', () => {
     expect(quantity('70 m^3', 'a percentage', 'a volume')).toEqual({ kind: 'a volume', value: 70 });
   });
 
+  /** A percent sign is a percentage or a fraction, ppm are of mass or of volume. */
+  const asThePlaceAsks = (kind: Kind, other: Kind): boolean =>
+    (kind.endsWith('fraction') && other === 'a percentage') ||
+    (kind === 'a mass fraction' && other === 'a volume fraction');
+
   it('every kind reads its own example and refuses all examples of other kinds', () => {
     const names = Object.keys(kinds) as Kind[];
     for (const kind of names) {
       const own = quantity(kinds[kind].example, kind);
       expect(own).toMatchObject({ kind });
       for (const other of names) {
-        // A percent sign is a percentage or a fraction of mass, as the place asks.
-        if (other === kind || (kind === 'a mass fraction' && other === 'a percentage')) continue;
+        if (other === kind || asThePlaceAsks(kind, other)) continue;
         expect(read(kinds[other].example, kind), `${kinds[other].example} as ${kind}`).toMatch(
           new RegExp(`expected ${kind} such as`),
         );
