@@ -45,7 +45,7 @@ interface Import {
 
 function imports(path: string): Import[] {
   const text = readFileSync(path, 'utf8');
-  const pattern = /(?:import|export)\s+(type\s+)?([^'\"]*?)from\s+'(\.[^']+)'|import\('(\.[^']+)'\)/g;
+  const pattern = /(?:import|export)\s+(type\s+)?([^'"]*?)from\s+'(\.[^']+)'|import\('(\.[^']+)'\)/g;
   return [...text.matchAll(pattern)].map((m) => {
     return {
       from: relative(src, path),

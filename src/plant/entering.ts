@@ -24,17 +24,12 @@ export function entering(
 }
 
 /** Composition at time zero of the feed or tank from which a stream comes, through however many trains. */
-export function upstream(
-  s: Scenario,
-  net: Network,
-  name: string,
-  phase: Phase,
-  seen: readonly string[] = [],
-): readonly number[] {
-  const { maker } = net.streams.get(name) as Stream;
-  if (maker.kind === 'feed') return s.feeds[maker.index].content;
-  if (maker.kind === 'tank') return s.tanks[maker.index].content;
-  const from = s.trains[maker.index][phase].from;
+export function upstream(s: Scenario, net: Network, name: string, phase: Phase): readonly number[] {
   // A loop without a tank has been refused before, so this ends.
-  return seen.includes(from) ? [] : upstream(s, net, from, phase, [...seen, from]);
+  for (let stream = name; ; ) {
+    const { maker } = net.streams.get(stream) as Stream;
+    if (maker.kind === 'feed') return s.feeds[maker.index].content;
+    if (maker.kind === 'tank') return s.tanks[maker.index].content;
+    stream = s.trains[maker.index][phase].from;
+  }
 }

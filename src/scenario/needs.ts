@@ -8,6 +8,7 @@ export function checkNeeds(s: Scenario, problems: Problem[]): void {
     if (t.stages.some((q) => q.mixer.transfer.given === 'impeller')) agitatorNeeds(s, t, path, problems);
     if (t.hydraulics === 'weirs') weirNeeds(s, t, path, problems);
     bypassNeeds(s, t, path, problems);
+    upsetNeeds(s, t, problems);
   }
   if (s.start === 'empty')
     for (const t of s.trains)
@@ -56,6 +57,24 @@ function weirNeeds(s: Scenario, t: Train, path: Path, problems: Problem[]): void
       path: [...path, 'settler'],
       message: `hydraulics: weirs needs the weirs of every settler, such as 'weirs: {organic_length: 8 m, aqueous_length: 8 m}'; stage ${without + 1} has none`,
     });
+}
+
+/** What an upset changes must be there. */
+function upsetNeeds(s: Scenario, t: Train, problems: Problem[]): void {
+  t.stages.forEach((q, j) => {
+    const stage = `${t.name}.${j + 1}`;
+    const changes = (quantity: string): boolean => s.upsets.some((u) => u.quantity === quantity);
+    if (q.mixer.transfer.given !== 'impeller' && changes(`${stage}.mixer.speed`))
+      problems.push({
+        path: ['upsets'],
+        message: `'${stage}.mixer.speed' can only change where the mixer has an impeller`,
+      });
+    if (t.hydraulics !== 'weirs' && changes(`${stage}.settler.aqueous_weir`))
+      problems.push({
+        path: ['upsets'],
+        message: `'${stage}.settler.aqueous_weir' can only change with hydraulics: weirs`,
+      });
+  });
 }
 
 /** Full stages keep their volumes by a balance that a bypassed stage with carry-over would not close. */

@@ -22,8 +22,16 @@ export const steadyPictures = (r: SteadyResult, scale = 1): AsyncGenerator<Drawn
   all(steadyTable, r, scale);
 
 async function* all<R>(table: readonly Picture<R>[], r: R, scale: number): AsyncGenerator<Drawn> {
+  const used = new Map<string, number>();
   for (const p of table)
     for (const part of p.parts?.(r) ?? [undefined]) {
-      yield { name: p.name(r, part), png: await draw(p.config(r, part), scale) };
+      const name = p.name(r, part);
+      // Names that differ in marks alone would be one file.
+      const times = (used.get(name) ?? 0) + 1;
+      used.set(name, times);
+      yield {
+        name: times === 1 ? name : name.replace(/\.png$/, `-${times}.png`),
+        png: await draw(p.config(r, part), scale),
+      };
     }
 }
