@@ -49,8 +49,9 @@ function intern(key: string, make: (id: number) => Expr): Expr {
   return node;
 }
 
+/** There is one zero: adding 0 takes the sign from −0. */
 export const constant = (value: number): Expr =>
-  intern(`c${Object.is(value, -0) ? 0 : value}`, (id) => ({ kind: 'constant', id, value }));
+  intern(`c${value + 0}`, (id) => ({ kind: 'constant', id, value: value + 0 }));
 
 /** The `slot`-th argument of the kernel in which the expression stands. */
 export const input = (slot: number): Expr => intern(`i${slot}`, (id) => ({ kind: 'input', id, slot }));

@@ -15,7 +15,6 @@ export function crossing(f: (t: number) => number, a: number, b: number, precisi
   let width = hi - lo;
   for (let k = 0; hi - lo > precision && k < 200; k++) {
     const slow = k % 3 === 2 && hi - lo > width / 2;
-    if (k % 3 === 2) width = hi - lo;
     let t = slow ? (lo + hi) / 2 : hi - (fhi * (hi - lo)) / (fhi - flo);
     if (!(t > lo && t < hi)) t = (lo + hi) / 2;
     // A point just beside the end of the bracket would shrink it from one side only.
@@ -32,6 +31,7 @@ export function crossing(f: (t: number) => number, a: number, b: number, precisi
       if (side === 1) flo /= 2;
       side = 1;
     }
+    if (k % 3 === 2) width = hi - lo;
   }
   return hi;
 }

@@ -15,8 +15,9 @@ export const integrators: Readonly<Record<string, MakeIntegrator>> = {
 
 /** Guards that switch more often than this in one run chatter. */
 const MOST_EVENTS = 10_000;
-/** A crossing is located to this fraction of the step, and no finer than the clock can tell. */
+/** A crossing is located to this fraction of the step, and no finer than the last places of the clock. */
 const LOCATED = 1e-10;
+const CLOCK = 8 * Number.EPSILON;
 
 /** What a run shows to those who watch it. Times in s; arrays are valid during the call only. */
 export interface Watcher {
@@ -111,15 +112,18 @@ function* integration(
   for (let segment = 0; segment + 1 < times.length && !stop; segment++) {
     inputs.segment = segment;
     const end = times[segment + 1];
+    let paused = false;
     while (t < end && !stop) {
-      inputs.value(t, w);
-      for (let g = guards.jumped(x, w); g >= 0; g = guards.jumped(x, w)) {
-        stop ??= happen(g, t);
-        if (stop) break;
+      if (!paused) {
         inputs.value(t, w);
+        for (let g = guards.jumped(x, w); g >= 0 && !stop; g = guards.jumped(x, w)) {
+          stop = happen(g, t);
+          inputs.value(t, w);
+        }
+        if (stop) break;
+        integrator.work.restarts += 1;
+        for (const o of watchers) o.begin?.(t, x, w);
       }
-      if (stop) break;
-      for (const o of watchers) o.begin?.(t, x, w);
       let met = -1;
       const outcome = integrator.advance({ from: t, to: end, inputs }, x, (step) => {
         const hit = guards.crossed(step);
@@ -127,14 +131,15 @@ function* integration(
         const shown = met >= 0 ? shortened(step, hit.time) : step;
         for (const o of watchers) o.step?.(shown, inputs);
         if (met >= 0) return hit.time;
-        return due() ? step.t1 : Number.NaN;
+        return step.pausable && due() ? step.t1 : Number.NaN;
       });
       if (outcome.ended === 'failed') {
         stop = outcome.stop;
         t = outcome.stop.time;
       } else if (outcome.ended === 'asked') {
         t = outcome.time;
-        if (met >= 0) stop = happen(met, t);
+        paused = met < 0;
+        if (!paused) stop = happen(met, t);
         else if (yield) stop = { reason: 'interrupted', time: t };
       } else t = end;
       if (!stop && met >= 0) guards.settled(met);
@@ -174,7 +179,7 @@ function* integration(
 function shortened(step: Step, end: number): Step {
   const x1 = new Float64Array(step.x1.length);
   step.at(end, x1);
-  return { t0: step.t0, t1: end, x1, at: (t, x) => step.at(t, x) };
+  return { t0: step.t0, t1: end, x1, pausable: false, at: (t, x) => step.at(t, x) };
 }
 
 /** Which side of zero each guard is on, and when it changes. */
@@ -203,14 +208,18 @@ class GuardWatch {
     const g = this.#g;
     if (g.length === 0) return -1;
     this.#system.guard(x, w, this.#p, g);
+    let first = -1;
     for (let i = 0; i < g.length; i++) {
       const side = Math.sign(g[i]);
       const before = this.#side[i];
+      const acts = this.#known && side !== 0 && before !== 0 && side !== before && this.#wanted(i, side);
+      // The next one to act has its turn when the first has acted, if it is still there.
+      if (acts && first >= 0) continue;
+      if (acts) first = i;
       if (side !== 0) this.#side[i] = side;
-      if (this.#known && side !== 0 && before !== 0 && side !== before && this.#wanted(i, side)) return i;
     }
     this.#known = true;
-    return -1;
+    return first;
   }
 
   /** The first guard crossed inside an accepted step. Looked for at the end and at three points inside. */
@@ -233,12 +242,18 @@ class GuardWatch {
           turned.push([i, side]);
           continue;
         }
-        const at = crossing((t) => this.#value(step, t, i), from, to, Math.max(LOCATED * span, 1e-9));
+        const at = crossing(
+          (t) => this.#value(step, t, i),
+          from,
+          to,
+          Math.max(LOCATED * span, CLOCK * Math.abs(to)),
+        );
         if (found.guard < 0 || at < found.time) found = { guard: i, time: at };
       }
       // Beyond a guard that acts, the other guards have not happened yet.
+      if (found.guard >= 0) this.#evaluate(step, found.time);
+      for (const [i, side] of turned) if (Math.sign(this.#g[i]) === side) this.#side[i] = side;
       if (found.guard >= 0) break;
-      for (const [i, side] of turned) this.#side[i] = side;
       from = to;
     }
     return found;

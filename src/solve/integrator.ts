@@ -13,6 +13,8 @@ export interface Step {
   readonly t1: number;
   /** State at t1. */
   readonly x1: F;
+  /** Whether the run may pause at t1 without a change to any of its figures. */
+  readonly pausable: boolean;
   /** State at t in [t0, t1]. */
   at(t: number, x: F): void;
 }

@@ -73,6 +73,8 @@ export class LinearSolver {
     this.#fresh = false;
     this.#measure(x);
     if (this.#worst <= TRUSTED_ERROR) return true;
+    // With a right-hand side that is no number there is nothing to hold against the factors.
+    if (!this.#b.every(Number.isFinite)) return true;
     this.#refine(x);
     this.#measure(x);
     if (this.#worst <= TRUSTED_ERROR) {
@@ -110,8 +112,8 @@ export class LinearSolver {
         size += Math.abs(term);
       }
       this.#r[i] = r;
-      const relative = size > 0 ? Math.abs(r) / size : 0;
-      if (!(relative <= worst)) worst = relative;
+      // Math.max keeps a NaN, whatever the later rows say.
+      if (size !== 0) worst = Math.max(worst, Math.abs(r) / size);
     }
     this.#worst = worst;
   }

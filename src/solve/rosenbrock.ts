@@ -15,7 +15,7 @@ const GROW = 6;
 const CUT = 0.25;
 /** A trial state may lie below its floor by this many absolute tolerances. */
 const BELOW_FLOOR = 10;
-/** Smallest step, relative to the time reached and to the stretch: below it t + h loses its digits. */
+/** Smallest step, relative to the time reached, below which t + h loses its digits; and its like at the very start. */
 const SMALLEST = 1e-13;
 
 /** Linearly implicit one-step integrator: one Jacobian and one factorisation a step, exact f_t along ramps. */
@@ -79,10 +79,8 @@ export class Rosenbrock implements Integrator {
     const { work } = this;
     const table = this.#table;
     const exponent = -1 / table.order;
-    work.restarts += 1;
     inputs.slope(this.#dw);
     this.#moving = this.#dw.some((v) => v !== 0);
-    const smallest = SMALLEST * Math.max(Math.abs(from), Math.abs(to), to - from);
     const dense = new DenseStep(x, this.#x1, this.#u, table);
     let t = from;
     let grow = GROW;
@@ -106,6 +104,8 @@ export class Rosenbrock implements Integrator {
           t = dense.t1;
           if (end < t) dense.at(end, this.#trial);
           x.set(end < t ? this.#trial : this.#x1);
+          if (!(end < t) && t < to && this.#stuck(t, to - from))
+            return failed(this.#tooSmall(t, x, inputs, 'error'));
           if (end <= t) return { ended: 'asked', time: end };
           break;
         }
@@ -119,21 +119,44 @@ export class Rosenbrock implements Integrator {
           else work.rejectedBySingular += 1;
           this.#natural = h * CUT;
         }
-        if (this.#natural < smallest) return failed(this.#tooSmall(t, verdict));
+        if (this.#stuck(t, to - from)) return failed(this.#tooSmall(t, x, inputs, verdict));
       }
     }
     return { ended: 'at-end' };
   }
 
-  #tooSmall(time: number, verdict: Exclude<Verdict, 'accepted'>): Stop {
-    const place = this.#system.places[this.#worst]?.path ?? 'the plant';
-    if (verdict === 'not-finite') return { reason: 'not-finite', time, place };
+  #stuck(t: number, span: number): boolean {
+    return this.#natural < SMALLEST * Math.max(Math.abs(t), SMALLEST * span);
+  }
+
+  #tooSmall(time: number, x: F, inputs: Inputs, verdict: Exclude<Verdict, 'accepted'>): Stop {
+    const lost = this.#lost(time, x, inputs);
+    const place = this.#system.places[lost < 0 ? this.#worst : lost].path;
+    if (verdict === 'not-finite' || lost >= 0) return { reason: 'not-finite', time, place };
     const cause = {
       error: 'no step is small enough for the tolerance',
       negative: 'every trial step makes it negative',
       singular: 'the equations have no unique solution there',
     }[verdict];
     return { reason: 'step-too-small', time, place, cause };
+  }
+
+  /**
+   * The place whose balance or slopes have no finite value, or −1. The solution cannot tell, one place that is no
+   * number spoils all that are eliminated with it: so the stages of the last attempt are gone through again.
+   */
+  #lost(t: number, x: F, inputs: Inputs): number {
+    inputs.value(t, this.#w);
+    for (const stage of this.#combine) {
+      stage.state(x.length, x, this.#u, this.#trial);
+      this.#system.rhs(this.#trial, this.#w, this.#p, this.#dx);
+      const lost = this.#dx.findIndex((v) => !Number.isFinite(v));
+      if (lost >= 0) return lost;
+      if (stage !== this.#combine[0]) continue;
+      const steep = this.#jacobian.findIndex((v) => !Number.isFinite(v));
+      if (steep >= 0) return this.#system.A.rowStart.findIndex((start) => start > steep) - 1;
+    }
+    return -1;
   }
 
   /** Jacobian and f_t at (t, x): they serve every attempt from this point. */
@@ -229,6 +252,7 @@ class DenseStep implements Step {
   t0 = 0;
   t1 = 0;
   readonly x1: F;
+  readonly pausable = true;
   readonly #x0: F;
   readonly #u: F;
   readonly #k: F;

@@ -18,9 +18,11 @@ const SAME_CORNER = 100 * Number.EPSILON;
  */
 export function makeSchedule(initial: F, tracks: readonly Track[], from: number, to: number): Schedule {
   if (!(to > from)) throw new RangeError(`the end ${to} s is not after the start ${from} s`);
-  for (const t of tracks)
+  for (const t of tracks) {
+    if (t.times.length === 0) throw new RangeError(`the track of input ${t.input} has no corner`);
     if (t.times.length !== t.values.length || t.times.some((v, i) => i > 0 && v < t.times[i - 1]))
       throw new RangeError(`the track of input ${t.input} is not in the order of time`);
+  }
   const corners = tracks.flatMap((t) => t.times.filter((v) => v > from && v < to));
   const times = [from, ...corners, to].sort((a, b) => a - b);
   const distinct = times.filter(

@@ -5,6 +5,8 @@ import type { F, Pattern, System } from './system.ts';
 const STEADY = 1e-13;
 /** Newton's last correction relative to the contents: the digits of the answer. */
 const DIGITS = 1e-11;
+/** A small residual counts only with small corrections: contents that grow without end hide a constant gain. */
+const SMALL_CORRECTION = 1e-6;
 const MOST_STEPS = 400;
 /** First pseudo-time step [s]: shorter than any mixer, so that the start is followed, not jumped over. */
 const FIRST_STEP = 30;
@@ -35,6 +37,11 @@ export function steadyState(system: System, w: F, p: F, start: F): Steady {
   const trial = new Float64Array(n);
   const g = new Float64Array(n);
   rows.residual(x, w, p, f);
+  const lost = f.findIndex((v) => !Number.isFinite(v));
+  if (lost >= 0) {
+    const reason = 'the balances have no finite value at the start';
+    return { found: false, reason, place: system.places[lost].path, residual: Infinity };
+  }
   let size = norm(system, x, f);
   let tau = FIRST_STEP;
   let at = worst(system, x, f);
@@ -70,16 +77,18 @@ export function steadyState(system: System, w: F, p: F, start: F): Steady {
       continue;
     }
     const after = norm(system, trial, g);
+    at = worst(system, x, dx);
     x = Float64Array.from(trial);
     f.set(g);
-    at = worst(system, x, f);
     newton = tau >= NEWTON_STEP ? newton + 1 : 0;
     if (newton >= 1 && change <= DIGITS) return { found: true, state: x, iterations: k, residual: after };
-    if (newton >= 2 && after <= STEADY) return { found: true, state: x, iterations: k, residual: after };
+    if (newton >= 2 && after <= STEADY && change <= SMALL_CORRECTION)
+      return { found: true, state: x, iterations: k, residual: after };
     const growth = after > 0 ? size / after : 10;
     // The residual may rise at first while fronts form: the step still grows as long as changes stay small.
     tau = Math.min(NEWTON_STEP, tau * Math.min(10, Math.max(change < 0.3 ? 1.8 : 0.5, growth * 1.5)));
-    if (change < 1e-3) tau = Math.min(NEWTON_STEP, tau * 100);
+    // Small changes with a rising residual are the departure from a state that repels: it is not to be jumped over.
+    if (change < 1e-3 && (after < size || after <= STEADY)) tau = Math.min(NEWTON_STEP, tau * 100);
     size = after;
   }
   return {
@@ -97,8 +106,7 @@ function norm(system: System, x: F, v: F): number {
   let largest = 0;
   for (let i = 0; i < v.length; i++) {
     if (system.places[i].kind === 'total') continue;
-    const r = Math.abs(v[i]) / contents(system, x, i);
-    if (!(r <= largest)) largest = r;
+    largest = Math.max(largest, Math.abs(v[i]) / contents(system, x, i));
   }
   return largest;
 }
@@ -200,7 +208,7 @@ class SteadyRows {
     }
     for (const s of this.#sums) {
       values.fill(0, rowStart[s.row], rowStart[s.row + 1]);
-      for (const k of s.slots) values[k] = -1;
+      for (const k of s.slots) values[k] -= 1;
     }
   }
 }

@@ -25,24 +25,29 @@ const DIGITS = 1e-9;
 
 /**
  * Returns the table after checking it against itself: with Γ = (I/γ − C)⁻¹, the nodes are the row sums of A·Γ, the
- * weights of f_t are the row sums of Γ, and the weights m·Γ sum to 1.
+ * weights of f_t are the row sums of Γ, and the weights m·Γ sum to 1 while those of each term of dense output sum
+ * to 0.
  *
  * @throws Error naming the table and the first relation that does not hold.
  */
 export function checked(t: Tableau): Tableau {
   const s = t.alpha.length;
-  const gamma = inverse(t);
-  const rowSum = (row: readonly number[]): number =>
-    row.reduce((sum, v, j) => sum + v * gamma[j].reduce((q, g) => q + g, 0), 0);
+  const ofGamma = inverse(t).map((row) => row.reduce((sum, v) => sum + v, 0));
+  const rowSum = (row: readonly number[]): number => row.reduce((sum, v, j) => sum + v * ofGamma[j], 0);
   const fail = (what: string): never => {
     throw new Error(`table ${t.name}: ${what} does not agree with its coefficients`);
   };
+  // Written so that a missing number, which compares as false, is refused as well.
+  const near = (x: number, y: number): boolean => Math.abs(x - y) <= DIGITS;
   for (let i = 0; i < s; i++) {
     if (t.a[i].length !== i || t.c[i].length !== i) fail(`the shape of stage ${i + 1}`);
-    if (Math.abs(rowSum(t.a[i]) - t.alpha[i]) > DIGITS) fail(`node ${i + 1}`);
-    if (Math.abs(gamma[i].reduce((q, g) => q + g, 0) - t.d[i]) > DIGITS) fail(`f_t weight ${i + 1}`);
+    if (!near(rowSum(t.a[i]), t.alpha[i])) fail(`node ${i + 1}`);
+    if (!near(ofGamma[i], t.d[i])) fail(`f_t weight ${i + 1}`);
   }
-  if (Math.abs(rowSum([...t.a[s - 1], 1]) - 1) > DIGITS) fail('the sum of the weights');
+  if (!near(rowSum([...t.a[s - 1], 1]), 1)) fail('the sum of the weights');
+  t.dense.forEach((row, m) => {
+    if (!near(rowSum(row), 0)) fail(`dense output ${m + 1}`);
+  });
   return Object.freeze(t);
 }
 
