@@ -15,7 +15,7 @@ export const integrators: Readonly<Record<string, MakeIntegrator>> = {
 
 /** Guards that switch more often than this in one run chatter. */
 const MOST_EVENTS = 10_000;
-/** A crossing is located to this fraction of the step, and no finer than the clock can tell: a few last places. */
+/** A crossing is located to this fraction of the step, and no finer than the last places of the clock. */
 const LOCATED = 1e-10;
 const CLOCK = 8 * Number.EPSILON;
 

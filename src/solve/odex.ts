@@ -27,8 +27,8 @@ const { Solver } = createRequire(import.meta.url)('odex') as { Solver: new (n: n
 /**
  * Where stability and not accuracy bounds the step, the error control holds h at the edge of stability. There a
  * step damps the error e no more, and the estimate, the difference of two columns of the scheme, shows a fraction
- * |R_k − R_(k−1)| of it only: e stands at 20 … 45 tolerances on plants. Such steps are no longer for a smaller
- * tolerance, so asking for a tenth costs nothing there.
+ * |R_k − R_(k−1)| of it only: e stands at 20 … 45 tolerances on plants. A smaller tolerance makes such steps no
+ * shorter, so asking for a tenth of it costs nothing there.
  */
 const MARGIN = 10;
 /** Steps between two places where a run may pause: the scheme starts afresh there, whether it pauses or not. */
@@ -94,12 +94,11 @@ export class Extrapolation implements Integrator {
     inputs.slope(w);
     const moving = w.some((v) => v !== 0);
     inputs.value(from, w);
-    const smallest = SMALLEST * Math.max(Math.abs(from), Math.abs(to));
     let reached = from;
     let asked = Number.NaN;
     let steps = 0;
     let bad = { place: 0, time: Infinity };
-    let failed = false;
+    let failed = -1;
     const f = (t: number, y: number[]): F => {
       state.set(y);
       if (moving) inputs.value(t, w);
@@ -110,13 +109,14 @@ export class Extrapolation implements Integrator {
       // The earliest is to blame: those after it start from what it has spoilt.
       if (t < bad.time) bad = { place: lost, time: t };
       // Right beside the point reached a smaller step helps no more: what is no number passes, and ends the run.
-      if (t - reached > smallest) for (let i = 0; i < n; i++) dx[i] = ABSURD * this.#scale[i];
+      if (t - reached > SMALLEST * Math.max(Math.abs(t), SMALLEST * (to - from)))
+        for (let i = 0; i < n; i++) dx[i] = ABSURD * this.#scale[i];
       return dx;
     };
     const result = solver.solve(f, from, Array.from(x), to, (_, t0, t1, y, dense) => {
       if (t1 === t0) return undefined;
-      failed = !y.every(Number.isFinite);
-      if (failed) return false;
+      failed = y.findIndex((v) => !Number.isFinite(v));
+      if (failed >= 0) return false;
       steps += 1;
       const step: Step = {
         t0,
@@ -139,9 +139,9 @@ export class Extrapolation implements Integrator {
     });
     work.steps += steps;
     work.rejectedByError += result.nStep - steps;
-    if (failed) {
-      const place = this.#system.places[bad.place].path;
-      return { ended: 'failed', stop: { reason: 'not-finite', time: reached, place } };
+    if (failed >= 0) {
+      const { path } = this.#system.places[bad.time < Infinity ? bad.place : failed];
+      return { ended: 'failed', stop: { reason: 'not-finite', time: reached, place: path } };
     }
     if (!Number.isNaN(asked)) return { ended: 'asked', time: asked };
     if (result.outcome === 0) return { ended: 'at-end' };

@@ -24,7 +24,7 @@ export class PivotedElimination {
         this.#columns[pattern.column[k]].push({ row: i, from: k });
   }
 
-  /** Returns false where W is singular to working precision. */
+  /** Returns false where a column is left without any pivot: W is singular to the last digit. */
   factor(values: F, shift: number): boolean {
     const n = this.#size;
     const x = new Float64Array(n);

@@ -15,7 +15,7 @@ const GROW = 6;
 const CUT = 0.25;
 /** A trial state may lie below its floor by this many absolute tolerances. */
 const BELOW_FLOOR = 10;
-/** Smallest step, relative to the time reached and to the stretch: below it t + h loses its digits. */
+/** Smallest step, relative to the time reached, below which t + h loses its digits; and its like at the very start. */
 const SMALLEST = 1e-13;
 
 /** Linearly implicit one-step integrator: one Jacobian and one factorisation a step, exact f_t along ramps. */
@@ -81,7 +81,6 @@ export class Rosenbrock implements Integrator {
     const exponent = -1 / table.order;
     inputs.slope(this.#dw);
     this.#moving = this.#dw.some((v) => v !== 0);
-    const smallest = SMALLEST * Math.max(Math.abs(from), Math.abs(to), to - from);
     const dense = new DenseStep(x, this.#x1, this.#u, table);
     let t = from;
     let grow = GROW;
@@ -105,6 +104,8 @@ export class Rosenbrock implements Integrator {
           t = dense.t1;
           if (end < t) dense.at(end, this.#trial);
           x.set(end < t ? this.#trial : this.#x1);
+          if (!(end < t) && t < to && this.#stuck(t, to - from))
+            return failed(this.#tooSmall(t, x, inputs, 'error'));
           if (end <= t) return { ended: 'asked', time: end };
           if (this.#natural < smallest && t < to) return failed(this.#tooSmall(t, x, inputs, 'error'));
           break;
@@ -119,10 +120,14 @@ export class Rosenbrock implements Integrator {
           else work.rejectedBySingular += 1;
           this.#natural = h * CUT;
         }
-        if (this.#natural < smallest) return failed(this.#tooSmall(t, x, inputs, verdict));
+        if (this.#stuck(t, to - from)) return failed(this.#tooSmall(t, x, inputs, verdict));
       }
     }
     return { ended: 'at-end' };
+  }
+
+  #stuck(t: number, span: number): boolean {
+    return this.#natural < SMALLEST * Math.max(Math.abs(t), SMALLEST * span);
   }
 
   #tooSmall(time: number, x: F, inputs: Inputs, verdict: Exclude<Verdict, 'accepted'>): Stop {

@@ -5,7 +5,7 @@ import type { F, Pattern, System } from './system.ts';
 const STEADY = 1e-13;
 /** Newton's last correction relative to the contents: the digits of the answer. */
 const DIGITS = 1e-11;
-/** A small residual counts only while corrections are small too: contents that grow without end hide a constant gain. */
+/** A small residual counts only with small corrections: contents that grow without end hide a constant gain. */
 const SMALL_CORRECTION = 1e-6;
 const MOST_STEPS = 400;
 /** First pseudo-time step [s]: shorter than any mixer, so that the start is followed, not jumped over. */

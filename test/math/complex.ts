@@ -24,7 +24,7 @@ const STEP = 1e-100;
 
 /**
  * A step so small along one input that the imaginary part of the value is the slope: no difference is formed.
- * `largest` is the largest value or slope on the way. W. Squire and G. Trapp, SIAM Rev. 40, 110 (1998).
+ * `largest` is the largest value or slope on the way. W. Squire and G. Trapp, SIAM Rev. 40, 110 (1998) (from memory).
  */
 export function complexStep(
   t: Tree,

@@ -11,7 +11,7 @@ interface Point {
   readonly x: F;
 }
 
-/** Largest difference, in units of tolerance·(scale + |x|), between points of one method and the solution of another. */
+/** Largest difference, in units of tolerance·(scale + |x|), of odex from the implicit method at far less tolerance. */
 function difference(
   system: System,
   schedule: Schedule,

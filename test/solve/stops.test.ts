@@ -9,7 +9,7 @@ import { tanks } from './problems/tanks.ts';
 const methods = ['rodas5p', 'rodas4', 'odex'];
 const implicit = methods.slice(0, 2);
 
-/** The second of three has a balance only while the first is below 1; the third, listed before it, receives from it. */
+/** One of three has a balance only while the first is below 1; another, listed before it, receives from it. */
 const loses: Equations = {
   name: 'loses',
   size: 3,
@@ -22,8 +22,8 @@ const loses: Equations = {
   places: [{ path: 'clock' }, { path: 'receiver' }, { path: 'culprit' }],
 };
 
-describe.each(methods)('a run that cannot go on, %s', (method) => {
-  it('without a finite balance names time and place, and keeps what was computed', () => {
+describe.each(methods)('runs that cannot go on, %s', (method) => {
+  it('name time and place where a balance is lost, and keep what was computed', () => {
     const r = solve(dense(loses), [0, 0, 0], idle([0, 5]), options(method, 1e-6));
     expect(r.stop).toMatchObject({ reason: 'not-finite', place: 'culprit' });
     expect(r.stop.time).toBe(r.time);
@@ -32,13 +32,13 @@ describe.each(methods)('a run that cannot go on, %s', (method) => {
     expect(r.state.every(Number.isFinite)).toBe(true);
   });
 
-  it('is found at the very start', () => {
+  it('are found at the very start', () => {
     const r = solve(dense(loses), [2, 0, 0], idle([0, 5]), options(method, 1e-6));
     expect(r.stop).toEqual({ reason: 'not-finite', time: 0, place: 'culprit' });
     expect([...r.state]).toEqual([2, 0, 0]);
   });
 
-  it('is not given up for a trial state alone: a step that overshoots is tried again, shorter', () => {
+  it('are not given up for a trial state alone: a step that overshoots is tried again, shorter', () => {
     // Towards zero like e^(−t): an explicit step of more than 1 would overshoot, where the balance has no value.
     const decay: Equations = {
       name: 'decay',
@@ -51,7 +51,7 @@ describe.each(methods)('a run that cannot go on, %s', (method) => {
     expect(Math.abs(r.state[0] - Math.exp(-3))).toBeLessThan(1e-5);
   });
 
-  it('gives up after the steps that are allowed in the whole run', () => {
+  it('end after the steps that are allowed in the whole run', () => {
     const corners = Array.from({ length: 50 }, (_, k) => k);
     const o = { ...options(method, 1e-6, 0.1), maximumSteps: 20 };
     const r = solve(dense(tanks(2, 1)), [0, 0], idle(corners, [1]), o);
@@ -62,7 +62,7 @@ describe.each(methods)('a run that cannot go on, %s', (method) => {
     expect(r.time).toBeLessThan(49);
   });
 
-  it('ends its watchers with the last state', () => {
+  it('end their watchers with the last state', () => {
     const ends: [number, number][] = [];
     const r = solve(dense(loses), [0, 0, 0], idle([0, 5]), options(method, 1e-6), [
       { end: (t, x) => ends.push([t, x[0]]) },
@@ -134,9 +134,9 @@ describe.each(methods)('turns, %s', (method) => {
     parameters: none,
     schedule: makeSchedule(
       Float64Array.of(0),
-      [{ input: 0, times: [5, 5, 200, 1e5], values: [0, 1, 1, 3] }],
+      [{ input: 0, times: [5, 5, 200, 3e5], values: [0, 1, 1, 3] }],
       0,
-      1e5,
+      3e5,
     ),
     initial: new Float64Array(4),
   };
@@ -156,7 +156,7 @@ describe.each(methods)('turns, %s', (method) => {
     const whole = logger();
     const plain = integrate(problem, o, [whole]);
     expect(plain.events).toHaveLength(1);
-    for (const every of [1, 3]) {
+    for (const every of [1, 2]) {
       let asked = 0;
       let given = 0;
       const shared = logger();
@@ -182,7 +182,7 @@ describe.each(methods)('turns, %s', (method) => {
     expect(outside).toBe(true);
     expect(run.stop).toEqual({ reason: 'interrupted', time: run.time });
     expect(run.time).toBeGreaterThan(0);
-    expect(run.time).toBeLessThan(1e5);
+    expect(run.time).toBeLessThan(3e5);
     expect(given).toBe(2);
     const whole = logger();
     integrate(problem, o, [whole]);

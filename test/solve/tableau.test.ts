@@ -5,7 +5,8 @@ import { checked, type Tableau } from '../../src/solve/tableau.ts';
 
 /*
  * Order conditions by rooted trees: E. Hairer and G. Wanner, Solving Ordinary Differential Equations II, 2nd ed.
- * (1996), Sec. IV.7, Theorem 7.4. With β = α + Γ a method has order p where for every tree of at most p nodes
+ * (1996), Sec. IV.7, Theorem 7.4 (from memory). With β = α + Γ a method has order p where for every tree of at
+ * most p nodes
  *
  *   Σᵢ bᵢ·φᵢ = 1/density,   φᵢ(leaf) = 1,   φᵢ(tree) = Πᵤ Σⱼ Mᵢⱼ·φⱼ(u) over its branches u,
  *

@@ -5,7 +5,7 @@ import { type Equations, idle } from './dense.ts';
 /** An initial value problem whose solution can be written down. */
 export interface ExactProblem extends Equations {
   readonly end: number;
-  /** Equal steps in the coarsest of the solutions that an order is read from: past the first bends, above rounding. */
+  /** Equal steps in the coarsest solution that an order is read from: few enough to stay above rounding. */
   readonly coarsest: number;
   schedule(): Schedule;
   exact(t: number): readonly number[];

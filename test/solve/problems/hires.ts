@@ -3,8 +3,8 @@ import type { ReferenceProblem } from './reference.ts';
 /**
  * HIRES: light response of a plant pigment, eight species.
  *
- * Problem: E. Schäfer, J. Math. Biol. 2, 41 (1975); E. Hairer and G. Wanner, Solving Ordinary Differential
- * Equations II, 2nd ed. (1996), Sec. IV.10. Digits: Test Set for IVP Solvers (CWI Amsterdam, Bari).
+ * Problem: E. Schäfer, J. Math. Biol. 2, 41 (1975) (from memory); E. Hairer and G. Wanner, Solving Ordinary
+ * Differential Equations II, 2nd ed. (1996), Sec. IV.10. Digits: Test Set for IVP Solvers (CWI Amsterdam, Bari).
  */
 export const hires: ReferenceProblem = {
   name: 'hires',

@@ -3,8 +3,9 @@ import type { ReferenceProblem } from './reference.ts';
 /**
  * Oregonator: a limit cycle of the Belousov-Zhabotinskii reaction, with pulses over five decades.
  *
- * Problem: R. J. Field and R. M. Noyes, J. Chem. Phys. 60, 1877 (1974); E. Hairer and G. Wanner, Solving Ordinary
- * Differential Equations II, 2nd ed. (1996), Sec. IV.10. Digits: Test Set for IVP Solvers (CWI Amsterdam, Bari).
+ * Problem: R. J. Field and R. M. Noyes, J. Chem. Phys. 60, 1877 (1974) (from memory); E. Hairer and G. Wanner,
+ * Solving Ordinary Differential Equations II, 2nd ed. (1996), Sec. IV.10. Digits: Test Set for IVP Solvers (CWI
+ * Amsterdam, Bari).
  */
 export const oregonator: ReferenceProblem = {
   name: 'oregonator',

@@ -3,8 +3,8 @@ import type { ReferenceProblem } from './reference.ts';
 /**
  * Robertson's autocatalytic reaction: rates from 4e-2 to 3e7, followed over eleven decades of time.
  *
- * Problem: H. H. Robertson, in J. Walsh (ed.), Numerical Analysis, an Introduction, Academic Press (1966), p. 178;
- * E. Hairer and G. Wanner, Solving Ordinary Differential Equations II, 2nd ed. (1996), Sec. IV.1.
+ * Problem: H. H. Robertson, in J. Walsh (ed.), Numerical Analysis, an Introduction, Academic Press (1966), p. 178
+ * (from memory); E. Hairer and G. Wanner, Solving Ordinary Differential Equations II, 2nd ed. (1996), Sec. IV.1.
  * Digits: t = 1e11 is the end point printed in the Test Set for IVP Solvers (CWI Amsterdam, Bari). The earlier
  * times were computed with SciPy 1.10, Radau, rtol 1e-12; published values of t = 40 agree with them to 1e-11.
  */
