@@ -107,7 +107,6 @@ export class Rosenbrock implements Integrator {
           if (!(end < t) && t < to && this.#stuck(t, to - from))
             return failed(this.#tooSmall(t, x, inputs, 'error'));
           if (end <= t) return { ended: 'asked', time: end };
-          if (this.#natural < smallest && t < to) return failed(this.#tooSmall(t, x, inputs, 'error'));
           break;
         }
         grow = 1;
