@@ -11,6 +11,7 @@ import { entering } from './entering.ts';
 import { passed, same } from './kernels.ts';
 import type { Ref } from './ledger.ts';
 import { type Flows, type Laws, type WrittenStage, writeStage } from './stage.ts';
+import { suitable } from './suitable.ts';
 import { type WrittenTank, writeTank, writeTankEvents } from './tank.ts';
 
 /** A plant ready to be solved: the System, its numbers at the start, and what is needed to read the answer. */
@@ -35,10 +36,11 @@ export interface AssembleOptions {
 /**
  * Scenario → System.
  *
- * @throws Refusal where streams do not join up.
+ * @throws Refusal where streams do not join up, or where the equations are not made for what they join.
  */
 export function assemble(s: Scenario, options: AssembleOptions = {}): Plant {
   const net = network(s);
+  suitable(s, net);
   const book = new Book(s, net);
   const moving = options.moving ?? new Set(s.upsets.map((u) => u.quantity));
   const writer = new PlantWriter(s, net, book, moving);

@@ -77,20 +77,23 @@ function interpolate(
 
 /** No flow and no concentration is negative: the line is cut at zero, with corners where it meets it. */
 function clampAtZero(line: { times: number[]; values: number[] }): Line {
-  const first = line.values.findIndex((v) => v < 0);
-  if (first < 0) return { ...line, clampedAt: null };
+  if (line.values.every((v) => v >= 0)) return { ...line, clampedAt: null };
   const times: number[] = [];
   const values: number[] = [];
-  line.times.forEach((t, i) => {
-    const v = line.values[i];
-    if (i > 0 && v < 0 !== line.values[i - 1] < 0 && t > line.times[i - 1]) {
-      times.push(
-        line.times[i - 1] + ((t - line.times[i - 1]) * line.values[i - 1]) / (line.values[i - 1] - v),
-      );
-      values.push(0);
-    }
+  let clampedAt: number | null = null;
+  const push = (t: number, v: number): void => {
     times.push(t);
     values.push(Math.max(0, v));
+  };
+  line.times.forEach((t, i) => {
+    const v = line.values[i];
+    const [t0, v0] = [line.times[i - 1], line.values[i - 1]];
+    const crosses = i > 0 && v < 0 !== v0 < 0 && t > t0;
+    // Rounding must not carry the crossing beyond the corner.
+    const met = crosses ? Math.min(t, t0 + ((t - t0) * v0) / (v0 - v)) : t;
+    if (crosses) push(met, 0);
+    if (v < 0) clampedAt ??= met;
+    push(t, v);
   });
-  return { times, values, clampedAt: line.times[first] };
+  return { times, values, clampedAt };
 }

@@ -11,7 +11,7 @@ export function entering(
   t: Train,
 ): { aqueous: readonly number[]; organic: readonly number[] } {
   const { aqueous, organic } = t.initial;
-  const liquor = (): readonly number[] => upstream(s, net, t.aqueous.from, 'aqueous', []);
+  const liquor = (): readonly number[] => upstream(s, net, t.aqueous.from, 'aqueous');
   return {
     aqueous:
       aqueous === 'as entering'
@@ -19,17 +19,17 @@ export function entering(
         : aqueous === 'barren'
           ? liquor().map((c, k) => (k < s.solutes.length ? 0 : c))
           : aqueous,
-    organic: organic === 'as entering' ? upstream(s, net, t.organic.from, 'organic', []) : organic,
+    organic: organic === 'as entering' ? upstream(s, net, t.organic.from, 'organic') : organic,
   };
 }
 
 /** Composition at time zero of the feed or tank from which a stream comes, through however many trains. */
-function upstream(
+export function upstream(
   s: Scenario,
   net: Network,
   name: string,
   phase: Phase,
-  seen: readonly string[],
+  seen: readonly string[] = [],
 ): readonly number[] {
   const { maker } = net.streams.get(name) as Stream;
   if (maker.kind === 'feed') return s.feeds[maker.index].content;

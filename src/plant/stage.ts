@@ -124,10 +124,11 @@ export function designRate(mixer: Mixer, flows: Flows['design']): number {
 
 function writeTransfer(book: Book, path: string, mixer: Mixer, laws: Laws, flows: Flows, m: InMixer): void {
   const { chemistry, numbers } = laws;
-  if (chemistry.solutes.length === 0) return;
   const { ledger, s } = book;
-  const ka = ledger.parameter(`${path}.mixer.ka`, '1/s', designRate(mixer, flows.design));
+  // A mixer can be stopped even where nothing transfers in it.
   const running = book.input({ path: `${path}.mixer`, unit: '', scale: 1 }, 1);
+  if (chemistry.solutes.length === 0) return;
+  const ka = ledger.parameter(`${path}.mixer.ka`, '1/s', designRate(mixer, flows.design));
   const { aqueous, organic } = m.places;
   ledger.flux(
     transferKernel(s, mixer, chemistry),

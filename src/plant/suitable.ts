@@ -1,13 +1,13 @@
+import { formulaName } from '../scenario/names.ts';
 import type { Maker, Network } from '../scenario/network.ts';
 import { type Problem, Refusal } from '../scenario/refusal.ts';
 import type { Law, Phase, Scenario, Train } from '../scenario/scenario.ts';
 import { NEARLY_EMPTY } from './book.ts';
-import { formulaIndex } from './chemistry.ts';
 import { track } from './course.ts';
 import { upstream } from './entering.ts';
 import { asWritten } from './laws/formula.ts';
 
-type Of<L extends Law['law']> = Extract<Law, { law: L }>;
+type Exchange = Extract<Law, { law: 'exchange' }>;
 
 /** Points at which a formula is looked at, closer together near zero, where isotherms bend. */
 const POINTS = 400;
@@ -29,18 +29,18 @@ export function suitable(s: Scenario, net: Network): void {
   if (problems.length > 0) throw new Refusal(problems);
 }
 
-/** Least and most of an input over the schedule. */
-function extremes(s: Scenario, quantity: string, initial: number): readonly [number, number] {
+/** Least and most of an input, its design value and the schedule taken together. */
+function extremes(s: Scenario, quantity: string, design: number): { least: number; most: number } {
   const own = s.upsets.filter((u) => u.quantity === quantity);
-  const { values } = track(initial, own, s.horizon);
-  return [Math.min(...values), Math.max(...values)];
+  const values = [design, ...track(design, own, s.horizon).values];
+  return { least: Math.min(...values), most: Math.max(...values) };
 }
 
 /** The largest concentration of a solute that any aqueous feed brings; of any other source where none has it. */
 function largestFeed(s: Scenario, solute: number): number {
   const most = s.feeds.map((f) => ({
     phase: f.phase,
-    value: extremes(s, `${f.name}.${s.solutes[solute]}`, f.content[solute])[1],
+    value: extremes(s, `${f.name}.${s.solutes[solute]}`, f.content[solute]).most,
   }));
   const aqueous = Math.max(0, ...most.flatMap((q) => (q.phase === 'aqueous' ? [q.value] : [])));
   if (aqueous > 0) return aqueous;
@@ -49,11 +49,12 @@ function largestFeed(s: Scenario, solute: number): number {
 
 /** f(0) = 0 and f′ > 0 on 0 … 2 × the largest feed, other components as they enter the train. */
 function risingFormulas(s: Scenario, net: Network, t: Train): Problem[] {
+  const names = [...s.solutes, ...s.species].map(formulaName);
   const entering = upstream(s, net, t.aqueous.from, 'aqueous');
   return t.equilibrium.flatMap((law, i): Problem[] => {
     if (law?.law !== 'formula') return [];
     const f = asWritten(law);
-    const at = f.others.map((name) => entering[formulaIndex(s, name)]);
+    const at = f.others.map((name) => entering[names.indexOf(name)]);
     const reach = 2 * largestFeed(s, i);
     const complain = (message: string): Problem[] => [
       { path: ['trains', t.name, 'equilibrium', s.solutes[i], 'organic'], message },
@@ -75,16 +76,13 @@ function risingFormulas(s: Scenario, net: Network, t: Train): Problem[] {
 
 /** The free extractant is what all solutes together leave of it, so there is one total. */
 function sameExtractant(s: Scenario, t: Train): Problem[] {
-  const laws = t.equilibrium.flatMap((law, i) => (law?.law === 'exchange' ? [{ law, i }] : []));
-  return laws.slice(1).flatMap(({ law, i }): Problem[] => {
-    const [first] = laws as { law: Of<'exchange'>; i: number }[];
-    if (law.extractant === first.law.extractant) return [];
-    return [
-      {
-        path: ['trains', t.name, 'equilibrium', s.solutes[i], 'extractant'],
-        message: `'${s.solutes[first.i]}' and '${s.solutes[i]}' share one extractant, but ${show(first.law.extractant)} and ${show(law.extractant)} g/L are stated`,
-      },
-    ];
+  const first = t.equilibrium.findIndex((law) => law?.law === 'exchange');
+  return t.equilibrium.flatMap((law, i): Problem[] => {
+    if (law?.law !== 'exchange') return [];
+    const { extractant } = t.equilibrium[first] as Exchange;
+    if (law.extractant === extractant) return [];
+    const message = `'${s.solutes[first]}' and '${s.solutes[i]}' share one extractant, but ${show(extractant)} and ${show(law.extractant)} g/L are stated`;
+    return [{ path: ['trains', t.name, 'equilibrium', s.solutes[i], 'extractant'], message }];
   });
 }
 
@@ -101,25 +99,20 @@ function roomySettlers(s: Scenario, net: Network, t: Train): Problem[] {
     const design = own.design / (own.design + range[other].design);
     const most = own.most / (own.most + range[other].least);
     const small = t.stages.findIndex(
-      ({ mixer, settler }) =>
-        mixer.volume * (most - design) > settler[phase] * (1 - NEARLY_EMPTY) * (1 + Number.EPSILON),
+      ({ mixer, settler }) => mixer.volume * (most - design) > settler[phase] * (1 - NEARLY_EMPTY),
     );
     if (small < 0) return [];
     const { mixer, settler } = t.stages[small];
-    const why = range[other].least === 0 ? `stops` : `is least`;
-    return [
-      {
-        path: ['trains', t.name, 'settler'],
-        message: `the settler of stage ${small + 1} is too small: when the ${other} flow ${why}, its mixer takes up ${show(mixer.volume * (most - design))} m^3 of ${phase}, but the ${phase} layer holds ${show(settler[phase])} m^3`,
-      },
-    ];
+    const taken = show(mixer.volume * (most - design));
+    const message = `the settler of stage ${small + 1} is too small: at ${show(3600 * range[other].least)} m^3/h of ${other} its mixer takes up ${taken} m^3 of ${phase} more, but the ${phase} layer holds only ${show(settler[phase])} m^3`;
+    return [{ path: ['trains', t.name, 'settler'], message }];
   });
 }
 
 function flowRange(s: Scenario, net: Network, m: Maker): { design: number; least: number; most: number } {
   const { name, flow } = m.kind === 'feed' ? s.feeds[m.index] : s.tanks[m.index];
   const design = flow as number;
-  const [least, most] = extremes(s, `${name}.flow`, design);
+  const { least, most } = extremes(s, `${name}.flow`, design);
   return { design, least: runsDry(s, net, m) ? 0 : least, most };
 }
 

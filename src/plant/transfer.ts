@@ -1,5 +1,6 @@
 import { add, div, type Expr, mul, sub } from '../math/expression.ts';
 import { type Kernel, kernel } from '../math/kernel.ts';
+import { smoothStep } from '../math/shapes.ts';
 import type { Mixer, Scenario } from '../scenario/scenario.ts';
 import { type Chemistry, speciesFrom } from './chemistry.ts';
 import { perVolume } from './kernels.ts';
@@ -8,13 +9,19 @@ import { perVolume } from './kernels.ts';
 export const VANISHING = 1e-4;
 /** Hold-up at which the interfacial area starts to feel that a phase runs out. */
 const RUNS_OUT = 0.02;
+/** Share of the mixer that counts as a trace of a phase: too little to have an interface. */
+const TRACE = 1e-3;
+
+/** 1 as long as there is more than a trace of a phase. */
+const present = (share: Expr): Expr => smoothStep(div(share, TRACE));
 
 /**
  * How the interfacial area follows the hold-ups: proportional to what is dispersed as long as there is a
- * continuous phase; `fixed`, independent of it. Vanishes with either phase.
+ * continuous phase; `fixed`, independent of it. Vanishes with either phase, faster than the phase itself: what is
+ * left of a phase that runs out would otherwise be exchanged for ever at a rate that its noise decides.
  */
 export function area(dispersed: Expr, continuous: Expr, fixed: boolean): Expr {
-  const both = mul(dispersed, continuous);
+  const both = mul(dispersed, continuous, present(dispersed), present(continuous));
   const bound = add(continuous, RUNS_OUT);
   return fixed ? div(both, mul(add(dispersed, RUNS_OUT), bound)) : div(both, bound);
 }

@@ -30,6 +30,8 @@ export interface LimitReport {
 
 /** Points looked at in each step, the end included: a spell between two of them must be shorter than a fifth of a step. */
 const LOOKS = 5;
+/** Share of a step from its end within which a peak differs from the end by less than a millionth of the bend. */
+const BESIDE = 1e-3;
 
 /** Follows one limit through a run, on dense output: crossings, worst value, amount beyond. */
 export class LimitWatch implements Watcher {
@@ -45,6 +47,8 @@ export class LimitWatch implements Watcher {
   #began = false;
   #atStart = false;
   #over = false;
+  /** Excess where the last step or stretch ended. */
+  #last = 0;
   #beyond = 0;
   #outside = 0;
   #worst = { value: Number.NaN, time: 0 };
@@ -65,13 +69,14 @@ export class LimitWatch implements Watcher {
 
   begin: NonNullable<Watcher['begin']> = (t, x, w) => {
     this.#plant.system.output(x, w, this.#plant.parameters, this.#y);
-    const over = this.#excess() > 0;
+    this.#last = this.#excess();
+    const over = this.#last > 0;
     if (!this.#began) {
       this.#began = true;
       this.#atStart = over;
       if (over) this.#spells.push({ from: t, to: null });
-      this.#consider(t);
     } else if (over !== this.#over) this.#turn(t, over);
+    this.#consider(t);
     this.#over = over;
   };
 
@@ -81,7 +86,7 @@ export class LimitWatch implements Watcher {
       i === LOOKS ? step.t1 : step.t0 + (span * i) / LOOKS,
     );
     let from = times[0];
-    let best = { at: -1, excess: -Infinity };
+    let best = { at: 0, excess: this.#last };
     for (let i = 1; i <= LOOKS; i++) {
       const to = times[i];
       this.#look(step, inputs, to);
@@ -96,9 +101,14 @@ export class LimitWatch implements Watcher {
         this.#over = over;
       } else if (over) this.#accrue(step, inputs, from, to);
       from = to;
+      this.#last = excess;
     }
-    if (best.at > 0 && best.at < LOOKS && best.excess >= this.#sign * (this.#worst.value - this.#limit.value))
-      this.#climb(step, inputs, times[best.at - 1], times[best.at + 1]);
+    if (best.excess < this.#sign * (this.#worst.value - this.#limit.value)) return;
+    // The peak lies between the neighbours of the best look. At an end of the step there is one only if the curve
+    // rises from there into the step.
+    const inwards = best.at === 0 ? BESIDE : best.at === LOOKS ? -BESIDE : 0;
+    if (inwards !== 0 && this.#excessAt(step, inputs, times[best.at] + inwards * span) <= best.excess) return;
+    this.#climb(step, inputs, times[Math.max(0, best.at - 1)], times[Math.min(LOOKS, best.at + 1)]);
   };
 
   report(): LimitReport {

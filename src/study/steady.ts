@@ -1,4 +1,5 @@
 import { assemble, type Plant } from '../plant/assemble.ts';
+import { NEARLY_EMPTY } from '../plant/book.ts';
 import type { Scenario } from '../scenario/scenario.ts';
 import type { F } from '../solve/system.ts';
 import { diagrams } from './diagram.ts';
@@ -30,7 +31,7 @@ function drifts(plant: Plant, x: F, change: F): SteadyResult['drifts'] {
     const at = plant.system.places.findIndex((p) => p.path === `${t.name}.volume`);
     const rate = at < 0 ? 0 : change[at];
     if (Math.abs(rate) < 1e-12 * t.volume) return [];
-    const room = rate > 0 ? t.volume - x[at] : x[at];
+    const room = rate > 0 ? t.volume - x[at] : x[at] - NEARLY_EMPTY * t.volume;
     return [{ tank: t.name, rate, until: room / Math.abs(rate) }];
   });
 }

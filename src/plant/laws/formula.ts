@@ -70,7 +70,12 @@ function shape(law: FormulaLaw): Shape {
   const others: string[] = [];
   const numbers: LawNumber[] = [];
   const collect = (f: Formula): void => {
-    if (f.kind === 'name' && f.name !== 'c_a' && !Object.hasOwn(law.constants, f.name) && !others.includes(f.name))
+    if (
+      f.kind === 'name' &&
+      f.name !== 'c_a' &&
+      !Object.hasOwn(law.constants, f.name) &&
+      !others.includes(f.name)
+    )
       others.push(f.name);
     if (f.kind === 'apply') f.args.forEach(collect);
   };
