@@ -39,14 +39,15 @@ export interface AssembleOptions {
 /**
  * Scenario → System.
  *
- * @throws Refusal where streams do not join up.
+ * @throws Refusal where streams do not join up, or where the equations are not made for what they join.
  */
 export function assemble(s: Scenario, options: AssembleOptions = {}): Plant {
   const net = network(s);
-  suitable(s, net);
+  const plans = designs(s, net);
+  suitable(s, net, plans);
   const book = new Book(s, net);
   const moving = options.moving ?? new Set(s.upsets.map((u) => u.quantity));
-  const writer = new PlantWriter(s, net, book, moving);
+  const writer = new PlantWriter(s, net, book, moving, plans);
   writer.write();
   const books = accounts(book, writer.totals, writer.levels, writer.fixedVolume);
   holdWhatOnlyCirculates(book.ledger, books);
@@ -59,7 +60,7 @@ export function assemble(s: Scenario, options: AssembleOptions = {}): Plant {
     inputs: Float64Array.from(book.inputValues),
     barren: Float64Array.from(book.initial),
     accounts: books,
-    designs: writer.designs,
+    designs: plans,
   };
 }
 
@@ -79,12 +80,18 @@ class PlantWriter {
   readonly #trains: TrainWriter[] = [];
   readonly #outlets = new Map<string, Sink>();
 
-  constructor(s: Scenario, net: Network, book: Book, moving: ReadonlySet<string>) {
+  constructor(
+    s: Scenario,
+    net: Network,
+    book: Book,
+    moving: ReadonlySet<string>,
+    plans: readonly TrainDesign[],
+  ) {
     this.#s = s;
     this.#net = net;
     this.#book = book;
     this.#moving = moving;
-    this.designs = designs(s, net);
+    this.designs = plans;
   }
 
   write(): void {
@@ -233,11 +240,17 @@ class PlantWriter {
     if (maker.kind === 'train') return this.#trains[maker.index].outlet(phase);
     const t = this.#s.tanks[maker.index];
     const flow = t.flow === null ? this.#streamFlow(t.from).flow : this.#pumps[maker.index].flow;
-    const passes = t.passes > 0 && this.#carries(t.from) ? this.#streamFlow(t.from).carried : null;
-    return {
-      flow,
-      carried: passes === null ? null : this.#book.signal(product, passes, this.#book.number(t.passes)),
-    };
+    return { flow, carried: this.#carriedWith(name) };
+  }
+
+  /** What a stream carries of the other phase. It follows from the vessel it leaves alone, never from its own flow. */
+  #carriedWith(name: string): Ref | null {
+    const { maker, phase } = this.#net.streams.get(name) as Stream;
+    if (maker.kind === 'feed') return null;
+    if (maker.kind === 'train') return this.#trains[maker.index].carried(phase);
+    const t = this.#s.tanks[maker.index];
+    const arrives = t.passes > 0 && this.#carries(t.from) ? this.#carriedWith(t.from) : null;
+    return arrives === null ? null : this.#book.signal(product, arrives, this.#book.number(t.passes));
   }
 
   #origin(m: Maker): Ref {
@@ -260,6 +273,11 @@ class PlantWriter {
     );
   }
 
+  /** How many trains the flow of a pump or feed passes. */
+  #sharing(source: Maker, phase: Phase): number {
+    return this.#s.trains.filter((t) => isSame(this.#net.flowSource(t[phase].from), source)).length;
+  }
+
   #openTrain(t: Train, i: number): TrainWriter {
     const source = forBoth((phase) => this.#net.flowSource(t[phase].from));
     const chem = chemistry(this.#s, t);
@@ -277,7 +295,7 @@ class PlantWriter {
     );
     const writer = new TrainWriter(this.#book, t, {
       design,
-      nominal: { ...nominal, total },
+      nominal: { ...nominal, total, part: forBoth((phase) => 1 / this.#sharing(source[phase], phase)) },
       laws,
       start: entering(this.#s, this.#net, t),
       moves:

@@ -89,7 +89,8 @@ function clampAtZero(line: { times: number[]; values: number[] }): Line {
     const v = line.values[i];
     const [t0, v0] = [line.times[i - 1], line.values[i - 1]];
     const crosses = i > 0 && v < 0 !== v0 < 0 && t > t0;
-    const met = crosses ? t0 + ((t - t0) * v0) / (v0 - v) : t;
+    // Rounding must not carry the crossing beyond the corner.
+    const met = crosses ? Math.min(t, t0 + ((t - t0) * v0) / (v0 - v)) : t;
     if (crosses) push(met, 0);
     if (v < 0) clampedAt ??= met;
     push(t, v);

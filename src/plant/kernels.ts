@@ -1,5 +1,6 @@
-import { add, div, type Expr, max, mul, pow, select, sub } from '../math/expression.ts';
+import { add, div, type Expr, max, min, mul, pow, select, sub } from '../math/expression.ts';
 import { type Kernel, kernel } from '../math/kernel.ts';
+import { smoothStep } from '../math/shapes.ts';
 
 /**
  * 1/V that stays finite where a volume vanishes: exact above `least`, below it (2 − V/least)/least, which meets
@@ -79,10 +80,23 @@ export const missingOrganic = kernel('missing organic', ['aqueous', 'organic', '
 );
 
 /** Entrained flow: e·carrier·(throughput/design)^n. */
-export const entrained = kernel(
+const entrainment = (e: Expr, q: Expr, a: Expr, o: Expr, d: Expr, n: Expr): Expr =>
+  mul(e, q, pow(max(div(add(a, o), d), 1e-6), n));
+
+const ENTRAINED = ['share', 'carrier', 'aqueous', 'organic', 'design', 'exponent'] as const;
+
+/** The same in full vessels: no more than a part of what there is of the phase, or its own flow would run back. */
+export const entrainedOf = kernel(
   'entrained',
-  ['share', 'carrier', 'aqueous', 'organic', 'design', 'exponent'],
-  (e, q, a, o, d, n) => mul(e, q, pow(max(div(add(a, o), d), 1e-6), n)),
+  [...ENTRAINED, 'phase', 'most'],
+  (e, q, a, o, d, n, phase, most) => min(entrainment(e, q, a, o, d, n), mul(most, phase)),
+);
+
+/** The same from a layer with a level: it ceases as the layer runs out. */
+export const entrainedFrom = kernel(
+  'entrained from',
+  [...ENTRAINED, 'layer', 'least'],
+  (e, q, a, o, d, n, V, least) => mul(entrainment(e, q, a, o, d, n), smoothStep(div(V, least))),
 );
 
 /** One of two values by a mode: at 1 the first, at 0 the second. */

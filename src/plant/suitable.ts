@@ -4,11 +4,14 @@ import { type Problem, Refusal } from '../scenario/refusal.ts';
 import type { Law, Phase, Scenario, Train } from '../scenario/scenario.ts';
 import { NEARLY_EMPTY } from './book.ts';
 import { track } from './course.ts';
+import type { TrainDesign } from './design.ts';
 import { upstream } from './entering.ts';
 import { asWritten } from './laws/formula.ts';
 
 type Exchange = Extract<Law, { law: 'exchange' }>;
 
+/** Share of a layer that a band at rest must leave clear. */
+const LEAST_CLEAR = 0.1;
 /** Points at which a formula is looked at, closer together near zero, where isotherms bend. */
 const POINTS = 400;
 /** A formula counts as zero at zero below this share of its value at the largest feed: rounding, not an offset. */
@@ -20,8 +23,9 @@ const AT_ZERO = 1e-9;
  *
  * @throws Refusal naming all of it.
  */
-export function suitable(s: Scenario, net: Network): void {
-  const problems = s.trains.flatMap((t) => [
+export function suitable(s: Scenario, net: Network, plans: readonly TrainDesign[]): void {
+  const problems = s.trains.flatMap((t, i) => [
+    ...fittingBands(t, plans[i]),
     ...risingFormulas(s, net, t),
     ...sameExtractant(s, t),
     ...roomySettlers(s, net, t),
@@ -84,6 +88,24 @@ function sameExtractant(s: Scenario, t: Train): Problem[] {
     const message = `'${s.solutes[first]}' and '${s.solutes[i]}' share one extractant, but ${show(extractant)} and ${show(law.extractant)} g/L are stated`;
     return [{ path: ['trains', t.name, 'equilibrium', s.solutes[i], 'extractant'], message }];
   });
+}
+
+/** A band at rest that fills its settler leaves no clear layer to start from: such a settler floods by design. */
+function fittingBands(t: Train, plan: TrainDesign): Problem[] {
+  for (const [j, { layer, band }] of plan.stages.entries()) {
+    const { settler, mixer } = t.stages[j];
+    if (settler.band === null || settler.area === null) continue;
+    const fits = (['aqueous', 'organic'] as const).every(
+      (phase) => layer[phase] >= LEAST_CLEAR * settler[phase],
+    );
+    if (fits) continue;
+    const dispersed: Phase = mixer.continuity === 'organic' ? 'aqueous' : 'organic';
+    const thick = band[dispersed] / (settler.area * settler.band.holdUp);
+    const how = Number.isFinite(thick) ? `would be ${show(thick)} m thick` : 'would grow without end';
+    const message = `at the flows of time zero the band of stage ${j + 1} ${how}, over layers of ${show(settler.aqueous / settler.area)} m aqueous and ${show(settler.organic / settler.area)} m organic`;
+    return [{ path: ['trains', t.name, 'settler', 'band'], message }];
+  }
+  return [];
 }
 
 /**

@@ -90,12 +90,22 @@ export class TrainWriter {
     return this.#c.moves || this.vessels.some((v) => v.band !== null || v.outlets !== null);
   }
 
+  /** What the stream of a phase carries of the other one as it leaves the train. */
+  carried(phase: Phase): Ref | null {
+    return this.#carried[this.#end(phase)][otherPhase(phase)];
+  }
+
+  /** The stage at which a phase leaves the train. */
+  #end(phase: Phase): number {
+    return phase === 'aqueous' ? this.vessels.length - 1 : 0;
+  }
+
   /** The stream of a phase that leaves the train. Full vessels pass on at once what enters. */
   outlet(phase: Phase): StreamFlow {
     const known = this.#outlets[phase];
     if (known) return known;
-    const end = phase === 'aqueous' ? this.vessels.length - 1 : 0;
-    const carried = this.#carried[end][otherPhase(phase)];
+    const end = this.#end(phase);
+    const carried = this.carried(phase);
     const flow = this.vessels[end].outlets?.[phase] ?? this.#main(phase, end);
     const made = { flow, carried };
     this.#outlets[phase] = made;

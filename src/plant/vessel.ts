@@ -1,9 +1,9 @@
 import type { Stage, Train } from '../scenario/scenario.ts';
 import { type BandFlows, writeBand } from './band.ts';
-import type { Book } from './book.ts';
+import { type Book, NEARLY_EMPTY } from './book.ts';
 import type { StageDesign } from './design.ts';
 import { forBoth, type Of } from './flow.ts';
-import { chosen, clearLayer, difference, entrained, product, sum } from './kernels.ts';
+import { chosen, clearLayer, difference, entrainedFrom, entrainedOf, product, sum } from './kernels.ts';
 import type { Ref } from './ledger.ts';
 import type { StagePlaces } from './stage-places.ts';
 import { VANISHING } from './transfer.ts';
@@ -33,7 +33,13 @@ export interface Vessel {
 /** Flows that the pumps and feeds behind a train set, and their sum at design. */
 export interface Nominal extends Of<Ref> {
   readonly total: Ref;
+  /** One over the number of trains that share a flow: each may lose its part of it, and none runs back. */
+  readonly part: Of<number>;
 }
+
+/** Share of a phase that full vessels can lose to the other one by entrainment, and by flooding. */
+const MOST_ENTRAINED = 0.04;
+const MOST_FLOODED = 0.95;
 
 export function openVessel(
   book: Book,
@@ -72,7 +78,12 @@ export function openVessel(
   const rate =
     train.hydraulics === 'weirs' && inMixer ? overflowRate(book, path, stage, inMixer, least, design) : null;
   if (volumes.band && inMixer && layer && area) {
-    const load = rate === null ? nominal : forBoth((phase) => book.signal(product, inMixer[phase], rate));
+    const load =
+      rate === null
+        ? forBoth((phase) =>
+            book.signal(product, nominal[phase], book.number(MOST_FLOODED * nominal.part[phase])),
+          )
+        : forBoth((phase) => book.signal(product, inMixer[phase], rate));
     band = writeBand(book, path, stage, area, {
       band: volumes.band,
       layer,
@@ -170,16 +181,24 @@ export function carriedOut(book: Book, v: Vessel, nominal: Nominal): Of<Ref | nu
       const key = phase === 'organic' ? 'organicInAqueous' : 'aqueousInOrganic';
       const own = book.ledger.parameter(`${v.path}.settler.${phase}_carried`, '', c[key]);
       const share = c.other ? byContinuity(book, v, own, book.number(c.other[key])) : own;
+      const how = [
+        share,
+        carrier[with_],
+        nominal.aqueous,
+        nominal.organic,
+        nominal.total,
+        book.number(c.exponent),
+      ];
+      const least = book.number(v.design.layer[phase] * NEARLY_EMPTY);
       terms.push(
-        book.signal(
-          entrained,
-          share,
-          carrier[with_],
-          nominal.aqueous,
-          nominal.organic,
-          nominal.total,
-          book.number(c.exponent),
-        ),
+        v.outlets && v.layer
+          ? book.signal(entrainedFrom, ...how, v.layer[phase], least)
+          : book.signal(
+              entrainedOf,
+              ...how,
+              nominal[phase],
+              book.number(MOST_ENTRAINED * nominal.part[phase]),
+            ),
       );
     }
     if (v.band) terms.push(phase === 'organic' ? v.band.floodOrganic : v.band.floodAqueous);

@@ -1,7 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import type { Expr } from '../../src/math/expression.ts';
 import {
-  type DropSizeName,
   dispersedFilm,
   dispersing,
   dropDiameter,
@@ -11,6 +10,7 @@ import {
   type Stirred,
   specificArea,
 } from '../../src/plant/agitator.ts';
+import type { DropSizeName } from '../../src/scenario/plain.ts';
 import { evaluate } from '../support/evaluate.ts';
 
 const plant = {

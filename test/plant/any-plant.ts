@@ -1,5 +1,10 @@
 import fc from 'fast-check';
+import { assemble } from '../../src/plant/assemble.ts';
+import { noProperties, plainMixer, plainTank, usualInversion } from '../../src/scenario/plain.ts';
+import { Refusal } from '../../src/scenario/refusal.ts';
 import type {
+  Band,
+  Carry,
   Change,
   Feed,
   Formula,
@@ -55,13 +60,14 @@ export const anyLaw = (extractant: number): fc.Arbitrary<Law> =>
       coefficient: decades(0.3, 10),
       exponent: between(0.4, 1.6),
     }),
-    fc
-      .array(fc.record({ a: between(0.2, 8), o: between(0.2, 8) }), { minLength: 1, maxLength: 7 })
-      .map((steps): Law => {
-        const sums = (pick: (q: { a: number; o: number }) => number): number[] =>
-          steps.reduce<number[]>((list, q) => [...list, list[list.length - 1] + pick(q)], [0]);
-        return { law: 'table', aqueous: sums((q) => q.a), organic: sums((q) => q.o) };
-      }),
+    fc.array(fc.tuple(between(0.2, 8), between(0.2, 8)), { minLength: 1, maxLength: 7 }).map((steps): Law => {
+      const sums = (k: 0 | 1): number[] => {
+        const list = [0];
+        for (const q of steps) list.push(list[list.length - 1] + q[k]);
+        return list;
+      };
+      return { law: 'table', aqueous: sums(0), organic: sums(1) };
+    }),
     fc.record({
       law: fc.constant('exchange' as const),
       constant: decades(0.5, 50),
@@ -86,11 +92,35 @@ const anyMixer = (volume: number): fc.Arbitrary<Mixer> =>
     volume: fc.constant(volume),
     continuity: fc.constantFrom<Phase>('aqueous', 'organic'),
     side: fc.constantFrom<Phase>('aqueous', 'organic'),
+    pumps: fc.boolean(),
+    inversion: fc.constantFrom(null, usualInversion),
+    overflow: fc.constant(plainMixer.overflow),
     transfer: fc.oneof(
       fc.record({ given: fc.constant('ka' as const), ka: decades(1e-3, 1), fixed: fc.boolean() }),
       fc.record({ given: fc.constant('efficiency' as const), efficiency: between(0.3, 0.995) }),
     ),
   });
+
+/** A band of millimetres to centimetres at a dispersed flow of about the half of both, m/s. */
+const anyBand = (flux: number): fc.Arbitrary<Band> =>
+  fc.record({
+    thickness: decades(0.001, 0.05),
+    at: fc.constant(flux),
+    law: fc.oneof(
+      between(1.5, 5).map((exponent) => ({ exponent })),
+      between(2, 5).map((n) => ({ floodsAt: n * flux })),
+    ),
+    holdUp: between(0.5, 0.85),
+    coalescer: fc.constantFrom(1, 0.5),
+    other: fc.constant(null),
+  });
+
+const anyCarry: fc.Arbitrary<Carry> = fc.record({
+  organicInAqueous: decades(1e-6, 3e-3),
+  aqueousInOrganic: decades(1e-6, 3e-3),
+  exponent: fc.constantFrom(0, 1, 2),
+  other: fc.constantFrom(null, { organicInAqueous: 1e-4, aqueousInOrganic: 1e-4 }),
+});
 
 /** Stages for two flows: a mixer of one to six minutes, layers of one to four mixers. */
 const anyStage = (both: number): fc.Arbitrary<Stage> =>
@@ -100,8 +130,13 @@ const anyStage = (both: number): fc.Arbitrary<Stage> =>
       settler: fc.record({
         aqueous: between(1.1, 4).map((n) => n * seconds * both),
         organic: between(1.1, 4).map((n) => n * seconds * both),
-        parts: fc.integer({ min: 1, max: 4 }),
-        area: fc.constant(null),
+        parts: fc.integer({ min: 1, max: 3 }),
+        // A quarter of a metre of each layer, or so.
+        area: fc.constant(10 * seconds * both),
+        shortCircuit: fc.oneof(fc.constant(0), between(0.01, 0.3)),
+        band: fc.oneof({ weight: 2, arbitrary: fc.constant(null) }, anyBand(1 / (20 * seconds))),
+        carry: fc.oneof({ weight: 2, arbitrary: fc.constant(null) }, anyCarry),
+        weirs: fc.constant(null),
       }),
     }),
   );
@@ -125,15 +160,17 @@ const skeleton: fc.Arbitrary<Skeleton> = fc.record({
   feedTank: fc.boolean(),
 });
 
-/** A tank of five minutes to an hour, anything from a twentieth to all of it filled. */
+/** A tank of half an hour to two hours, anything from a twentieth to all of it filled. */
 const anyTank = (
   t: Pick<Tank, 'name' | 'phase' | 'from' | 'to' | 'content'>,
   flow: number,
 ): fc.Arbitrary<Tank> =>
   fc
-    .record({ seconds: between(300, 3600), filled: between(0.05, 1), pump: between(0.7, 1.4) })
+    .record({ seconds: between(1800, 7200), filled: between(0.05, 1), pump: between(0.8, 1.25) })
     .map(({ seconds, filled, pump }) => ({
       ...t,
+      ...plainTank,
+      passes: pump > 1 ? 0.5 : 0,
       volume: seconds * flow,
       held: filled * seconds * flow,
       flow: t.phase === 'organic' && t.from === 'lean' ? flow : flow * pump,
@@ -203,6 +240,12 @@ function anyTrain(k: Skeleton, index: number, extractant: number): fc.Arbitrary<
       minLength: k.solutes,
       maxLength: k.solutes,
     }),
+    hydraulics: fc.constant('full' as const),
+    recycle: fc.oneof(
+      { weight: 3, arbitrary: fc.constant(null) },
+      between(0.5, 2).map((hold) => ({ hold })),
+      fc.constantFrom<Phase>('aqueous', 'organic').map((phase) => ({ phase, flow: 0.3 * k.organic })),
+    ),
     initial: fc.record({
       aqueous: fc.constantFrom('barren' as const, 'as entering' as const),
       organic: fc.constant('as entering' as const),
@@ -213,6 +256,17 @@ function anyTrain(k: Skeleton, index: number, extractant: number): fc.Arbitrary<
 /** Only a law that knows of the acid leaves off before the acid is used up. */
 const exchanges = (s: Scenario, solute: number): boolean =>
   s.trains.every((t) => t.equilibrium[solute] === null || t.equilibrium[solute]?.law === 'exchange');
+
+/** Plants whose settlers are made for their flows; the others are refused. */
+function suits(s: Scenario): boolean {
+  try {
+    assemble(s);
+    return true;
+  } catch (e) {
+    if (e instanceof Refusal && e.problems.every((p) => p.path.includes('settler'))) return false;
+    throw e;
+  }
+}
 
 /** Whole scenarios; two trains are series in the organic, each with an aqueous of its own. */
 export const anyPlant: fc.Arbitrary<Scenario> = fc
@@ -272,7 +326,8 @@ export const anyPlant: fc.Arbitrary<Scenario> = fc
           { minLength: k.solutes, maxLength: k.solutes },
         ),
         start: fc.constant('barren' as const),
-        horizon: between(2, 16).map((h) => h * HOUR),
+        properties: fc.constant(noProperties(k.solutes)),
+        horizon: between(0.5, 5).map((h) => h * HOUR),
         recordEvery: fc.constant(HOUR),
         upsets: fc.constant([]),
         limits: fc.constant([]),
@@ -284,4 +339,5 @@ export const anyPlant: fc.Arbitrary<Scenario> = fc
         }),
       )
       .chain((s) => fc.array(anyChange(s), { maxLength: 5 }).map((upsets): Scenario => ({ ...s, upsets })));
-  });
+  })
+  .filter(suits);

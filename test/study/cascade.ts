@@ -1,4 +1,5 @@
 import type { Plant } from '../../src/plant/assemble.ts';
+import { noProperties, plainMixer, plainSettler, plainTrain } from '../../src/scenario/plain.ts';
 import type { Change, Law, Limit, Phase, Scenario, Transfer } from '../../src/scenario/scenario.ts';
 import type { F } from '../../src/solve/system.ts';
 import type { RunResult } from '../../src/study/result.ts';
@@ -33,11 +34,13 @@ export function cascade(c: Cascade): Scenario {
       continuity: 'organic',
       side: c.side ?? 'aqueous',
       transfer: c.transfer,
+      ...plainMixer,
     },
     settler: {
       ...(c.layers ?? { aqueous: 60 * c.aqueous, organic: 60 * c.organic }),
       parts: c.parts ?? 1,
       area: null,
+      ...plainSettler,
     },
   } as const;
   return {
@@ -58,10 +61,12 @@ export function cascade(c: Cascade): Scenario {
         stages: Array.from({ length: c.stages }, () => stage),
         equilibrium: [c.law],
         initial: { aqueous: 'barren', organic: 'as entering' },
+        ...plainTrain,
       },
     ],
     releases: [[]],
     start: 'barren',
+    properties: noProperties(1),
     horizon,
     recordEvery: c.recordEvery ?? horizon,
     upsets: c.upsets ?? [],

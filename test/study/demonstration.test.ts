@@ -24,7 +24,8 @@ const withFeed = (s: Scenario, name: string, change: { flow?: number; content?: 
 
 describe('copper circuit', () => {
   const circuit = undisturbed('saltbush-copper');
-  const { plant, outputs, recoveries } = steady(circuit);
+  const { plant, outputs, figures } = steady(circuit);
+  const recoveries = figures.map((f) => ({ train: f.train, ...f.solutes[0] }));
   const read = reader(plant);
   const at = (path: string): number => read(outputs, path);
 
@@ -42,7 +43,7 @@ describe('copper circuit', () => {
     printed(at('rich electrolyte.copper'), 50.4, 0.1);
     printed(at('rich electrolyte.acid'), 161, 1);
     expect(recoveries[0]).toMatchObject({ train: 'extraction', solute: 'copper' });
-    printed(100 * recoveries[0].share, 95.5, 0.1);
+    printed(100 * recoveries[0].recovery, 95.5, 0.1);
   });
 
   test('what extraction takes up, the strip gives back', () => {

@@ -147,11 +147,11 @@ horizon: 100 h
 });
 
 test('recoveries say which way the solute went and what share of what was offered', () => {
-  const { recoveries, outputs, plant } = steady(undisturbed('wattle-acid-ratio'));
+  const { figures, outputs, plant } = steady(undisturbed('wattle-acid-ratio'));
   const read = reader(plant);
-  expect(recoveries).toHaveLength(1);
-  const [r] = recoveries;
+  expect(figures).toHaveLength(1);
+  const [r] = figures[0].solutes;
   const fed = (30 / HOUR) * 40;
   expect(r.transferred).toBeCloseTo(fed - (30 / HOUR) * read(outputs, 'raffinate.acid'), 9);
-  expect(r.share).toBeCloseTo(r.transferred / fed, 9);
+  expect(r.recovery).toBeCloseTo(r.transferred / fed, 9);
 });
