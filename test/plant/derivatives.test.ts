@@ -101,7 +101,10 @@ function plantOf(first: Law, second: Law | null, side: Phase, moving: boolean): 
   return assemble(s, { moving: new Set(moving ? ['liquor.flow', 'loop.flow', 'strong.flow'] : []) });
 }
 
-/** A small generator of its own, so that states do not depend on the order of tests (Park and Miller, 1988). */
+/**
+ * A small generator of its own, so that states do not depend on the order of tests: S. K. Park, K. W. Miller and P. K.
+ * Stockmeyer, Commun. ACM 36(7), 108 (1993) (from memory).
+ */
 function random(seed: number): () => number {
   let s = seed;
   return () => {

@@ -61,3 +61,29 @@ describe.each(Object.entries(laws))('%s', (_, law) => {
     });
   });
 });
+
+test.each([
+  { side: 'aqueous', organic: 12.5 },
+  { side: 'aqueous', organic: 30 },
+  { side: 'organic', organic: 12.5 },
+  { side: 'organic', organic: 30 },
+])('an organic that arrives with $organic of 12 g/L is pulled back below its capacity, $side side', (p) => {
+  const s = plant(
+    '{law: langmuir, capacity: 12 g/L, affinity: 1.2 L/g}',
+    p.side,
+    'stage_efficiency: 92 %',
+    'liquor',
+  );
+  const overloaded: Scenario = {
+    ...s,
+    start: 'barren',
+    upsets: [],
+    feeds: s.feeds.map((f) => (f.name === 'solvent' ? { ...f, content: [p.organic, 0] } : f)),
+  };
+  const { complete, closures, work, records, plant: made } = run(overloaded, usual);
+  expect(complete).toBe(true);
+  expect(work.steps).toBeLessThan(200);
+  for (const c of closures) expect(c.closure).toBeLessThan(1e-11);
+  const extract = made.system.outputs.findIndex((o) => o.path === 'extract.metal');
+  expect(records.rows[records.rows.length - 1][extract]).toBeLessThan(12);
+});

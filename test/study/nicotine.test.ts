@@ -18,7 +18,10 @@ const nicotine = {
 const WATER = 998;
 const KEROSENE = 800;
 
-/** R. E. Treybal, Mass-Transfer Operations, 3rd ed., Illustration 10.4: 1000 kg/h of 1 wt % against kerosene. */
+/**
+ * R. E. Treybal, Mass-Transfer Operations, 3rd ed., Illustration 10.4 (answers from memory): 1000 kg/h of 1 wt %
+ * against kerosene.
+ */
 const illustration = (stages: number, kerosene: number): Scenario =>
   fromText(`
 title: Nicotine
@@ -77,7 +80,7 @@ describe('nicotine from water into kerosene', () => {
     expect(far(1000)).toBeLessThan(target);
   });
 
-  // Illustration 10.3: 100 kg of the feed, once with 150 kg of kerosene or three times with 50 kg; read off a graph
+  // Illustration 10.3 (answers from memory): 100 kg of the feed, once with 150 kg of kerosene or three times with 50 kg; read off a graph
   // to 1 %.
   const batch = (stages: number, kerosene: number) =>
     crossCurrent({

@@ -7,7 +7,7 @@ const keep = (stream: string, value: number): Limit => ({ stream, quantity: 's',
 
 describe('a layer of n parts passes a step and a pulse as n tanks in series', () => {
   // F(θ) = 1 − e^(−nθ)·Σ_(i<n) (nθ)^i/i!, E(θ) = n(nθ)^(n−1)·e^(−nθ)/(n − 1)!: O. Levenspiel, Chemical Reaction
-  // Engineering, 3rd ed. (1999), ch. 14; R. B. MacMullin and M. Weber, Trans. AIChE 31, 409 (1935).
+  // Engineering, 3rd ed. (1999), ch. 14 (the pulse from memory); R. B. MacMullin and M. Weber, Trans. AIChE 31, 409 (1935).
   const erlang = (n: number, theta: number): number => {
     if (theta <= 0) return 0;
     let term = 1;
@@ -82,7 +82,7 @@ describe('a layer of n parts passes a step and a pulse as n tanks in series', ()
 
 describe('start-up of equilibrium stages', () => {
   // (h + DH)·dx_n/dt = L·x_(n−1) + D·V·x_(n+1) − (L + D·V)·x_n, the cascade of L. Lapidus and N. R. Amundson, Ind. Eng.
-  // Chem. 42, 1071 (1950); with h = L = 1 and D·H = E·h. Times in h/L, solved outside this program by
+  // Chem. 42, 1071 (1950) (from memory); with h = L = 1 and D·H = E·h. Times in h/L, solved outside this program by
   // eigenvalues −[(1 + E) − 2√E·cos(kπ/(N + 1))]/(1 + E): D. Kulkarni, D. Schmidt and S.-K. Tsui, Linear Algebra Appl.
   // 297, 63 (1999).
   const rows = [

@@ -7,7 +7,8 @@ const DEGREE = 8;
  * e^A by scaling and squaring with a diagonal Padé approximant.
  *
  * Reference: G. H. Golub and C. F. Van Loan, Matrix Computations, 3rd ed. (1996), Alg. 11.3.1; C. Moler and C. Van
- * Loan, SIAM Rev. 45, 3 (2003), method 3.
+ * Loan, SIAM Rev. 45, 3 (2003), method 3 (both
+ * from memory).
  */
 export function expm(a: Matrix): Matrix {
   const n = a.rows;
