@@ -1,11 +1,19 @@
-// Builds dist/ after an install in a clone; skipped where the development packages are not installed.
+// Builds dist/ after an install in a clone; skipped where the development packages are not installed. The modules serve
+// tests and other programs; the command is bundled into one file, which starts in half the time.
 import { execFileSync } from 'node:child_process';
-import { chmodSync, existsSync } from 'node:fs';
+import { chmodSync, existsSync, rmSync } from 'node:fs';
 import { fileURLToPath } from 'node:url';
 
 const at = (path) => fileURLToPath(new URL(path, import.meta.url));
-const tsc = at('../../node_modules/typescript/bin/tsc');
-if (existsSync(tsc)) {
-  execFileSync(process.execPath, [tsc, '-p', at('./tsconfig.json')], { stdio: 'inherit' });
-  chmodSync(at('../../dist/cli/upsettle.js'), 0o755);
+const packages = at('../../node_modules/');
+const node = (script, ...args) =>
+  execFileSync(process.execPath, [`${packages}${script}`, ...args], {
+    stdio: ['ignore', 'ignore', 'inherit'],
+  });
+
+if (existsSync(`${packages}typescript/bin/tsc`)) {
+  rmSync(at('../../dist'), { recursive: true, force: true });
+  node('typescript/bin/tsc', '-p', at('./tsconfig.json'));
+  node('rolldown/bin/cli.mjs', '-c', at('./bundle.mjs'));
+  chmodSync(at('../../dist/upsettle.js'), 0o755);
 } else console.log('prepare: TypeScript is not installed, dist/ is left as it is');

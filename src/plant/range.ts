@@ -1,5 +1,5 @@
-import { mul, sub } from '../math/expression.ts';
-import { kernel } from '../math/kernel.ts';
+import { add, mul, sub } from '../math/expression.ts';
+import { type Kernel, kernel } from '../math/kernel.ts';
 import type { Train } from '../scenario/scenario.ts';
 import type { Book } from './book.ts';
 import type { Of } from './flow.ts';
@@ -38,5 +38,52 @@ export function writeRangeGuards(
         book.number(end),
       );
     }
+  });
+}
+
+/** Share of what is typical by which a species may seem to lack through rounding alone. */
+const ROUNDING = 1e-6;
+
+const usedUp = new Map<number, Kernel>();
+
+/** (w − Σ r·m_a)/V + bound: negative once more of a species has been taken up than there was. */
+function remains(n: number): Kernel {
+  const found = usedUp.get(n);
+  if (found) return found;
+  const pairs = Array.from({ length: n }, (_, i) => [`release ${i}`, `solute ${i}`]).flat();
+  const made = kernel(
+    `remains of ${n}`,
+    ['carrier', 'volume', 'least', 'bound', ...pairs],
+    (w, V, least, bound, ...rest) => {
+      const taken = Array.from({ length: n }, (_, i) => mul(rest[2 * i], rest[2 * i + 1]));
+      return add(mul(sub(w, add(...taken)), perVolume(V, least)), bound);
+    },
+  );
+  usedUp.set(n, made);
+  return made;
+}
+
+/** A law that does not know of the acid can strip with acid that is not there: said, with the time. */
+export function writeSpeciesGuards(
+  book: Book,
+  path: string,
+  places: readonly Ref[],
+  volume: Ref,
+  least: Ref,
+): void {
+  book.s.species.forEach((species, k) => {
+    const bound = book.releasing(k, places);
+    if (bound.length === 0) return;
+    const component = book.solutes + k;
+    book.ledger.guard(
+      {
+        name: `${path}.mixer ${species} used up`,
+        direction: -1,
+        message: `${species} in ${path}.mixer is used up: the laws strip more than it can carry, and what follows is not to be trusted`,
+        action: 'report',
+      },
+      remains(bound.length / 2),
+      ...[places[component], volume, least, book.number(ROUNDING * book.typical[component]), ...bound],
+    );
   });
 }

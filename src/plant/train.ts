@@ -19,7 +19,7 @@ import {
 } from './kernels.ts';
 import { type Feeder, writeLayer } from './layer.ts';
 import type { Ref } from './ledger.ts';
-import { writeRangeGuards } from './range.ts';
+import { writeRangeGuards, writeSpeciesGuards } from './range.ts';
 import { writeStageOutputs } from './stage-outputs.ts';
 import { stagePlaces } from './stage-places.ts';
 import { carriedOut, clear, type Nominal, openVessel, type Vessel } from './vessel.ts';
@@ -195,6 +195,7 @@ export class TrainWriter {
     const shares = { mixer, least: v.least, continuity: v.continuity };
     writeTransfer(book, path, stage.mixer, this.#c.laws, design, places.mixer, shares);
     writeRangeGuards(book, this.#train, path, places.mixer, mixer, v.least);
+    writeSpeciesGuards(book, path, places.mixer.aqueous, mixer.aqueous, v.least);
 
     const leaving = forBoth((phase) => book.signal(product, mixer[phase], rate));
     const main = forBoth(

@@ -1,16 +1,6 @@
-import type { Unit } from 'mathjs';
-import bundle from 'mathjs/lib/browser/math.js';
 import { duration } from './duration.ts';
 import { show } from './show.ts';
-
-/*
- * One own instance of the units engine. Its browser bundle is a single file: it loads in a tenth of the time that
- * the module tree takes.
- */
-const math = bundle.create({});
-math.createUnit('rpm', { definition: '1 min^-1' });
-math.createUnit('cP', { definition: '1 mPa s' });
-math.createUnit('M', { definition: '1 mol/L', prefixes: 'short' } as never);
+import { engine } from './units-engine.ts';
 
 /** What a figure can be: the unit used inside (none for shares and plain numbers), and how it is written. */
 export const kinds = {
@@ -87,13 +77,13 @@ export function quantity(text: unknown, ...allowed: Kind[]): Parsed {
     const seconds = duration(t);
     if (seconds !== null) return within({ kind: 'a time', value: seconds }, text);
   }
-  const u = parseUnit(`1 ${unit}`);
+  const u = parseUnit(unit);
   if (!u && allowed[0] === 'a time')
     return { wrong: `${wish}, got ${show(text)}; its units are d, h, min, s` };
   if (!u) return { wrong: `${wish}, got ${show(text)} with the unknown unit ${show(unit)}` };
-  const fits = allowed.find((kind) => isOf(u, kind));
-  if (fits) return within({ kind: fits, value: scale(Number(number), u.toNumber(kinds[fits].unit)) }, text);
-  const other = (Object.keys(kinds) as Kind[]).find((kind) => isOf(u, kind));
+  const fits = allowed.find((kind) => u.is(kind));
+  if (fits) return within({ kind: fits, value: scale(Number(number), u.factor(fits)) }, text);
+  const other = (Object.keys(kinds) as Kind[]).find((kind) => u.is(kind));
   return { wrong: `${wish}, got ${show(text)}, ${other ?? 'which is something else'}` };
 }
 
@@ -116,22 +106,53 @@ function within(q: Quantity, text: unknown): Parsed {
   return q;
 }
 
-function parseUnit(text: string): Unit | null {
-  try {
-    return math.unit(text) as Unit;
-  } catch {
-    return null;
-  }
+/** A unit that was understood: whether it measures a kind, and how much of the unit used inside it is. */
+interface Measure {
+  is(kind: Kind): boolean;
+  factor(kind: Kind): number;
 }
 
-const bases = new Map<Kind, Unit>();
+/*
+ * Units that scenarios are written in, as the units engine gives them (a test holds that): most files need no other,
+ * and reading them does not wait for the engine.
+ */
+export const commonUnits: Readonly<Record<string, readonly [kind: Kind, factor: number]>> = {
+  'm^3/h': ['a flow by volume', 1 / 3600],
+  'm^3/s': ['a flow by volume', 1],
+  'L/min': ['a flow by volume', 1e-3 / 60],
+  'L/h': ['a flow by volume', 1e-3 / 3600],
+  'L/s': ['a flow by volume', 1e-3],
+  'kg/h': ['a flow by mass', 1 / 3600],
+  'g/L': ['a concentration', 1],
+  'mg/L': ['a concentration', 1e-3],
+  'kg/m^3': ['a concentration', 1],
+  'mol/L': ['a molar concentration', 1000],
+  'm^3': ['a volume', 1],
+  L: ['a volume', 1e-3],
+  'm^2': ['an area', 1],
+  m: ['a length', 1],
+  cm: ['a length', 0.01],
+  mm: ['a length', 1e-3],
+  's^-1': ['a rate', 1],
+  'min^-1': ['a rate', 1 / 60],
+  rpm: ['a rate', 1 / 60],
+  'L/g': ['an affinity', 1],
+  'mPa s': ['a viscosity', 1e-3],
+  'mN/m': ['a surface tension', 1e-3],
+  'm^2/s': ['a diffusivity', 1],
+  'm/h': ['a specific flow', 1 / 3600],
+  'g/mol': ['a molar mass', 1e-3],
+};
 
-function isOf(u: Unit, kind: Kind): boolean {
-  const { unit } = kinds[kind];
-  if (unit === '') return false;
-  const base = bases.get(kind) ?? (math.unit(`1 ${unit}`) as Unit);
-  bases.set(kind, base);
-  return u.equalBase(base);
+function parseUnit(unit: string): Measure | null {
+  const common = Object.hasOwn(commonUnits, unit) ? commonUnits[unit] : null;
+  if (common) return { is: (kind) => kind === common[0], factor: () => common[1] };
+  const u = engine().parse(`1 ${unit}`);
+  if (u === null) return null;
+  return {
+    is: (kind) => kinds[kind].unit !== '' && u.equalBase(engine().base(kinds[kind].unit)),
+    factor: (kind) => u.toNumber(kinds[kind].unit),
+  };
 }
 
 /** What a figure with a unit of shares can mean: those have no dimension to tell them apart. */
@@ -181,4 +202,4 @@ function normalise(text: string): string {
 }
 
 /** Parses an expression with the general-purpose parser; only its syntax tree is used, nothing is evaluated. */
-export const parseExpression = (text: string): unknown => math.parse(text);
+export const parseExpression = (text: string): unknown => engine().expression(text);

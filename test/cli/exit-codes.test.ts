@@ -7,7 +7,7 @@ import { exits } from '../../src/cli/exit.ts';
 import { inRepo } from '../support/plants.ts';
 
 const folder = mkdtempSync(join(tmpdir(), 'upsettle-'));
-const program = inRepo('dist/cli/upsettle.js');
+const program = inRepo('dist/upsettle.js');
 const sound = readFileSync(inRepo('scenarios/ten.yaml'), 'utf8');
 
 interface Answer {

@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { headerUnit } from '../../src/scenario/csv.ts';
-import { type Kind, kinds, quantity } from '../../src/scenario/units.ts';
+import { commonUnits, type Kind, kinds, quantity } from '../../src/scenario/units.ts';
+import { engine } from '../../src/scenario/units-engine.ts';
 
 /** The value of a figure, or what is wrong with it. */
 const read = (text: unknown, ...allowed: Kind[]): number | string => {
@@ -240,4 +241,15 @@ describe('headers of columns', () => {
       /t\.csv:1: the header .* must end in a unit/,
     );
   });
+});
+
+describe('units that are read without the engine', () => {
+  it.each(Object.entries(commonUnits))(
+    '%s is what the engine makes of it (mathjs)',
+    (unit, [kind, factor]) => {
+      const u = engine().parse(`1 ${unit}`);
+      expect(u?.equalBase(engine().base(kinds[kind].unit))).toBe(true);
+      expect(Math.abs((u?.toNumber(kinds[kind].unit) ?? Number.NaN) / factor - 1)).toBeLessThan(1e-15);
+    },
+  );
 });

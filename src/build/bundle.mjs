@@ -1,0 +1,15 @@
+// The command as one file and the parts that it loads when needed. Packages with binaries or fonts stay outside.
+import { fileURLToPath } from 'node:url';
+
+export default {
+  input: { upsettle: fileURLToPath(new URL('../cli/upsettle.ts', import.meta.url)) },
+  platform: 'node',
+  external: [/^chart/, /^canvas/, /^@napi-rs/, /^dejavu/],
+  output: {
+    dir: fileURLToPath(new URL('../../dist', import.meta.url)),
+    format: 'esm',
+    entryFileNames: '[name].js',
+    chunkFileNames: 'parts/[name]-[hash].js',
+    minify: { compress: true, mangle: false, codegen: { removeWhitespace: false } },
+  },
+};
