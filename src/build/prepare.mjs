@@ -15,5 +15,5 @@ if (existsSync(`${packages}typescript/bin/tsc`)) {
   rmSync(at('../../dist'), { recursive: true, force: true });
   node('typescript/bin/tsc', '-p', at('./tsconfig.json'));
   node('rolldown/bin/cli.mjs', '-c', at('./bundle.mjs'));
-  chmodSync(at('../../dist/upsettle.js'), 0o755);
+  for (const command of ['upsettle.js', 'cli/upsettle.js']) chmodSync(at(`../../dist/${command}`), 0o755);
 } else console.log('prepare: TypeScript is not installed, dist/ is left as it is');
