@@ -302,6 +302,7 @@ class PlantWriter {
         bypassed || PHASES.some((phase) => this.#flowMoves(source[phase]) || this.#disturbed(t[phase].from)),
       moving: this.#moving,
       inlet: (phase) => this.#streamFlow(t[phase].from),
+      inletContent: (phase, k) => this.#source(this.#net.streams.get(t[phase].from) as Stream).content(k),
     });
     for (const [j, v] of writer.vessels.entries()) {
       const { volumes } = v.places;

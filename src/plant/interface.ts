@@ -21,6 +21,9 @@ export function interfaceConcentration(
   return call(solver(curve, slots), b, r, ...rest);
 }
 
+/** Digits of b in which f(b/r) may be lost, relative. */
+const ROUNDING = 1e-14;
+
 const known = new WeakMap<Expr, Special>();
 
 function solver(curve: Expr, slots: number): Special {
@@ -41,6 +44,10 @@ function solver(curve: Expr, slots: number): Special {
       const d = (x: number): number => slope([x, r, ...rest]);
       const far = b / r;
       const guess = b / d(0);
+      // A trial state far out can leave the curve below the last digit of b, or outside what it is made for.
+      const beyond = Math.sign(b) * f(far);
+      if (!(beyond >= 0)) return beyond >= -ROUNDING * Math.abs(b) ? far : Number.NaN;
+      if (!(Math.sign(b) * f(0) <= 0)) return Number.NaN;
       return b > 0 ? risingRoot(f, d, 0, far, guess).value : risingRoot(f, d, far, 0, guess).value;
     },
     partials([, r, ...rest], x) {

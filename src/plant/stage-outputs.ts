@@ -17,7 +17,7 @@ const organicShare = kernel('organic share', ['aqueous', 'organic'], (a, o) => d
 const beyond = kernel('beyond', ['aqueous', 'organic', 'share'], (a, o, share) =>
   sub(div(o, add(a, o)), share),
 );
-const below = kernel('below', ['value', 'bound'], (v, bound) => sub(v, bound));
+const past = kernel('past', ['value', 'bound'], (v, bound) => sub(v, bound));
 const ratio = kernel('ratio', ['volume', 'area'], (v, a) => div(v, a));
 
 /** What a stage shows: concentrations of mixer and settler outlets, volumes that move, and the events that it may have. */
@@ -59,8 +59,9 @@ export function writeStageOutputs(book: Book, v: Vessel, r: Shown): void {
           direction: 1,
           message: `the band of ${path} has grown into the outlet: it floods, and ${phase === 'aqueous' ? 'organic' : 'aqueous'} leaves with the ${phase}`,
           action: 'report',
+          fromStart: true,
         },
-        below,
+        past,
         flood,
         book.number(1e-9),
       );
@@ -75,6 +76,7 @@ export function writeStageOutputs(book: Book, v: Vessel, r: Shown): void {
           name: `${path} ${name}`,
           direction,
           message: `${path} inverts: it becomes ${words} continuous`,
+          fromStart: true,
           action: { set: [[mode, to]] },
         },
         beyond,
@@ -89,8 +91,14 @@ export function writeStageOutputs(book: Book, v: Vessel, r: Shown): void {
   if (v.outlets && v.area && stage.settler.weirs) {
     const lost = (name: string, message: string, flow: Ref): void => {
       book.ledger.guard(
-        { name: `${path} ${name}`, direction: 1, message: `${path}: ${message}`, action: 'report' },
-        below,
+        {
+          name: `${path} ${name}`,
+          direction: 1,
+          message: `${path}: ${message}`,
+          action: 'report',
+          fromStart: true,
+        },
+        past,
         flow,
         book.number(1e-9),
       );

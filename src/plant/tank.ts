@@ -133,6 +133,7 @@ export class TankWriter {
       name: `${t.name} ${name}`,
       direction,
       message: `${t.name} ${message}`,
+      fromStart: true,
       action: { set: [set] },
     });
     const bound = (share: number): Ref => book.number(t.volume * share);

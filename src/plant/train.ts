@@ -1,11 +1,13 @@
 import type { Phase, Train } from '../scenario/scenario.ts';
-import type { Book, Part, Sink, Source } from './book.ts';
+import { type Book, type Content, NEARLY_EMPTY, type Part, type Sink, type Source } from './book.ts';
 import type { Chemistry } from './chemistry.ts';
 import { writeTransfer } from './contact.ts';
 import type { TrainDesign } from './design.ts';
 import { forBoth, type Of, otherPhase, PHASES, type StreamFlow } from './flow.ts';
 import {
+  available,
   balance,
+  chosen,
   difference,
   drained,
   missingAqueous,
@@ -22,7 +24,7 @@ import type { Ref } from './ledger.ts';
 import { writeRangeGuards, writeSpeciesGuards } from './range.ts';
 import { writeStageOutputs } from './stage-outputs.ts';
 import { stagePlaces } from './stage-places.ts';
-import { carriedOut, clear, type Nominal, openVessel, type Vessel } from './vessel.ts';
+import { carriedOut, clear, type Nominal, openVessel, shutByBypass, type Vessel } from './vessel.ts';
 
 /** The laws of the train, and where their numbers stand. */
 export interface Laws {
@@ -42,12 +44,12 @@ export interface TrainContext {
   readonly moving: ReadonlySet<string>;
   /** Streams that enter, main flow and what they carry. Asked for only when all trains have their places. */
   inlet(phase: Phase): StreamFlow;
+  /** Concentration of component k in the stream that enters. Asked for only when all trains run. */
+  inletContent(phase: Phase, k: number): Content;
 }
 
-/** Mixer volumes, what overflows and what settles, once the flows are known. */
+/** The last part of each layer, once the flows are known: what leaves. */
 interface Running {
-  readonly mixer: Of<Ref>;
-  readonly rate: Ref;
   readonly last: Of<Part>;
 }
 
@@ -70,20 +72,21 @@ export class TrainWriter {
     this.#train = train;
     this.#c = c;
     const states = c.moves || train.stages.some((q) => q.settler.band !== null);
-    this.vessels = train.stages.map((stage, j) => {
+    const opened = train.stages.map((stage, j) => {
       const d = c.design.stages[j];
       const places = stagePlaces(book, train, j, stage, d, c.start, states);
       const flips = stage.mixer.inversion !== null || c.moving.has(`${places.path}.continuity`);
       return openVessel(book, train, j, d, places, c.nominal, flips);
     });
-    this.#carried = this.vessels.map((v) => carriedOut(book, v, c.nominal));
-    this.#bypass = this.vessels.map((v) =>
+    this.#bypass = opened.map((v) =>
       forBoth((phase) =>
         c.moving.has(`${v.path}.${phase} bypass`)
           ? book.input({ path: `${v.path}.${phase} bypass`, unit: '', scale: 1 }, 0)
           : null,
       ),
     );
+    this.vessels = opened.map((v, j) => shutByBypass(book, v, this.#bypass[j]));
+    this.#carried = this.vessels.map((v) => carriedOut(book, v, c.nominal));
   }
 
   get moves(): boolean {
@@ -92,7 +95,46 @@ export class TrainWriter {
 
   /** What the stream of a phase carries of the other one as it leaves the train. */
   carried(phase: Phase): Ref | null {
-    return this.#carried[this.#end(phase)][otherPhase(phase)];
+    return this.#carriedFrom(phase, this.#end(phase));
+  }
+
+  #carriedFrom(phase: Phase, j: number): Ref | null {
+    const own = this.#carried[j]?.[otherPhase(phase)];
+    if (own === undefined) return this.#c.inlet(phase).carried;
+    const bypass = this.#bypass[j][phase];
+    if (bypass === null) return own;
+    const past = this.#carriedFrom(phase, this.#before(phase, j));
+    if (past === null) return own;
+    const led = this.#book.signal(product, bypass, past);
+    return own === null ? led : this.#add(own, led);
+  }
+
+  /** The stage from which a phase comes to stage j; past the end where it comes from outside. */
+  #before(phase: Phase, j: number): number {
+    return phase === 'aqueous' ? j - 1 : j + 1;
+  }
+
+  /** What leaves stage j and what is led past it. Full vessels pass on what enters either way. */
+  #leaves(phase: Phase, j: number): Ref {
+    const v = this.vessels[j];
+    if (v === undefined) return this.#c.inlet(phase).flow;
+    if (v.outlets === null) return this.#main(phase, j);
+    const bypass = this.#bypass[j][phase];
+    if (bypass === null) return v.outlets[phase];
+    const past = this.#book.signal(product, bypass, this.#leaves(phase, this.#before(phase, j)));
+    return this.#add(v.outlets[phase], past);
+  }
+
+  /** Concentration of what leaves stage j and what is led past it. */
+  #content(phase: Phase, j: number, k: number): Content {
+    const running = this.#running[j];
+    if (running === undefined) return this.#c.inletContent(phase, k);
+    const own = this.#book.contentOf(running.last[phase], k);
+    const bypass = this.#bypass[j][phase];
+    if (bypass === null) return own;
+    const past = this.#content(phase, this.#before(phase, j), k);
+    const both = [own, past].map((c) => this.#book.signal(c.kernel, ...c.args));
+    return { kernel: chosen, args: [bypass, both[1], both[0]] };
   }
 
   /** The stage at which a phase leaves the train. */
@@ -106,7 +148,7 @@ export class TrainWriter {
     if (known) return known;
     const end = this.#end(phase);
     const carried = this.carried(phase);
-    const flow = this.vessels[end].outlets?.[phase] ?? this.#main(phase, end);
+    const flow = this.#leaves(phase, end);
     const made = { flow, carried };
     this.#outlets[phase] = made;
     return made;
@@ -133,17 +175,24 @@ export class TrainWriter {
 
   /** What enters mixer j of a phase besides recycle, in full vessels. */
   #mainInto(phase: Phase, j: number): Ref {
-    const from = phase === 'aqueous' ? j - 1 : j + 1;
-    return from < 0 || from >= this.vessels.length ? this.#c.inlet(phase).flow : this.#main(phase, from);
+    const from = this.#before(phase, j);
+    return this.vessels[from] === undefined ? this.#c.inlet(phase).flow : this.#main(phase, from);
   }
 
-  #recycled(phase: Phase): Ref | null {
+  /** Flow back from a settler to its own mixer; a layer with a level gives no more than it holds. */
+  #recycled(v: Vessel, phase: Phase): Ref | null {
     const r = this.#train.recycle;
-    if (r === null) return null;
+    if (r === null || ('phase' in r && r.phase !== phase)) return null;
+    const book = this.#book;
     const { nominal } = this.#c;
-    if ('phase' in r) return r.phase === phase ? this.#book.number(r.flow) : null;
-    const kernel = phase === 'aqueous' ? missingAqueous : missingOrganic;
-    return this.#book.signal(kernel, nominal.aqueous, nominal.organic, this.#book.number(r.hold));
+    const missing = phase === 'aqueous' ? missingAqueous : missingOrganic;
+    const wanted =
+      'phase' in r
+        ? book.number(r.flow)
+        : book.signal(missing, nominal.aqueous, nominal.organic, book.number(r.hold));
+    if (v.outlets === null || v.layer === null) return wanted;
+    const least = book.number(v.design.layer[phase] * NEARLY_EMPTY);
+    return book.signal(product, wanted, book.signal(available, v.layer[phase], least));
   }
 
   #add(...refs: (Ref | null)[]): Ref {
@@ -164,7 +213,7 @@ export class TrainWriter {
     const book = this.#book;
     const { stage, path, design, places } = v;
     const carriedHere = this.#carried[j];
-    const recycle = forBoth((phase) => this.#recycled(phase));
+    const recycle = forBoth((phase) => this.#recycled(v, phase));
     const full = v.outlets === null;
     const next = (phase: Phase): number => (phase === 'aqueous' ? j + 1 : j - 1);
     const entering = full
@@ -219,7 +268,7 @@ export class TrainWriter {
       if (back) book.send(last[phase], back, places.volumes.layer?.[phase] ?? null, this.#ownMixer(v));
     }
     writeStageOutputs(book, v, { mixer, layer, last, rate, carried: carriedHere });
-    return { mixer, rate, last };
+    return { last };
   }
 
   /** Carried phase that comes out of the layer; what floods comes out of the band. */
@@ -303,7 +352,7 @@ export class TrainWriter {
     const v = this.vessels[j];
     const { last } = this.#running[j];
     const other = otherPhase(phase);
-    const flow = this.#through(v.outlets?.[phase] ?? this.#main(phase, j), this.#bypass[j][phase]);
+    const flow = v.outlets?.[phase] ?? this.#through(this.#main(phase, j), this.#bypass[j][phase]);
     const all = this.#carried[j][other];
     const fromLayer = this.#withoutFlood(v, this.#carried[j], other);
     const flood = v.band === null ? null : other === 'aqueous' ? v.band.floodAqueous : v.band.floodOrganic;
@@ -326,7 +375,7 @@ export class TrainWriter {
           book.send(part, flood, v.places.volumes.band[other], to);
         }
       },
-      content: (k) => book.contentOf(last[phase], k),
+      content: (k) => this.#content(phase, j, k),
     };
   }
 

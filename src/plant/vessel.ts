@@ -3,7 +3,17 @@ import { type BandFlows, writeBand } from './band.ts';
 import { type Book, NEARLY_EMPTY } from './book.ts';
 import type { StageDesign } from './design.ts';
 import { forBoth, type Of } from './flow.ts';
-import { chosen, clearLayer, difference, entrainedFrom, entrainedOf, product, sum } from './kernels.ts';
+import {
+  available,
+  chosen,
+  clearLayer,
+  difference,
+  entrainedFrom,
+  entrainedOf,
+  product,
+  rest,
+  sum,
+} from './kernels.ts';
 import type { Ref } from './ledger.ts';
 import type { StagePlaces } from './stage-places.ts';
 import { VANISHING } from './transfer.ts';
@@ -98,6 +108,31 @@ export function openVessel(
   return { path, stage, design, places, continuity, area, least, mixer, layer, band, outlets, rate };
 }
 
+/** A phase led past a stage with weirs shuts the outlet of that phase, and with it what it would carry. */
+export function shutByBypass(book: Book, v: Vessel, bypass: Of<Ref | null>): Vessel {
+  if (v.outlets === null || (bypass.aqueous === null && bypass.organic === null)) return v;
+  const open = forBoth((phase) => {
+    const by = bypass[phase];
+    return by === null ? null : book.signal(rest, by);
+  });
+  const shut = (flow: Ref, share: Ref | null): Ref => (share ? book.signal(product, flow, share) : flow);
+  const { aqueous, organic, underflowOrganic, overflowAqueous } = v.outlets;
+  return {
+    ...v,
+    outlets: {
+      aqueous: shut(aqueous, open.aqueous),
+      underflowOrganic: shut(underflowOrganic, open.aqueous),
+      organic: shut(organic, open.organic),
+      overflowAqueous: shut(overflowAqueous, open.organic),
+    },
+    band: v.band && {
+      ...v.band,
+      floodOrganic: shut(v.band.floodOrganic, open.aqueous),
+      floodAqueous: shut(v.band.floodAqueous, open.organic),
+    },
+  };
+}
+
 /** Clear layer of a full stage: its constant volume of the phase, less mixer and band. */
 export function clear(
   book: Book,
@@ -146,6 +181,8 @@ function weirs(
   const crest = d.crest as Of<number>;
   const { density } = book.s.properties;
   const held = forBoth((phase) => (band ? book.signal(sum(2), layer[phase], band[phase]) : layer[phase]));
+  const clearShare = (phase: 'aqueous' | 'organic'): Ref =>
+    book.signal(available, layer[phase], book.number(d.layer[phase] * NEARLY_EMPTY));
   const [aqueous, underflowOrganic, organic, overflowAqueous, top, interfaceLevel] = book.ledger.signal(
     settlerOutlets,
     ...[
@@ -158,6 +195,7 @@ function weirs(
     book.input({ path: `${path}.settler.aqueous_weir`, unit: 'm', scale: crest.aqueous }, crest.aqueous),
     book.number(crest.organic),
     ...[book.number(w.aqueousLength), book.number(w.organicLength)],
+    ...[clearShare('aqueous'), clearShare('organic')],
   );
   const shown = [
     ['level', top],

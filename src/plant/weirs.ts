@@ -8,7 +8,8 @@ import { aqueousOverWeir, legLevel, level, organicThroughPort, overWeir } from '
  *
  * Levels: z_t = (V_a + V_o)/A on top, z_i = V_a/A at the interface (the band counted with its phases), and in the aqueous
  * leg z_leg = z_i + (z_t − z_i)·ρ_o/ρ_a − losses. Each outlet is Q = C·L·h^1.5 over its crest. The underflow draws organic
- * once the interface is down at its port, the organic weir aqueous once the interface is up at its crest.
+ * once the interface is down at its port, the organic weir aqueous once the interface is up at its crest. The levels
+ * count what is still in the band, which weighs and stands, but only what has cleared can leave.
  *
  * Outputs: aqueous in the underflow, organic in it, organic over the weir, aqueous over it, z_t, z_i.
  */
@@ -17,8 +18,9 @@ export const settlerOutlets = kernel(
   [
     ...['aqueous', 'organic', 'area', 'density ratio', 'loss', 'port'],
     ...['aqueous crest', 'organic crest', 'aqueous length', 'organic length'],
+    ...['aqueous available', 'organic available'],
   ],
-  (Va, Vo, A, ratio, loss, port, za, zo, La, Lo) => {
+  (Va, Vo, A, ratio, loss, port, za, zo, La, Lo, clearAqueous, clearOrganic) => {
     const top = level(A, Va, Vo);
     const interfaceLevel = level(A, Va);
     const leg = legLevel(interfaceLevel, level(A, Vo), ratio, loss);
@@ -27,10 +29,10 @@ export const settlerOutlets = kernel(
     const organicBelow = organicThroughPort(interfaceLevel, port);
     const aqueousAbove = aqueousOverWeir(interfaceLevel, zo);
     return [
-      mul(under, sub(1, organicBelow)),
-      mul(under, organicBelow),
-      mul(over, sub(1, aqueousAbove)),
-      mul(over, aqueousAbove),
+      mul(under, sub(1, organicBelow), clearAqueous),
+      mul(under, organicBelow, clearOrganic),
+      mul(over, sub(1, aqueousAbove), clearOrganic),
+      mul(over, aqueousAbove, clearAqueous),
       top,
       interfaceLevel,
     ];

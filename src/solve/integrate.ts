@@ -193,19 +193,19 @@ class GuardWatch {
   readonly #g: F;
   readonly #x: F;
   readonly #w: F;
-  #known = false;
 
   constructor(system: System, p: F, inputs: Inputs) {
     this.#system = system;
     this.#p = p;
     this.#inputs = inputs;
-    this.#side = new Int8Array(system.guards.length);
+    // Taken to be on the side from which it acts, a guard that is past its bound at the start acts there and then.
+    this.#side = Int8Array.from(system.guards, (g) => (g.fromStart ? -g.direction : 0));
     this.#g = new Float64Array(system.guards.length);
     this.#x = new Float64Array(system.places.length);
     this.#w = new Float64Array(system.inputs.length);
   }
 
-  /** The next guard that changes sides at this instant because an input jumped, or −1. */
+  /** The next guard that acts at this instant, at the start or because an input jumped, or −1. */
   jumped(x: F, w: F): number {
     const g = this.#g;
     if (g.length === 0) return -1;
@@ -214,13 +214,12 @@ class GuardWatch {
     for (let i = 0; i < g.length; i++) {
       const side = Math.sign(g[i]);
       const before = this.#side[i];
-      const acts = this.#known && side !== 0 && before !== 0 && side !== before && this.#wanted(i, side);
+      const acts = side !== 0 && before !== 0 && side !== before && this.#wanted(i, side);
       // The next one to act has its turn when the first has acted, if it is still there.
       if (acts && first >= 0) continue;
       if (acts) first = i;
       if (side !== 0) this.#side[i] = side;
     }
-    this.#known = true;
     return first;
   }
 

@@ -30,6 +30,8 @@ export interface Guard {
   /** Which way the guard value must cross zero: upwards, downwards, or either. */
   readonly direction: 1 | -1 | 0;
   readonly message: string;
+  /** Whether it acts at the start if it is past its bound there; otherwise only a crossing counts. */
+  readonly fromStart?: boolean;
   readonly action: 'report' | 'stop' | { readonly set: readonly (readonly [input: number, value: number])[] };
 }
 
