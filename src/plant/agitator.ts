@@ -1,4 +1,4 @@
-import { add, div, type Expr, exp, max, mul, pow, select, sqrt, sub } from '../math/expression.ts';
+import { add, constant, div, type Expr, exp, max, mul, pow, select, sqrt, sub } from '../math/expression.ts';
 import { smoothStep } from '../math/shapes.ts';
 import type { DropSizeName } from '../scenario/plain.ts';
 
@@ -35,6 +35,9 @@ const linear =
   (we, phi) =>
     mul(constant, add(1, mul(holdup, phi)), pow(we, -0.6));
 
+/** One value below x = 0, another above x = 1: published constants that jump must not do so inside an equation. */
+const mixed = (low: Expr, high: Expr, x: Expr): Expr => add(low, mul(smoothStep(x), sub(high, low)));
+
 /**
  * Published drop-size correlations, by first authors. All constants from memory; they differ among each other by a
  * factor of 1.5 to 2, so absolute sizes want a measurement, while the scaling with speed, size and tension holds.
@@ -49,15 +52,16 @@ export const dropSizes = {
   // P. H. Calderbank, Trans. Inst. Chem. Eng. 36, 443 (1958): six-blade turbine, four-blade paddle.
   'calderbank-turbine': linear(0.06, 9),
   'calderbank-paddle': linear(0.06, 3.75),
-  // D. E. Brown and K. Pitt (1970).
+  // D. E. Brown and K. Pitt (1970), journal unknown to us.
   'brown-pitt': linear(0.051, 3.14),
-  // J. W. van Heuven and W. J. Beek (1971).
+  // J. W. van Heuven and W. J. Beek (1971), journal unknown to us.
   'van-heuven-beek': linear(0.047, 2.5),
   // C. A. Coulaloglou and L. L. Tavlarides, AIChE J. 22, 289 (1976).
   'coulaloglou-tavlarides': linear(0.081, 4.47),
-  // S. Gnanasundaram, T. E. Degaleesan and G. S. Laddha, Can. J. Chem. Eng. 57, 141 (1979).
+  // S. Gnanasundaram, T. E. Degaleesan and G. S. Laddha, Can. J. Chem. Eng. 57, 141 (1979): two ranges that part at
+  // We = 10⁴ with a jump, taken over 0.9 to 1.1 of that.
   gnanasundaram: (we: Expr, phi: Expr): Expr =>
-    mul(select(sub(we, 1e4), 0.39, mul(0.052, exp(mul(4, phi)))), pow(we, -0.6)),
+    mul(mixed(mul(0.052, exp(mul(4, phi))), constant(0.39), div(sub(we, 0.9e4), 0.2e4)), pow(we, -0.6)),
 } satisfies Record<DropSizeName, DropSize>;
 
 /** d₃₂ in m. */
@@ -79,7 +83,7 @@ export function mixtureViscosity(s: Stirred): Expr {
   return mul(div(s.continuousViscosity, max(s.continuous, LEAST_HOLDUP)), add(1, drops));
 }
 
-/** P = Np·ρ_M·N³·D⁵ in W (fully turbulent, baffled). */
+/** P = Np·ρ_M·N³·D⁵ in W (fully turbulent, baffled): the definition of the power number. */
 export const power = (s: Stirred): Expr =>
   mul(s.powerNumber, mixtureDensity(s), pow(s.speed, 3), pow(s.diameter, 5));
 
@@ -136,6 +140,6 @@ export function continuousFilm(s: Stirred, d32: Expr, diffusivity: Expr): Expr {
   return div(mul(max(sh, 2), diffusivity), d32);
 }
 
-/** a = 6·φ_d/d₃₂, 1/m: exact for the Sauter mean. Vanishes with either phase. */
+/** a = 6·φ_d/d₃₂, 1/m: exact for the Sauter mean. Vanishes with either phase, below a continuous share of 5 %. */
 export const specificArea = (s: Stirred, d32: Expr): Expr =>
-  div(mul(6, s.dispersed, div(s.continuous, add(s.continuous, 0.02))), d32);
+  div(mul(6, s.dispersed, smoothStep(div(s.continuous, 0.05))), d32);

@@ -350,13 +350,14 @@ class PlantWriter {
       const from = this.#net.flowSource(stream.name);
       const scale =
         from.kind === 'feed' ? this.#s.feeds[from.index].flow : (this.#s.tanks[from.index].flow as number);
-      this.#book.ledger.output({ path: `${stream.name}.flow`, unit: 'm^3/s', scale }, same, source.flow);
-      if (source.carried)
+      const { flow, carried } = stream.maker.kind === 'train' ? this.#streamFlow(stream.name) : source;
+      this.#book.ledger.output({ path: `${stream.name}.flow`, unit: 'm^3/s', scale }, same, flow);
+      if (carried)
         this.#book.showValue(
           `${stream.name}.carried ${otherPhase(stream.phase)}`,
           'm^3/s',
           scale * 1e-4,
-          source.carried,
+          carried,
         );
       for (let k = 0; k < this.#book.components(stream.phase); k++)
         this.#book.show(stream.name, k, source.content(k));

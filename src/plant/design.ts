@@ -1,6 +1,5 @@
 import type { Network } from '../scenario/network.ts';
 import type { Band, BandPoint, Phase, Scenario, Stage, Train } from '../scenario/scenario.ts';
-import { NEARLY_EMPTY } from './book.ts';
 import { headFor } from './weir-law.ts';
 
 /** s that the continuous phase of a band stays above what the drops need: short against everything else. */
@@ -186,6 +185,3 @@ function crests(t: Train, q: Stage, leaving: Both, ratio: number): Both | null {
       depth.aqueous + ratio * depth.organic - weirs.loss - headFor(leaving.aqueous, weirs.aqueousLength),
   };
 }
-
-/** m³ of a vessel at which its reciprocal volume is replaced. */
-export const nearlyEmpty = (volume: number): number => volume * NEARLY_EMPTY;

@@ -1,4 +1,5 @@
 import type { Plant } from './assemble.ts';
+import { recycled } from './design.ts';
 
 /** What a train looks like at its design flows; SI. Ranges over its stages where they differ: [least, most]. */
 export interface TrainFacts {
@@ -8,7 +9,7 @@ export interface TrainFacts {
   readonly organic: number;
   readonly ratio: number;
   readonly mixerResidence: readonly [number, number];
-  /** Total flow per settler area, m³/(m²·s); null where no area is given. */
+  /** Total flow, recycle included, per settler area, m³/(m²·s); null where no area is given. */
   readonly specificFlow: readonly [number, number] | null;
   /** m³ of each phase in all mixers and settlers. */
   readonly held: { readonly aqueous: number; readonly organic: number };
@@ -23,10 +24,11 @@ export function trainFacts(plant: Plant): TrainFacts[] {
   return s.trains.map((t) => {
     const aqueous = flowOf(t.aqueous.from);
     const organic = flowOf(t.organic.from);
-    const both = aqueous + organic;
+    const back = recycled(t, { aqueous, organic });
+    const both = aqueous + organic + back.aqueous + back.organic;
     const range = (list: number[]): [number, number] => [Math.min(...list), Math.max(...list)];
     const areas = t.stages.flatMap((q) => (q.settler.area === null ? [] : [q.settler.area]));
-    const share = organic / both;
+    const share = (organic + back.organic) / both;
     const sum = (f: (i: number) => number): number => t.stages.reduce((n, _, i) => n + f(i), 0);
     return {
       train: t.name,

@@ -67,6 +67,21 @@ export function writeStageOutputs(book: Book, v: Vessel, r: Shown): void {
       );
     }
   }
+  if (v.outlets === null && (band !== null || places.volumes.mixer.organic !== null)) {
+    for (const phase of PHASES)
+      book.ledger.guard(
+        {
+          name: `${path}.settler ${phase} layer used up`,
+          direction: -1,
+          message: `mixer and band of ${path} have taken up all ${phase} of its settler: full vessels have no answer to that, and what follows in this stage is not to be trusted`,
+          fromStart: true,
+          action: 'report',
+        },
+        past,
+        r.layer[phase],
+        book.number(0),
+      );
+  }
   if (stage.mixer.inversion) {
     const { low, high } = stage.mixer.inversion;
     const mode = v.continuity.index;

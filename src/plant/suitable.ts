@@ -4,9 +4,11 @@ import { type Problem, Refusal } from '../scenario/refusal.ts';
 import type { Law, Phase, Scenario, Train } from '../scenario/scenario.ts';
 import { NEARLY_EMPTY } from './book.ts';
 import { track } from './course.ts';
-import type { TrainDesign } from './design.ts';
+import { recycled, type TrainDesign } from './design.ts';
 import { upstream } from './entering.ts';
+import { forBoth, type Of, otherPhase, PHASES } from './flow.ts';
 import { asWritten } from './laws/formula.ts';
+import { headFor, NEAR_CREST } from './weir-law.ts';
 
 type Exchange = Extract<Law, { law: 'exchange' }>;
 
@@ -28,6 +30,7 @@ export function suitable(s: Scenario, net: Network, plans: readonly TrainDesign[
     ...fittingBands(t, plans[i]),
     ...risingFormulas(s, net, t),
     ...sameExtractant(s, t),
+    ...roomForWeirs(t, plans[i]),
     ...roomySettlers(s, net, t),
   ]);
   if (problems.length > 0) throw new Refusal(problems);
@@ -109,28 +112,70 @@ function fittingBands(t: Train, plan: TrainDesign): Problem[] {
 }
 
 /**
- * A mixer follows its flows between the shares Q_o/(Q_a + Q_o) at their extremes, and never leaves that range. What
- * it takes up of a phase beyond its design hold-up comes out of the settler's layer, which must hold that much.
+ * A mixer follows its flows, recycle included, between the shares Q_o/(Q_a + Q_o) at their extremes, and never leaves
+ * that range. What it takes up of a phase beyond its design hold-up comes out of the settler's layer, which must hold
+ * that much.
  */
 function roomySettlers(s: Scenario, net: Network, t: Train): Problem[] {
   // With weirs the levels give way, and a lost interface is an event.
   if (t.hydraulics === 'weirs') return [];
-  const source = { aqueous: net.flowSource(t.aqueous.from), organic: net.flowSource(t.organic.from) };
-  const range = { aqueous: flowRange(s, net, source.aqueous), organic: flowRange(s, net, source.organic) };
-  return (['aqueous', 'organic'] as const).flatMap((phase): Problem[] => {
-    const other: Phase = phase === 'aqueous' ? 'organic' : 'aqueous';
-    const own = range[phase];
-    const design = own.design / (own.design + range[other].design);
-    const most = own.most / (own.most + range[other].least);
-    const small = t.stages.findIndex(
-      ({ mixer, settler }) => mixer.volume * (most - design) > settler[phase] * (1 - NEARLY_EMPTY),
-    );
-    if (small < 0) return [];
-    const { mixer, settler } = t.stages[small];
-    const taken = show(mixer.volume * (most - design));
-    const message = `the settler of stage ${small + 1} is too small: at ${show(3600 * range[other].least)} m^3/h of ${other} its mixer takes up ${taken} m^3 of ${phase} more, but the ${phase} layer holds only ${show(settler[phase])} m^3`;
-    return [{ path: ['trains', t.name, 'settler'], message }];
+  const range = forBoth((phase) => flowRange(s, net, net.flowSource(t[phase].from)));
+  return PHASES.flatMap((phase): Problem[] => {
+    const other = otherPhase(phase);
+    const ledPast = (which: Phase, j: number): boolean =>
+      s.upsets.some((u) => u.quantity === `${t.name}.${j + 1}.${which} bypass`);
+    for (const [j, { mixer, settler }] of t.stages.entries()) {
+      const share = (own: number, against: number): number => {
+        const back = recycled(t, { aqueous: 0, organic: 0, [phase]: own, [other]: against } as Of<number>);
+        return (own + back[phase]) / (own + back[phase] + against + back[other]);
+      };
+      const least = ledPast(other, j) ? 0 : range[other].least;
+      const most = Math.max(share(range[phase].most, least), share(range[phase].design, least));
+      const more = mixer.volume * (most - share(range[phase].design, range[other].design));
+      if (more <= settler[phase] * (1 - NEARLY_EMPTY)) continue;
+      const message = `the settler of stage ${j + 1} is too small: at ${show(3600 * least)} m^3/h of ${other} its mixer takes up ${show(more)} m^3 of ${phase} more, but the ${phase} layer holds only ${show(settler[phase])} m^3`;
+      return [{ path: ['trains', t.name, 'settler'], message }];
+    }
+    return [];
   });
+}
+
+/** Depths that leave the interface clear of port and crest, and crests that stand above the floor. */
+function roomForWeirs(t: Train, plan: TrainDesign): Problem[] {
+  if (t.hydraulics !== 'weirs') return [];
+  for (const [j, { settler, mixer }] of t.stages.entries()) {
+    const { weirs, area } = settler;
+    const { crest, leaving, entering } = plan.stages[j];
+    if (weirs === null || area === null || crest === null) continue;
+    const head = headFor(leaving.organic, weirs.organicLength);
+    const complain = (field: string, message: string): Problem[] => [
+      { path: ['trains', t.name, field], message: `stage ${j + 1}: ${message}` },
+    ];
+    if (settler.organic / area < head + NEAR_CREST)
+      return complain(
+        'settler',
+        `the organic layer must be deeper than the head over its weir and the ${NEAR_CREST} m above the interface that keep aqueous back: ${show(head + NEAR_CREST)} m, got ${show(settler.organic / area)} m`,
+      );
+    if (settler.aqueous / area < weirs.port)
+      return complain(
+        'settler',
+        `the aqueous layer must be deeper than the port of its outlet, ${show(weirs.port)} m, got ${show(settler.aqueous / area)} m`,
+      );
+    if (crest.aqueous <= 0)
+      return complain(
+        'settler',
+        `the crest of the aqueous weir would be at ${show(crest.aqueous)} m; it must be above the floor`,
+      );
+    const { length, area: plan_ } = mixer.overflow;
+    const deep = mixer.volume / plan_;
+    const over = headFor(entering.aqueous + entering.organic, length);
+    if (over >= deep)
+      return complain(
+        'mixer',
+        `the head over its weir, ${show(over)} m, must be less than its depth, ${show(deep)} m`,
+      );
+  }
+  return [];
 }
 
 function flowRange(s: Scenario, net: Network, m: Maker): { design: number; least: number; most: number } {

@@ -93,13 +93,6 @@ export class TankWriter {
     } as unknown as Sink;
   }
 
-  /** What its stream carries on: a share of what came in, at once. */
-  carried(incoming: Ref | null): Ref | null {
-    return this.#passes === null || incoming === null
-      ? null
-      : this.#book.signal(product, this.#passes, incoming);
-  }
-
   source(): Source {
     return {
       phase: this.#t.phase,

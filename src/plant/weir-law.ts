@@ -15,7 +15,8 @@ export const level = (area: Expr, ...volumes: Expr[]): Expr => div(add(...volume
 
 /**
  * Level in the aqueous leg: the gravity decanter, z_leg = z_a + z_o·ρ_o/ρ_a − losses, hydrostatic balance of both
- * layers against clear aqueous (W. L. McCabe, J. C. Smith and P. Harriott, decanters).
+ * layers against clear aqueous (W. L. McCabe, J. C. Smith and P. Harriott, Unit Operations of Chemical Engineering,
+ * chapter on fluid statics; from memory).
  */
 export const legLevel = (aqueousDepth: Expr, organicDepth: Expr, densityRatio: Expr, loss: Expr): Expr =>
   sub(add(aqueousDepth, mul(organicDepth, densityRatio)), loss);

@@ -17,8 +17,11 @@ export function runScreen(r: RunResult): string[] {
     lines.push(`note   ${c.quantity} would fall below 0 after ${clock(c.time)}: held at 0`);
   for (const l of r.limits) lines.push(...limitLines(l));
   if (r.events.length > 0) lines.push('Events:');
-  for (const e of r.events.slice(0, 6)) lines.push(`  ${clock(e.time)}  ${e.message}`);
-  if (r.events.length > 6) lines.push(`  … and ${r.events.length - 6} more, in summary.json`);
+  // Start-up has many events; those at the end tell how the plant stands.
+  const told = (e: { time: number; message: string }): string => `  ${clock(e.time)}  ${e.message}`;
+  const between = r.events.length - 8;
+  lines.push(...r.events.slice(0, between > 0 ? 4 : 8).map(told));
+  if (between > 0) lines.push(`  … and ${between} between, in summary.json`, ...r.events.slice(-4).map(told));
   lines.push('', ...outletTable(r));
   const worst = r.closures.reduce((a, b) => (b.closure > a.closure ? b : a));
   lines.push(
@@ -39,7 +42,8 @@ const rejected = ({ work: w }: RunResult): number =>
 /** One limit in words. */
 export function limitLines(l: LimitReport): string[] {
   const name = `${l.path} ${l.limit.side === 'below' ? '<' : '>'} ${withUnit(l.limit.value, l.unit)}`;
-  const worst = `worst ${withUnit(l.worst.value, l.unit)} at ${clock(l.worst.time)}`;
+  const negligible = Math.abs(l.worst.value) < 1e-6 * Math.abs(l.limit.value);
+  const worst = `worst ${withUnit(negligible ? 0 : l.worst.value, l.unit)} at ${clock(l.worst.time)}`;
   if (l.spells.length === 0) return [`KEPT   ${name}: ${worst}`];
   const spells = l.spells.map((q) =>
     q.to === null ? `${clock(q.from)} to the end` : `${clock(q.from)} to ${clock(q.to)}`,
@@ -137,6 +141,8 @@ function figureLines(f: TrainFigures): string[] {
     const [a, b] = [figure(Math.min(...known), digits), figure(Math.max(...known), digits)];
     return a === b ? a : `${a} to ${b}`;
   };
+  const total = (list: readonly (number | null)[]): string =>
+    list.includes(null) ? '-' : clock(list.reduce<number>((n, v) => n + (v as number), 0));
   const efficiency = f.solutes.map((q) =>
     span(
       q.efficiency.map((e) => (e === null ? null : 100 * e)),
@@ -148,7 +154,7 @@ function figureLines(f: TrainFigures): string[] {
     `O/A ${figure(f.advance)} through, ${span(f.stages.map((q) => q.mixerRatio))} in the mixers`,
     `stage efficiency ${efficiency.join(', ')} %`,
     ...(loads.some((v) => v !== null) ? [`settlers ${span(loads)} m³/h·m²`] : []),
-    `held ${clock(f.stages.reduce((n, q) => n + q.aqueousHeld, 0))} aqueous, ${clock(f.stages.reduce((n, q) => n + q.organicHeld, 0))} organic`,
+    `held ${total(f.stages.map((q) => q.aqueousHeld))} aqueous, ${total(f.stages.map((q) => q.organicHeld))} organic`,
     ...(f.solventLost > 0
       ? [
           `solvent lost ${figure(f.solventLost * 86400)} m³/d (${figure(f.specificLoss * 1e6)} mL/m³ of aqueous)`,
@@ -172,7 +178,7 @@ export function checkScreen(plant: Plant): string[] {
         'aqueous',
         'organic',
         'O/A',
-        'in the mixer',
+        'mixer time',
         'settler load',
         'turnover aq',
         'turnover org',
@@ -197,12 +203,12 @@ export function checkScreen(plant: Plant): string[] {
     lines.push(`  ${q.name} (${q.phase}): ${who(q.maker)} -> ${q.user ? who(q.user) : 'outlet'}`);
   }
   if (s.upsets.length > 0) lines.push('', 'Upsets');
-  for (const u of s.upsets) {
+  const upsets = s.upsets.map((u) => {
     const ramp = u.over > 0 ? ` over ${clock(u.over)}` : ' at once';
-    lines.push(
-      `  ${clock(u.at)}: ${u.words}${ramp}, ${u.lasts === null ? 'to the end of the run' : `for ${clock(u.lasts)}`}`,
-    );
-  }
+    return `  ${clock(u.at)}: ${u.words}${ramp}, ${u.lasts === null ? 'to the end of the run' : `for ${clock(u.lasts)}`}`;
+  });
+  // One change in words can move several quantities.
+  lines.push(...new Set(upsets));
   if (s.limits.length > 0) lines.push('', 'Limits');
   for (const l of s.limits) {
     const output = plant.system.outputs.find((o) => o.path === `${l.stream}.${l.quantity}`);

@@ -62,10 +62,10 @@ const trainFigures = object({
   solvent_lost_m3_per_m3_aqueous: number('of the aqueous outlet'),
   stages: list(
     object({
-      mixer_organic_to_aqueous: number('recycle and carry-over included'),
-      mixer_residence_s: number('of all that enters'),
-      aqueous_held_s: number('in mixer and settler'),
-      organic_held_s: number('in mixer and settler'),
+      mixer_organic_to_aqueous: orNull(number('recycle and carry-over included')),
+      mixer_residence_s: orNull(number('of all that enters')),
+      aqueous_held_s: orNull(number('in mixer and settler')),
+      organic_held_s: orNull(number('in mixer and settler')),
       settler_load_m_per_s: orNull(number('all that enters over the area')),
     }),
   ),

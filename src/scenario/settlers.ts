@@ -37,18 +37,23 @@ function bandOf({ band: b }: RawSettler, path: Path, problems: Problem[]): Band 
       path: [...path, 'floods_at'],
       message: `must be more than at: ${b.at.text}, got ${b.floods_at.text}`,
     });
+  const other = b.other_continuity;
+  if (b.floods_at !== undefined && other !== undefined && b.floods_at.value <= other.at.value)
+    problems.push({
+      path: [...path, 'other_continuity', 'at'],
+      message: `must be less than floods_at: ${b.floods_at.text}, got ${other.at.text}`,
+    });
   const law =
     b.floods_at !== undefined
       ? { floodsAt: b.floods_at.value }
       : { exponent: b.exponent?.value ?? Number.NaN };
-  const o = b.other_continuity;
   return {
     thickness: b.thickness.value,
     at: b.at.value,
     law,
     holdUp: b.hold_up?.value ?? usualBandHoldUp,
     coalescer: b.coalescer?.value ?? 1,
-    other: o === undefined ? null : { thickness: o.thickness.value, at: o.at.value, law },
+    other: other === undefined ? null : { thickness: other.thickness.value, at: other.at.value, law },
   };
 }
 

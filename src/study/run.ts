@@ -144,7 +144,9 @@ function snapshotsOf(
   const snapshots: Snapshot[] = [{ label: 'start', time: times[0], outputs: rows[0] }];
   const shown = before === null ? undefined : recorder.snapshots.get(before);
   if (shown && before !== null) snapshots.push({ label: 'before the upset', time: before, outputs: shown });
-  const broken = reports.find((r) => r.spells.length > 0) ?? reports[0];
+  // A product is below its least content in every start-up, which says less than an outlet above its limit.
+  const broke = reports.filter((r) => r.spells.length > 0);
+  const broken = broke.find((r) => r.limit.side === 'below') ?? broke[0] ?? reports[0];
   if (broken && broken.worst.time > 0 && broken.worst.time < end)
     snapshots.push({ label: 'worst', time: broken.worst.time, outputs: broken.atWorst });
   if (times.length > 1)

@@ -1,4 +1,6 @@
 import type { Plant } from '../plant/assemble.ts';
+import { recycled } from '../plant/design.ts';
+import { forBoth } from '../plant/flow.ts';
 import { equilibriumAt } from '../plant/isotherm.ts';
 import type { Law, Train } from '../scenario/scenario.ts';
 import type { F } from '../solve/system.ts';
@@ -17,11 +19,11 @@ export interface TrainFigures {
 
 export interface StageFigures {
   /** Organic to aqueous in the mixer, recycle and carry-over included. */
-  readonly mixerRatio: number;
-  /** s: mixer and layers, by phase. */
-  readonly mixerResidence: number;
-  readonly aqueousHeld: number;
-  readonly organicHeld: number;
+  readonly mixerRatio: number | null;
+  /** s: mixer and layers, by phase. Null while nothing flows. */
+  readonly mixerResidence: number | null;
+  readonly aqueousHeld: number | null;
+  readonly organicHeld: number | null;
   /** m³/(m²·s) of all that enters the settler; null without an area. */
   readonly settlerLoad: number | null;
 }
@@ -43,7 +45,8 @@ export interface SoluteFigures {
 /** Figures of all trains from a row of outputs. */
 export function trainFigures(plant: Plant, y: F): TrainFigures[] {
   const at = new Map(plant.system.outputs.map((o, i) => [o.path, i]));
-  const read = (path: string): number => y[at.get(path) ?? -1] ?? 0;
+  const known = (path: string): number | undefined => y[at.get(path) ?? -1];
+  const read = (path: string): number => known(path) ?? 0;
   return plant.scenario.trains.map((t, i): TrainFigures => {
     const flow = (name: string): number => read(`${name}.flow`);
     const solventLost = read(`${t.aqueous.to}.carried organic`);
@@ -53,7 +56,7 @@ export function trainFigures(plant: Plant, y: F): TrainFigures[] {
       advance: flow(t.organic.from) / flow(t.aqueous.from),
       solventLost,
       specificLoss: out > 0 ? solventLost / out : 0,
-      stages: t.stages.map((_, j) => stageFigures(plant, i, j, read)),
+      stages: t.stages.map((_, j) => stageFigures(plant, i, j, known)),
       solutes: plant.scenario.solutes.flatMap((solute, k) => {
         const law = t.equilibrium[k];
         return law ? [soluteFigures(plant, t, k, solute, law, read)] : [];
@@ -62,21 +65,40 @@ export function trainFigures(plant: Plant, y: F): TrainFigures[] {
   });
 }
 
+const finite = (v: number): number | null => (Number.isFinite(v) ? v : null);
+
 type Read = (path: string) => number;
 
-function stageFigures(plant: Plant, train: number, j: number, read: Read): StageFigures {
+function stageFigures(
+  plant: Plant,
+  train: number,
+  j: number,
+  read: (path: string) => number | undefined,
+): StageFigures {
   const t = plant.scenario.trains[train];
   const { mixer, settler } = t.stages[j];
-  const d = plant.designs[train].stages[j];
-  const share =
-    read(`${t.name}.${j + 1}.mixer.organic_share`) || d.mixer.organic / (d.mixer.organic + d.mixer.aqueous);
-  const entering = d.entering.aqueous + d.entering.organic;
+  const { inlet, stages } = plant.designs[train];
+  const d = stages[j];
+  const path = `${t.name}.${j + 1}`;
+  const share = read(`${path}.mixer.organic_share`) ?? d.mixer.organic / mixer.volume;
+  const through = forBoth((phase) => read(`${t[phase].from}.flow`) ?? inlet[phase]);
+  const back = recycled(t, through);
+  // What neighbours carry over is small and taken as at design.
+  const entering = forBoth((phase) =>
+    Math.max(0, through[phase] + back[phase] + d.entering[phase] - d.recycled[phase] - inlet[phase]),
+  );
+  const held = forBoth((phase) => {
+    const depth = read(`${path}.settler.${phase}_depth`);
+    if (depth === undefined || settler.area === null) return d.mixer[phase] + d.band[phase] + d.layer[phase];
+    return mixer.volume * (phase === 'organic' ? share : 1 - share) + d.band[phase] + depth * settler.area;
+  });
+  const both = entering.aqueous + entering.organic;
   return {
-    mixerRatio: share / (1 - share),
-    mixerResidence: mixer.volume / entering,
-    aqueousHeld: (d.mixer.aqueous + d.band.aqueous + d.layer.aqueous) / d.entering.aqueous,
-    organicHeld: (d.mixer.organic + d.band.organic + d.layer.organic) / d.entering.organic,
-    settlerLoad: settler.area === null ? null : entering / settler.area,
+    mixerRatio: finite(share / (1 - share)),
+    mixerResidence: finite(mixer.volume / both),
+    aqueousHeld: finite(held.aqueous / entering.aqueous),
+    organicHeld: finite(held.organic / entering.organic),
+    settlerLoad: settler.area === null ? null : both / settler.area,
   };
 }
 

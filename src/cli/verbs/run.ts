@@ -70,6 +70,7 @@ export async function run(file: string, options: RunOptions, console: Console): 
     writeJson('.', options.saveState, result.kept);
     console.say([`State kept in ${options.saveState}; start another run from it with start: {saved: FILE}`]);
   }
+  console.say(runScreen(result));
   if (options.pictures) {
     const { runPictures } = await import('../../report/pictures/index.ts');
     for await (const picture of runPictures(result, Number(options.scale))) {
@@ -81,7 +82,7 @@ export async function run(file: string, options: RunOptions, console: Console): 
     console.clear();
   }
   process.off('SIGINT', onInterrupt);
-  console.say([...runScreen(result), '', `Written to ${folder}: ${made.join(', ')}`]);
+  console.say(['', `Written to ${folder}: ${made.join(', ')}`]);
   if (interrupted) {
     process.stderr.write(`interrupted; what was finished is in ${folder}\n`);
     return exits.interrupted;

@@ -17,7 +17,7 @@ export const levels: Picture<RunResult> = {
     const unit = timeUnit(s.horizon);
     const events = r.events.slice(0, 3).map((e) => `${clock(e.time)}: ${e.message}`);
     return panelSheet({
-      title: `${short(s.title, 60)}: levels and bands`,
+      title: `${r.complete ? '' : 'INCOMPLETE: '}${short(s.title, 60)}: levels and bands`,
       answer: (events.length > 0
         ? events
         : ['No event: no settler flooded, no interface was lost, no tank ran empty or over.']

@@ -138,7 +138,7 @@ function palette(share: number): string {
     [140, 190, 104],
     [250, 236, 130],
   ];
-  const at = Math.min(0.9999, Math.max(0, share)) * (stops.length - 1);
+  const at = (Number.isFinite(share) ? Math.min(0.9999, Math.max(0, share)) : 0) * (stops.length - 1);
   const i = Math.floor(at);
   const f = at - i;
   const mix = stops[i].map((c, k) => Math.round(c + (stops[i + 1][k] - c) * f));

@@ -108,13 +108,14 @@ function config(d: Diagram, title: string): ChartConfiguration {
       grid: { color: (c: { tick?: { value: number } }) => (c.tick?.value === 0 ? '#888888' : '#e2e2e2') },
       border: { color: '#888888' },
     };
+  const low = labelGoesBelow(moments, maxX, maxY);
   const annotations = moments.map((m, i) => ({
     type: 'label',
     xScaleID: `x${i % across}`,
     yScaleID: `y${down - 1 - Math.floor(i / across)}`,
-    xValue: 0.02 * maxX,
-    yValue: 0.95 * maxY,
-    position: { x: 'start', y: 'start' },
+    xValue: (low ? 0.98 : 0.02) * maxX,
+    yValue: (low ? 0.05 : 0.95) * maxY,
+    position: low ? { x: 'end', y: 'end' } : { x: 'start', y: 'start' },
     content: moment(m),
     font: { size: 14, weight: 'bold' },
     backgroundColor: 'rgba(255,255,255,0.85)',
@@ -144,4 +145,16 @@ const wholeSteps = (v: number): number => Math.ceil(v / step(v)) * step(v);
 function step(span: number): number {
   const size = 10 ** Math.floor(Math.log10(span / 5));
   return [1, 2, 5, 10].map((f) => f * size).find((v) => span / v <= 8) ?? span / 5;
+}
+
+/** Labels stand at the top left, or at the bottom right where less is drawn. */
+function labelGoesBelow(moments: Diagram['moments'], maxX: number, maxY: number): boolean {
+  const drawn = moments.flatMap((m) => [...m.isotherm, ...m.operating, ...m.stages]);
+  const count = (left: number, bottom: number): number =>
+    drawn.filter((p) => {
+      const x = p.x / maxX - left;
+      const y = p.y / maxY - bottom;
+      return x > 0 && x < 0.4 && y > 0 && y < 0.2;
+    }).length;
+  return count(0.6, 0.03) < count(0, 0.8);
 }

@@ -9,6 +9,8 @@ import { timeUnit } from './time-axis.ts';
 /** Curves whose largest values differ by more than this share no panel. */
 const COMPARABLE = 4;
 const MOST_PANELS = 5;
+/** Characters that a line of the heading holds. */
+const WIDEST = 150;
 
 /** Outlets against their limits over time, with the upsets shaded and what was changed at the foot. */
 export const outlets: Picture<RunResult> = {
@@ -19,22 +21,17 @@ export const outlets: Picture<RunResult> = {
     const limited = [...new Set(r.limits.map((l) => l.path))];
     const panels = [...limitPanels(r, limited), ...otherPanels(r, limited)];
     const changed = changedPanels(r);
+    const upsets = r.shades.map(
+      (q, i) =>
+        `${i + 1}: ${q.words}, ${figure(q.from / unit.seconds)} to ${figure(q.to / unit.seconds)} ${unit.name}`,
+    );
     const answer = [
-      ...r.limits.slice(0, 2).map((l) =>
-        limitLines(l)
-          .map((q) => q.replace(/\s+/g, ' ').trim())
-          .join('; '),
-      ),
-      ...r.shades
-        .slice(0, 3)
-        .map(
-          (q, i) =>
-            `${i + 1}: ${q.words}, ${figure(q.from / unit.seconds)} to ${figure(q.to / unit.seconds)} ${unit.name}`,
-        ),
+      ...r.limits.slice(0, 2).flatMap((l) => packed(limitLines(l).map((q) => q.replace(/\s+/g, ' ').trim()))),
+      ...packed(upsets).slice(0, 3),
     ];
     return panelSheet({
-      title: s.title,
-      answer: answer.map((l) => short(l, 150)),
+      title: r.complete ? s.title : `INCOMPLETE: ${s.title}`,
+      answer: answer.map((l) => short(l, WIDEST)),
       source: `${short(s.title, 60)}: outlets over ${figure(s.horizon / unit.seconds)} ${unit.name}, start ${startWords(s.start)}`,
       span: s.horizon,
       panels: [...panels.slice(0, MOST_PANELS - Math.min(2, changed.length)), ...changed.slice(0, 2)],
@@ -42,6 +39,18 @@ export const outlets: Picture<RunResult> = {
     });
   },
 };
+
+/** Pieces of text put together on lines that the heading holds. */
+function packed(pieces: readonly string[]): string[] {
+  const lines: string[] = [];
+  for (const piece of pieces) {
+    const last = lines[lines.length - 1];
+    if (last !== undefined && last.length + 2 + piece.length <= WIDEST)
+      lines[lines.length - 1] = `${last}; ${piece}`;
+    else lines.push(piece);
+  }
+  return lines;
+}
 
 function line(r: RunResult, path: string): PanelLine & { largest: number; unit: string } {
   const output = r.plant.system.outputs.findIndex((o) => o.path === path);
@@ -52,6 +61,13 @@ function line(r: RunResult, path: string): PanelLine & { largest: number; unit: 
     if (Math.abs(y) > largest) largest = Math.abs(y);
     return { x, y };
   });
+  // Records may stride over the worst moment, which the text names.
+  for (const l of r.limits)
+    if (l.path === path) {
+      const at = data.findIndex((p) => p.x > l.worst.time);
+      data.splice(at < 0 ? data.length : at, 0, { x: l.worst.time, y: l.worst.value * factor });
+      largest = Math.max(largest, Math.abs(l.worst.value * factor));
+    }
   return { label: path, data, largest, unit };
 }
 
