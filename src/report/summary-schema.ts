@@ -157,7 +157,7 @@ const steady = object({
       until_full_or_empty_s: number('from time zero'),
     }),
   ),
-  closure: figures('imbalance over the boundary, relative to what enters'),
+  closure: figures('imbalance over the boundary less what drifting tanks gain, relative to what enters'),
   plant,
   solver: object({
     iterations: number(''),

@@ -56,6 +56,6 @@ export interface SteadyResult {
   readonly drifts: readonly { readonly tank: string; readonly rate: number; readonly until: number }[];
   readonly figures: readonly TrainFigures[];
   readonly diagrams: readonly Diagram[];
-  /** Largest imbalance at the boundary, relative to what enters, by component. */
+  /** Largest imbalance at the boundary less what drifting tanks gain, relative to what enters, by component. */
   readonly imbalance: number;
 }

@@ -37,7 +37,7 @@ function drifts(plant: Plant, x: F, change: F): SteadyResult['drifts'] {
   });
 }
 
-/** Boundary in − out at steady state, relative to what enters: it vanishes but for tanks that drift. */
+/** Boundary in − out at steady state, less what drifting tanks and their bottoms gain, relative to what enters. */
 function imbalance(plant: Plant, change: F): number {
   const sum = (list: readonly number[]): number => list.reduce((s, i) => s + change[i], 0);
   return Math.max(
@@ -45,7 +45,8 @@ function imbalance(plant: Plant, change: F): number {
       .filter((a) => a.unit === 'kg')
       .map((a) => {
         const entered = -sum(a.entered);
-        return entered > 0 ? Math.abs(entered - sum(a.left)) / entered : 0;
+        const gained = sum(a.held.filter((i) => plant.system.steady[i] !== 'free'));
+        return entered > 0 ? Math.abs(entered - sum(a.left) - gained) / entered : 0;
       }),
   );
 }

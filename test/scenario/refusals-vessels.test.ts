@@ -2,6 +2,7 @@ import { readFileSync } from 'node:fs';
 import { describe, expect, it } from 'vitest';
 import { assemble } from '../../src/plant/assemble.ts';
 import { readScenario, ScenarioError } from '../../src/scenario/read.ts';
+import { Refusal } from '../../src/scenario/refusal.ts';
 import { inRepo } from '../support/plants.ts';
 
 const good = readFileSync(inRepo('scenarios/saltbush-vessels.yaml'), 'utf8');
@@ -14,7 +15,7 @@ function said(from: string | RegExp, to: string): string {
     const { scenario } = readScenario(text, { file: 'wrong.yaml', folder: inRepo('scenarios') });
     assemble(scenario);
   } catch (e) {
-    if (e instanceof ScenarioError) return e.message;
+    if (e instanceof ScenarioError || e instanceof Refusal) return e.message;
     throw e;
   }
   return '';
@@ -76,6 +77,30 @@ describe('vessels that make no sense are refused with their place', () => {
       'at: 1.1 m/h, exponent: 3',
       'at: 1.1 m/h, floods_at: 1 m/h',
       /band\.floods_at: must be more than at/,
+    ],
+    [
+      'a second point of the band beyond its flood',
+      'at: 2.4 m/h, exponent: 3, other_continuity: {thickness: 9 cm, at: 2.4 m/h}',
+      'at: 2.4 m/h, floods_at: 4 m/h, other_continuity: {thickness: 9 cm, at: 5 m/h}',
+      /band\.other_continuity\.at: must be less than floods_at: 4 m\/h, got 5 m\/h/,
+    ],
+    [
+      'an organic layer that leaves no room under its weir',
+      'organic_depth: 0.30 m',
+      'organic_depth: 0.08 m',
+      /trains\.extraction\.settler: .*stage 1: the organic layer must be deeper/,
+    ],
+    [
+      'an aqueous layer below its own outlet',
+      'weirs: {organic_length: 8 m, aqueous_length: 8 m}',
+      'weirs: {organic_length: 8 m, aqueous_length: 8 m, port: 40 cm}',
+      /trains\.extraction\.settler: .*deeper than the port of its outlet, 0\.4 m/,
+    ],
+    [
+      'a mixer weir that would have to stand below the floor',
+      'overflow_weir: 3 m',
+      'overflow_weir: 1 cm',
+      /trains\.extraction\.mixer: .*the head over its weir/,
     ],
     [
       'an empty start of full vessels',
