@@ -49,6 +49,37 @@ describe('the command', () => {
     expect(files()).toEqual(before);
   });
 
+  it('a state kept on the way starts the next run where the first one was', () => {
+    const kept = upsettle(
+      'run',
+      'sound.yaml',
+      '--no-pictures',
+      '--quiet',
+      '--out',
+      'first',
+      '--save-state',
+      'at-3h.json',
+      '--save-at',
+      '3 h',
+    );
+    expect(kept.code).toBe(exits.done);
+    const next = sound.replace(/^start:.*$/m, '').replace('at: 6 h', 'at: 3 h');
+    writeFileSync(join(folder, 'next.yaml'), `${next}\nstart: {saved: at-3h.json}\n`);
+    expect(upsettle('run', 'next.yaml', '--no-pictures', '--quiet', '--out', 'second').code).toBe(exits.done);
+    const rows = (of: string): number[][] =>
+      readFileSync(join(folder, of, 'series.csv'), 'utf8')
+        .trim()
+        .split(/\r?\n/)
+        .slice(1)
+        .map((l) => l.split(',').map(Number));
+    const first = rows('first').filter((row) => row[0] >= 3 - 1e-9);
+    const second = rows('second');
+    for (const k of [0, 5, first.length - 1])
+      first[k].slice(1).forEach((v, i) => {
+        expect(Math.abs(v - second[k][i + 1])).toBeLessThan(1e-4 * Math.max(1, Math.abs(v)));
+      });
+  });
+
   it('a scenario that is not there', () => {
     const { code, out, error } = upsettle('check', 'nope.yaml');
     expect({ code, out, error }).toEqual({
