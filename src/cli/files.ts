@@ -64,10 +64,18 @@ export function outputFolder(file: string, verb: string, given: string | undefin
 
 export function makeFolder(folder: string): void {
   try {
-    mkdirSync(folder, { recursive: true });
+    makePath(resolve(folder));
   } catch (e) {
     throw new Known(`cannot make the folder ${folder} (${(e as NodeJS.ErrnoException).code})`, exits.usage);
   }
+}
+
+/** Folder by folder: the recursive call of Node never returns where the file system refuses with ENOENT. */
+function makePath(folder: string): void {
+  if (statSync(folder, { throwIfNoEntry: false })?.isDirectory()) return;
+  const parent = dirname(folder);
+  if (parent !== folder) makePath(parent);
+  mkdirSync(folder);
 }
 
 export function writeJson(folder: string, name: string, value: object): void {

@@ -34,7 +34,7 @@ export function seriesColumns(plant: Plant): Column[] {
   return [...new Set(order.flatMap(own))].map((output) => {
     const { path, unit } = outputs[output];
     const { unit: text, factor } = shown(unit);
-    return { header: `${path} [${text}]`, output, factor };
+    return { header: `${path} [${text || '-'}]`, output, factor };
   });
 }
 

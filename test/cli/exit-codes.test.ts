@@ -66,6 +66,13 @@ describe('the command', () => {
     const next = sound.replace(/^start:.*$/m, '').replace('at: 6 h', 'at: 3 h');
     writeFileSync(join(folder, 'next.yaml'), `${next}\nstart: {saved: at-3h.json}\n`);
     expect(upsettle('run', 'next.yaml', '--no-pictures', '--quiet', '--out', 'second').code).toBe(exits.done);
+    writeFileSync(
+      join(folder, 'other.yaml'),
+      `${next.replace('stages: 10', 'stages: 9')}\nstart: {saved: at-3h.json}\n`,
+    );
+    const other = upsettle('check', 'other.yaml');
+    expect(other.code).toBe(exits.refused);
+    expect(other.error).toMatch(/start\.saved: the state in .*at-3h\.json is of another plant/);
     const rows = (of: string): number[][] =>
       readFileSync(join(folder, of, 'series.csv'), 'utf8')
         .trim()

@@ -1,5 +1,6 @@
 import { assemble } from '../../plant/assemble.ts';
 import { checkScreen } from '../../report/screen.ts';
+import { restoreState } from '../../study/saved.ts';
 import type { Console } from '../console.ts';
 import { exits } from '../exit.ts';
 import { openScenario } from '../files.ts';
@@ -8,7 +9,11 @@ import { refusing } from '../refusing.ts';
 /** `upsettle check FILE`: the plant as understood, or every complaint. */
 export function check(file: string, console: Console): number {
   const read = openScenario(file);
-  const plant = refusing(read, () => assemble(read.scenario));
+  const plant = refusing(read, () => {
+    const made = assemble(read.scenario);
+    if (typeof read.scenario.start === 'object') restoreState(made, read.scenario.start);
+    return made;
+  });
   console.say(checkScreen(plant));
   return exits.done;
 }
