@@ -3,6 +3,7 @@ import type { Mixer } from '../scenario/scenario.ts';
 import type { Book } from './book.ts';
 import type { StageDesign } from './design.ts';
 import type { Of } from './flow.ts';
+import { past } from './kernels.ts';
 import type { Ref } from './ledger.ts';
 import { agitatorFigures, stirredArgs } from './stirred.ts';
 import type { Laws } from './train.ts';
@@ -107,5 +108,17 @@ function agitator(book: Book, path: string, mixer: Mixer, base: readonly Ref[]):
   shown.forEach(([name, unit, scale], k) => {
     book.showValue(`${path}.mixer.${name}`, unit, scale, figures[k]);
   });
+  book.ledger.guard(
+    {
+      name: `${path}.mixer below least speed`,
+      direction: -1,
+      message: `the agitator of ${path} runs below the least speed that disperses all: less area than the correlation gives`,
+      fromStart: true,
+      action: 'report',
+    },
+    past,
+    figures[shown.length - 1],
+    book.number(1),
+  );
   return own;
 }

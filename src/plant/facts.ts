@@ -1,3 +1,5 @@
+import { usualInversion } from '../scenario/plain.ts';
+import type { Phase } from '../scenario/scenario.ts';
 import type { Plant } from './assemble.ts';
 import { recycled } from './design.ts';
 
@@ -44,4 +46,16 @@ export function trainFacts(plant: Plant): TrainFacts[] {
       },
     };
   });
+}
+
+/** Mixers without inversion of their own whose continuous phase is, at design, less than the usual limits ask for. */
+export function thinMixers(plant: Plant): { stage: string; continuity: Phase; share: number }[] {
+  return plant.scenario.trains.flatMap((t, i) =>
+    t.stages.flatMap(({ mixer }, j) => {
+      const { continuity } = mixer;
+      const share = plant.designs[i].stages[j].mixer[continuity] / mixer.volume;
+      if (mixer.inversion !== null || share >= usualInversion.low) return [];
+      return [{ stage: `${t.name}.${j + 1}`, continuity, share }];
+    }),
+  );
 }

@@ -102,5 +102,8 @@ export const entrainedFrom = kernel(
 /** Share of a demand that a layer can still meet: 1 as long as it is more than nearly empty. */
 export const available = kernel('available', ['layer', 'least'], (V, least) => smoothStep(div(V, least)));
 
+/** How far a value is past a bound. */
+export const past = kernel('past', ['value', 'bound'], (v, bound) => sub(v, bound));
+
 /** One of two values by a mode: at 1 the first, at 0 the second. */
 export const chosen = kernel('chosen', ['mode', 'at 1', 'at 0'], (m, a, b) => select(sub(m, 0.5), a, b));

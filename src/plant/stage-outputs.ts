@@ -1,7 +1,9 @@
-import { add, div, sub } from '../math/expression.ts';
+import { add, div, select, sub } from '../math/expression.ts';
 import { kernel } from '../math/kernel.ts';
+import { usualInversion } from '../scenario/plain.ts';
 import type { Book, Part } from './book.ts';
 import { type Of, PHASES } from './flow.ts';
+import { past } from './kernels.ts';
 import type { Ref } from './ledger.ts';
 import type { Vessel } from './vessel.ts';
 
@@ -17,7 +19,10 @@ const organicShare = kernel('organic share', ['aqueous', 'organic'], (a, o) => d
 const beyond = kernel('beyond', ['aqueous', 'organic', 'share'], (a, o, share) =>
   sub(div(o, add(a, o)), share),
 );
-const past = kernel('past', ['value', 'bound'], (v, bound) => sub(v, bound));
+const thin = kernel('thin', ['aqueous', 'organic', 'continuity', 'low', 'high'], (a, o, mode, low, high) => {
+  const share = div(o, add(a, o));
+  return select(sub(mode, 0.5), sub(low, share), sub(share, high));
+});
 const ratio = kernel('ratio', ['volume', 'area'], (v, a) => div(v, a));
 
 /** What a stage shows: concentrations of mixer and settler outlets, volumes that move, and the events that it may have. */
@@ -103,6 +108,19 @@ export function writeStageOutputs(book: Book, v: Vessel, r: Shown): void {
     flip('becomes organic continuous', 1, high, 1, 'organic');
     flip('becomes aqueous continuous', -1, low, 0, 'aqueous');
   }
+  if (stage.mixer.inversion === null && places.volumes.mixer.organic)
+    book.ledger.guard(
+      {
+        name: `${path} near inversion`,
+        direction: 1,
+        message: `the continuous phase of ${path} is less than ${100 * usualInversion.low} % of its mixer: beyond the usual limits it may invert`,
+        fromStart: true,
+        action: 'report',
+      },
+      thin,
+      ...[r.mixer.aqueous, r.mixer.organic, v.continuity],
+      ...[book.number(usualInversion.low), book.number(usualInversion.high)],
+    );
   if (v.outlets && v.area && stage.settler.weirs) {
     const lost = (name: string, message: string, flow: Ref): void => {
       book.ledger.guard(

@@ -1,5 +1,5 @@
 import type { Plant } from '../plant/assemble.ts';
-import { trainFacts } from '../plant/facts.ts';
+import { thinMixers, trainFacts } from '../plant/facts.ts';
 import { explain } from '../solve/outcome.ts';
 import type { LimitReport } from '../study/limit-watch.ts';
 import type { RunResult, SteadyResult } from '../study/result.ts';
@@ -209,6 +209,11 @@ export function checkScreen(plant: Plant): string[] {
   });
   // One change in words can move several quantities.
   lines.push(...new Set(upsets));
+  const thin = thinMixers(plant).map(
+    (q) =>
+      `  ${q.stage}: the continuous phase, ${q.continuity}, is ${figure(100 * q.share)} % of the mixer: beyond the usual limits it may invert`,
+  );
+  if (thin.length > 0) lines.push('', 'Worth a look', ...thin);
   if (s.limits.length > 0) lines.push('', 'Limits');
   for (const l of s.limits) {
     const output = plant.system.outputs.find((o) => o.path === `${l.stream}.${l.quantity}`);

@@ -1,4 +1,6 @@
 import { describe, expect, it } from 'vitest';
+import { assemble } from '../../src/plant/assemble.ts';
+import { checkScreen } from '../../src/report/screen.ts';
 import type { Scenario } from '../../src/scenario/scenario.ts';
 import type { RunResult } from '../../src/study/result.ts';
 import { run } from '../../src/study/run.ts';
@@ -61,6 +63,50 @@ describe('what is past a bound at the start', () => {
     const r = run(fromText(text));
     expect(r.events.map((e) => e.time)).toEqual([0, 0, 0]);
     for (const e of r.events) expect(e.message).toContain('organic continuous');
+  });
+});
+
+describe('what a mixer should not be', () => {
+  it('of too little continuous phase is said: in check at design, in a run when it comes about', () => {
+    // 60 of organic to 30 of aqueous is 67 %; another half of organic makes it 75 %, twice 80 %.
+    const half = run(fromText(open({ more: 'upsets:\n  - {at: 1 h, change: fresh.flow, by: +45 %}' })));
+    expect(half.events).toEqual([]);
+    const twice = run(fromText(open({ more: 'upsets:\n  - {at: 1 h, change: fresh.flow, by: +100 %}' })));
+    expect(twice.events.map((e) => e.name).sort()).toEqual(
+      [1, 2, 3].map((j) => `extraction.${j} near inversion`),
+    );
+    for (const e of twice.events) expect(e.time).toBeGreaterThan(HOUR);
+    const still = open({}).replace('60 m^3/h', '120 m^3/h');
+    expect(checkScreen(assemble(fromText(still))).join('\n')).toMatch(
+      /extraction\.1: the continuous phase, aqueous, is 20\.0 % of the mixer/,
+    );
+    expect(checkScreen(assemble(fromText(open({})))).join('\n')).not.toMatch(/may invert/);
+  });
+
+  it('too slow to disperse is said, with the least speed of Skelland and Ramsay', () => {
+    const s = scenario('saltbush-vessels');
+    const slow = (by: number): RunResult =>
+      run({
+        ...s,
+        start: 'barren',
+        horizon: 2 * HOUR,
+        limits: [],
+        upsets: [
+          {
+            at: HOUR,
+            quantity: 'extraction.2.mixer.speed',
+            how: { by, relative: true },
+            over: 0,
+            lasts: null,
+            words: 'slow',
+          },
+        ],
+      });
+    const least = column(slow(-0.01), 'extraction.2.mixer.speed over least')[0];
+    const said = (r: RunResult): string[] =>
+      r.events.flatMap((e) => (e.name.endsWith('below least speed') ? [e.name] : []));
+    expect(said(slow(0.95 * (1 / least - 1)))).toEqual([]);
+    expect(said(slow(1.05 * (1 / least - 1)))).toEqual(['extraction.2.mixer below least speed']);
   });
 });
 
