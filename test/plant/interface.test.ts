@@ -34,6 +34,21 @@ describe('the interface of two films', () => {
     }
   });
 
+  it('answers far out too, where the curve is lost in the last digit of b, or is no curve at all', () => {
+    const at = (b: number, cap: number): number =>
+      evaluate({ b, r: 2.5, cap, k: 1.2 }, (n) => [
+        interfaceConcentration(bent, 3, n.b, n.r, [n.cap, n.k]),
+      ])[0];
+    for (const b of [5.069967892e9, 4.3e23, 1.7e301, 3.3e-300])
+      expect(at(b, 12) / (b / 2.5)).toBeLessThanOrEqual(1);
+    for (let k = 0; k < 300; k++) {
+      const b = 1.37 ** k * 1e7;
+      expect(at(b, 12) / (b / 2.5)).toBeCloseTo(1, 5);
+    }
+    // A capacity below zero, as a trial state may ask for, has no root: the step is refused, the run goes on.
+    expect(at(7, -40)).toBeNaN();
+  });
+
   it('has the slopes that differences show', () => {
     const numbers = { b: 7, r: 2.5, cap: 12, k: 1.2 };
     const value = (n: typeof numbers): number =>
