@@ -1,9 +1,8 @@
 import type { Phase, Stage, Train } from '../scenario/scenario.ts';
 import { type Book, NEARLY_EMPTY } from './book.ts';
 import type { Both, StageDesign } from './design.ts';
+import { forBoth, type Of, PHASES } from './flow.ts';
 import type { Ref } from './ledger.ts';
-
-type Of<T> = Readonly<Record<Phase, T>>;
 
 /** What a stage holds: the places of its amounts, and of those volumes that are states. */
 export interface StagePlaces {
@@ -20,7 +19,6 @@ export interface StagePlaces {
   };
 }
 
-const PHASES = ['aqueous', 'organic'] as const;
 /** Share of its design volume that an "empty" vessel still holds: a heel. */
 export const HEEL = 0.01;
 
@@ -50,7 +48,6 @@ export function stagePlaces(
       },
       v * held,
     );
-  const both = (f: (phase: Phase) => Ref): Of<Ref> => ({ aqueous: f('aqueous'), organic: f('organic') });
   const hasBand = stage.settler.band !== null;
   const size = (b: Both): number => b.aqueous + b.organic;
   return {
@@ -78,8 +75,8 @@ export function stagePlaces(
         aqueous: weirs ? volume('mixer', 'aqueous', d.mixer.aqueous, stage.mixer.volume) : null,
         organic: weirs || moves ? volume('mixer', 'organic', d.mixer.organic, stage.mixer.volume) : null,
       },
-      band: hasBand ? both((phase) => volume('band', phase, d.band[phase], size(d.band))) : null,
-      layer: weirs ? both((phase) => volume('settler', phase, d.layer[phase], d.layer[phase])) : null,
+      band: hasBand ? forBoth((phase) => volume('band', phase, d.band[phase], size(d.band))) : null,
+      layer: weirs ? forBoth((phase) => volume('settler', phase, d.layer[phase], d.layer[phase])) : null,
     },
   };
 }

@@ -299,9 +299,8 @@ export class TrainWriter {
     const inBand = places.volumes.band[phase];
     const into = book.signal(product, rate, band.enters);
     const aside = book.signal(product, rate, book.signal(rest, band.enters));
-    const least = book.number(1e-3 * (v.design.band.aqueous + v.design.band.organic));
     const out = band[phase];
-    const perVolume = book.signal(book.perVolumeKernel, inBand, least);
+    const perVolume = this.#perBand(v, inBand);
     book.drain({ places: places.mixer[phase] }, into, places.band[phase]);
     book.ledger.flux(drained, [into, mixer[phase]], { from: fromMixer, to: inBand });
     const sideFlow = book.signal(product, mixer[phase], aside);
@@ -314,6 +313,12 @@ export class TrainWriter {
       ],
       into: book.signal(sum(2), out, sideFlow),
     };
+  }
+
+  /** One over the volume of a phase in the band. */
+  #perBand(v: Vessel, held: Ref): Ref {
+    const { aqueous, organic } = v.design.band;
+    return this.#book.signal(this.#book.perVolumeKernel, held, this.#book.number(1e-3 * (aqueous + organic)));
   }
 
   #ownMixer(v: Vessel): Sink {
@@ -364,8 +369,7 @@ export class TrainWriter {
         book.send(last[phase], flow, v.places.volumes.layer?.[phase] ?? null, to);
         if (fromLayer) book.send(last[other], fromLayer, v.places.volumes.layer?.[other] ?? null, to);
         if (flood && v.places.band && v.places.volumes.band) {
-          const least = book.number(1e-3 * (v.design.band.aqueous + v.design.band.organic));
-          const perVolume = book.signal(book.perVolumeKernel, v.places.volumes.band[other], least);
+          const perVolume = this.#perBand(v, v.places.volumes.band[other]);
           const part: Part = {
             phase: other,
             path: `${v.path}.band`,

@@ -1,4 +1,5 @@
 import { add, div, type Expr, mul, pow, select, sqrt, sub } from '../../math/expression.ts';
+import { steepPower } from '../../math/shapes.ts';
 import type { Law } from '../../scenario/scenario.ts';
 import type { LawKind } from './law.ts';
 
@@ -7,17 +8,7 @@ type Freundlich = Extract<Law, { law: 'freundlich' }>;
 /** kg/m³ below which the power with the infinite slope at zero is replaced. Far below any assay. */
 const NEAR_ZERO = 1e-5;
 
-/**
- * (c/k)^s for 0 < s < 1 with a finite slope at zero: for x = c/δ < 1 it is g_δ·((2 − s)x + (s − 1)x²), which meets
- * the power in value and slope at x = 1, and goes on straight below zero.
- */
-function steep(c: Expr, k: Expr, s: Expr): Expr {
-  const top = pow(div(NEAR_ZERO, k), s);
-  const x = div(c, NEAR_ZERO);
-  const near = mul(top, add(mul(sub(2, s), x), mul(sub(s, 1), x, x)));
-  const straight = mul(top, sub(2, s), x);
-  return select(sub(c, NEAR_ZERO), pow(div(c, k), s), select(c, near, straight));
-}
+const steep = (c: Expr, k: Expr, s: Expr): Expr => steepPower(c, k, s, NEAR_ZERO);
 
 /** The exact inverse of `steep`, piece by piece: y ↦ c. */
 function gentle(y: Expr, k: Expr, s: Expr): Expr {
