@@ -95,11 +95,12 @@ describe('slowest modes', () => {
       transfer: { given: 'efficiency', efficiency: 0.9 },
       parts: 2,
     });
-    const { modes } = modesOf(s, 3);
+    const { modes } = modesOf(s, 6);
     // With D = 1 and full exchange both phases of a mixer wash out together, in one residence time of a minute.
     const known = { re: -1 / 60 };
-    // A defective triple eigenvalue: each of its copies is known to the cube root of round-off, and no better.
-    for (const m of modes) expect(Math.abs(m.rate / known.re - 1)).toBeLessThan(1e-3);
+    // A triple eigenvalue falls apart by the cube root of round-off; a pair that comes of it stands for two.
+    const own = modes.filter((m) => Math.abs(m.rate / known.re - 1) < 1e-3);
+    expect(own.reduce((n, m) => n + (m.frequency > 0 ? 2 : 1), 0)).toBe(3);
   });
 
   test.each([
