@@ -20,6 +20,8 @@ const SHIFT = 1e-10;
 /** Slower than that is at rest for any purpose: 30 years. */
 const AT_REST = 1e-9;
 const CONVERGED = 1e-9;
+/** By how much, relatively, round-off may part what belongs together. */
+const SPLIT = 1e-4;
 /** Vectors of the first projection, and at most. */
 const FIRST = 24;
 const MOST = 192;
@@ -149,7 +151,7 @@ function oneOfEachPair(all: readonly Complex[]): Complex[] {
   const lone = all.filter((q) => {
     if (q.im >= 0) return q.im === 0;
     const partner = upper.find(
-      (u) => !paired.has(u) && Math.hypot(u.re - q.re, u.im + q.im) <= 0.1 * Math.abs(q.im),
+      (u) => !paired.has(u) && Math.hypot(u.re - q.re, u.im + q.im) <= SPLIT * Math.hypot(q.re, q.im),
     );
     if (partner) paired.add(partner);
     return !partner;
