@@ -22,6 +22,8 @@ const AT_REST = 1e-9;
 const CONVERGED = 1e-9;
 /** By how much, relatively, round-off may part what belongs together. */
 const SPLIT = 1e-4;
+/** An imaginary part below this share is round-off. */
+const REAL = 1e-8;
 /** Vectors of the first projection, and at most. */
 const FIRST = 24;
 const MOST = 192;
@@ -136,7 +138,6 @@ function ritz({ h, stride: m, basis }: Space, count: number): Ritz[] {
   return oneOfEachPair(hessenbergEigenvalues(h, m, m))
     .sort((a, b) => size(b) - size(a))
     .slice(0, count)
-    .map((q) => (Math.abs(q.im) <= 1e-12 * size(q) ? { re: q.re, im: 0 } : q))
     .map((theta) => {
       const vector = hessenbergVector(h, basis.length, m, theta);
       const last = Math.hypot(vector.re[m - 1], vector.im[m - 1]);
@@ -146,17 +147,19 @@ function ritz({ h, stride: m, basis }: Space, count: number): Ritz[] {
 
 /** Without the lower ones of conjugate pairs. A multiple eigenvalue falls apart by round-off, and not into exact pairs. */
 function oneOfEachPair(all: readonly Complex[]): Complex[] {
-  const upper = all.filter((q) => q.im > 0);
-  const paired = new Set<Complex>();
-  const lone = all.filter((q) => {
-    if (q.im >= 0) return q.im === 0;
-    const partner = upper.find(
-      (u) => !paired.has(u) && Math.hypot(u.re - q.re, u.im + q.im) <= SPLIT * Math.hypot(q.re, q.im),
-    );
-    if (partner) paired.add(partner);
-    return !partner;
+  const size = (q: Complex): number => Math.hypot(q.re, q.im);
+  const straight = all.map((q) => (Math.abs(q.im) <= REAL * size(q) ? { re: q.re, im: 0 } : q));
+  const upper = straight.filter((q) => q.im > 0);
+  const free = new Set(upper);
+  const lower = straight.filter((q) => q.im < 0).sort((a, b) => a.im - b.im);
+  const lone = lower.filter((q) => {
+    const gap = (u: Complex): number => Math.hypot(u.re - q.re, u.im + q.im);
+    const partner = [...free].reduce<Complex | null>((a, b) => (a && gap(a) <= gap(b) ? a : b), null);
+    if (partner === null || gap(partner) > SPLIT * size(q)) return true;
+    free.delete(partner);
+    return false;
   });
-  return [...upper, ...lone];
+  return [...straight.filter((q) => q.im === 0), ...upper, ...lone];
 }
 
 function inPlaces(v: Complex<F>, { basis }: Space, size: F): Complex<F> {
