@@ -6,6 +6,7 @@ import { hint } from './nearest.ts';
 import { checkNeeds } from './needs.ts';
 import type { Outline } from './outline.ts';
 import { noProperties, plainTank, plainTrain } from './plain.ts';
+import { readCommissioning } from './read-commissioning.ts';
 import type { Problem } from './refusal.ts';
 import { Releases } from './releases.ts';
 import { startOf } from './saved.ts';
@@ -64,7 +65,8 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
   };
   checkNeeds(scenario, problems);
   checkSize(scenario, problems);
-  return scenario;
+  const around = { outline, basis, folder, feeds: known, contents };
+  return { ...scenario, commissioning: readCommissioning(raw, scenario, around, problems) };
 }
 
 class Builder {
