@@ -1,4 +1,5 @@
 import { type Complex, hessenbergEigenvalues, hessenbergVector } from '../math/eigen.ts';
+import { randomNumbers } from '../math/random.ts';
 import { LinearSolver } from './linear.ts';
 import { SteadyRows } from './steady.ts';
 import type { F, System } from './system.ts';
@@ -96,7 +97,7 @@ function arnoldi(apply: (v: F, to: F) => boolean, counts: Uint8Array, m: number)
   const n = counts.length;
   const h = new Float64Array((m + 1) * m);
   const basis: F[] = [];
-  const random = sequence();
+  const random = randomNumbers(1);
   const fresh = (): F => {
     const v = Float64Array.from(counts, (c) => (c ? 0.5 + random() : 0));
     orthogonal(v, basis);
@@ -190,12 +191,3 @@ function length(v: F): number {
 }
 
 const scaled = (v: F, by: number): F => v.map((q) => q * by);
-
-/** Numbers from 0 to 1, the same in each run: D. H. Lehmer's generator (1951) with the multiplier 48271. */
-function sequence(): () => number {
-  let state = 1;
-  return () => {
-    state = (state * 48271) % 2147483647;
-    return state / 2147483647;
-  };
-}

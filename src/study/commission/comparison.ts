@@ -1,7 +1,7 @@
 import type { Plant } from '../../plant/assemble.ts';
 import type { Compare } from '../../scenario/commissioning.ts';
-import type { F } from '../../solve/system.ts';
 import { outputsAt } from '../records.ts';
+import type { Kept } from './kept.ts';
 
 /** A run against the samples of a plant. */
 export interface Comparison {
@@ -24,17 +24,12 @@ export interface Compared {
   readonly mean: number;
 }
 
-/** `states` of the run at the times of the samples. */
-export function compareWith(
-  plant: Plant,
-  data: Compare,
-  states: ReadonlyMap<number, F>,
-  inputs: F,
-): Comparison {
+/** `kept`: the run at the times of the samples. */
+export function compareWith(plant: Plant, data: Compare, kept: ReadonlyMap<number, Kept>): Comparison {
   const columns = data.columns.flatMap(({ quantity, times, values }): Compared[] => {
     const output = plant.system.outputs.findIndex((o) => o.path === quantity);
     if (output < 0) return [];
-    const model = times.map((t) => outputsAt(plant, states.get(t) as F, inputs)[output]);
+    const model = times.map((t) => modelAt(plant, kept.get(t) as Kept, output));
     const off = model.map((v, i) => v - values[i]);
     const mean = (list: readonly number[]): number => list.reduce((s, v) => s + v, 0) / list.length;
     return [
@@ -52,3 +47,6 @@ export function compareWith(
   });
   return { file: data.file, columns };
 }
+
+const modelAt = (plant: Plant, { state, inputs }: Kept, output: number): number =>
+  outputsAt(plant, state, inputs)[output];

@@ -18,6 +18,8 @@ export interface Followed {
   readonly approach: ApproachWatch;
   /** Outputs at the start. */
   readonly start: F;
+  /** By quantity: the change that its bands are parts of; null where it hardly moves. */
+  readonly changes: readonly (number | null)[];
   readonly rest: Rest | NoRest;
   /** Whether all quantities have come within 1 % of their change for good. */
   readonly settled: boolean;
@@ -37,8 +39,10 @@ export interface FollowSettings extends Pick<RunSettings, 'integrator' | 'tolera
   readonly modes: number;
   /** Change by path that the bands are parts of; that of this very start by default. */
   readonly changes?: ReadonlyMap<string, number | null>;
-  /** Called with s reached. */
-  readonly progress?: (time: number) => void;
+  /** Only outlets and tanks are judged: enough for a time to steady state. */
+  readonly outletsOnly?: boolean;
+  /** Others that follow each attempt from its start. */
+  readonly watchers?: (plant: Plant) => readonly Watcher[];
 }
 
 /** Slowest decays after the last excursion after which nothing comes back: e⁻³ of one per cent is left. */
@@ -62,7 +66,9 @@ export function follow(s: Scenario, settings: FollowSettings): Followed {
   const plant = assemble(s);
   const initial = startState(plant);
   const modes = startModes(plant).modes ?? new Map<number, number>();
-  const quantities = watched(plant);
+  const quantities = watched(plant).filter(
+    (q) => !settings.outletsOnly || q.kind === 'outlet' || q.kind === 'tank',
+  );
   const after = movesEnd(s.upsets);
   const from = inputsAfter(plant, s.upsets);
   for (const [i, v] of modes) from[i] = v;
@@ -71,7 +77,7 @@ export function follow(s: Scenario, settings: FollowSettings): Followed {
   for (let attempt = 1; ; attempt++) {
     const made = new Attempt(plant, quantities, rest, initial, modes, settings);
     const next = made.run(asked, after, attempt < ATTEMPTS);
-    if (next === null) return { ...made.result(), asked: settings.atLeast ?? s.horizon };
+    if (next === null) return { ...made.result(), asked: s.horizon };
     rest = next;
   }
 }
@@ -83,6 +89,8 @@ class Attempt {
   readonly #settings: FollowSettings;
   readonly #approach: ApproachWatch;
   readonly #start: F;
+  readonly #changes: readonly (number | null)[];
+  readonly #others: readonly Watcher[];
   readonly #events: Event[] = [];
   #x: F;
   #w: F;
@@ -107,11 +115,13 @@ class Attempt {
     this.#w = Float64Array.from(plant.inputs);
     for (const [i, v] of modes) this.#w[i] = v;
     this.#modes = modes;
+    this.#others = settings.watchers?.(plant) ?? [];
     const start = outputsAt(plant, initial, this.#w);
     this.#start = start;
     const final = 'state' in rest ? rest.outputs : null;
+    this.#changes = quantities.map((q) => this.#change(q, final));
     this.#approach = new ApproachWatch(plant, [
-      ...quantities.map((q) => watchedLine(q, start, final, this.#change(q, final), settings.repeatability)),
+      ...quantities.map((q, k) => watchedLine(q, start, final, this.#changes[k], settings.repeatability)),
       ...plant.scenario.limits.map((l) => limitLine(plant, l, start)),
     ]);
   }
@@ -144,6 +154,7 @@ class Attempt {
       quantities: this.#quantities,
       approach: this.#approach,
       start: this.#start,
+      changes: this.#changes,
       rest: this.#rest,
       settled: rested && Number.isFinite(this.#lastOutside()),
       ran: this.#time,
@@ -161,8 +172,6 @@ class Attempt {
         this.#modes = new Map(inputs.modes);
       },
     };
-    const { progress } = this.#settings;
-    const tell: Watcher[] = progress ? [{ step: (step) => progress(step.t1) }] : [];
     const run = integrate(
       {
         system,
@@ -172,7 +181,7 @@ class Attempt {
         modes: this.#modes,
       },
       optionsOf(this.#settings),
-      [this.#approach, keep, ...tell],
+      [this.#approach, keep, ...this.#others],
     );
     this.#x = run.state;
     this.#time = run.time;

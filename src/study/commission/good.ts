@@ -1,6 +1,6 @@
 import { trainFacts } from '../../plant/facts.ts';
 import type { Limit } from '../../scenario/scenario.ts';
-import { changeOf, PERCENTS, TAIL } from './approach.ts';
+import { PERCENTS, TAIL } from './approach.ts';
 import type { Followed } from './follow.ts';
 import type { Watched } from './watched.ts';
 
@@ -10,7 +10,7 @@ export interface ComesGood {
   /** kg/m³ */
   readonly start: number;
   readonly final: number | null;
-  /** |final − start|; null where it hardly moves. */
+  /** What its bands are parts of: |final − start|, null where it hardly moves. */
   readonly change: number | null;
   /** By PERCENTS: within that part of the change (null as well where it hardly moves). */
   readonly ofChange: readonly (number | null)[];
@@ -46,14 +46,14 @@ const SEEN = 1e-3;
 const finite = (t: number | undefined): number | null => (t !== undefined && Number.isFinite(t) ? t : null);
 
 export function comesGood(f: Followed): ComesGood[] {
-  const { plant, approach, start, rest } = f;
+  const { approach, start, rest } = f;
   const turnovers = turnoversOf(f);
   const rested = 'state' in rest;
   return f.quantities.map((quantity, k): ComesGood => {
     const own = approach.last[k];
     const from = start[quantity.output];
     const final = rested ? rest.outputs[quantity.output] : null;
-    const change = final === null ? null : changeOf(from, final, plant.system.outputs[quantity.output].scale);
+    const change = f.changes[k];
     const at = (i: number): number | null => (f.settled ? finite(own[i]) : null);
     const n = PERCENTS.length;
     const beyond = approach.beyond[k];

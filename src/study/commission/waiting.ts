@@ -1,9 +1,8 @@
 import type { Plant } from '../../plant/assemble.ts';
-import type { Watcher } from '../../solve/integrate.ts';
-import type { F } from '../../solve/system.ts';
 import type { Records } from '../records.ts';
 import { PERCENTS } from './approach.ts';
 import { allCome, type ComesGood, type OnSpec } from './good.ts';
+import type { Kept } from './kept.ts';
 
 /** What an outlet makes until it is good. */
 export interface OffSpec {
@@ -34,12 +33,11 @@ export interface Waiting {
   readonly currency: string;
 }
 
+/** When each outlet is good: by its limits or, where it has none, by 5 % of its change. */
+export type GoodTimes = readonly Pick<OffSpec, 'outlet' | 'until' | 'by' | 'loses'>[];
+
 /** When each outlet is good. */
-export function goodTimes(
-  plant: Plant,
-  list: readonly ComesGood[],
-  limits: readonly OnSpec[],
-): Pick<OffSpec, 'outlet' | 'until' | 'by' | 'loses'>[] {
+export function goodTimes(plant: Plant, list: readonly ComesGood[], limits: readonly OnSpec[]): GoodTimes {
   const band = PERCENTS.indexOf(5);
   return plant.network.outlets.map(({ name }) => {
     const own = limits.filter((l) => l.limit.stream === name);
@@ -56,43 +54,19 @@ export function goodTimes(
   });
 }
 
-/** Keeps the whole state at chosen times of a run; at its end where a time is not reached. */
-export class StatesAt implements Watcher {
-  readonly states = new Map<number, F>();
-  readonly #times: number[];
-
-  constructor(times: readonly number[]) {
-    this.#times = [...new Set(times)].sort((a, b) => a - b);
-  }
-
-  step: NonNullable<Watcher['step']> = (step) => {
-    while (this.#times.length > 0 && this.#times[0] <= step.t1) {
-      const t = this.#times.shift() as number;
-      const x = new Float64Array(step.x1.length);
-      step.at(Math.max(t, step.t0), x);
-      this.states.set(t, x);
-    }
-  };
-
-  end: NonNullable<Watcher['end']> = (_, x) => {
-    for (const t of this.#times) this.states.set(t, Float64Array.from(x));
-    this.#times.length = 0;
-  };
-}
-
 /** Boundary totals at the times at which outlets came good → what was made, fed and lost until then. */
 export function waiting(
   plant: Plant,
-  good: ReturnType<typeof goodTimes>,
+  good: GoodTimes,
   ran: number,
-  states: ReadonlyMap<number, F>,
+  kept: ReadonlyMap<number, Kept>,
   records: Records,
 ): Waiting {
   const { scenario: s, network, system } = plant;
   const at = new Map(system.places.map((p, i) => [p.path, i]));
   const total = (t: number, path: string): number => {
     const i = at.get(path);
-    return i === undefined ? 0 : (states.get(t)?.[i] ?? 0);
+    return i === undefined ? 0 : (kept.get(t)?.state[i] ?? 0);
   };
   const until = allCome(good.map((q) => q.until)) ?? ran;
   const outlets = good.map((q): OffSpec => {
