@@ -42,11 +42,22 @@ export interface CommissionResult {
   readonly extended: boolean;
 }
 
+/** The part that needs no workers, and what an ensemble of it would run. */
+export interface StartUp extends Omit<CommissionResult, 'ensemble'> {
+  /** The scenario of the start-up proper. */
+  readonly proper: Scenario;
+  /** The output that a fan shows and its times [s]; null where there is no rest that a time could be told of. */
+  readonly fan: { readonly shown: string; readonly times: readonly number[] } | null;
+}
+
 export const PLAIN = 'plain start';
 /** Records over the span that is shown. */
 const RECORDS = 600;
 /** Modes that are looked for, and told. */
 const MODES = 6;
+/** Times of a fan, and how far it goes beyond the span of the plain start. */
+const FAN = 120;
+const WIDER = 1.15;
 /** Room beyond the last that comes good, as a share. */
 const ROOM = 1.35;
 
@@ -56,7 +67,7 @@ const ROOM = 1.35;
  *
  * @throws Incomplete or Refusal as `follow`.
  */
-export function commission(scenario: Scenario, settings: RunSettings): Omit<CommissionResult, 'ensemble'> {
+export function commission(scenario: Scenario, settings: RunSettings): StartUp {
   const { commissioning } = scenario;
   const moves = scenario.upsets.filter((u) => u.at === 0);
   const s: Scenario = { ...scenario, upsets: moves };
@@ -83,14 +94,19 @@ export function commission(scenario: Scenario, settings: RunSettings): Omit<Comm
   );
   const span = Math.max(1, Math.min(followed.ran, Math.max(ROOM * seen, movesEnd(moves))));
   const keeper = new Keeper([
-    ...good.map((q) => q.until ?? followed.ran),
+    ...good.map((q) => q.until ?? span),
     ...(compare?.columns.flatMap((c) => c.times) ?? []),
   ]);
   const shown = run(
     { ...s, horizon: span, recordEvery: span / RECORDS },
     { ...settings, watchers: [keeper] },
   );
-  const plain = startResult(PLAIN, followed, { good, kept: keeper.kept, records: shown.records }, null);
+  const plain = startResult(
+    PLAIN,
+    followed,
+    { good, counted: span, kept: keeper.kept, records: shown.records },
+    null,
+  );
 
   const procedures = (commissioning?.procedures ?? []).map((p) => {
     const { scenario: own, followed: f } = followProcedure(s, p, followed, {
@@ -129,7 +145,20 @@ export function commission(scenario: Scenario, settings: RunSettings): Omit<Comm
     begun: words(moves),
     leftOut: words(scenario.upsets.filter((u) => u.at > 0)),
     extended: followed.settled && (lastGood ?? 0) > s.horizon,
+    proper: s,
+    fan: followed.settled ? fanOf(quantities, s.solutes, span) : null,
   };
+}
+
+/** The outlet that comes good last, over a span that leaves room for slower plants than the one stated. */
+function fanOf(list: readonly ComesGood[], solutes: readonly string[], span: number): StartUp['fan'] {
+  const own = list.filter(
+    (q) => q.quantity.kind === 'outlet' && solutes.includes(q.quantity.component) && q.change !== null,
+  );
+  if (own.length === 0) return null;
+  const last = own.reduce((a, b) => ((b.ofChange[3] ?? 0) > (a.ofChange[3] ?? 0) ? b : a));
+  const times = Array.from({ length: FAN + 1 }, (_, k) => (k * WIDER * span) / FAN);
+  return { shown: last.quantity.path, times };
 }
 
 /** One upset can stand for changes of several inputs. */

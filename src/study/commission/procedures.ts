@@ -30,6 +30,8 @@ const SAME_END = 1e-3;
 /** When the outlets of a followed start are good, and a run that was kept at those times. */
 export interface Measured {
   readonly good: GoodTimes;
+  /** s to which what never comes good is counted. */
+  readonly counted: number;
   readonly kept: ReadonlyMap<number, Kept>;
   readonly records: Records;
 }
@@ -42,7 +44,7 @@ export function measure(s: Scenario, f: Followed, settings: RunSettings): Measur
   // A little beyond, so that the last moment lies inside.
   const short = { ...s, horizon: horizon * (1 + 1e-9), recordEvery: horizon / RECORDS };
   const { records } = run(short, { ...settings, watchers: [keeper] });
-  return { good, kept: keeper.kept, records };
+  return { good, counted: f.ran, kept: keeper.kept, records };
 }
 
 /** Figures of a followed start; `plain` where it is held against that. */
@@ -53,7 +55,7 @@ export function startResult(name: string, f: Followed, ran: Measured, plain: Fol
     name,
     onSpec: limits.length === 0 ? null : allCome(limits.map((l) => l.from)),
     steady: outletsWithin(list, 1),
-    waiting: waiting(f.plant, ran.good, f.ran, ran.kept, ran.records),
+    waiting: waiting(f.plant, ran.good, ran.counted, ran.kept, ran.records),
     endsElsewhere: plain === null ? [] : elsewhere(f, plain),
     settled: f.settled,
   };
