@@ -54,7 +54,7 @@ export const PLAIN = 'plain start';
 /** Records over the span that is shown. */
 const RECORDS = 600;
 /** Modes that are looked for, and told. */
-const MODES = 6;
+const MODES = 4;
 /** Times of a fan, and how far it goes beyond the span of the plain start. */
 const FAN = 120;
 const WIDER = 1.15;

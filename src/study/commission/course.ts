@@ -2,6 +2,8 @@ import { crossing } from '../../math/roots.ts';
 
 /** Looks at each step, both ends included; the course between is the polynomial through them. */
 export const LOOKS = 6;
+/** (−1)ⁱ·C(5, i): of six equally spaced points. */
+const WEIGHTS = [1, -5, 10, -10, 5, -1] as const;
 const GOLDEN = (Math.sqrt(5) - 1) / 2;
 
 /** A point of a course within one step: share of the step, and value. */
@@ -24,17 +26,18 @@ export class StepCourse {
     this.#at = at;
   }
 
-  /** At a share of the step, by Neville's scheme. */
+  /** At a share of the step, by the barycentric formula: J.-P. Berrut and L. N. Trefethen, SIAM Rev. 46, 501 (2004). */
   value(s: number): number {
-    const p = new Float64Array(LOOKS);
-    for (let i = 0; i < LOOKS; i++) p[i] = this.#v[this.#at + i];
-    const n = LOOKS - 1;
-    for (let k = 1; k < LOOKS; k++)
-      for (let i = 0; i + k < LOOKS; i++) {
-        const [a, b] = [i / n, (i + k) / n];
-        p[i] = ((b - s) * p[i] + (s - a) * p[i + 1]) / (b - a);
-      }
-    return p[0];
+    let above = 0;
+    let below = 0;
+    for (let i = 0; i < LOOKS; i++) {
+      const gap = s * (LOOKS - 1) - i;
+      if (gap === 0) return this.#v[this.#at + i];
+      const weight = WEIGHTS[i] / gap;
+      above += weight * this.#v[this.#at + i];
+      below += weight;
+    }
+    return above / below;
   }
 
   /** The looks and every turning point between them, in order: the curve rises or falls from each to the next. */

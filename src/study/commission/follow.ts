@@ -131,8 +131,9 @@ class Attempt {
     for (let to = asked; ; ) {
       this.#runTo(to);
       if (this.#stop.reason !== 'reached-end') return null;
-      const next = restFrom(this.#plant, this.#x, this.#w, this.#time, this.#settings.modes);
-      if (this.#differs(next)) {
+      const check = restFrom(this.#plant, this.#x, this.#w, this.#time, 0);
+      if (this.#differs(check)) {
+        const next = restFrom(this.#plant, this.#x, this.#w, this.#time, this.#settings.modes);
         if (mayTurn) return next;
         // It has turned too often: what it goes for now is said, and that it does not settle.
         this.#rest = next;

@@ -1,3 +1,4 @@
+import { setMaxListeners } from 'node:events';
 import { existsSync } from 'node:fs';
 import { availableParallelism } from 'node:os';
 import { dirname, join } from 'node:path';
@@ -21,6 +22,8 @@ export const onWorkers =
   (workers: number): Compute =>
   async (batches, done, stop) => {
     const { Tinypool } = await import('tinypool');
+    // Every task under way listens for the abort.
+    setMaxListeners(0, stop);
     const count = Math.max(1, Math.min(workers, batches.length));
     const pool = new Tinypool({
       filename: workerFile(),

@@ -95,7 +95,7 @@ export function followProcedure(
   const scenario = withProcedure(s, p);
   const changes = new Map(plain.quantities.map((q, k) => [q.path, plain.changes[k]]));
   try {
-    return { scenario, followed: follow(scenario, { ...settings, changes }) };
+    return { scenario, followed: follow(scenario, { ...settings, changes, outletsOnly: true }) };
   } catch (e) {
     if (!(e instanceof Refusal)) throw e;
     throw new Refusal(

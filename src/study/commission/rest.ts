@@ -47,7 +47,7 @@ export function restFrom(plant: Plant, x: F, w: F, time: number, modes: number):
     state,
     inputs: Float64Array.from(w),
     outputs: outputsAt(plant, state, w),
-    modes: slowModes(system, state, w, parameters, modes),
+    modes: modes > 0 ? slowModes(system, state, w, parameters, modes) : [],
     drifts: drifts(plant, state, change, time),
   };
 }
