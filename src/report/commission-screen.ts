@@ -7,7 +7,7 @@ import { shortCaution } from './cautions.ts';
 import { clock, columns, figure, shown, withUnit } from './figures.ts';
 import { startWords } from './screen.ts';
 
-const MOST_ROWS = 8;
+const MOST_ROWS = 6;
 const MOST_STARTS = 6;
 const percent = (share: number, digits = 2): string => `${figure(100 * share, digits)} %`;
 const when = (t: number | null): string => (t === null ? '-' : clock(t));
@@ -64,7 +64,7 @@ export function answerLines(r: CommissionResult): string[] {
     const seen = r.tail ? ` Seen in the tail of ${r.tail.path}: ${clock(r.tail.seen)}.` : '';
     lines.push(`Slowest mode ${modeWords(slow)}.${seen}`);
   }
-  const others = r.modes.slice(1, 3).filter((m) => m.time > 0 && slow && m.time > slow.time / 8);
+  const others = r.modes.slice(1, 3).filter((m) => m.time > 0 && slow && m.time > slow.time / 3);
   if (others.length > 0) lines.push(`Next: ${others.map(modeWords).join('; ')}.`);
   if (r.begun.length > 0) lines.push(`Begins with the start: ${r.begun.join('; ')}.`);
   if (r.leftOut.length > 0)
@@ -164,7 +164,7 @@ function table(r: CommissionResult): string[] {
 
 function overshoots(r: CommissionResult): string[] {
   const seen = r.quantities
-    .filter((q) => q.quantity.kind !== 'stage' && q.overshoot && q.overshoot.share > 0.005)
+    .filter((q) => q.quantity.kind !== 'stage' && q.overshoot && q.overshoot.share > 0.02)
     .sort((a, b) => (b.overshoot?.share ?? 0) - (a.overshoot?.share ?? 0));
   if (seen.length === 0) return [];
   const told = seen
@@ -185,7 +185,7 @@ function waitingLines(r: CommissionResult): string[] {
       o.until === null
         ? 'never good'
         : `until ${clock(o.until)}${o.by === 'change' ? ' (5 % of change)' : ''}`;
-    return `${o.outlet} ${figure(o.volume)} m^3 with ${held.join(', ')}, ${until}`;
+    return `off-spec ${o.outlet}: ${figure(o.volume)} m^3 with ${held.join(', ')}, ${until}`;
   });
   const solvent = [
     ...(waiting.solventFed > 0 ? [`${figure(waiting.solventFed)} m^3 fresh solvent`] : []),
@@ -194,9 +194,10 @@ function waitingLines(r: CommissionResult): string[] {
   ];
   const sum = waiting.costs.reduce((q, c) => q + c.amount, 0);
   const money = waiting.costs.map((c) => `${c.of} ${figure(c.amount)}`).join(', ');
+  const costs = waiting.costs.length > 0 ? ` ${figure(sum)} ${waiting.currency} (${money})` : '';
   return [
-    `Waiting costs: ${outlets.slice(0, 3).join('; ')}${solvent.length > 0 ? `; ${solvent.join(', ')}` : ''}.`,
-    ...(waiting.costs.length > 0 ? [`  ${figure(sum)} ${waiting.currency} in all: ${money}.`] : []),
+    `Waiting${costs}${solvent.length > 0 ? `${costs === '' ? ': ' : '; '}${solvent.join(', ')}` : ''}`,
+    ...outlets.slice(0, 4).map((o) => `  ${o}`),
   ];
 }
 
@@ -226,32 +227,30 @@ function startLines(r: CommissionResult): string[] {
       : Number.isFinite(gain)
         ? `Fastest start: ${best.name}, ${clock(gain)} sooner than the plain one.`
         : `Fastest start: ${best.name}; the plain one does not get there.`;
+  const limited = r.limits.length > 0;
+  const fed = r.starts.some((q) => q.waiting.solventFed > 0);
+  const lost = r.starts.some((q) => q.waiting.solventLost > 0);
   const rows = r.starts
     .slice(0, MOST_STARTS)
     .map((q, i) => [
       `${i + 1}  ${q.name}`,
-      ...(r.limits.length > 0 ? [when(q.onSpec)] : []),
+      ...(limited ? [when(q.onSpec)] : []),
       when(q.steady),
       `${figure(q.waiting.outlets.reduce((v, o) => v + o.volume, 0))} m^3`,
-      ...(r.plain.waiting.solventFed > 0
-        ? [`${figure(q.waiting.solventFed)} m^3`]
-        : [`${figure(q.waiting.solventLost)} m^3`]),
-      q.endsElsewhere.length > 0 ? `ends elsewhere: ${q.endsElsewhere[0]}` : '',
+      ...(fed ? [`${figure(q.waiting.solventFed)} m^3`] : []),
+      ...(lost ? [`${figure(q.waiting.solventLost)} m^3`] : []),
+      q.endsElsewhere.length > 0 ? `leaves ${q.endsElsewhere[0]} elsewhere` : '',
     ]);
-  return [
-    answer,
-    ...columns([
-      [
-        'rank',
-        ...(r.limits.length > 0 ? ['on-spec'] : []),
-        '1 % steady',
-        'off-spec',
-        r.plain.waiting.solventFed > 0 ? 'solvent fed' : 'solvent lost',
-        '',
-      ],
-      ...rows,
-    ]),
+  const heads = [
+    'rank',
+    ...(limited ? ['on-spec'] : []),
+    'at rest (1 %)',
+    'off-spec',
+    ...(fed ? ['solvent fed'] : []),
+    ...(lost ? ['solvent lost'] : []),
+    '',
   ];
+  return [answer, ...columns([heads, ...rows])];
 }
 
 /** s by which one start is sooner than another: on-spec where that differs by a minute, else at rest. */
@@ -285,5 +284,5 @@ function comparisonLines(r: CommissionResult): string[] {
     const sign = c.bias >= 0 ? '+' : '';
     return `${c.path} bias ${sign}${figure(c.bias * factor)}, RMSE ${figure(c.rmse * factor)} ${unit} over ${c.times.length} samples (mean ${figure(c.mean * factor)})`;
   });
-  return [`Against ${r.comparison.file}, model less plant: ${told.join('; ')}.`];
+  return [`Against ${r.comparison.file}, model less plant:`, ...told.map((t) => `  ${t}`)];
 }

@@ -49,12 +49,13 @@ function config(r: CommissionResult, e: Ensemble): ChartConfiguration {
       borderDash: [2, 3],
       label: {
         display: true,
+        z: 5,
         content: `${key.toUpperCase()} at rest ${clock(t)}`,
         position: 'start',
         yAdjust: -22 * (2 - i) - 6,
         xAdjust: t > 0.8 * span ? -80 : 80,
         color: LIMIT,
-        backgroundColor: 'rgba(255,255,255,0.85)',
+        backgroundColor: '#ffffff',
         padding: 2,
         font: { size: 12 },
       },
@@ -67,9 +68,9 @@ function config(r: CommissionResult, e: Ensemble): ChartConfiguration {
     type: 'line',
     data: {
       datasets: [
-        line('10 of 100 below', p10, 0, { borderWidth: 1, fill: '+2' }),
+        line('10 of 100 below', p10, 0, { borderWidth: 1, borderDash: dashes[2], fill: '+2' }),
         line('50 of 100 below', p50, 0, { borderWidth: 3 }),
-        line('90 of 100 below', p90, 0, { borderWidth: 1, borderDash: dashes[2] }),
+        line('90 of 100 below', p90, 0, { borderWidth: 1, borderDash: dashes[3] }),
         plain,
       ],
     },
