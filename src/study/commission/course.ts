@@ -48,7 +48,7 @@ export class StepCourse {
     for (let i = 0; i < LOOKS; i++) list.push({ s: i / n, v: v(i) });
     const turns: { from: number; to: number; sign: number }[] = [];
     for (let i = 1; i < n; i++)
-      if ((v(i) - v(i - 1)) * (v(i + 1) - v(i)) < 0)
+      if ((v(i) - v(i - 1)) * (v(i + 1) - v(i)) < 0 || (v(i) !== v(i - 1) && v(i + 1) === v(i)))
         turns.push({ from: i - 1, to: i + 1, sign: Math.sign(v(i) - v(i - 1)) });
     // A turning point between an end and its neighbour shows in the slope at the end.
     const first = -137 * v(0) + 300 * v(1) - 300 * v(2) + 200 * v(3) - 75 * v(4) + 12 * v(5);

@@ -73,7 +73,8 @@ export function follow(s: Scenario, settings: FollowSettings): Followed {
   const from = inputsAfter(plant, s.upsets);
   for (const [i, v] of modes) from[i] = v;
   let rest = restFrom(plant, initial, from, 0, settings.modes);
-  const asked = Math.max(settings.atLeast ?? s.horizon, after);
+  // Beyond the last corner of the moves: at the corner itself the inputs are still those before it.
+  const asked = Math.max(settings.atLeast ?? s.horizon, after > 0 ? after + 1 : 0);
   for (let attempt = 1; ; attempt++) {
     const made = new Attempt(plant, quantities, rest, initial, modes, settings);
     const next = made.run(asked, after, attempt < ATTEMPTS);
