@@ -52,8 +52,6 @@ export function answerLines(r: CommissionResult): string[] {
       `At rest at ${when(r.steady)}: from then on every outlet stays within 1 % of its change.${r.extended ? ` The horizon of ${clock(followed.asked)} was too short for that; it was run to ${clock(followed.ran)}.` : ''}`,
     );
   lines.push(...r.limits.map(limitLine));
-  if (r.limits.some((l) => l.neverOutside && l.limit.side === 'below' && l.from !== null))
-    lines.push('A barren outlet is below its limit from the first minute: do not take that for success.');
   if ('state' in rest)
     for (const d of rest.drifts)
       lines.push(
@@ -96,7 +94,7 @@ function limitLine(l: OnSpec): string {
   const final = l.final === null ? '' : ` (at rest ${withUnit(l.final, l.unit)})`;
   if (l.from === null) return `NEVER ON-SPEC  ${name}${final}`;
   if (l.neverOutside)
-    return `On-spec from ${clock(l.from)}: ${name}${final}; never outside, counted from the first aqueous turnover.`;
+    return `On-spec from ${clock(l.from)}: ${name}${final}; never outside, but a barren outlet proves nothing: counted from the first aqueous turnover.`;
   return `On-spec from ${clock(l.from)}: ${name}${final}.`;
 }
 
@@ -154,11 +152,19 @@ function table(r: CommissionResult): string[] {
   const more = sorted.length - rows.length;
   return [
     ...columns([
-      ['comes good', 'from -> to', '10 %', '5 %', '2 %', '1 % of change', '1 % of final', 'turnovers'],
+      [
+        more > 0 ? `comes good (last ${rows.length} of ${sorted.length})` : 'comes good',
+        'from -> to',
+        '10 %',
+        '5 %',
+        '2 %',
+        '1 % of change',
+        '1 % of final',
+        'turnovers',
+      ],
       ...rows,
       ...trains,
     ]),
-    ...(more > 0 ? [`  … ${more} sooner, in summary.json`] : []),
   ];
 }
 
@@ -282,7 +288,7 @@ function comparisonLines(r: CommissionResult): string[] {
   const told = r.comparison.columns.map((c) => {
     const { unit, factor } = shown(c.unit);
     const sign = c.bias >= 0 ? '+' : '';
-    return `${c.path} bias ${sign}${figure(c.bias * factor)}, RMSE ${figure(c.rmse * factor)} ${unit} over ${c.times.length} samples (mean ${figure(c.mean * factor)})`;
+    return `${c.path} ${sign}${figure(c.bias * factor)} / ${figure(c.rmse * factor)} ${unit} (${c.times.length} samples)`;
   });
-  return [`Against ${r.comparison.file}, model less plant:`, ...told.map((t) => `  ${t}`)];
+  return [`Model less plant by ${r.comparison.file}, bias / RMSE: ${told.join('; ')}.`];
 }
