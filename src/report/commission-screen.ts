@@ -200,9 +200,12 @@ function waitingLines(r: CommissionResult): string[] {
   ];
   const sum = waiting.costs.reduce((q, c) => q + c.amount, 0);
   const money = waiting.costs.map((c) => `${c.of} ${figure(c.amount)}`).join(', ');
-  const costs = waiting.costs.length > 0 ? ` ${figure(sum)} ${waiting.currency} (${money})` : '';
+  const told = [
+    ...(waiting.costs.length > 0 ? [`${figure(sum)} ${waiting.currency} (${money})`] : []),
+    ...solvent,
+  ];
   return [
-    `Waiting${costs}${solvent.length > 0 ? `${costs === '' ? ': ' : '; '}${solvent.join(', ')}` : ''}`,
+    `Cost of waiting, ${clock(waiting.until)} in all${told.length > 0 ? `: ${told.join(', ')}` : ''}`,
     ...outlets.slice(0, 4).map((o) => `  ${o}`),
   ];
 }
@@ -227,11 +230,12 @@ function startLines(r: CommissionResult): string[] {
   if (r.starts.length < 2) return [];
   const [best] = r.starts;
   const gain = sooner(best, r.plain);
+  const helping = r.starts.filter((q) => q !== r.plain && sooner(q, r.plain) > 0).length;
   const answer =
     best === r.plain || gain <= 0
       ? 'No procedure is faster than the plain start.'
       : Number.isFinite(gain)
-        ? `Fastest start: ${best.name}, ${clock(gain)} sooner than the plain one.`
+        ? `Fastest start: ${best.name}, ${clock(gain)} sooner than the plain one (${helping} of ${r.starts.length - 1} help).`
         : `Fastest start: ${best.name}; the plain one does not get there.`;
   const limited = r.limits.length > 0;
   const fed = r.starts.some((q) => q.waiting.solventFed > 0);
