@@ -9,6 +9,8 @@ import { startWords } from './screen.ts';
 
 const MOST_ROWS = 6;
 const MOST_STARTS = 6;
+/** A tail that falls more slowly than the slowest mode by this factor is none of a single mode. */
+const FRONT = 1.15;
 const percent = (share: number, digits = 2): string => `${figure(100 * share, digits)} %`;
 const when = (t: number | null): string => (t === null ? '-' : clock(t));
 
@@ -59,7 +61,10 @@ export function answerLines(r: CommissionResult): string[] {
       );
   const [slow] = r.modes;
   if (slow) {
-    const seen = r.tail ? ` Seen in the tail of ${r.tail.path}: ${clock(r.tail.seen)}.` : '';
+    const front = r.tail !== null && slow.time > 0 && r.tail.seen > FRONT * slow.time;
+    const seen = r.tail
+      ? ` Seen in the tail of ${r.tail.path}: ${clock(r.tail.seen)}${front ? ', more than any one mode takes: a front still travels along the stages' : ''}.`
+      : '';
     lines.push(`Slowest mode ${modeWords(slow)}.${seen}`);
   }
   const others = r.modes.slice(1, 3).filter((m) => m.time > 0 && slow && m.time > slow.time / 3);
