@@ -1,9 +1,9 @@
 import type { Plant } from '../../plant/assemble.ts';
-import { NEARLY_EMPTY } from '../../plant/book.ts';
 import { type Mode, slowModes } from '../../solve/modes.ts';
 import { steadyState } from '../../solve/steady.ts';
 import type { F } from '../../solve/system.ts';
 import { outputsAt } from '../records.ts';
+import { drifts } from '../steady.ts';
 
 /** A tank that only fills or empties while all else is at rest. */
 export interface Drift {
@@ -48,7 +48,7 @@ export function restFrom(plant: Plant, x: F, w: F, time: number, modes: number):
     inputs: Float64Array.from(w),
     outputs: outputsAt(plant, state, w),
     modes: modes > 0 ? slowModes(system, state, w, parameters, modes) : [],
-    drifts: drifts(plant, state, change, time),
+    drifts: drifts(plant, state, change).map((d) => ({ ...d, until: time + Math.max(0, d.until) })),
   };
 }
 
@@ -59,15 +59,4 @@ export const repels = (r: Rest): boolean => r.modes.some((m) => m.rate > GROWS);
 export function slowest(r: Rest): number {
   const decays = r.modes.filter((m) => m.rate < 0);
   return decays.length === 0 ? 0 : 1 / Math.min(...decays.map((m) => -m.rate));
-}
-
-function drifts(plant: Plant, x: F, change: F, time: number): Drift[] {
-  return plant.scenario.tanks.flatMap((t) => {
-    const at = plant.system.places.findIndex((p) => p.path === `${t.name}.volume`);
-    if (at < 0 || plant.system.steady[at] !== 'hold') return [];
-    const rate = change[at];
-    if (Math.abs(rate) < 1e-12 * t.volume) return [];
-    const room = rate > 0 ? t.volume - x[at] : x[at] - NEARLY_EMPTY * t.volume;
-    return [{ tank: t.name, rate, until: time + Math.max(0, room) / Math.abs(rate) }];
-  });
 }
