@@ -17,10 +17,9 @@ const STALLED = 11;
  * the single-shift QR algorithm in complex arithmetic with Givens rotations and Wilkinson's shift.
  *
  * Reference: G. H. Golub and C. F. Van Loan, Matrix Computations, 3rd ed. (1996), Sec. 7.4-7.5 (from memory).
- *
- * @throws RangeError where it does not converge, which no finite matrix has been seen to do.
+ * Null where it does not converge, which no finite matrix has been seen to do.
  */
-export function hessenbergEigenvalues(h: Float64Array, n: number, stride: number): Complex[] {
+export function hessenbergEigenvalues(h: Float64Array, n: number, stride: number): Complex[] | null {
   const re = new Float64Array(n * n);
   const im = new Float64Array(n * n);
   for (let i = 0; i < n; i++) for (let j = Math.max(0, i - 1); j < n; j++) re[i * n + j] = h[i * stride + j];
@@ -42,7 +41,7 @@ export function hessenbergEigenvalues(h: Float64Array, n: number, stride: number
       continue;
     }
     steps += 1;
-    if (steps > MOST_STEPS) throw new RangeError('the eigenvalues of a projection do not converge');
+    if (steps > MOST_STEPS) return null;
     qrStep(re, im, n, first, last, steps % STALLED === 0);
   }
   return found;

@@ -46,6 +46,7 @@ export const commission = object({
   no_steady_state_because: orNull(text('why not')),
   settled: yes('all quantities came within 1 % of their change for good'),
   steady_s: time('every outlet within 1 % of its change for good'),
+  within_1_percent_of_final_s: time('every outlet within 1 % of its final value for good'),
   on_spec_s: time('all limits kept for good, by stream made of plant feed'),
   limits: list(
     object({
@@ -119,7 +120,12 @@ export const commission = object({
       on_spec_s: time('all limits kept for good'),
       steady_s: time("every outlet within 1 % of the plain start's change for good"),
       settled: yes('it came to rest'),
-      ends_elsewhere: list(text('outlets that it leaves at other values than the plain start')),
+      ends_elsewhere: list(
+        object({
+          outlet: text('left at another value than by the plain start'),
+          final_kg_per_m3: number('at rest'),
+        }),
+      ),
       waiting,
     }),
   ),

@@ -31,7 +31,7 @@ export function commissionScreen(r: CommissionResult): string[] {
     ...waitingLines(r),
     ...sampleLines(r),
     ...startLines(r),
-    ...(r.ensemble ? ensembleLines(r.ensemble) : []),
+    ...(r.ensemble ? ensembleLines(r.ensemble) : notAsked(r)),
     ...comparisonLines(r),
     '',
     shortCaution,
@@ -51,7 +51,7 @@ export function answerLines(r: CommissionResult): string[] {
     lines.push('At rest from the start: no outlet moves by more than 1 % of anything.');
   else
     lines.push(
-      `At rest at ${when(r.steady)}: from then on every outlet stays within 1 % of its change.${r.extended ? ` The horizon of ${clock(followed.asked)} was too short for that; it was run to ${clock(followed.ran)}.` : ''}`,
+      `At rest at ${when(r.steady)}: from then on every outlet stays within 1 % of its change (of its final value: from ${when(r.nearFinal)}).${r.extended ? ` The horizon of ${clock(followed.asked)} was too short for that; it was run to ${clock(followed.ran)}.` : ''}`,
     );
   lines.push(...r.limits.map(limitLine));
   if ('state' in rest)
@@ -254,7 +254,9 @@ function startLines(r: CommissionResult): string[] {
       `${figure(q.waiting.outlets.reduce((v, o) => v + o.volume, 0))} m^3`,
       ...(fed ? [`${figure(q.waiting.solventFed)} m^3`] : []),
       ...(lost ? [`${figure(q.waiting.solventLost)} m^3`] : []),
-      q.endsElsewhere.length > 0 ? `leaves ${q.endsElsewhere[0]} elsewhere` : '',
+      q.endsElsewhere.length > 0
+        ? `leaves ${q.endsElsewhere[0].path} at ${withUnit(q.endsElsewhere[0].final, 'kg/m^3')}`
+        : '',
     ]);
   const heads = [
     'rank',
@@ -275,6 +277,12 @@ function sooner(a: StartResult, b: StartResult): number {
   const onSpec = gain(a.onSpec, b.onSpec);
   return Math.abs(onSpec) >= 60 ? onSpec : gain(a.steady, b.steady);
 }
+
+/** Why there is no ensemble although inputs are uncertain. */
+const notAsked = (r: CommissionResult): string[] =>
+  r.plant.scenario.commissioning?.uncertain.length && !r.followed.settled
+    ? ['How sure: not asked, because the start-up as stated comes to no rest.']
+    : [];
 
 function ensembleLines(e: Ensemble): string[] {
   const spread = (q: Spread): string => `P10 ${when(q.p10)}, P50 ${when(q.p50)}, P90 ${when(q.p90)}`;

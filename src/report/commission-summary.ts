@@ -27,6 +27,7 @@ export function commissionSummary(r: CommissionResult, origin: Origin): object {
     no_steady_state_because: 'state' in rest ? null : rest.reason,
     settled: followed.settled,
     steady_s: r.steady,
+    within_1_percent_of_final_s: r.nearFinal,
     on_spec_s: r.onSpec,
     limits: r.limits.map((l) => ({
       keep: l.path,
@@ -125,7 +126,7 @@ const startOf = (q: StartResult, solutes: readonly string[]): object => ({
   on_spec_s: q.onSpec,
   steady_s: q.steady,
   settled: q.settled,
-  ends_elsewhere: q.endsElsewhere,
+  ends_elsewhere: q.endsElsewhere.map((e) => ({ outlet: e.path, final_kg_per_m3: e.final })),
   waiting: waitingOf(q.waiting, solutes),
 });
 

@@ -68,7 +68,9 @@ export function slowModes(system: System, x: F, w: F, p: F, count: number): Mode
     const space = arnoldi(apply, counts, m);
     if (space === null) return [];
     const found = ritz(space, count);
-    const done = found.every((q) => q.residual <= CONVERGED) || m === order || m >= MOST;
+    if (found === null) return [];
+    const converged = found.length === count && found.every((q) => q.residual <= CONVERGED);
+    const done = converged || m === order || m >= MOST;
     if (!done) continue;
     return found
       .map(({ theta, vector, residual }): Mode => {
@@ -80,7 +82,6 @@ export function slowModes(system: System, x: F, w: F, p: F, count: number): Mode
           residual,
         };
       })
-      .filter((q) => Math.hypot(q.rate, q.frequency) > AT_REST)
       .sort((a, b) => b.rate - a.rate);
   }
 }
@@ -133,10 +134,16 @@ interface Ritz {
   readonly residual: number;
 }
 
-/** The `count` largest Ritz values (one of each conjugate pair) with their vectors in the space. */
-function ritz({ h, stride: m, basis }: Space, count: number): Ritz[] {
+/** The `count` largest Ritz values (one of each conjugate pair) with their vectors, or null where none are found. */
+function ritz({ h, stride: m, basis }: Space, count: number): Ritz[] | null {
+  const values = hessenbergEigenvalues(h, m, m);
+  if (values === null) return null;
   const size = (q: Complex): number => Math.hypot(q.re, q.im);
-  return oneOfEachPair(hessenbergEigenvalues(h, m, m))
+  // λ = σ − 1/θ. What stands still would take all the places of what still moves.
+  const moves = (q: Complex): boolean =>
+    Math.hypot(SHIFT - q.re / size(q) ** 2, q.im / size(q) ** 2) > AT_REST;
+  return oneOfEachPair(values)
+    .filter(moves)
     .sort((a, b) => size(b) - size(a))
     .slice(0, count)
     .map((theta) => {

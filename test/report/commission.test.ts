@@ -1,4 +1,5 @@
 import { Ajv2020 } from 'ajv/dist/2020.js';
+import fc from 'fast-check';
 import { beforeAll, describe, expect, it } from 'vitest';
 import { commissionScreen } from '../../src/report/commission-screen.ts';
 import { commissionSummary } from '../../src/report/commission-summary.ts';
@@ -12,6 +13,7 @@ import { type CommissionResult, commission } from '../../src/study/commission/co
 import { ensemble } from '../../src/study/commission/ensemble.ts';
 import { samples } from '../../src/study/commission/sample.ts';
 import { usual } from '../../src/study/run.ts';
+import { anyPlant } from '../plant/any-plant.ts';
 import { scenario } from '../support/plants.ts';
 
 // General-purpose JSON Schema validator (draft 2020-12).
@@ -68,6 +70,27 @@ describe('summary.json of a commissioning', () => {
     expect(raffinate?.within_10_5_2_1_percent_of_change_s[3]).toBe(summary.steady_s);
     expect(commissionScreen(full)[1]).toContain('At rest at 4 h 45 min');
   });
+});
+
+describe('random plants', () => {
+  it('give figures and words, and nothing that is no number', () => {
+    fc.assert(
+      fc.property(anyPlant, (s) => {
+        const moves = s.upsets.map((u, i) => ({ ...u, at: i % 2 === 0 ? 0 : u.at }));
+        const limits = [
+          { stream: s.trains[0].aqueous.to, quantity: s.solutes[0], side: 'below', value: 1 },
+        ] as const;
+        const r = plainly({ ...s, upsets: moves, limits });
+        expect(commissionScreen(r).join('\n')).not.toMatch(/NaN|undefined|Infinity|null/);
+        expect(validate(throughJson(commissionSummary(r, origin))), JSON.stringify(validate.errors)).toBe(
+          true,
+        );
+        for (const p of [approach, timeline])
+          if (p.parts?.(r).length) expect(JSON.stringify(p.config(r).data)).not.toMatch(/undefined/);
+      }),
+      { numRuns: 25, seed: 11 },
+    );
+  }, 120_000);
 });
 
 describe('the screen', () => {

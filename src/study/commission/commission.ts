@@ -24,6 +24,8 @@ export interface CommissionResult {
   readonly limits: readonly OnSpec[];
   /** s until every outlet is within 1 % of its change for good; null: not at all. */
   readonly steady: number | null;
+  /** s until every outlet is within 1 % of its final value for good; null: not at all. */
+  readonly nearFinal: number | null;
   /** s until all limits are kept for good by stream made of plant feed; null: not at all, or no limits. */
   readonly onSpec: number | null;
   readonly modes: readonly SlowMode[];
@@ -124,6 +126,7 @@ export function commission(scenario: Scenario, settings: RunSettings): StartUp {
     quantities,
     limits,
     steady: outletsWithin(quantities, 1),
+    nearFinal: outletsWithin(quantities, 1, 'ofFinal'),
     onSpec: limits.length === 0 ? null : allCome(limits.map((l) => l.from)),
     modes: rested ? rest.modes.map((m) => describe(plant, m, rest.state)) : [],
     tail: tail(quantities),

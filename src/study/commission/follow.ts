@@ -51,6 +51,8 @@ const AFTER = 3;
 const MOST_DECAYS = 60;
 /** Times that a plant may turn out to go for another rest than was thought. */
 const ATTEMPTS = 4;
+/** One and the same event more often than that is a cycle. */
+const REPEATS = 30;
 /** Two rests are one where no judged quantity differs by more than this share of its change. */
 const SAME = 2e-3;
 
@@ -140,7 +142,7 @@ class Attempt {
         this.#rest = next;
         return null;
       }
-      if (!('state' in this.#rest) || repels(this.#rest)) return null;
+      if (!('state' in this.#rest) || repels(this.#rest) || this.#cycles()) return null;
       const slow = slowest(this.#rest);
       const needed = this.#lastOutside() + AFTER * slow;
       const most = Math.max(asked, after + MOST_DECAYS * slow);
@@ -150,7 +152,7 @@ class Attempt {
   }
 
   result(): Omit<Followed, 'asked'> {
-    const rested = 'state' in this.#rest && !repels(this.#rest);
+    const rested = this.#stop.reason === 'reached-end' && 'state' in this.#rest && !repels(this.#rest);
     return {
       plant: this.#plant,
       quantities: this.#quantities,
@@ -190,6 +192,13 @@ class Attempt {
     this.#stop = run.stop;
     this.#steps += run.work.steps;
     this.#events.push(...run.events);
+  }
+
+  /** Whether something keeps happening again and again, such as a pump that runs its tank dry. */
+  #cycles(): boolean {
+    const times = new Map<string, number>();
+    for (const e of this.#events) times.set(e.name, (times.get(e.name) ?? 0) + 1);
+    return Math.max(0, ...times.values()) > REPEATS;
   }
 
   /** The latest time at which any quantity was out of its band of 1 % of the change. */

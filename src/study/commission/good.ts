@@ -124,9 +124,16 @@ export function onSpec(f: Followed): OnSpec[] {
 export const allCome = (times: readonly (number | null)[]): number | null =>
   times.includes(null) ? null : Math.max(0, ...(times as number[]));
 
-/** When every outlet is within a number of per cent of its change for good; what hardly moves is not waited for. */
-export function outletsWithin(list: readonly ComesGood[], percent: (typeof PERCENTS)[number]): number | null {
+/**
+ * When every outlet is within a number of per cent of its change, or of its final value, for good; what hardly moves is
+ * not waited for.
+ */
+export function outletsWithin(
+  list: readonly ComesGood[],
+  percent: (typeof PERCENTS)[number],
+  of: 'ofChange' | 'ofFinal' = 'ofChange',
+): number | null {
   const band = PERCENTS.indexOf(percent);
   const own = list.filter((q) => q.quantity.kind === 'outlet' && q.final !== null && q.change !== null);
-  return allCome(own.map((q) => q.ofChange[band]));
+  return allCome(own.filter((q) => of === 'ofChange' || q.final !== 0).map((q) => q[of][band]));
 }

@@ -18,7 +18,7 @@ export interface StartResult {
   /** s after which every outlet is good, by its limits or within 5 %. */
   readonly waiting: Waiting;
   /** Outlets that it leaves at other values than the plain start: its moves do not end where that ends. */
-  readonly endsElsewhere: readonly string[];
+  readonly endsElsewhere: readonly { readonly path: string; readonly final: number }[];
   readonly settled: boolean;
 }
 
@@ -61,14 +61,16 @@ export function startResult(name: string, f: Followed, ran: Measured, plain: Fol
   };
 }
 
-function elsewhere(f: Followed, plain: Followed): string[] {
+function elsewhere(f: Followed, plain: Followed): { path: string; final: number }[] {
   if (!('state' in f.rest) || !('state' in plain.rest)) return [];
   const [own, known] = [f.rest.outputs, plain.rest.outputs];
   const at = new Map(plain.quantities.map((q) => [q.path, q.output]));
   return f.quantities.flatMap((q) => {
     if (q.kind !== 'outlet') return [];
     const [a, b] = [own[q.output], known[at.get(q.path) as number]];
-    return Math.abs(a - b) > SAME_END * Math.max(Math.abs(a), Math.abs(b)) ? [q.path] : [];
+    return Math.abs(a - b) > SAME_END * Math.max(Math.abs(a), Math.abs(b))
+      ? [{ path: q.path, final: a }]
+      : [];
   });
 }
 

@@ -73,7 +73,7 @@ describe('procedures', () => {
   });
 
   test('one that ends elsewhere is told apart', () => {
-    expect(of('richer for good').endsElsewhere).toEqual(['raffinate.s', 'extract.s']);
+    expect(of('richer for good').endsElsewhere.map((q) => q.path)).toEqual(['raffinate.s', 'extract.s']);
     for (const name of ['half the feed', 'from rest', 'loaded organic', 'as it is'])
       expect(of(name).endsElsewhere).toEqual([]);
   });
