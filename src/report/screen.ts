@@ -5,6 +5,7 @@ import type { LimitReport } from '../study/limit-watch.ts';
 import type { RunResult, SteadyResult } from '../study/result.ts';
 import type { TrainFigures } from '../study/train-figures.ts';
 import { shortCaution } from './cautions.ts';
+import { commissioningLines } from './commissioning-lines.ts';
 import { clock, columns, figure, shown, withUnit } from './figures.ts';
 
 /** First lines of `run`: limits first, then what the outlets came to, then what may be trusted. */
@@ -219,6 +220,7 @@ export function checkScreen(plant: Plant): string[] {
     const output = plant.system.outputs.find((o) => o.path === `${l.stream}.${l.quantity}`);
     lines.push(`  ${l.stream}.${l.quantity} ${l.side} ${withUnit(l.value, output?.unit ?? '')}`);
   }
+  lines.push(...commissioningLines(s));
   lines.push(
     '',
     `${plant.system.places.length} states, ${s.horizon / s.recordEvery < 1e6 ? Math.floor(s.horizon / s.recordEvery) + 1 : '> 1e6'} records over ${clock(s.horizon)}, start ${startWords(s.start)}.`,

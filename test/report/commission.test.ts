@@ -3,6 +3,7 @@ import fc from 'fast-check';
 import { beforeAll, describe, expect, it } from 'vitest';
 import { commissionScreen } from '../../src/report/commission-screen.ts';
 import { commissionSummary } from '../../src/report/commission-summary.ts';
+import { commissioningLines } from '../../src/report/commissioning-lines.ts';
 import { approach } from '../../src/report/pictures/approach.ts';
 import { fan } from '../../src/report/pictures/fan.ts';
 import { commissionPictures } from '../../src/report/pictures/index.ts';
@@ -158,5 +159,16 @@ describe('pictures of a commissioning', () => {
     expect(config.options?.scales?.x).toMatchObject({
       title: { text: [expect.stringMatching(/^time \[h\]/), expect.any(String)] },
     });
+  });
+});
+
+describe('check', () => {
+  it('shows what is stated for the commissioning as it was understood, and nothing where nothing is', () => {
+    const lines = commissioningLines(scenario('saltbush-startup')).join('\n');
+    expect(lines).toContain('half the feed first: leach liquor.flow -50 %, 0 s to 1 h 30 min');
+    expect(lines).toContain('preloaded organic: organic tank, extraction, strip filled otherwise');
+    expect(lines).toContain('samples 1 h apart, repeatable to 2.00 %');
+    expect(lines).toContain('12 plant samples of organic tank.copper, 30 min to 6 h 30 min');
+    expect(commissioningLines(scenario('ten'))).toEqual([]);
   });
 });

@@ -27,7 +27,9 @@ export async function commission(
   const began = performance.now();
   const folder = outputFolder(file, 'commission', options.out);
   const read = openScenario(file);
-  const found = refusing(read, () => findStartUp(read.scenario, usual));
+  const found = refusing(read, () =>
+    findStartUp(read.scenario, { ...usual, progress: (share) => console.progress(share, 'start-up') }),
+  );
   const stop = new AbortController();
   const onInterrupt = (): void => stop.abort();
   process.on('SIGINT', onInterrupt);

@@ -1,5 +1,6 @@
 import type { Plant } from '../../plant/assemble.ts';
 import type { Scenario } from '../../scenario/scenario.ts';
+import type { Watcher } from '../../solve/integrate.ts';
 import type { RunResult } from '../result.ts';
 import { type RunSettings, run } from '../run.ts';
 import { type Comparison, compareWith } from './comparison.ts';
@@ -81,16 +82,22 @@ export function commission(scenario: Scenario, settings: RunSettings): StartUp {
     repeatability: commissioning?.samples?.repeatability ?? null,
     modes: MODES,
   };
-  const followed = follow(s, { ...how, atLeast: Math.max(s.horizon, lastSample) });
+  const { progress } = settings;
+  const watchers = (): Watcher[] =>
+    progress ? [{ step: (step) => progress(Math.min(1, step.t1 / s.horizon)) }] : [];
+  const followed = follow(s, { ...how, atLeast: Math.max(s.horizon, lastSample), watchers });
   const quantities = comesGood(followed);
   const limits = onSpec(followed);
   const { plant, rest } = followed;
 
   const good = goodTimes(plant, quantities, limits);
   const lastGood = allCome(quantities.filter((q) => q.change !== null).map((q) => q.ofChange[3]));
+  const { samples } = commissioning ?? {};
+  const trusted = quantities.filter((q) => q.quantity.kind === 'outlet' || q.quantity.kind === 'tank');
   const seen = Math.max(
     lastGood ?? followed.ran,
     lastSample,
+    samples ? samples.gap + Math.max(0, ...trusted.map((q) => q.repeatable ?? 0)) : 0,
     ...limits.map((l) => l.from ?? 0),
     ...good.map((q) => q.until ?? 0),
   );

@@ -144,7 +144,7 @@ class Attempt {
       }
       if (!('state' in this.#rest) || repels(this.#rest) || this.#cycles()) return null;
       const slow = slowest(this.#rest);
-      const needed = this.#lastOutside() + AFTER * slow;
+      const needed = Math.max(this.#lastOutside() + AFTER * slow, this.#lastUnrepeatable());
       const most = Math.max(asked, after + MOST_DECAYS * slow);
       if (needed <= this.#time || this.#time >= most) return null;
       to = Math.min(most, Math.max(1.5 * this.#time, Number.isFinite(needed) ? needed : 0));
@@ -205,6 +205,19 @@ class Attempt {
   #lastOutside(): number {
     const band = PERCENTS.indexOf(1);
     return this.#quantities.reduce((t, _, k) => Math.max(t, this.#approach.last[k][band] ?? 0), 0);
+  }
+
+  /** The latest time at which an outlet or tank still drifted by more than the repeatability of its assay. */
+  #lastUnrepeatable(): number {
+    const { repeatability } = this.#settings;
+    if (repeatability === null) return 0;
+    return this.#quantities.reduce((t, q, k) => {
+      const { final, bands } = this.#approach.lines[k];
+      const assayed = (q.kind === 'outlet' || q.kind === 'tank') && this.#changes[k] !== null;
+      // No assay finds what lies in the digits of the run.
+      const seen = repeatability * Math.abs(final ?? 0) > 1e-4 * this.#plant.system.outputs[q.output].scale;
+      return assayed && seen ? Math.max(t, this.#approach.last[k][bands.length - 1]) : t;
+    }, 0);
   }
 
   #change(q: Watched, final: F | null): number | null {
