@@ -1,3 +1,4 @@
+import { quantitiesOf } from './limits.ts';
 import { hint } from './nearest.ts';
 import type { Outline } from './outline.ts';
 import type { Problem } from './refusal.ts';
@@ -33,7 +34,8 @@ export function checkPaths(raw: Record<string, unknown>, plan: Outline, problems
       return `${show(path)} is a result and cannot be changed; change a feed, the flow of a tank or a mixer`;
     return `unknown quantity ${show(path)}${hint(path, changeable)}`;
   });
-  check('limits', 'keep', (path) =>
-    plan.limitable.has(path) ? null : `unknown quantity ${show(path)}${hint(path, limitable)}`,
-  );
+  check('limits', 'keep', (path) => {
+    const wrong = quantitiesOf(path, plan).find((q) => q !== null && !plan.limitable.has(q));
+    return wrong == null ? null : `unknown quantity ${show(wrong)}${hint(wrong, limitable)}`;
+  });
 }

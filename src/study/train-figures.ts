@@ -1,6 +1,8 @@
+import { numbers } from '../plant/algebra.ts';
 import type { Plant } from '../plant/assemble.ts';
 import { recycled } from '../plant/design.ts';
 import { forBoth } from '../plant/flow.ts';
+import { Flows } from '../plant/flows.ts';
 import { equilibriumAt } from '../plant/isotherm.ts';
 import type { Law, Train } from '../scenario/scenario.ts';
 import type { F } from '../solve/system.ts';
@@ -47,6 +49,7 @@ export function trainFigures(plant: Plant, y: F): TrainFigures[] {
   const at = new Map(plant.system.outputs.map((o, i) => [o.path, i]));
   const known = (path: string): number | undefined => y[at.get(path) ?? -1];
   const read = (path: string): number => known(path) ?? 0;
+  const now = flowsNow(plant, read);
   return plant.scenario.trains.map((t, i): TrainFigures => {
     const flow = (name: string): number => read(`${name}.flow`);
     const solventLost = read(`${t.aqueous.to}.carried organic`);
@@ -56,7 +59,7 @@ export function trainFigures(plant: Plant, y: F): TrainFigures[] {
       advance: flow(t.organic.from) / flow(t.aqueous.from),
       solventLost,
       specificLoss: out > 0 ? solventLost / out : 0,
-      stages: t.stages.map((_, j) => stageFigures(plant, i, j, known)),
+      stages: t.stages.map((_, j) => stageFigures(plant, i, j, now, known)),
       solutes: plant.scenario.solutes.flatMap((solute, k) => {
         const law = t.equilibrium[k];
         return law ? [soluteFigures(plant, t, k, solute, law, read)] : [];
@@ -69,24 +72,36 @@ const finite = (v: number): number | null => (Number.isFinite(v) ? v : null);
 
 type Read = (path: string) => number;
 
+/** Flows as feeds, pumps and branches set them at the moment of a row of outputs. */
+function flowsNow({ scenario: s, network }: Plant, read: Read): Flows<number> {
+  const flows: Flows<number> = new Flows(s, network, {
+    ...numbers,
+    origin: (m) => read(`${m.kind === 'feed' ? s.feeds[m.index].name : s.tanks[m.index].to}.flow`),
+    take: (b, whole) => Math.min(whole, read(`${b.name}.flow`)),
+    rest: (whole, takes) => whole - numbers.add(...takes),
+  });
+  return flows;
+}
+
 function stageFigures(
   plant: Plant,
   train: number,
   j: number,
+  now: Flows<number>,
   read: (path: string) => number | undefined,
 ): StageFigures {
   const t = plant.scenario.trains[train];
   const { mixer, settler } = t.stages[j];
-  const { inlet, stages } = plant.designs[train];
-  const d = stages[j];
+  const d = plant.designs[train].stages[j];
   const path = `${t.name}.${j + 1}`;
   const share = read(`${path}.mixer.organic_share`) ?? d.mixer.organic / mixer.volume;
-  const through = forBoth((phase) => read(`${t[phase].from}.flow`) ?? inlet[phase]);
+  const through = forBoth((phase) => now.stage(train, phase, j).enters);
   const back = recycled(t, through);
-  // What neighbours carry over is small and taken as at design.
-  const entering = forBoth((phase) =>
-    Math.max(0, through[phase] + back[phase] + d.entering[phase] - d.recycled[phase] - inlet[phase]),
-  );
+  // What neighbours carry over and send back goes with the flow, as at design.
+  const entering = forBoth((phase) => {
+    const beside = d.set[phase] > 0 ? (d.entering[phase] - d.recycled[phase]) / d.set[phase] : 1;
+    return Math.max(0, through[phase] * beside + back[phase]);
+  });
   const held = forBoth((phase) => {
     const depth = read(`${path}.settler.${phase}_depth`);
     if (depth === undefined || settler.area === null) return d.mixer[phase] + d.band[phase] + d.layer[phase];

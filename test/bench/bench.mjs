@@ -81,17 +81,12 @@ function worstError(p, list, reference) {
 function volumes({ scenario, plant }) {
   const { places } = plant.system;
   const at = new Map();
-  for (const t of scenario.trains)
+  scenario.trains.forEach((t, i) => {
     t.stages.forEach((stage, j) => {
-      const flow = (phase) => {
-        const m = plant.network.flowSource(t[phase].from);
-        return m.kind === 'feed' ? scenario.feeds[m.index].flow : scenario.tanks[m.index].flow;
-      };
-      const share = { aqueous: flow('aqueous') / (flow('aqueous') + flow('organic')) };
-      share.organic = 1 - share.aqueous;
+      const { mixer } = plant.designs[i].stages[j];
       for (const phase of ['aqueous', 'organic'])
         for (const c of [...scenario.solutes, ...(phase === 'aqueous' ? scenario.species : [])]) {
-          at.set(`${t.name}.${j + 1}.mixer.${phase}.${c}`, stage.mixer.volume * share[phase]);
+          at.set(`${t.name}.${j + 1}.mixer.${phase}.${c}`, mixer[phase]);
           for (let k = 1; k <= stage.settler.parts; k++)
             at.set(
               `${t.name}.${j + 1}.settler.${k}.${phase}.${c}`,
@@ -99,6 +94,7 @@ function volumes({ scenario, plant }) {
             );
         }
     });
+  });
   for (const t of scenario.tanks)
     for (const c of scenario.solutes) at.set(`${t.name}.${t.phase}.${c}`, t.held);
   return places.flatMap((q, i) => (at.has(q.path) ? [[i, at.get(q.path)]] : []));
