@@ -151,7 +151,8 @@ export class Book {
           unit: 'kg',
           kind: 'amount',
           scale: this.typical[k] * volume * NEARLY_EMPTY,
-          floor: 0,
+          // More base than acid is an event, not an impossible state.
+          floor: k >= this.solutes && this.neutralised(k - this.solutes) ? null : 0,
         },
         filled * volume * this.carrier(k, phase, content),
         steady,

@@ -42,6 +42,12 @@ export function trainFacts(plant: Plant): TrainFacts[] {
   });
 }
 
+/** Flow of every stream as feeds and pumps set it, m³/s. */
+export function streamFlows({ scenario, network }: Plant): Map<string, number> {
+  const set = setFlows(scenario, network);
+  return new Map([...network.streams.keys()].map((name) => [name, set.stream(name).flow]));
+}
+
 /** Mixers without inversion of their own whose continuous phase is, at design, less than the usual limits ask for. */
 export function thinMixers(plant: Plant): { stage: string; continuity: Phase; share: number }[] {
   return plant.scenario.trains.flatMap((t, i) =>

@@ -223,7 +223,9 @@ export class Flows<T> {
     const inlet = this.stream(t[phase].from).flow;
     const along = this.#carriedAlong(train, phase);
     const withOther = this.#carriedAlong(train, otherPhase(phase));
+    // What a draw takes can depend on the very flow that it is taken of: a stage is there before its draws are asked for.
     const made: AtStage<T>[] = [];
+    this.#passes.set(key, made);
     for (const j of r.order) {
       const before = r.before(j);
       const main = before === null ? this.#share(inlet, r.enters[j]) : made[before].onward.flow;
@@ -236,15 +238,11 @@ export class Flows<T> {
             this.#stages.past(train, phase, j, () => enters),
           )
         : a.sub(a.add(enters, carriedIn), this.#stages.carried(train, j)[phase]);
-      const onward = this.#left(flow, this.#draws(train, phase, j));
-      made[j] = {
-        enters,
-        carriedIn,
-        leaves: { flow, carried: along[j].leaves },
-        onward: { flow: onward, carried: along[j].onward },
-      };
+      const leaves = { flow, carried: along[j].leaves };
+      made[j] = { enters, carriedIn, leaves, onward: leaves };
+      const onward = { flow: this.#left(flow, this.#draws(train, phase, j)), carried: along[j].onward };
+      made[j] = { enters, carriedIn, leaves, onward };
     }
-    this.#passes.set(key, made);
     return made;
   }
 }

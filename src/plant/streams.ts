@@ -5,7 +5,7 @@ import { type FlowAlgebra, Flows } from './flows.ts';
 import { meanOf, shareOfFlow, whereLeft } from './kernels.ts';
 import type { Ref } from './ledger.ts';
 import { ends, route } from './route.ts';
-import { just, type Sum, sums } from './sum.ts';
+import { isNothing, just, type Sum, sums } from './sum.ts';
 import type { TrainWriter } from './train.ts';
 
 /** The vessels between which streams run; each is there when it is asked for. */
@@ -41,7 +41,7 @@ export class Streams {
     const algebra: FlowAlgebra<Sum> = {
       ...sums,
       origin: (m) => just(v.origin(m)),
-      take: (b, whole) => book.portion(whole, this.share(b.name)),
+      take: (b, whole) => (isNothing(whole) ? whole : book.portion(whole, this.share(b.name))),
       rest: (whole, takes) => sums.sub(whole, sums.add(...takes)),
     };
     this.set = new Flows(s, net, algebra);

@@ -23,12 +23,17 @@ const { values: options } = parseArgs({
   },
 });
 const repeats = Number(options.repeats);
-const cases = { ten: 'ten', circuit: 'saltbush-copper' };
+const cases = {
+  ten: { file: 'ten' },
+  circuit: { file: 'saltbush-copper' },
+  'two metals': { file: 'mulga-two-metals', horizon: 24 * 3600 },
+};
 const tolerances = [3e-3, 1e-3, 1e-4, 1e-5, 1e-6];
 
 function prepare(name) {
-  const file = fileURLToPath(new URL(`../../scenarios/${cases[name]}.yaml`, import.meta.url));
-  const { scenario } = readScenario(readFileSync(file, 'utf8'), { file, folder: dirname(file) });
+  const file = fileURLToPath(new URL(`../../scenarios/${cases[name].file}.yaml`, import.meta.url));
+  const read = readScenario(readFileSync(file, 'utf8'), { file, folder: dirname(file) }).scenario;
+  const scenario = { ...read, horizon: cases[name].horizon ?? read.horizon };
   const plant = assemble(scenario);
   const { schedule } = upsetSchedule(plant, scenario.upsets, scenario.horizon);
   return { scenario, plant, schedule, initial: startState(plant) };
