@@ -241,7 +241,8 @@ function enoughToTake(s: Scenario, net: Network): Problem[] {
     if (branches.length === 0) return [];
     const whole = set.whole(branches[0].name);
     const taken = branches.reduce((n, b) => n + ('share' in b.take ? b.take.share * whole : b.take.flow), 0);
-    if (taken < whole) return [];
+    // A stream that is used up further upstream has its complaint there.
+    if (taken < whole || whole <= 0) return [];
     const message = `takes ${show(3600 * taken)} m^3/h${branches.length > 1 ? ' with the others' : ''} of a stream of ${show(3600 * whole)} m^3/h, which leaves nothing`;
     return [{ path: path(branches[branches.length - 1].name), message }];
   };

@@ -9,9 +9,7 @@ import { clock, columns, figure, shown, withUnit } from './figures.ts';
 /** First lines of `run`: limits first, then what the outlets came to, then what may be trusted. */
 export function runScreen(r: RunResult): string[] {
   const s = r.plant.scenario;
-  const lines = [
-    `RUN  ${s.title}: ${clock(r.stop.time)} from ${startWords(s)}`,
-  ];
+  const lines = [`RUN  ${s.title}: ${clock(r.stop.time)} from ${startWords(s)}`];
   if (!r.complete) lines.push(`INCOMPLETE  ${explain(r.stop)}`);
   for (const q of r.shades) lines.push(`upset  ${q.words}, ${clock(q.from)} to ${clock(q.to)}`);
   for (const c of r.clamped)

@@ -12,6 +12,8 @@ type RawTank = NonNullable<RawScenario['tanks']>[string];
 /** By how much shares that are to sum to 100 % may miss it. */
 const ROUNDING = 1e-9;
 
+const percent = (share: number): string => String(Number((100 * share).toPrecision(6)));
+
 export const takeOf = (q: Quantity): Take =>
   q.kind === 'a percentage' ? { share: q.value } : { flow: q.value };
 
@@ -32,7 +34,7 @@ export function splitsOf(raw: RawScenario, problems: Problem[]): Split[] {
     });
     const shares = branches.reduce((n, b) => n + ('share' in b.take ? b.take.share : 0), 0);
     if (shares >= 1)
-      problems.push({ path, message: `the shares come to ${show(100 * shares)} %, which leaves no rest` });
+      problems.push({ path, message: `the shares come to ${percent(shares)} %, which leaves no rest` });
     return { stream, branches, rest: rests[0] ?? '' };
   });
 }
@@ -95,7 +97,7 @@ function sharesOf(t: RawTrain, path: Path, problems: Problem[]): number[] {
   const sum = given.reduce((n, v) => n + v, 0);
   const complain = (message: string): number => problems.push({ path: [...path, 'shares'], message });
   if (given.length !== t.stages) complain(`${given.length} shares for ${t.stages} stages`);
-  else if (Math.abs(sum - 1) > ROUNDING) complain(`the shares come to ${show(100 * sum)} %, not to 100 %`);
+  else if (Math.abs(sum - 1) > ROUNDING) complain(`the shares come to ${percent(sum)} %, not to 100 %`);
   return given.map((v) => v / sum);
 }
 
@@ -106,27 +108,27 @@ export function removalsOf(
   path: Path,
   problems: Problem[],
 ): (Removal | null)[] {
-  const unknown = (key: string, name: string, what: string, known: readonly string[]): number =>
+  const unknown = (key: Path, name: string, what: string, known: readonly string[]): number =>
     problems.push({
-      path: [...path, key, name],
+      path: [...path, ...key, name],
       message: `unknown ${what} ${show(name)}${hint(name, known)}`,
       atKey: true,
     });
   for (const name of Object.keys(t.removes ?? {}))
-    if (!solutes.includes(name)) unknown('removes', name, 'solute', solutes);
+    if (!solutes.includes(name)) unknown(['removes'], name, 'solute', solutes);
   for (const [name, row] of Object.entries(t.returns ?? {})) {
     if (t.removes?.[name] === undefined)
       problems.push({
-        path: [...path, 'returns', name],
-        message: `nothing is said of ${show(name)} under removes`,
-        atKey: true,
+        path: [...path, 'removes', name],
+        message: `is missing, but returns says what ${show(name)} gives back`,
       });
     if (t.phase === 'organic')
       problems.push({
         path: [...path, 'returns'],
         message: 'species stay in the aqueous; an organic takes none',
       });
-    for (const s of Object.keys(row)) if (!species.includes(s)) unknown('returns', s, 'species', species);
+    for (const s of Object.keys(row))
+      if (!species.includes(s)) unknown(['returns', name], s, 'species', species);
   }
   return solutes.map((name) => {
     const q = t.removes?.[name];

@@ -30,6 +30,9 @@ export function checkPaths(raw: Record<string, unknown>, plan: Outline, problems
     const [, name, stage] = STAGE.exec(path) ?? [];
     const train = plan.trains.find((t) => t.name === name);
     if (train) return `no stage ${show(stage)}: ${train.name} has stages 1 to ${train.stages}`;
+    const share = path.replace(/\.flow$/, '.share');
+    if (share !== path && plan.changeable.has(share))
+      return `${show(path)} follows from a share; change ${show(share)}`;
     if (plan.limitable.has(path))
       return `${show(path)} is a result and cannot be changed; change a feed, the flow of a tank or a mixer`;
     return `unknown quantity ${show(path)}${hint(path, changeable)}`;
