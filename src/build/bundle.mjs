@@ -2,9 +2,13 @@
 import { fileURLToPath } from 'node:url';
 
 export default {
-  input: { upsettle: fileURLToPath(new URL('../cli/upsettle.ts', import.meta.url)) },
+  input: {
+    upsettle: fileURLToPath(new URL('../cli/upsettle.ts', import.meta.url)),
+    // Worker threads load a file of their own.
+    'ensemble-worker': fileURLToPath(new URL('../study/commission/worker.ts', import.meta.url)),
+  },
   platform: 'node',
-  external: [/^chart/, /^canvas/, /^@napi-rs/, /^dejavu/],
+  external: [/^chart/, /^canvas/, /^@napi-rs/, /^dejavu/, /^tinypool/],
   output: {
     dir: fileURLToPath(new URL('../../dist', import.meta.url)),
     format: 'esm',

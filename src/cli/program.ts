@@ -76,6 +76,29 @@ export async function main(argv: readonly string[]): Promise<number> {
       const { steady } = await import('./verbs/steady.ts');
       code = await steady(file, o, quiet(o));
     });
+  verb(
+    'commission',
+    'start-up: when all comes good, why not sooner, what to do about it',
+    'upsettle commission scenarios/saltbush-startup.yaml',
+  )
+    .option('--out <dir>', 'folder for the results (default: out/<scenario>/commission)')
+    .option('--no-pictures', 'write no PNG pictures')
+    .addOption(scale())
+    .addOption(
+      new Option('--ensemble <runs>', 'start-ups over the uncertain inputs; 0: none')
+        .argParser(whole(0, 100_000))
+        .default(200),
+    )
+    .addOption(new Option('--seed <number>', 'of the ensemble').argParser(whole(0, 2_000_000_000)).default(1))
+    .addOption(
+      new Option('--workers <number>', 'threads for the ensemble (default: all cores)').argParser(
+        whole(1, 256),
+      ),
+    )
+    .action(async (file: string, o) => {
+      const { commission } = await import('./verbs/commission.ts');
+      code = await commission(file, o, quiet(o));
+    });
   if (argv.length <= 2) {
     process.stdout.write(greeting());
     return exits.done;
@@ -99,12 +122,20 @@ function tolerance(text: string): number {
   throw new InvalidArgumentError('Expected a number from 1e-12 to 1e-2.');
 }
 
+const whole =
+  (least: number, most: number) =>
+  (text: string): number => {
+    if (/^\d+$/.test(text) && Number(text) >= least && Number(text) <= most) return Number(text);
+    throw new InvalidArgumentError(`Expected a whole number from ${least} to ${most}.`);
+  };
+
 const greeting =
   (): string => `Upsettle ${version()}: what happens between steady states of a mixer-settler cascade.
 
   upsettle check scenarios/saltbush-copper.yaml    the plant as understood
   upsettle steady scenarios/saltbush-copper.yaml   where it comes to rest
   upsettle run scenarios/saltbush-copper.yaml      start-up and upsets, with pictures
+  upsettle commission scenarios/saltbush-startup.yaml   when the start-up comes good
 
 upsettle --help lists all options.
 `;

@@ -85,11 +85,11 @@ export function steadySummary(r: SteadyResult, origin: Origin): object {
   };
 }
 
-function head(s: { title: string; about: string }, origin: Origin): object {
+export function head(s: { title: string; about: string }, origin: Origin): object {
   return { title: s.title, about: s.about, scenario_file: origin.file, upsettle_version: origin.version };
 }
 
-const si = (unit: string): string => unit.replaceAll('^', '');
+export const si = (unit: string): string => unit.replaceAll('^', '');
 
 /** What people look for in a train. */
 const figuresOf = (f: TrainFigures): object => ({

@@ -1,5 +1,5 @@
 import { readChange } from './changes.ts';
-import { arrangementOf, blendsOf, neutralisedBy, removalsOf, splitsOf } from './circuit.ts';
+import { arrangementOf, blendsOf, neutralisedBy, removalShares, removalsOf, splitsOf } from './circuit.ts';
 import { type Basis, carrierFlow, content } from './content.ts';
 import { readLaw } from './laws.ts';
 import { readLimit } from './limits.ts';
@@ -7,6 +7,7 @@ import { hint } from './nearest.ts';
 import { checkNeeds } from './needs.ts';
 import type { Outline } from './outline.ts';
 import { noProperties, plainTank, plainTrain } from './plain.ts';
+import { readCommissioning } from './read-commissioning.ts';
 import type { Problem } from './refusal.ts';
 import { Releases } from './releases.ts';
 import { startOf } from './saved.ts';
@@ -42,13 +43,7 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
   const batches = Object.entries(raw.batches ?? {}).map(([name, b]) => builder.batch(name, b));
   const { basis } = builder;
   const horizon = raw.horizon.value;
-  const shares = new Set(
-    tanks.flatMap((t) =>
-      t.removes.flatMap((r, i) =>
-        r !== null && 'share' in r.how ? [`${t.name}.removal of ${builder.solutes[i]}`] : [],
-      ),
-    ),
-  );
+  const shares = removalShares(tanks, builder.solutes);
   const contents = new Map([...known, ...tanks].map((q) => [q.name, q.content]));
   const scenario: Scenario = {
     title: raw.title,
@@ -79,7 +74,8 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
   };
   checkNeeds(scenario, problems);
   checkSize(scenario, problems);
-  return scenario;
+  const around = { outline, basis, folder, feeds: known, contents };
+  return { ...scenario, commissioning: readCommissioning(raw, scenario, around, problems) };
 }
 
 class Builder {

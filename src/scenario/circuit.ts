@@ -1,7 +1,18 @@
 import { hint } from './nearest.ts';
 import { plainTrain } from './plain.ts';
 import type { Problem } from './refusal.ts';
-import type { Arrangement, Blend, Branch, Draw, Path, Removal, Split, Take, Train } from './scenario.ts';
+import type {
+  Arrangement,
+  Blend,
+  Branch,
+  Draw,
+  Path,
+  Removal,
+  Split,
+  Take,
+  Tank,
+  Train,
+} from './scenario.ts';
 import type { RawScenario, RawStage } from './schema.ts';
 import { show } from './show.ts';
 import type { Quantity } from './units.ts';
@@ -140,6 +151,16 @@ export function removalsOf(
     };
   });
 }
+
+/** Paths of the removals that are stated as shares. */
+export const removalShares = (tanks: readonly Tank[], solutes: readonly string[]): ReadonlySet<string> =>
+  new Set(
+    tanks.flatMap((t) =>
+      t.removes.flatMap((r, i) =>
+        r !== null && 'share' in r.how ? [`${t.name}.removal of ${solutes[i]}`] : [],
+      ),
+    ),
+  );
 
 /** What a volume of a feed uses up of each species, kg/m³. */
 export function neutralisedBy(

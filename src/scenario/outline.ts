@@ -211,7 +211,7 @@ export function outline(raw: unknown): Outline {
     blends,
     batches,
     stageKeys: [...new Set(stageKeys)],
-    spare: spareFeeds(top.upsets, feeds),
+    spare: spareFeeds([...listed(top.upsets), ...movesOf(top.procedures)], feeds),
     named,
     whole,
     changeable,
@@ -228,9 +228,13 @@ const stageTargets = (stage: string): [string, Target['what']][] => [
   [`${stage}.settler.aqueous_weir`, 'weir'],
 ];
 
-function spareFeeds(upsets: unknown, feeds: Outline['feeds']): Set<string> {
+const listed = (v: unknown): unknown[] => (Array.isArray(v) ? v : []);
+/** Moves of all procedures. */
+const movesOf = (v: unknown): unknown[] =>
+  isObject(v) ? Object.values(v).flatMap((p) => (isObject(p) ? listed(p.moves) : [])) : [];
+
+function spareFeeds(upsets: readonly unknown[], feeds: Outline['feeds']): Set<string> {
   const names = new Set(feeds.map((f) => f.name));
-  if (!Array.isArray(upsets)) return new Set();
   return new Set(
     upsets.flatMap((u): string[] => {
       if (!isObject(u) || typeof u.change !== 'string' || typeof u.to !== 'string') return [];

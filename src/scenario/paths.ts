@@ -2,6 +2,7 @@ import { quantitiesOf } from './limits.ts';
 import { hint } from './nearest.ts';
 import type { Outline } from './outline.ts';
 import type { Problem } from './refusal.ts';
+import type { Path } from './scenario.ts';
 import { show } from './show.ts';
 
 const STAGE = /^([^.]+)\.([^.]+)(\.mixer|\.mixer\.speed|\.continuity|\.settler\.aqueous_weir)?$/;
@@ -25,7 +26,7 @@ export function checkPaths(raw: Record<string, unknown>, plan: Outline, problems
     (k) => !trains.has(k.slice(0, k.indexOf('.'))) || ofStage(k) === '1',
   );
   const limitable = [...plan.limitable.keys()];
-  check('upsets', 'change', (path) => {
+  const change = (path: string): string | null => {
     if (plan.changeable.has(path)) return null;
     const [, name, stage] = STAGE.exec(path) ?? [];
     const train = plan.trains.find((t) => t.name === name);
@@ -36,9 +37,37 @@ export function checkPaths(raw: Record<string, unknown>, plan: Outline, problems
     if (plan.limitable.has(path))
       return `${show(path)} is a result and cannot be changed; change a feed, the flow of a tank or a mixer`;
     return `unknown quantity ${show(path)}${hint(path, changeable)}`;
-  });
-  check('limits', 'keep', (path) => {
+  };
+  check('upsets', 'change', change);
+  for (const { path, quantity } of movesOf(raw)) {
+    const message = change(quantity);
+    if (message !== null) problems.push({ path, message });
+  }
+  const result = (path: string): string | null => {
     const wrong = quantitiesOf(path, plan).find((q) => q !== null && !plan.limitable.has(q));
     return wrong == null ? null : `unknown quantity ${show(wrong)}${hint(wrong, limitable)}`;
+  };
+  check('limits', 'keep', result);
+  for (const quantity of Object.keys(settings(settings(raw.compare).columns))) {
+    const message = result(quantity);
+    if (message !== null) problems.push({ path: ['compare', 'columns', quantity], message, atKey: true });
+  }
+}
+
+type Settings = Record<string, unknown>;
+const settings = (v: unknown): Settings =>
+  typeof v === 'object' && v !== null && !Array.isArray(v) ? (v as Settings) : {};
+
+/** What the moves of procedures change, with their places. */
+function movesOf(raw: Settings): { path: Path; quantity: string }[] {
+  return Object.entries(settings(raw.procedures)).flatMap(([name, p]) => {
+    const { moves } = settings(p);
+    if (!Array.isArray(moves)) return [];
+    return moves.flatMap((m, i) => {
+      const { change } = settings(m);
+      return typeof change === 'string'
+        ? [{ path: ['procedures', name, 'moves', i, 'change'], quantity: change }]
+        : [];
+    });
   });
 }

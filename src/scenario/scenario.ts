@@ -1,3 +1,4 @@
+import type { Commissioning } from './commissioning.ts';
 import type { DropSizeName } from './plain.ts';
 
 /** A checked scenario: plain data, SI inside (m, s, kg, kg/m³, m³/s). Names are the user's own. */
@@ -295,4 +296,6 @@ export interface Scenario {
   readonly recordEvery: number;
   readonly upsets: readonly Change[];
   readonly limits: readonly Limit[];
+  /** What is stated for the commissioning. */
+  readonly commissioning?: Commissioning;
 }

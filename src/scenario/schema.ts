@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { commissioningKeys } from './commissioning-schema.ts';
 import {
   arrow,
   between,
@@ -324,6 +325,7 @@ export function scenarioSchema({ solutes, species, stageKeys }: Keys) {
     record_every: duration.optional(),
     upsets: list(upset, 'a list of changes').optional(),
     limits: list(limit, 'a list of limits').optional(),
+    ...commissioningKeys(upset, content, start),
   });
 }
 

@@ -126,7 +126,7 @@ function worst(system: System, x: F, v: F): number {
 }
 
 /** The System with its rows as they count at steady state, on a pattern wide enough for the sums. */
-class SteadyRows {
+export class SteadyRows {
   readonly pattern: Pattern;
   readonly #system: System;
   readonly #from: Int32Array;

@@ -29,6 +29,8 @@ export interface RunSettings {
   readonly progress?: (share: number) => void;
   /** s at which the state is kept besides the end; null: at the end. */
   readonly keepAt?: number;
+  /** Others that follow the run. */
+  readonly watchers?: readonly Watcher[];
 }
 
 export const usual = { integrator: 'rodas5p', tolerance: 1e-6 } as const;
@@ -36,6 +38,14 @@ export const usual = { integrator: 'rodas5p', tolerance: 1e-6 } as const;
 const MOST_STEPS = 20_000_000;
 /** First trial step [s]; the error control finds its own from there. */
 const FIRST_STEP = 1;
+
+/** What the integrator is told. */
+export const optionsOf = (s: Pick<RunSettings, 'integrator' | 'tolerance'>): Options => ({
+  integrator: s.integrator,
+  tolerance: { relative: s.tolerance },
+  maximumSteps: MOST_STEPS,
+  firstStep: FIRST_STEP,
+});
 
 /** The computation could not even begin, or came to no end; the message says where and why. */
 export class Incomplete extends Error {
@@ -97,14 +107,10 @@ function prepare(s: Scenario, settings: RunSettings): Prepared {
   watchers.push(keeper);
   const { progress } = settings;
   if (progress) watchers.push({ step: (step) => progress(step.t1 / s.horizon) });
+  watchers.push(...(settings.watchers ?? []));
   return {
     problem: { system: plant.system, parameters: plant.parameters, schedule, initial, ...startModes(plant) },
-    options: {
-      integrator: settings.integrator,
-      tolerance: { relative: settings.tolerance },
-      maximumSteps: MOST_STEPS,
-      firstStep: FIRST_STEP,
-    },
+    options: optionsOf(settings),
     watchers,
     finish(result) {
       const reports = limits.map((l) => l.report());
@@ -155,7 +161,7 @@ function snapshotsOf(
 }
 
 /** What guards had set before a kept state. */
-function startModes(plant: Plant): { modes?: ReadonlyMap<number, number> } {
+export function startModes(plant: Plant): { modes?: ReadonlyMap<number, number> } {
   const { start } = plant.scenario;
   return typeof start === 'object' ? { modes: restoreModes(plant, start) } : {};
 }

@@ -27,7 +27,8 @@ export function steady(s: Scenario): SteadyResult {
   };
 }
 
-function drifts(plant: Plant, x: F, change: F): SteadyResult['drifts'] {
+/** Tanks that gain or lose volume while all else is at rest; `until` is s from then. */
+export function drifts(plant: Plant, x: F, change: F): SteadyResult['drifts'] {
   return plant.scenario.tanks.flatMap((t) => {
     const at = plant.system.places.findIndex((p) => p.path === `${t.name}.volume`);
     const rate = at < 0 ? 0 : change[at];

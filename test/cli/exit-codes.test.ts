@@ -118,6 +118,33 @@ describe('the command', () => {
     expect(existsSync(join(folder, 'out/sound/steady/summary.json'))).toBe(true);
   });
 
+  it('an ensemble has the same figures on one worker thread and on two, and says nothing in a pipe', () => {
+    const uncertain = 'uncertain: {extraction.mixer.ka: ±30 %, feed.solute: ±5 %}';
+    writeFileSync(join(folder, 'unsure.yaml'), `${sound}${uncertain}\n`);
+    const summaries = ['1', '2'].map((workers) => {
+      const args = ['unsure.yaml', '--no-pictures', '--ensemble', '11', '--seed', '4', '--workers', workers];
+      const { code, out, error } = upsettle('commission', ...args, '--out', `workers-${workers}`);
+      expect({ code, error }).toEqual({ code: exits.done, error: '' });
+      expect(out).toMatch(/How sure: at rest P10 .*\(11 runs, seed 4\)/);
+      return JSON.parse(readFileSync(join(folder, `workers-${workers}/summary.json`), 'utf8'));
+    });
+    const [one, two] = summaries.map(({ solver: _, ...rest }) => rest);
+    expect(one.ensemble).toMatchObject({ runs: 11, asked: 11, unsettled: 0, failed: 0 });
+    expect(two).toEqual(one);
+  });
+
+  it('a commissioning of a scenario that is refused writes nothing', () => {
+    const before = files();
+    writeFileSync(join(folder, 'unsure-wrong.yaml'), `${sound}uncertain: {extraction.mixer.kaa: ±30 %}\n`);
+    const { code, out, error } = upsettle('commission', 'unsure-wrong.yaml');
+    expect({ code, out }).toEqual({ code: exits.refused, out: '' });
+    expect(error).toMatch(
+      /^unsure-wrong\.yaml:\d+:\d+ uncertain\.extraction\.mixer\.kaa: unknown input .*did you mean/,
+    );
+    rmSync(join(folder, 'unsure-wrong.yaml'));
+    expect(files()).toEqual(before);
+  });
+
   it('a check writes nothing, and a reader that stops reading is no fault', async () => {
     const before = files();
     const child = spawn(process.execPath, [program, 'check', 'sound.yaml'], { cwd: folder });

@@ -46,6 +46,14 @@ describe('wrong usage is exit 2 with a short message', () => {
       ['run', sound, '--integrator', 'euler'],
       /'euler' is invalid\. Allowed choices are rodas5p, rodas4, odex/,
     ],
+    ...['-1', '1.5', 'many', '1e9'].map(
+      (text) =>
+        [
+          ['commission', sound, `--ensemble=${text}`],
+          /'--ensemble <runs>' argument '.*' is invalid\. Expected a whole number from 0 to 100000/,
+        ] as const,
+    ),
+    [['commission', sound, '--workers', '0'], /Expected a whole number from 1 to 256/],
     [['run', sound, '--scale', '3'], /'3' is invalid\. Allowed choices are 1, 2/],
     ...['0.5', '0', '-1e-6', '1e-13', '1e400', 'NaN', 'small', '', '1e-6x', '1,0e-6'].map(
       (text) =>
@@ -96,7 +104,7 @@ describe('questions about the command itself', () => {
       expect(help.out).toContain(option);
     const greeting = await upsettle();
     expect(greeting).toMatchObject({ code: exits.done, error: '' });
-    for (const verb of ['check', 'steady', 'run'])
+    for (const verb of ['check', 'steady', 'run', 'commission'])
       expect(greeting.out).toContain(`upsettle ${verb} scenarios/`);
   });
 });

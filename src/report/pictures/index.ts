@@ -1,16 +1,37 @@
+import type { CommissionResult } from '../../study/commission/commission.ts';
 import type { RunResult, SteadyResult } from '../../study/result.ts';
+import { approach } from './approach.ts';
 import { draw } from './canvas.ts';
+import { comparison } from './comparison.ts';
+import { fan } from './fan.ts';
 import { levels } from './levels.ts';
 import { stageTimeMap } from './map.ts';
 import { operating } from './operating.ts';
 import { outlets } from './outlets.ts';
 import type { Picture } from './picture.ts';
 import { profiles } from './profiles.ts';
+import { timeline } from './timeline.ts';
 
 /** Pictures of `run`, in the order in which they are drawn. */
 export const runTable: readonly Picture<RunResult>[] = [outlets, levels, profiles, stageTimeMap, operating];
 /** Pictures of `steady`. */
 export const steadyTable: readonly Picture<SteadyResult>[] = [operating];
+
+/** A picture of a run, drawn of the start-up that a commissioning shows. */
+const ofStartUp = (p: Picture<RunResult>): Picture<CommissionResult> => ({
+  name: (r, part) => p.name(r.run, part),
+  ...(p.parts ? { parts: (r: CommissionResult) => p.parts?.(r.run) ?? [] } : {}),
+  config: (r, part) => p.config(r.run, part),
+});
+/** Pictures of `commission`. */
+export const commissionTable: readonly Picture<CommissionResult>[] = [
+  approach,
+  timeline,
+  ofStartUp(levels),
+  ofStartUp(stageTimeMap),
+  fan,
+  comparison,
+];
 
 export interface Drawn {
   readonly name: string;
@@ -20,6 +41,9 @@ export interface Drawn {
 export const runPictures = (r: RunResult, scale = 1): AsyncGenerator<Drawn> => all(runTable, r, scale);
 export const steadyPictures = (r: SteadyResult, scale = 1): AsyncGenerator<Drawn> =>
   all(steadyTable, r, scale);
+
+export const commissionPictures = (r: CommissionResult, scale = 1): AsyncGenerator<Drawn> =>
+  all(commissionTable, r, scale);
 
 async function* all<R>(table: readonly Picture<R>[], r: R, scale: number): AsyncGenerator<Drawn> {
   const used = new Map<string, number>();

@@ -7,6 +7,8 @@ export interface PanelLine {
   readonly label: string;
   /** s and shown unit. */
   readonly data: readonly { readonly x: number; readonly y: number }[];
+  /** Drawn as marks in the colour of the line before it. */
+  readonly marks?: true;
 }
 
 /** One of several diagrams over each other with a common time axis. */
@@ -42,9 +44,9 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
       label: line.label,
       data: line.data.map((p) => ({ x: p.x / unit.seconds, y: p.y })),
       yAxisID: axis(order.length - 1 - i),
-      pointRadius: 0,
-      pointStyle: 'line' as const,
-      ...lineStyle(style++),
+      ...(line.marks
+        ? { showLine: false, pointRadius: 4, pointStyle: 'circle' as const, ...lineStyle(style - 1) }
+        : { pointRadius: 0, pointStyle: 'line' as const, ...lineStyle(style++) }),
     })),
   );
   const annotations: Record<string, object> = {};

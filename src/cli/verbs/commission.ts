@@ -1,0 +1,82 @@
+import { commissionScreen } from '../../report/commission-screen.ts';
+import { commissionSummary } from '../../report/commission-summary.ts';
+import { type CommissionResult, commission as findStartUp } from '../../study/commission/commission.ts';
+import { ensemble } from '../../study/commission/ensemble.ts';
+import { cores, onWorkers } from '../../study/commission/pool.ts';
+import { usual } from '../../study/run.ts';
+import type { Console } from '../console.ts';
+import { exits } from '../exit.ts';
+import { makeFolder, openScenario, outputFolder, version, write, writeJson } from '../files.ts';
+import { known, refusing } from '../refusing.ts';
+
+export interface CommissionOptions {
+  readonly out?: string;
+  readonly pictures: boolean;
+  readonly scale: string;
+  readonly ensemble: number;
+  readonly seed: number;
+  readonly workers?: number;
+}
+
+/** `upsettle commission FILE`: when the plant comes good, why not sooner, and what to do about it. */
+export async function commission(
+  file: string,
+  options: CommissionOptions,
+  console: Console,
+): Promise<number> {
+  const began = performance.now();
+  const folder = outputFolder(file, 'commission', options.out);
+  const read = openScenario(file);
+  const found = refusing(read, () => findStartUp(read.scenario, usual));
+  const stop = new AbortController();
+  const onInterrupt = (): void => stop.abort();
+  process.on('SIGINT', onInterrupt);
+  const uncertain = read.scenario.commissioning?.uncertain ?? [];
+  const wanted = uncertain.length > 0 && options.ensemble > 0 && found.fan !== null;
+  const spread = wanted
+    ? await ensemble(
+        found.proper,
+        uncertain,
+        {
+          ...usual,
+          ...(found.fan as NonNullable<typeof found.fan>),
+          runs: options.ensemble,
+          seed: options.seed,
+          progress: (share) => console.progress(share, 'ensemble'),
+          stop: stop.signal,
+        },
+        onWorkers(options.workers ?? cores()),
+      ).catch((e) => {
+        throw known(read, e);
+      })
+    : null;
+  console.clear();
+  const result: CommissionResult = { ...found, ensemble: spread };
+  const seconds = (performance.now() - began) / 1e3;
+  makeFolder(folder);
+  writeJson(folder, 'summary.json', commissionSummary(result, { file, version: version(), seconds }));
+  const made = ['summary.json'];
+  console.say(commissionScreen(result));
+  if (options.pictures) {
+    const { commissionPictures } = await import('../../report/pictures/index.ts');
+    for await (const picture of commissionPictures(result, Number(options.scale))) {
+      if (stop.signal.aborted) break;
+      console.progress(0, `drawing ${picture.name}`);
+      write(folder, picture.name, picture.png);
+      made.push(picture.name);
+    }
+    console.clear();
+  }
+  process.off('SIGINT', onInterrupt);
+  console.say(['', `Written to ${folder}: ${made.join(', ')}`]);
+  if (stop.signal.aborted) {
+    process.stderr.write(`interrupted; what was finished is in ${folder}\n`);
+    return exits.interrupted;
+  }
+  if (result.followed.stop.reason !== 'reached-end') {
+    const { explain } = await import('../../solve/outcome.ts');
+    process.stderr.write(`incomplete: ${explain(result.followed.stop)}\n`);
+    return exits.incomplete;
+  }
+  return exits.done;
+}
