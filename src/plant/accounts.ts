@@ -77,7 +77,8 @@ export function closure(a: Account, before: F, after: F): Closure {
   const heldBefore = a.fixed + sum(before, a.held);
   const heldAfter = a.fixed + sum(after, a.held);
   const open = Math.abs(heldAfter - heldBefore - entered + left);
-  const size = entered + heldBefore;
+  // A base brings less than none of an acid: each stream counts by its size.
+  const size = a.entered.reduce((n, i) => n + Math.abs(after[i] - before[i]), 0) + Math.abs(heldBefore);
   return {
     name: a.name,
     unit: a.unit,
@@ -85,6 +86,6 @@ export function closure(a: Account, before: F, after: F): Closure {
     left,
     heldBefore,
     heldAfter,
-    closure: open === 0 ? 0 : open / Math.abs(size),
+    closure: open === 0 ? 0 : open / size,
   };
 }

@@ -1,18 +1,25 @@
 import { type Execution, generated } from '../math/kernel.ts';
-import { type Maker, type Network, network, type Stream } from '../scenario/network.ts';
+import { jointsOf } from '../scenario/joints.ts';
+import { type Network, network, type Origin, type Stream } from '../scenario/network.ts';
 import type { Phase, Scenario, Tank, Train } from '../scenario/scenario.ts';
 import type { F, System } from '../solve/system.ts';
 import { type Account, accounts } from './accounts.ts';
+import { batchVolume, writeBatch } from './batch.ts';
 import { Book, type Sink, type Source } from './book.ts';
 import { FeedWriter, type Totals, totals } from './boundary.ts';
 import { chemistry } from './chemistry.ts';
 import { holdWhatOnlyCirculates } from './circulating.ts';
-import { designs, type TrainDesign } from './design.ts';
-import { entering } from './entering.ts';
-import { forBoth, otherPhase, PHASES, type StreamFlow } from './flow.ts';
+import { designs, setFlows, type TrainDesign } from './design.ts';
+import { Entering } from './entering.ts';
+import { forBoth, otherPhase, PHASES } from './flow.ts';
 import { product, same } from './kernels.ts';
 import type { Ref } from './ledger.ts';
+import { ends, route } from './route.ts';
+import { writeStreamFigures } from './stream-figures.ts';
+import { Streams } from './streams.ts';
 import { suitable } from './suitable.ts';
+import { isNothing } from './sum.ts';
+import { setByPump } from './symbols.ts';
 import { TankWriter } from './tank.ts';
 import { type Laws, TrainWriter } from './train.ts';
 
@@ -42,7 +49,7 @@ export interface AssembleOptions {
  * @throws Refusal where streams do not join up, or where the equations are not made for what they join.
  */
 export function assemble(s: Scenario, options: AssembleOptions = {}): Plant {
-  const net = network(s);
+  const net = network(jointsOf(s));
   const plans = designs(s, net);
   suitable(s, net, plans);
   const book = new Book(s, net);
@@ -79,6 +86,8 @@ class PlantWriter {
   readonly #tanks: TankWriter[] = [];
   readonly #trains: TrainWriter[] = [];
   readonly #outlets = new Map<string, Sink>();
+  readonly #streams: Streams;
+  readonly #isSetBy: ReturnType<typeof setByPump>;
 
   constructor(
     s: Scenario,
@@ -92,10 +101,18 @@ class PlantWriter {
     this.#book = book;
     this.#moving = moving;
     this.designs = plans;
+    this.#isSetBy = setByPump(s, net);
+    this.#streams = new Streams(s, net, book, moving, {
+      origin: (m) => (m.kind === 'feed' ? this.#feeds[m.index].flow : this.#pumps[m.index].flow),
+      train: (i) => this.#trains[i],
+      content: (m, k) => this.#source(m).content(k),
+      tankSink: (i) => this.#tanks[i].sink(() => this.#streams.sink(s.tanks[i].to)),
+      outlet: (name) => this.#outlets.get(name) as Sink,
+    });
   }
 
   write(): void {
-    const { feeds, tanks, trains } = this.#s;
+    const { feeds, tanks, trains, batches } = this.#s;
     feeds.forEach((f, index) => {
       const writer = new FeedWriter(this.#book, f, (flow) => this.#gated(flow, { kind: 'feed', index }));
       this.#feeds.push(writer);
@@ -104,39 +121,45 @@ class PlantWriter {
     tanks.forEach((t, index) => {
       this.#pumps[index] = t.flow === null ? { flow: this.#book.number(0), dry: null } : this.#pump(index);
     });
+    const start = new Entering(this.#s, this.#net);
     trains.forEach((t, i) => {
-      this.#trains[i] = this.#openTrain(t, i);
+      this.#trains[i] = this.#openTrain(t, i, start);
     });
-    tanks.forEach((t, i) => {
-      const flow = t.flow === null ? this.#streamFlow(t.from).flow : this.#pumps[i].flow;
-      const tank = new TankWriter(
-        this.#book,
-        t,
-        flow,
-        this.#pumps[i].dry,
-        this.#levelMoves(i),
-        this.#carries(t.from),
-      );
-      this.#tanks[i] = tank;
-      if (tank.volume) this.levels.push({ phase: t.phase, place: tank.volume });
-      else this.fixedVolume[t.phase] += t.held;
-      if (tank.bottomsVolume) this.levels.push({ phase: otherPhase(t.phase), place: tank.bottomsVolume });
-      if (tank.lost) this.totals.push(tank.lost);
-    });
+    for (const [i, t] of tanks.entries()) this.#openTank(t, i);
     for (const out of this.#net.outlets) this.#outlets.set(out.name, this.#outlet(out));
     for (const t of this.#trains) t.run();
-    trains.forEach((t, i) => {
-      this.#trains[i].join(forBoth((phase) => () => this.#sink(t[phase].to)));
-    });
-    for (const stream of this.#net.streams.values())
-      if (stream.maker.kind !== 'train') this.#source(stream).send(this.#sink(stream.name));
+    for (const t of this.#trains) t.join();
+    for (const { name, maker } of this.#net.streams.values())
+      if (maker.kind === 'feed' || maker.kind === 'tank')
+        this.#source({ kind: maker.kind, index: maker.index }).send(this.#streams.sink(name));
     tanks.forEach((t, i) => {
-      this.#tanks[i].events(
-        this.#streamFlow(t.from),
-        t.makeUp === null ? null : this.#streamFlow(t.makeUp).flow,
-      );
+      const makeUp = t.makeUp === null ? null : this.#streams.flow(t.makeUp);
+      this.#tanks[i].events(this.#streams.flow(t.from), makeUp);
     });
+    for (const b of batches) {
+      writeBatch(this.#book, b, this.#laws(b.name, b.equilibrium));
+      for (const phase of PHASES) this.fixedVolume[phase] += batchVolume(b, phase);
+    }
     this.#showStreams();
+    writeStreamFigures(this.#book, [...this.#net.streams.values()]);
+  }
+
+  #openTank(t: Tank, i: number): void {
+    const { flow, dry } = this.#pumps[i];
+    const tank = new TankWriter(
+      this.#book,
+      t,
+      t.flow === null ? this.#streams.flow(t.to) : flow,
+      dry,
+      this.#levelMoves(i),
+      this.#carries(t.from),
+    );
+    this.#tanks[i] = tank;
+    if (tank.volume) this.levels.push({ phase: t.phase, place: tank.volume });
+    else this.fixedVolume[t.phase] += t.held;
+    if (tank.bottomsVolume) this.levels.push({ phase: otherPhase(t.phase), place: tank.bottomsVolume });
+    if (tank.lost) this.totals.push(tank.lost);
+    if (tank.removed) this.totals.push(tank.removed);
   }
 
   /**
@@ -146,7 +169,7 @@ class PlantWriter {
   keepLoops(): void {
     this.#s.tanks.forEach((t, index) => {
       const { volume } = this.#tanks[index];
-      if (volume === null || !isSame(this.#net.flowSource(t.from), { kind: 'tank', index })) return;
+      if (volume === null || !this.#isSetBy(t.from, index)) return;
       const members = this.#loopTrains(t).flatMap((i) =>
         this.#trains[i].vessels.flatMap(({ places: { volumes } }) =>
           volumes.layer === null
@@ -161,15 +184,13 @@ class PlantWriter {
     });
   }
 
-  /** Trains that a tank's stream passes before it comes back. */
+  /** Trains that a tank's stream passes before it comes back: those upstream of what flows in. */
   #loopTrains(t: Tank): number[] {
-    const found: number[] = [];
-    let { user } = this.#net.streams.get(t.to) as Stream;
-    while (user?.kind === 'train' && !found.includes(user.index)) {
-      found.push(user.index);
-      user = (this.#net.streams.get(this.#s.trains[user.index][t.phase].to) as Stream).user;
-    }
-    return found;
+    const trains = [...this.#streams.upstream(t.from)].flatMap((name) => {
+      const { maker } = this.#net.streams.get(name) as Stream;
+      return maker.kind === 'train' || maker.kind === 'draw' ? [maker.index] : [];
+    });
+    return [...new Set(trains)];
   }
 
   /** A pump's flow: as set, while it is in service and its tank is not empty, and nothing on its way is stopped. */
@@ -187,122 +208,131 @@ class PlantWriter {
     return { flow: this.#gated(flow, { kind: 'tank', index }), dry };
   }
 
+  /** Feeds and pumps that set what enters a train of a phase, side feeds included. */
+  #originsOf(t: Train, phase: Phase): readonly Origin[] {
+    const index = this.#s.trains.indexOf(t);
+    const sides = t.stages.flatMap((_, j) => this.#net.sides(index, j, phase));
+    return [t[phase].from, ...sides].flatMap((q) => this.#net.origins(q));
+  }
+
+  /** Trains that a feed or pump sends something into. */
+  #fedBy(from: Origin): Train[] {
+    return this.#s.trains.filter((t) =>
+      PHASES.some((phase) => this.#originsOf(t, phase).some((m) => isSame(m, from))),
+    );
+  }
+
   /** An agitator that also pumps holds back, when it stops, what is on its way into its train. */
-  #gated(flow: Ref, from: Maker): Ref {
+  #gated(flow: Ref, from: Origin): Ref {
     let result = flow;
-    for (const t of this.#s.trains) {
-      const enters = PHASES.some((phase) => isSame(this.#net.flowSource(t[phase].from), from));
-      if (!enters) continue;
-      t.stages.forEach((q, j) => {
-        const path = `${t.name}.${j + 1}`;
-        if (q.mixer.pumps && this.#moving.has(`${path}.mixer`))
-          result = this.#book.signal(product, result, this.#book.running(path));
-      });
-    }
+    for (const path of this.#gates(from))
+      result = this.#book.signal(product, result, this.#book.running(path));
     return result;
+  }
+
+  /** Stages with pumping agitators that somebody stops, downstream of a feed or pump. */
+  #gates(from: Origin): string[] {
+    return this.#fedBy(from).flatMap((t) =>
+      t.stages.flatMap((q, j) => {
+        const path = `${t.name}.${j + 1}`;
+        return q.mixer.pumps && this.#moving.has(`${path}.mixer`) ? [path] : [];
+      }),
+    );
   }
 
   /** Whether something on the way back to a stream's pump or feed makes its flow differ from what that sets. */
   #disturbed(stream: string): boolean {
-    const { maker, phase } = this.#net.streams.get(stream) as Stream;
-    if (maker.kind === 'feed') return false;
-    if (maker.kind === 'tank')
-      return this.#s.tanks[maker.index].flow === null && this.#disturbed(this.#s.tanks[maker.index].from);
-    const t = this.#s.trains[maker.index];
-    const carries = t.stages.some((q) => q.settler.carry !== null || q.settler.band !== null);
-    return t.hydraulics === 'weirs' || carries || this.#disturbed(t[phase].from);
+    return [...this.#streams.upstream(stream)].some((name) => {
+      const { maker } = this.#net.streams.get(name) as Stream;
+      if (maker.kind !== 'train' && maker.kind !== 'draw') return false;
+      const t = this.#s.trains[maker.index];
+      const carries = t.stages.some((q) => q.settler.carry !== null || q.settler.band !== null);
+      return t.hydraulics === 'weirs' || carries;
+    });
   }
 
   #levelMoves(index: number): boolean {
     const t = this.#s.tanks[index];
     if (t.flow === null) return false;
-    return (
-      !isSame(this.#net.flowSource(t.from), { kind: 'tank', index }) ||
-      t.makeUp !== null ||
-      this.#disturbed(t.from)
-    );
+    return !this.#isSetBy(t.from, index) || t.makeUp !== null || this.#disturbed(t.from);
   }
 
   /** Whether a stream can bring something of the other phase. */
   #carries(stream: string): boolean {
     const { maker, phase } = this.#net.streams.get(stream) as Stream;
-    if (maker.kind === 'feed') return false;
-    if (maker.kind === 'tank')
-      return this.#s.tanks[maker.index].passes > 0 && this.#carries(this.#s.tanks[maker.index].from);
-    const { stages, hydraulics } = this.#s.trains[maker.index];
-    const { settler } = stages[phase === 'aqueous' ? stages.length - 1 : 0];
-    return hydraulics === 'weirs' || settler.carry !== null || settler.band !== null;
-  }
-
-  #streamFlow(name: string): StreamFlow {
-    const { maker, phase } = this.#net.streams.get(name) as Stream;
-    if (maker.kind === 'feed') return { flow: this.#feeds[maker.index].flow, carried: null };
-    if (maker.kind === 'train') return this.#trains[maker.index].outlet(phase);
-    const t = this.#s.tanks[maker.index];
-    const flow = t.flow === null ? this.#streamFlow(t.from).flow : this.#pumps[maker.index].flow;
-    return { flow, carried: this.#carriedWith(name) };
-  }
-
-  /** What a stream carries of the other phase. It follows from the vessel it leaves alone, never from its own flow. */
-  #carriedWith(name: string): Ref | null {
-    const { maker, phase } = this.#net.streams.get(name) as Stream;
-    if (maker.kind === 'feed') return null;
-    if (maker.kind === 'train') return this.#trains[maker.index].carried(phase);
-    const t = this.#s.tanks[maker.index];
-    const arrives = t.passes > 0 && this.#carries(t.from) ? this.#carriedWith(t.from) : null;
-    return arrives === null ? null : this.#book.signal(product, arrives, this.#book.number(t.passes));
-  }
-
-  #origin(m: Maker): Ref {
-    return m.kind === 'feed' ? this.#feeds[m.index].flow : this.#pumps[m.index].flow;
+    switch (maker.kind) {
+      case 'feed':
+        return false;
+      case 'tank':
+        return this.#s.tanks[maker.index].passes > 0 && this.#carries(this.#s.tanks[maker.index].from);
+      case 'split':
+      case 'blend':
+        return this.#net.behind(stream).some((q) => this.#carries(q));
+      default: {
+        const t = this.#s.trains[maker.index];
+        const from = maker.kind === 'draw' ? [maker.stage] : ends(route(t, phase));
+        return (
+          t.hydraulics === 'weirs' ||
+          from.some((j) => t.stages[j].settler.carry !== null || t.stages[j].settler.band !== null)
+        );
+      }
+    }
   }
 
   /** A flow moves if somebody changes it, if its pump or an agitator can stop, or if its tank can run dry. */
-  #flowMoves(m: Maker): boolean {
+  #originMoves(m: Origin): boolean {
     const name = m.kind === 'feed' ? this.#s.feeds[m.index].name : this.#s.tanks[m.index].name;
-    const gated = this.#s.trains.some(
-      (t) =>
-        PHASES.some((phase) => isSame(this.#net.flowSource(t[phase].from), m)) &&
-        t.stages.some((q, j) => q.mixer.pumps && this.#moving.has(`${t.name}.${j + 1}.mixer`)),
-    );
     return (
-      gated ||
+      this.#gates(m).length > 0 ||
       this.#moving.has(`${name}.flow`) ||
       this.#moving.has(`${name}.pump`) ||
       (m.kind === 'tank' && this.#levelMoves(m.index))
     );
   }
 
-  /** How many trains the flow of a pump or feed passes. */
-  #sharing(source: Maker, phase: Phase): number {
-    return this.#s.trains.filter((t) => isSame(this.#net.flowSource(t[phase].from), source)).length;
+  /** Whether anything can change the flows of a train in a run. */
+  #trainMoves(t: Train): boolean {
+    const index = this.#s.trains.indexOf(t);
+    return PHASES.some((phase) => {
+      const sides = t.stages.flatMap((_, j) => this.#net.sides(index, j, phase));
+      return (
+        [t[phase].to, t[phase].from, ...sides].some((q) => this.#streams.sharesMove(q)) ||
+        [t[phase].from, ...sides].some((q) => this.#disturbed(q)) ||
+        this.#originsOf(t, phase).some((m) => this.#originMoves(m)) ||
+        t.stages.some((_, j) => this.#moving.has(`${t.name}.${j + 1}.${phase} bypass`))
+      );
+    });
   }
 
-  #openTrain(t: Train, i: number): TrainWriter {
-    const source = forBoth((phase) => this.#net.flowSource(t[phase].from));
-    const chem = chemistry(this.#s, t);
-    const laws: Laws = {
+  #laws(name: string, equilibrium: Train['equilibrium']): Laws {
+    const chem = chemistry(this.#s, equilibrium);
+    return {
       chemistry: chem,
       numbers: chem.numbers.map((q) =>
-        this.#book.ledger.parameter(`${t.name}.${this.#book.name(q.solute)}.${q.name}`, q.unit, q.value),
+        this.#book.ledger.parameter(`${name}.${this.#book.name(q.solute)}.${q.name}`, q.unit, q.value),
       ),
     };
+  }
+
+  #openTrain(t: Train, i: number, start: Entering): TrainWriter {
     const design = this.designs[i];
-    const nominal = forBoth((phase) => this.#origin(source[phase]));
-    const total = this.#book.number(design.nominal.aqueous + design.nominal.organic);
-    const bypassed = t.stages.some((_, j) =>
-      PHASES.some((phase) => this.#moving.has(`${t.name}.${j + 1}.${phase} bypass`)),
+    // How many trains the flow of a pump or feed passes: each may lose its part of it.
+    const part = forBoth(
+      (phase) => 1 / Math.max(1, ...this.#originsOf(t, phase).map((m) => this.#fedBy(m).length)),
     );
     const writer = new TrainWriter(this.#book, t, {
+      index: i,
       design,
-      nominal: { ...nominal, total, part: forBoth((phase) => 1 / this.#sharing(source[phase], phase)) },
-      laws,
-      start: entering(this.#s, this.#net, t),
-      moves:
-        bypassed || PHASES.some((phase) => this.#flowMoves(source[phase]) || this.#disturbed(t[phase].from)),
+      nominal: (j) => ({
+        ...forBoth((phase) => this.#book.total(this.#streams.set.stage(i, phase, j).enters)),
+        total: this.#book.number(design.stages[j].set.aqueous + design.stages[j].set.organic),
+        part,
+      }),
+      laws: this.#laws(t.name, t.equilibrium),
+      start: start.initial(t),
+      moves: this.#trainMoves(t),
       moving: this.#moving,
-      inlet: (phase) => this.#streamFlow(t[phase].from),
-      inletContent: (phase, k) => this.#source(this.#net.streams.get(t[phase].from) as Stream).content(k),
+      streams: () => this.#streams,
     });
     for (const [j, v] of writer.vessels.entries()) {
       const { volumes } = v.places;
@@ -327,42 +357,28 @@ class PlantWriter {
     return forBoth(left);
   }
 
-  #source({ maker, phase }: Stream): Source {
-    if (maker.kind === 'feed') return this.#feeds[maker.index].source();
-    if (maker.kind === 'tank') return this.#tanks[maker.index].source();
-    const train = this.#trains[maker.index];
-    return train.source(phase, phase === 'aqueous' ? train.vessels.length - 1 : 0);
-  }
-
-  #sink(name: string): Sink {
-    const { user, phase } = this.#net.streams.get(name) as Stream;
-    if (user === null) return this.#outlets.get(name) as Sink;
-    if (user.kind === 'tank')
-      return this.#tanks[user.index].sink(() => this.#sink(this.#s.tanks[user.index].to));
-    const train = this.#trains[user.index];
-    return train.sink(phase, train.first(phase), () => this.#sink(this.#s.trains[user.index][phase].to));
+  #source(m: Origin): Source {
+    return m.kind === 'feed' ? this.#feeds[m.index].source() : this.#tanks[m.index].source();
   }
 
   /** Flow and composition of every stream, under its own name; a tank's stream repeats what the tank shows. */
   #showStreams(): void {
-    for (const stream of this.#net.streams.values()) {
-      const source = this.#source(stream);
-      const from = this.#net.flowSource(stream.name);
-      const scale =
-        from.kind === 'feed' ? this.#s.feeds[from.index].flow : (this.#s.tanks[from.index].flow as number);
-      const { flow, carried } = stream.maker.kind === 'train' ? this.#streamFlow(stream.name) : source;
-      this.#book.ledger.output({ path: `${stream.name}.flow`, unit: 'm^3/s', scale }, same, flow);
-      if (carried)
+    const set = setFlows(this.#s, this.#net);
+    for (const { name, phase } of this.#net.streams.values()) {
+      const { flow, carried } = this.#streams.flows.stream(name);
+      const scale = set.stream(name).flow || 1e-6;
+      this.#book.ledger.output({ path: `${name}.flow`, unit: 'm^3/s', scale }, same, this.#book.total(flow));
+      if (!isNothing(carried))
         this.#book.showValue(
-          `${stream.name}.carried ${otherPhase(stream.phase)}`,
+          `${name}.carried ${otherPhase(phase)}`,
           'm^3/s',
           scale * 1e-4,
-          carried,
+          this.#book.total(carried),
         );
-      for (let k = 0; k < this.#book.components(stream.phase); k++)
-        this.#book.show(stream.name, k, source.content(k));
+      for (let k = 0; k < this.#book.components(phase); k++)
+        this.#book.show(name, k, this.#streams.content(name, k));
     }
   }
 }
 
-const isSame = (a: Maker, b: Maker): boolean => a.kind === b.kind && a.index === b.index;
+const isSame = (a: Origin, b: Origin): boolean => a.kind === b.kind && a.index === b.index;

@@ -3,9 +3,10 @@ import type { Network } from '../scenario/network.ts';
 import type { Phase, Scenario } from '../scenario/scenario.ts';
 import type { Named, Place, SteadyRow } from '../solve/system.ts';
 import type { Of } from './flow.ts';
-import { concentration, drained, passed, perVolumeOf, product, same } from './kernels.ts';
+import { concentration, drained, passed, perVolumeOf, product, same, signedSum } from './kernels.ts';
 import { Ledger, type Ref } from './ledger.ts';
 import { speciesConcentration } from './released.ts';
+import { isNothing, just, type Sum } from './sum.ts';
 
 /** Share of a vessel below which it counts as nearly empty. */
 export const NEARLY_EMPTY = 0.01;
@@ -29,11 +30,8 @@ export interface Inlet {
 /** Where a stream goes: its main phase, and what it carries of the other. */
 export type Sink = Of<readonly Inlet[]>;
 
-/** Where a stream comes from: its flow, what it carries of the other phase, and what both take along. */
+/** Where a stream comes from, and what it takes along. */
 export interface Source {
-  readonly phase: Phase;
-  readonly flow: Ref;
-  readonly carried: Ref | null;
   /** Writes the fluxes of all components and volumes. */
   send(to: Sink): void;
   /** How the concentration of component k of the main phase is computed. */
@@ -59,6 +57,8 @@ export class Book {
   readonly initial: number[] = [];
   readonly perVolumeKernel = perVolumeOf;
   #plain = new Map<number, Ref>();
+  #totals = new Map<string, Ref>();
+  #portions = new Map<string, Ref>();
   #running = new Map<string, Ref>();
 
   constructor(s: Scenario, net: Network) {
@@ -99,6 +99,42 @@ export class Book {
     return found;
   }
 
+  /** The value of a sum; equal sums share one. */
+  total({ parts }: Sum): Ref {
+    const list = [...parts.values()];
+    if (list.length === 0) return this.number(0);
+    if (list.length === 1 && list[0].factor === 1) return list[0].ref;
+    const key = [...parts].map(([k, { factor }]) => `${factor} ${k}`).join();
+    const found = this.#totals.get(key);
+    if (found) return found;
+    const plus = list.filter((q) => q.factor > 0);
+    const ordered = [...plus, ...list.filter((q) => q.factor < 0)];
+    const refs = ordered.map(({ ref, factor }) =>
+      Math.abs(factor) === 1 ? ref : this.signal(product, ref, this.number(Math.abs(factor))),
+    );
+    const signs = ordered.map(({ factor }) => (factor > 0 ? '+' : '-')).join('');
+    const made = signs === '+' ? refs[0] : this.signal(signedSum(signs), ...refs);
+    this.#totals.set(key, made);
+    return made;
+  }
+
+  /** A share of a sum. */
+  portion(s: Sum, share: Ref): Sum {
+    if (isNothing(s)) return s;
+    const whole = this.total(s);
+    const key = `${whole.space}${whole.index} ${share.space}${share.index}`;
+    const made = this.#portions.get(key) ?? this.signal(product, whole, share);
+    this.#portions.set(key, made);
+    return just(made);
+  }
+
+  /** A sink for a share of a stream. */
+  portionOf(to: Sink, share: Ref): Sink {
+    const part = (list: readonly Inlet[]): Inlet[] =>
+      list.map((i) => ({ ...i, share: i.share === null ? share : this.signal(product, share, i.share) }));
+    return { aqueous: part(to.aqueous), organic: part(to.organic) };
+  }
+
   /** Places for all components of a part of `volume` m³, of which a share is filled with `content` kg/m³. */
   amounts(
     path: string,
@@ -115,7 +151,8 @@ export class Book {
           unit: 'kg',
           kind: 'amount',
           scale: this.typical[k] * volume * NEARLY_EMPTY,
-          floor: 0,
+          // More base than acid is an event, not an impossible state.
+          floor: k >= this.solutes && this.neutralised(k - this.solutes) ? null : 0,
         },
         filled * volume * this.carrier(k, phase, content),
         steady,
@@ -181,6 +218,11 @@ export class Book {
     this.ledger.output({ path, unit, scale }, same, ref);
   }
 
+  /** Whether any feed uses up a species. */
+  neutralised(species: number): boolean {
+    return this.s.feeds.some((f) => f.content[this.solutes + species] < 0);
+  }
+
   /** Whether the agitator of a stage runs: 1 or 0. */
   running(path: string): Ref {
     const found = this.#running.get(path) ?? this.input({ path: `${path}.mixer`, unit: '', scale: 1 }, 1);
@@ -201,10 +243,11 @@ function typicalContent(s: Scenario): number[] {
   const given = [
     ...s.feeds.map((f) => f.content),
     ...s.tanks.map((t) => t.content),
+    ...s.batches.flatMap((b) => [b.content.aqueous, b.content.organic]),
     ...s.trains.flatMap((t) => [t.initial.aqueous, t.initial.organic].filter((c) => typeof c !== 'string')),
   ];
   return Array.from({ length: n }, (_, k) => {
-    const largest = Math.max(0, ...given.map((c) => c[k] ?? 0));
+    const largest = Math.max(0, ...given.map((c) => Math.abs(c[k] ?? 0)));
     return largest > 0 ? largest : 1;
   });
 }

@@ -61,11 +61,7 @@ export class FeedWriter {
   }
 
   source(): Source {
-    const { phase } = this.#feed;
     return {
-      phase,
-      flow: this.flow,
-      carried: null,
       send: (to) => this.#send(to),
       content: (k) => ({ kernel: same, args: [this.#content[k]] }),
     };

@@ -15,7 +15,8 @@ export interface Chemistry {
   equilibrium(solute: number, side: 'aqueous' | 'organic', at: Local, q: readonly Expr[]): Expr;
 }
 
-export function chemistry(s: Scenario, train: Train): Chemistry {
+/** The laws of a train or a batch, one for each solute that transfers there. */
+export function chemistry(s: Scenario, equilibrium: Train['equilibrium']): Chemistry {
   const names = [...s.solutes, ...s.species].map(formulaName);
   const lookup = (name: string, at: Local): Expr => {
     const i = names.indexOf(name);
@@ -23,8 +24,8 @@ export function chemistry(s: Scenario, train: Train): Chemistry {
   };
   const kinds = lawKinds(lookup);
   const kindOf = (law: Law): LawKind<Law> => kinds[law.law] as LawKind<Law>;
-  const solutes = s.solutes.flatMap((_, i) => (train.equilibrium[i] ? [i] : []));
-  const law = (i: number): Law => train.equilibrium[i] as Law;
+  const solutes = s.solutes.flatMap((_, i) => (equilibrium[i] ? [i] : []));
+  const law = (i: number): Law => equilibrium[i] as Law;
   const numbers = solutes.flatMap((solute) =>
     kindOf(law(solute))
       .numbers(law(solute))

@@ -32,7 +32,7 @@ export function writeTransfer(
   path: string,
   mixer: Mixer,
   laws: Laws,
-  d: StageDesign,
+  d: Pick<StageDesign, 'mixer' | 'entering'>,
   places: Of<readonly Ref[]>,
   held: Held,
 ): void {
@@ -66,7 +66,7 @@ export function writeTransfer(
   );
 }
 
-function rate(book: Book, path: string, mixer: Mixer, d: StageDesign): Ref[] {
+function rate(book: Book, path: string, mixer: Mixer, d: Pick<StageDesign, 'mixer' | 'entering'>): Ref[] {
   const share = d.mixer.organic / (d.mixer.organic + d.mixer.aqueous);
   return [
     book.ledger.parameter(`${path}.mixer.ka`, '1/s', designRate(mixer, d.entering)),

@@ -1,5 +1,8 @@
 import type { Network } from '../scenario/network.ts';
-import type { Band, BandPoint, Phase, Scenario, Stage, Train } from '../scenario/scenario.ts';
+import type { Band, BandPoint, Branch, Phase, Scenario, Stage, Train } from '../scenario/scenario.ts';
+import { numbers } from './algebra.ts';
+import { type FlowAlgebra, Flows } from './flows.ts';
+import { route } from './route.ts';
 import { headFor } from './weir-law.ts';
 
 /** s that the continuous phase of a band stays above what the drops need: short against everything else. */
@@ -10,11 +13,11 @@ export type Both = Readonly<Record<Phase, number>>;
 
 /** A stage at the flows of time zero, m³ and m³/s: hold-ups, k·a, crests and bands are stated for these. */
 export interface StageDesign {
-  /** Everything that enters the mixer, by phase: neighbours, what they carry over, recycle. */
+  /** What feeds and pumps set as entering flow. */
+  readonly set: Both;
+  /** Everything that enters the mixer, by phase: neighbours, what they carry over, recycle, flow back. */
   readonly entering: Both;
   readonly recycled: Both;
-  /** Carried out with the stream of the other phase: `carried.organic` leaves with the aqueous. */
-  readonly carried: Both;
   /** Main flow out of the settler. */
   readonly leaving: Both;
   readonly mixer: Both;
@@ -26,72 +29,92 @@ export interface StageDesign {
 }
 
 export interface TrainDesign {
-  /** Flow that the pumps and feeds behind each inlet set. */
-  readonly nominal: Both;
-  /** Main inlet flow, and what the other stream carries in of this phase. */
-  readonly inlet: Both;
-  readonly carriedIn: Both;
   readonly stages: readonly StageDesign[];
+}
+
+/** Flows as feeds and pumps set them, m³/s; by default at time zero. */
+export function setFlows(
+  s: Scenario,
+  net: Network,
+  origin: FlowAlgebra<number>['origin'] = (m) =>
+    m.kind === 'feed' ? s.feeds[m.index].flow : (s.tanks[m.index].flow as number),
+): Flows<number> {
+  return new Flows(s, net, {
+    ...numbers,
+    origin,
+    take: ({ take }, whole) => ('share' in take ? whole * take.share : Math.min(take.flow, whole)),
+    rest: (whole, takes) => whole - numbers.add(...takes),
+  });
 }
 
 /** Design of every train; streams between trains bring on what they carry. */
 export function designs(s: Scenario, net: Network): TrainDesign[] {
-  const nominal = (stream: string): number => {
-    const m = net.flowSource(stream);
-    return m.kind === 'feed' ? s.feeds[m.index].flow : (s.tanks[m.index].flow as number);
+  const set = setFlows(s, net);
+  const setAt = (i: number, j: number): Both => ({
+    aqueous: set.stage(i, 'aqueous', j).enters,
+    organic: set.stage(i, 'organic', j).enters,
+  });
+  // A branch takes its share of what is carried as well, and of what carry-over adds to its stream.
+  const share = (b: Branch): number => {
+    const whole = set.whole(b.name);
+    return whole > 0 ? set.stream(b.name).flow / whole : 0;
   };
-  const nominals = s.trains.map(
-    (t): Both => ({ aqueous: nominal(t.aqueous.from), organic: nominal(t.organic.from) }),
+  const flows = new Flows(
+    s,
+    net,
+    {
+      ...numbers,
+      origin: (m) => (m.kind === 'feed' ? s.feeds[m.index].flow : (s.tanks[m.index].flow as number)),
+      take: (b, whole) => whole * share(b),
+      rest: (whole, takes) => whole - numbers.add(...takes),
+    },
+    { carried: (i, j) => carriedBy(s.trains[i].stages[j], setAt(i, j)) },
   );
-  const carry = s.trains.map((t, i) => t.stages.map((q) => carriedBy(q, nominals[i])));
-  /** What a stream carries of the other phase. */
-  const carriedWith = (stream: string): number => {
-    const { maker, phase } = net.streams.get(stream) as {
-      maker: { kind: string; index: number };
-      phase: Phase;
-    };
-    if (maker.kind === 'train') {
-      const last = carry[maker.index][phase === 'aqueous' ? carry[maker.index].length - 1 : 0];
-      return phase === 'aqueous' ? last.organic : last.aqueous;
-    }
-    if (maker.kind === 'tank') {
-      const tank = s.tanks[maker.index];
-      return tank.passes * carriedWith(tank.from);
-    }
-    return 0;
-  };
-  const main = (stream: string): number => {
-    const { maker, phase } = net.streams.get(stream) as {
-      maker: { kind: string; index: number };
-      phase: Phase;
-    };
-    if (maker.kind !== 'train') return nominal(stream);
-    const t = s.trains[maker.index];
-    const other: Phase = phase === 'aqueous' ? 'organic' : 'aqueous';
-    const out = carry[maker.index][phase === 'aqueous' ? 0 : t.stages.length - 1][phase];
-    return main(t[phase].from) + carriedWith(t[other].from) - out;
-  };
   const { density } = s.properties;
   const ratio =
     density.aqueous !== null && density.organic !== null ? density.organic / density.aqueous : Number.NaN;
-  return s.trains.map((t, i) => {
-    const inlet = { aqueous: main(t.aqueous.from), organic: main(t.organic.from) };
-    const carriedIn = { aqueous: carriedWith(t.organic.from), organic: carriedWith(t.aqueous.from) };
-    return {
-      nominal: nominals[i],
-      inlet,
-      carriedIn,
-      stages: t.stages.map((q, j) => stageDesign(t, q, j, carry[i], inlet, carriedIn, nominals[i], ratio)),
-    };
-  });
+  return s.trains.map((t, i) => ({
+    stages: t.stages.map((q, j) => stageDesign(t, q, setAt(i, j), ratio, flowsInto(t, i, j, flows))),
+  }));
+}
+
+interface StageFlows {
+  readonly enters: Both;
+  readonly leaves: Both;
+}
+
+/** What enters a mixer, and what leaves the stage as main flow. */
+function flowsInto(t: Train, i: number, j: number, flows: Flows<number>): StageFlows {
+  const enters = (phase: Phase): number => {
+    const at = flows.stage(i, phase, j);
+    return at.enters + at.carriedIn + flowBack(t, phase, j, (k) => flows.stage(i, phase, k).onward.flow);
+  };
+  const leaves = (phase: Phase): number => flows.stage(i, phase, j).leaves.flow;
+  return {
+    enters: { aqueous: enters('aqueous'), organic: enters('organic') },
+    leaves: { aqueous: leaves('aqueous'), organic: leaves('organic') },
+  };
+}
+
+/**
+ * Back-flow model (Sleicher, AIChE J. 5, 145 (1959); Miyauchi and Vermeulen, Ind. Eng. Chem. Fundam. 2, 304 (1963);
+ * from memory): between neighbours that exchange a net flow q, β·q goes back and (1 + β)·q onward. Into stage j come β
+ * times the net flows that pass on its two sides.
+ */
+export function flowBack(t: Train, phase: Phase, j: number, onward: (stage: number) => number): number {
+  const beta = t.backFlow[phase];
+  if (beta === 0) return 0;
+  const r = route(t, phase);
+  const before = r.before(j);
+  return beta * ((before === null ? 0 : onward(before)) + (r.after(j) === null ? 0 : onward(j)));
 }
 
 /** Entrained flows of a stage at design throughput. */
-function carriedBy(q: Stage, nominal: Both): Both {
+function carriedBy(q: Stage, set: Both): Both {
   const c = q.settler.carry;
   return {
-    organic: (c?.organicInAqueous ?? 0) * nominal.aqueous,
-    aqueous: (c?.aqueousInOrganic ?? 0) * nominal.organic,
+    organic: (c?.organicInAqueous ?? 0) * set.aqueous,
+    aqueous: (c?.aqueousInOrganic ?? 0) * set.organic,
   };
 }
 
@@ -106,44 +129,25 @@ export function recycled(t: Train, nominal: Both): Both {
   };
 }
 
-function stageDesign(
-  t: Train,
-  q: Stage,
-  j: number,
-  carry: readonly Both[],
-  inlet: Both,
-  carriedIn: Both,
-  nominal: Both,
-  ratio: number,
-): StageDesign {
-  const n = t.stages.length;
-  const b = (i: number, phase: Phase): number =>
-    i < 0
-      ? carriedIn.organic * (phase === 'organic' ? 1 : 0)
-      : i >= n
-        ? carriedIn.aqueous * (phase === 'aqueous' ? 1 : 0)
-        : carry[i][phase];
-  const forward = (i: number): number => inlet.aqueous + b(i + 1, 'aqueous') - b(0, 'aqueous');
-  const backward = (i: number): number => inlet.organic + b(i - 1, 'organic') - b(n - 1, 'organic');
-  const back = recycled(t, nominal);
+function stageDesign(t: Train, q: Stage, set: Both, ratio: number, flows: StageFlows): StageDesign {
+  const back = recycled(t, set);
   const entering = {
-    aqueous: forward(j - 1) + b(j + 1, 'aqueous') + back.aqueous,
-    organic: backward(j + 1) + b(j - 1, 'organic') + back.organic,
+    aqueous: flows.enters.aqueous + back.aqueous,
+    organic: flows.enters.organic + back.organic,
   };
-  const leaving = { aqueous: forward(j), organic: backward(j) };
-  const share = entering.organic / (entering.aqueous + entering.organic);
+  const share = q.mixer.organicShare ?? entering.organic / (entering.aqueous + entering.organic);
   const mixer = { organic: q.mixer.volume * share, aqueous: q.mixer.volume * (1 - share) };
   const band = bandVolumes(q, entering);
   const layer = { aqueous: q.settler.aqueous - band.aqueous, organic: q.settler.organic - band.organic };
   return {
+    set,
     entering,
     recycled: back,
-    carried: carry[j],
-    leaving,
+    leaving: flows.leaves,
     mixer,
     band,
     layer,
-    crest: crests(t, q, leaving, ratio),
+    crest: crests(t, q, flows.leaves, ratio),
   };
 }
 

@@ -1,7 +1,7 @@
 import { usualInversion } from '../scenario/plain.ts';
 import type { Phase } from '../scenario/scenario.ts';
 import type { Plant } from './assemble.ts';
-import { recycled } from './design.ts';
+import { setFlows } from './design.ts';
 
 /** What a train looks like at its design flows; SI. Ranges over its stages where they differ: [least, most]. */
 export interface TrainFacts {
@@ -19,33 +19,33 @@ export interface TrainFacts {
 
 export function trainFacts(plant: Plant): TrainFacts[] {
   const { scenario: s, network } = plant;
-  const flowOf = (stream: string): number => {
-    const source = network.flowSource(stream);
-    return source.kind === 'feed' ? s.feeds[source.index].flow : (s.tanks[source.index].flow as number);
-  };
-  return s.trains.map((t) => {
-    const aqueous = flowOf(t.aqueous.from);
-    const organic = flowOf(t.organic.from);
-    const back = recycled(t, { aqueous, organic });
-    const both = aqueous + organic + back.aqueous + back.organic;
+  const set = setFlows(s, network);
+  return s.trains.map((t, i) => {
+    const { stages } = plant.designs[i];
+    const aqueous = set.stream(t.aqueous.from).flow;
+    const organic = set.stream(t.organic.from).flow;
+    const both = stages.map((d) => d.set.aqueous + d.set.organic + d.recycled.aqueous + d.recycled.organic);
     const range = (list: number[]): [number, number] => [Math.min(...list), Math.max(...list)];
-    const areas = t.stages.flatMap((q) => (q.settler.area === null ? [] : [q.settler.area]));
-    const share = (organic + back.organic) / both;
-    const sum = (f: (i: number) => number): number => t.stages.reduce((n, _, i) => n + f(i), 0);
+    const loads = t.stages.flatMap((q, j) => (q.settler.area === null ? [] : [both[j] / q.settler.area]));
+    const held = (phase: Phase): number =>
+      t.stages.reduce((n, q, j) => n + stages[j].mixer[phase] + q.settler[phase], 0);
     return {
       train: t.name,
       stages: t.stages.length,
       aqueous,
       organic,
       ratio: organic / aqueous,
-      mixerResidence: range(t.stages.map((q) => q.mixer.volume / both)),
-      specificFlow: areas.length === t.stages.length ? range(areas.map((a) => both / a)) : null,
-      held: {
-        aqueous: sum((i) => t.stages[i].mixer.volume * (1 - share) + t.stages[i].settler.aqueous),
-        organic: sum((i) => t.stages[i].mixer.volume * share + t.stages[i].settler.organic),
-      },
+      mixerResidence: range(t.stages.map((q, j) => q.mixer.volume / both[j])),
+      specificFlow: loads.length === t.stages.length ? range(loads) : null,
+      held: { aqueous: held('aqueous'), organic: held('organic') },
     };
   });
+}
+
+/** Flow of every stream as feeds and pumps set it, m³/s. */
+export function streamFlows({ scenario, network }: Plant): Map<string, number> {
+  const set = setFlows(scenario, network);
+  return new Map([...network.streams.keys()].map((name) => [name, set.stream(name).flow]));
 }
 
 /** Mixers without inversion of their own whose continuous phase is, at design, less than the usual limits ask for. */

@@ -1,5 +1,4 @@
 import type { Phase } from '../scenario/scenario.ts';
-import type { Ref } from './ledger.ts';
 
 export type Of<T> = Readonly<Record<Phase, T>>;
 export const PHASES = ['aqueous', 'organic'] as const;
@@ -8,9 +7,3 @@ export const forBoth = <T>(f: (phase: Phase) => T): Of<T> => ({
   aqueous: f('aqueous'),
   organic: f('organic'),
 });
-
-/** A stream on its way: its main flow, and what it carries of the other phase. */
-export interface StreamFlow {
-  readonly flow: Ref;
-  readonly carried: Ref | null;
-}

@@ -32,7 +32,7 @@ export function isotherm(
   entering: readonly number[],
 ): (ca: number) => number {
   const { scenario: s } = plant;
-  const chem = chemistry(s, train);
+  const chem = chemistry(s, train.equilibrium);
   const species = s.species.map((_, k) => k);
   const f = plain(
     kernel(
@@ -73,7 +73,7 @@ export function equilibriumAt(
   side: Phase,
 ): (aqueous: readonly number[], organic: readonly number[]) => number {
   const { scenario: s } = plant;
-  const chem = chemistry(s, train);
+  const chem = chemistry(s, train.equilibrium);
   const n = s.solutes.length;
   const f = plain(
     kernel(

@@ -25,23 +25,53 @@ export const rest = kernel('rest', ['share'], (a) => sub(1, a));
 export const perVolumeOf = kernel('per volume', ['volume', 'least'], perVolume);
 export const concentration = kernel('concentration', ['amount', 'per volume'], (m, i) => mul(m, i));
 
-const sums = new Map<number, Kernel>();
+const signed = new Map<string, Kernel>();
 
-/** a + b + …, of n values. */
-export function sum(n: number): Kernel {
-  const found = sums.get(n);
+/** Sum of values, each with its sign: '+-+' is a − b + c. */
+export function signedSum(signs: string): Kernel {
+  const found = signed.get(signs);
   if (found) return found;
   const made = kernel(
-    `sum of ${n}`,
-    Array.from({ length: n }, (_, i) => `v${i}`),
-    (...args) => add(...args),
+    `sum ${signs}`,
+    Array.from(signs, (_, i) => `v${i}`),
+    (first, ...rest) =>
+      rest.reduce(
+        (s, v, i) => (signs[i + 1] === '+' ? add(s, v) : sub(s, v)),
+        signs[0] === '+' ? first : mul(-1, first),
+      ),
   );
-  sums.set(n, made);
+  signed.set(signs, made);
   return made;
 }
 
-/** a + b − c: a main flow with what is carried in and out. */
-export const balance = kernel('balance', ['flow', 'in', 'out'], (a, b, c) => sub(add(a, b), c));
+/** a + b + …, of n values. */
+export const sum = (n: number): Kernel => signedSum('+'.repeat(n));
+
+/** Least flow that counts in a quotient, m³/s. */
+const NO_FLOW = 1e-15;
+
+/** Share that a flow q is of a stream: all of it where there is less. */
+export const shareOfFlow = kernel('share of flow', ['taken', 'whole'], (q, whole) =>
+  min(div(q, max(whole, NO_FLOW)), 1),
+);
+
+/** A share, where others have left that much. */
+export const whereLeft = kernel('where left', ['share', 'left'], (share, left) => min(share, left));
+
+const means = new Map<number, Kernel>();
+
+/** Σ q·c/Σ q of n streams; without flow their plain mean. */
+export function meanOf(n: number): Kernel {
+  const found = means.get(n);
+  if (found) return found;
+  const names = Array.from({ length: n }, (_, i) => [`flow ${i}`, `content ${i}`]).flat();
+  const made = kernel(`mean of ${n}`, names, (...args) => {
+    const q = Array.from({ length: n }, (_, i) => add(args[2 * i], 1e-3 * NO_FLOW));
+    return div(add(...q.map((v, i) => mul(v, args[2 * i + 1]))), add(...q));
+  });
+  means.set(n, made);
+  return made;
+}
 
 /** Organic volume in a full mixer whose flows do not move: V·O/(A + O). */
 export const steadyHoldup = kernel('steady hold-up', ['aqueous in', 'organic in', 'volume'], (a, o, V) =>

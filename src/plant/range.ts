@@ -13,13 +13,13 @@ const above = kernel('above', ['amount', 'volume', 'least', 'end'], (m, V, least
 /** Beyond the last measured point of an isotherm the figures rest on its end secant: said, with the time. */
 export function writeRangeGuards(
   book: Book,
-  train: Train,
+  equilibrium: Train['equilibrium'],
   path: string,
   places: Of<readonly Ref[]>,
   volume: Of<Ref>,
   least: Ref,
 ): void {
-  train.equilibrium.forEach((law, i) => {
+  equilibrium.forEach((law, i) => {
     if (law?.law !== 'table') return;
     for (const phase of ['aqueous', 'organic'] as const) {
       const end = law[phase][law[phase].length - 1];
@@ -73,13 +73,15 @@ export function writeSpeciesGuards(
 ): void {
   book.s.species.forEach((species, k) => {
     const bound = book.releasing(k, places);
-    if (bound.length === 0) return;
+    if (bound.length === 0 && !book.neutralised(k)) return;
     const component = book.solutes + k;
     book.ledger.guard(
       {
         name: `${path}.mixer ${species} used up`,
         direction: -1,
-        message: `${species} in ${path}.mixer is used up: the laws strip more than it can carry, and what follows is not to be trusted`,
+        message: `${species} in ${path}.mixer is used up: ${
+          book.neutralised(k) ? 'more base is dosed or stripped' : 'the laws strip more'
+        } than it can carry, and what follows is not to be trusted`,
         action: 'report',
       },
       remains(bound.length / 2),

@@ -11,7 +11,6 @@ interface Shown {
   readonly mixer: Of<Ref>;
   readonly layer: Of<Ref>;
   readonly last: Of<Part>;
-  readonly rate: Ref;
   readonly carried: Of<Ref | null>;
 }
 

@@ -73,7 +73,10 @@ export function stagePlaces(
     volumes: {
       mixer: {
         aqueous: weirs ? volume('mixer', 'aqueous', d.mixer.aqueous, stage.mixer.volume) : null,
-        organic: weirs || moves ? volume('mixer', 'organic', d.mixer.organic, stage.mixer.volume) : null,
+        organic:
+          weirs || (moves && stage.settler.parts > 0)
+            ? volume('mixer', 'organic', d.mixer.organic, stage.mixer.volume)
+            : null,
       },
       band: hasBand ? forBoth((phase) => volume('band', phase, d.band[phase], size(d.band))) : null,
       layer: weirs ? forBoth((phase) => volume('settler', phase, d.layer[phase], d.layer[phase])) : null,

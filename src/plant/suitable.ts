@@ -1,13 +1,16 @@
 import { formulaName } from '../scenario/names.ts';
-import type { Maker, Network } from '../scenario/network.ts';
+import type { Network } from '../scenario/network.ts';
 import { type Problem, Refusal } from '../scenario/refusal.ts';
-import type { Law, Phase, Scenario, Train } from '../scenario/scenario.ts';
+import type { Branch, Law, Path, Phase, Scenario, Train } from '../scenario/scenario.ts';
+import { type Range, ranges } from './algebra.ts';
 import { NEARLY_EMPTY } from './book.ts';
 import { track } from './course.ts';
-import { recycled, type TrainDesign } from './design.ts';
-import { upstream } from './entering.ts';
+import { recycled, setFlows, type TrainDesign } from './design.ts';
+import { Entering } from './entering.ts';
 import { forBoth, type Of, otherPhase, PHASES } from './flow.ts';
+import { Flows } from './flows.ts';
 import { asWritten } from './laws/formula.ts';
+import { setByPump } from './symbols.ts';
 import { headFor, NEAR_CREST } from './weir-law.ts';
 
 type Exchange = Extract<Law, { law: 'exchange' }>;
@@ -26,13 +29,22 @@ const AT_ZERO = 1e-9;
  * @throws Refusal naming all of it.
  */
 export function suitable(s: Scenario, net: Network, plans: readonly TrainDesign[]): void {
-  const problems = s.trains.flatMap((t, i) => [
-    ...fittingBands(t, plans[i]),
-    ...risingFormulas(s, net, t),
-    ...sameExtractant(s, t),
-    ...roomForWeirs(t, plans[i]),
-    ...roomySettlers(s, net, t),
-  ]);
+  const flows = flowRanges(s, net);
+  const start = new Entering(s, net);
+  const problems = [
+    ...enoughToTake(s, net),
+    ...s.trains.flatMap((t, i) => [
+      ...fittingBands(t, plans[i]),
+      ...risingFormulas(s, ['trains', t.name], t.equilibrium, start.stream(t.aqueous.from)),
+      ...sameExtractant(s, ['trains', t.name], t.equilibrium),
+      ...roomForWeirs(t, plans[i]),
+      ...roomySettlers(s, t, plans[i], (phase, j) => flows.stage(i, phase, j).enters),
+    ]),
+    ...s.batches.flatMap((b) => [
+      ...risingFormulas(s, ['batches', b.name], b.equilibrium, b.content.aqueous),
+      ...sameExtractant(s, ['batches', b.name], b.equilibrium),
+    ]),
+  ];
   if (problems.length > 0) throw new Refusal(problems);
 }
 
@@ -55,16 +67,20 @@ function largestFeed(s: Scenario, solute: number): number {
 }
 
 /** f(0) = 0 and f′ > 0 on 0 … 2 × the largest feed, other components as they enter the train. */
-function risingFormulas(s: Scenario, net: Network, t: Train): Problem[] {
+function risingFormulas(
+  s: Scenario,
+  owner: Path,
+  equilibrium: Train['equilibrium'],
+  entering: readonly number[],
+): Problem[] {
   const names = [...s.solutes, ...s.species].map(formulaName);
-  const entering = upstream(s, net, t.aqueous.from, 'aqueous');
-  return t.equilibrium.flatMap((law, i): Problem[] => {
+  return equilibrium.flatMap((law, i): Problem[] => {
     if (law?.law !== 'formula') return [];
     const f = asWritten(law);
     const at = f.others.map((name) => entering[names.indexOf(name)]);
     const reach = 2 * largestFeed(s, i);
     const complain = (message: string): Problem[] => [
-      { path: ['trains', t.name, 'equilibrium', s.solutes[i], 'organic'], message },
+      { path: [...owner, 'equilibrium', s.solutes[i], 'organic'], message },
     ];
     const zero = f.value(0, at);
     if (!(Math.abs(zero) <= AT_ZERO * Math.abs(f.value(reach / 2, at))))
@@ -82,14 +98,14 @@ function risingFormulas(s: Scenario, net: Network, t: Train): Problem[] {
 }
 
 /** The free extractant is what all solutes together leave of it, so there is one total. */
-function sameExtractant(s: Scenario, t: Train): Problem[] {
-  const first = t.equilibrium.findIndex((law) => law?.law === 'exchange');
-  return t.equilibrium.flatMap((law, i): Problem[] => {
+function sameExtractant(s: Scenario, owner: Path, equilibrium: Train['equilibrium']): Problem[] {
+  const first = equilibrium.findIndex((law) => law?.law === 'exchange');
+  return equilibrium.flatMap((law, i): Problem[] => {
     if (law?.law !== 'exchange') return [];
-    const { extractant } = t.equilibrium[first] as Exchange;
+    const { extractant } = equilibrium[first] as Exchange;
     if (law.extractant === extractant) return [];
     const message = `'${s.solutes[first]}' and '${s.solutes[i]}' share one extractant, but ${show(extractant)} and ${show(law.extractant)} g/L are stated`;
-    return [{ path: ['trains', t.name, 'equilibrium', s.solutes[i], 'extractant'], message }];
+    return [{ path: [...owner, 'equilibrium', s.solutes[i], 'extractant'], message }];
   });
 }
 
@@ -116,15 +132,21 @@ function fittingBands(t: Train, plan: TrainDesign): Problem[] {
  * that range. What it takes up of a phase beyond its design hold-up comes out of the settler's layer, which must hold
  * that much.
  */
-function roomySettlers(s: Scenario, net: Network, t: Train): Problem[] {
+function roomySettlers(
+  s: Scenario,
+  t: Train,
+  plan: TrainDesign,
+  enters: (phase: Phase, j: number) => Range,
+): Problem[] {
   // With weirs the levels give way, and a lost interface is an event.
   if (t.hydraulics === 'weirs') return [];
-  const range = forBoth((phase) => flowRange(s, net, net.flowSource(t[phase].from)));
   return PHASES.flatMap((phase): Problem[] => {
     const other = otherPhase(phase);
     const ledPast = (which: Phase, j: number): boolean =>
       s.upsets.some((u) => u.quantity === `${t.name}.${j + 1}.${which} bypass`);
     for (const [j, { mixer, settler }] of t.stages.entries()) {
+      if (settler.parts === 0) continue;
+      const range = forBoth((which) => ({ ...enters(which, j), design: plan.stages[j].set[which] }));
       const share = (own: number, against: number): number => {
         const back = recycled(t, { aqueous: 0, organic: 0, [phase]: own, [other]: against } as Of<number>);
         return (own + back[phase]) / (own + back[phase] + against + back[other]);
@@ -178,19 +200,65 @@ function roomForWeirs(t: Train, plan: TrainDesign): Problem[] {
   return [];
 }
 
-function flowRange(s: Scenario, net: Network, m: Maker): { design: number; least: number; most: number } {
-  const { name, flow } = m.kind === 'feed' ? s.feeds[m.index] : s.tanks[m.index];
-  const design = flow as number;
-  const { least, most } = extremes(s, `${name}.flow`, design);
-  const stops = runsDry(s, net, m) || s.upsets.some((u) => u.quantity === `${name}.pump`);
-  return { design, least: stops ? 0 : least, most };
+/** Between which bounds every flow stays, all changes taken together. */
+function flowRanges(s: Scenario, net: Network): Flows<Range> {
+  const isOwn = setByPump(s, net);
+  const shareOf = (b: Branch): Range =>
+    'share' in b.take ? extremes(s, `${b.name}.share`, b.take.share) : { least: 0, most: 1 };
+  return new Flows<Range>(s, net, {
+    ...ranges,
+    origin: (m) => {
+      const { name, flow } = m.kind === 'feed' ? s.feeds[m.index] : s.tanks[m.index];
+      const { least, most } = extremes(s, `${name}.flow`, flow as number);
+      // A tank that is filled by one flow and emptied by another can run dry, and then its pump stops.
+      const runsDry = m.kind === 'tank' && !isOwn(s.tanks[m.index].from, m.index);
+      const stops = runsDry || s.upsets.some((u) => u.quantity === `${name}.pump`);
+      return { least: stops ? 0 : least, most };
+    },
+    take: (b, whole) => {
+      if ('share' in b.take) {
+        const share = shareOf(b);
+        return { least: whole.least * share.least, most: whole.most * Math.min(1, share.most) };
+      }
+      const q = extremes(s, `${b.name}.flow`, b.take.flow);
+      return { least: Math.min(q.least, whole.least), most: Math.min(q.most, whole.most) };
+    },
+    rest: (whole, takes, branches) => {
+      if (branches.some((b) => 'flow' in b.take)) return ranges.sub(whole, ranges.add(...takes));
+      const taken = ranges.add(...branches.map(shareOf));
+      return {
+        least: whole.least * Math.max(0, 1 - taken.most),
+        most: whole.most * Math.max(0, 1 - taken.least),
+      };
+    },
+  });
 }
 
-/** A tank that is filled by one flow and emptied by another can run dry, and then its pump stops. */
-function runsDry(s: Scenario, net: Network, m: Maker): boolean {
-  if (m.kind !== 'tank') return false;
-  const filledBy = net.flowSource(s.tanks[m.index].from);
-  return filledBy.kind !== m.kind || filledBy.index !== m.index;
+/** At the flows of time zero there must be what branches and draws are to take. */
+function enoughToTake(s: Scenario, net: Network): Problem[] {
+  const set = setFlows(s, net);
+  const short = (branches: readonly Branch[], path: (name: string) => Path): Problem[] => {
+    if (branches.length === 0) return [];
+    const whole = set.whole(branches[0].name);
+    const taken = branches.reduce((n, b) => n + ('share' in b.take ? b.take.share * whole : b.take.flow), 0);
+    // A stream that is used up further upstream has its complaint there.
+    if (taken < whole || whole <= 0) return [];
+    const message = `takes ${show(3600 * taken)} m^3/h${branches.length > 1 ? ' with the others' : ''} of a stream of ${show(3600 * whole)} m^3/h, which leaves nothing`;
+    return [{ path: path(branches[branches.length - 1].name), message }];
+  };
+  return [
+    ...s.splits.flatMap((q) => short(q.branches, (name) => ['splits', q.stream, name])),
+    ...s.trains.flatMap((t) =>
+      t.stages.flatMap((stage, j) =>
+        PHASES.flatMap((phase) =>
+          short(
+            stage.draws.filter((d) => d.phase === phase),
+            (name) => ['trains', t.name, `stage ${j + 1}`, 'draws', name],
+          ),
+        ),
+      ),
+    ),
+  ];
 }
 
 const show = (v: number): string => String(Number(v.toPrecision(4)));

@@ -3,9 +3,10 @@ import { kernel } from '../math/kernel.ts';
 import type { Tank } from '../scenario/scenario.ts';
 import { type Book, NEARLY_EMPTY, type Part, type Sink, type Source } from './book.ts';
 import { type Totals, totals } from './boundary.ts';
-import { otherPhase, type StreamFlow } from './flow.ts';
+import { otherPhase } from './flow.ts';
 import { drained, passed, perVolumeOf, product, rest } from './kernels.ts';
 import type { Ref } from './ledger.ts';
+import { writeRemovals } from './removal.ts';
 
 /** A pump that ran its tank empty starts again when the tank holds this share of its volume. */
 const RESTART = 0.05;
@@ -24,6 +25,8 @@ export class TankWriter {
   readonly volume: Ref | null;
   readonly bottomsVolume: Ref | null;
   readonly lost: Totals | null;
+  /** What is taken out of the tank. */
+  readonly removed: Totals | null;
   readonly flow: Ref;
   readonly #book: Book;
   readonly #t: Tank;
@@ -73,6 +76,7 @@ export class TankWriter {
     if (this.bottomsVolume) book.showValue(`${t.name}.bottoms`, 'm^3', t.volume * 0.01, this.bottomsVolume);
     this.#passes = carries && t.passes > 0 ? book.number(t.passes) : null;
     this.lost = levelMoves ? totals(book, `${t.name} overflow`, t.phase, 'out') : null;
+    this.removed = writeRemovals(book, t, this.#part, V, flow);
   }
 
   /** Where what enters goes; `onward` is where the tank's own stream goes. */
@@ -83,10 +87,7 @@ export class TankWriter {
     if (this.#passes === null) return { [this.#t.phase]: main, [other]: bottoms } as unknown as Sink;
     const share = this.#passes;
     const stays = this.#book.signal(rest, share);
-    const past = onward()[other].map((i) => ({
-      ...i,
-      share: i.share === null ? share : this.#book.signal(product, share, i.share),
-    }));
+    const past = this.#book.portionOf(onward(), share)[other];
     return {
       [this.#t.phase]: main,
       [other]: [...bottoms.map((i) => ({ ...i, share: stays })), ...past],
@@ -95,21 +96,18 @@ export class TankWriter {
 
   source(): Source {
     return {
-      phase: this.#t.phase,
-      flow: this.flow,
-      carried: null,
       send: (to) => this.#book.send(this.#part, this.flow, this.volume, to),
       content: (k) => this.#book.contentOf(this.#part, k),
     };
   }
 
   /** Running dry, restart, overflow and its end: each is an event that is located and reported. */
-  events(inflow: StreamFlow, makeUp: Ref | null): void {
+  events(inflow: Ref, makeUp: Ref | null): void {
     if (this.volume === null || this.lost === null || this.#dry === null) return;
     const book = this.#book;
     const { ledger } = book;
     const t = this.#t;
-    const inlet = makeUp === null ? inflow.flow : book.signal(both, inflow.flow, makeUp);
+    const inlet = makeUp === null ? inflow : book.signal(both, inflow, makeUp);
     const overflowing = book.input({ path: `${t.name}.overflowing`, unit: '', scale: 1 }, 0);
     const spill = book.signal(spilling, overflowing, inlet, this.flow);
     const rate = book.signal(product, spill, this.#part.perVolume);

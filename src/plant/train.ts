@@ -1,12 +1,12 @@
 import type { Phase, Train } from '../scenario/scenario.ts';
-import { type Book, type Content, NEARLY_EMPTY, type Part, type Sink, type Source } from './book.ts';
+import { type Book, type Content, NEARLY_EMPTY, type Part, type Sink } from './book.ts';
 import type { Chemistry } from './chemistry.ts';
 import { writeTransfer } from './contact.ts';
 import type { TrainDesign } from './design.ts';
-import { forBoth, type Of, otherPhase, PHASES, type StreamFlow } from './flow.ts';
+import { forBoth, type Of, otherPhase, PHASES } from './flow.ts';
+import type { Flows } from './flows.ts';
 import {
   available,
-  balance,
   chosen,
   difference,
   drained,
@@ -22,8 +22,11 @@ import {
 import { type Feeder, writeLayer } from './layer.ts';
 import type { Ref } from './ledger.ts';
 import { writeRangeGuards, writeSpeciesGuards } from './range.ts';
+import { route } from './route.ts';
 import { writeStageOutputs } from './stage-outputs.ts';
 import { stagePlaces } from './stage-places.ts';
+import type { Streams } from './streams.ts';
+import { just, type Sum, sums } from './sum.ts';
 import { carriedOut, clear, type Nominal, openVessel, shutByBypass, type Vessel } from './vessel.ts';
 
 /** The laws of the train, and where their numbers stand. */
@@ -34,49 +37,47 @@ export interface Laws {
 
 /** What a train must know of the rest of the plant. */
 export interface TrainContext {
+  readonly index: number;
   readonly design: TrainDesign;
-  readonly nominal: Nominal;
+  /** Flows into a stage as feeds and pumps set them. */
+  nominal(j: number): Nominal;
   readonly laws: Laws;
   readonly start: Of<readonly number[]>;
   /** Whether anything can change its flows in a run. */
   readonly moves: boolean;
   /** Paths of inputs that change. */
   readonly moving: ReadonlySet<string>;
-  /** Streams that enter, main flow and what they carry. Asked for only when all trains have their places. */
-  inlet(phase: Phase): StreamFlow;
-  /** Concentration of component k in the stream that enters. Asked for only when all trains run. */
-  inletContent(phase: Phase, k: number): Content;
-}
-
-/** The last part of each layer, once the flows are known: what leaves. */
-interface Running {
-  readonly last: Of<Part>;
+  /** Flows and streams of the whole plant. Asked only when all trains have their places. */
+  streams(): Streams;
 }
 
 /**
- * A counter-current train. It is written in the order in which things depend on each other: places, volumes and
- * bands (`open`), streams out (`outlet`), mixers and layers (`run`), and last the fluxes between stages (`join`).
+ * A train of stages. It is written in the order in which things depend on each other: places, volumes and bands, and
+ * what they send with the other phase (the constructor), mixers and layers (`run`), and last the fluxes between
+ * stages (`join`). Where the phases go stands in `route.ts`, how much of them flows in `flows.ts`.
  */
 export class TrainWriter {
   readonly vessels: readonly Vessel[];
   readonly #book: Book;
   readonly #train: Train;
   readonly #c: TrainContext;
+  readonly #nominal: readonly Nominal[];
   readonly #carried: readonly Of<Ref | null>[];
   readonly #bypass: readonly Of<Ref | null>[];
-  #running: readonly Running[] = [];
-  #outlets: Partial<Record<Phase, StreamFlow>> = {};
+  /** The last part of each layer: what leaves. */
+  #last: readonly Of<Part>[] = [];
 
   constructor(book: Book, train: Train, c: TrainContext) {
     this.#book = book;
     this.#train = train;
     this.#c = c;
+    this.#nominal = train.stages.map((_, j) => c.nominal(j));
     const states = c.moves || train.stages.some((q) => q.settler.band !== null);
     const opened = train.stages.map((stage, j) => {
       const d = c.design.stages[j];
       const places = stagePlaces(book, train, j, stage, d, c.start, states);
       const flips = stage.mixer.inversion !== null || c.moving.has(`${places.path}.continuity`);
-      return openVessel(book, train, j, d, places, c.nominal, flips);
+      return openVessel(book, train, j, d, places, this.#nominal[j], flips);
     });
     this.#bypass = opened.map((v) =>
       forBoth((phase) =>
@@ -86,105 +87,51 @@ export class TrainWriter {
       ),
     );
     this.vessels = opened.map((v, j) => shutByBypass(book, v, this.#bypass[j]));
-    this.#carried = this.vessels.map((v) => carriedOut(book, v, c.nominal));
+    this.#carried = this.vessels.map((v, j) => carriedOut(book, v, this.#nominal[j]));
   }
 
   get moves(): boolean {
     return this.#c.moves || this.vessels.some((v) => v.band !== null || v.outlets !== null);
   }
 
-  /** What the stream of a phase carries of the other one as it leaves the train. */
-  carried(phase: Phase): Ref | null {
-    return this.#carriedFrom(phase, this.#end(phase));
+  get #flows(): Flows<Sum> {
+    return this.#c.streams().flows;
   }
 
-  #carriedFrom(phase: Phase, j: number): Ref | null {
-    const own = this.#carried[j]?.[otherPhase(phase)];
-    if (own === undefined) return this.#c.inlet(phase).carried;
-    const bypass = this.#bypass[j][phase];
-    if (bypass === null) return own;
-    const past = this.#carriedFrom(phase, this.#before(phase, j));
-    if (past === null) return own;
-    const led = this.#book.signal(product, bypass, past);
-    return own === null ? led : this.#add(own, led);
+  /** What leaves a stage with the stream of the other phase. */
+  carriedOut(j: number): Of<Sum> {
+    return forBoth((phase) => {
+      const ref = this.#carried[j][phase];
+      return ref === null ? sums.none : just(ref);
+    });
   }
 
-  /** The stage from which a phase comes to stage j; past the end where it comes from outside. */
-  #before(phase: Phase, j: number): number {
-    return phase === 'aqueous' ? j - 1 : j + 1;
+  /** What weirs let pass; null in full vessels. */
+  outlets(j: number): Of<Sum> | null {
+    const { outlets } = this.vessels[j];
+    return outlets === null ? null : forBoth((phase) => just(outlets[phase]));
   }
 
-  /** What leaves stage j and what is led past it. Full vessels pass on what enters either way. */
-  #leaves(phase: Phase, j: number): Ref {
-    const v = this.vessels[j];
-    if (v === undefined) return this.#c.inlet(phase).flow;
-    if (v.outlets === null) return this.#main(phase, j);
-    const bypass = this.#bypass[j][phase];
-    if (bypass === null) return v.outlets[phase];
-    const past = this.#book.signal(product, bypass, this.#leaves(phase, this.#before(phase, j)));
-    return this.#add(v.outlets[phase], past);
+  /** Whether a phase is led past a stage, 0 … 1; null where it never is. */
+  bypass(phase: Phase, j: number): Ref | null {
+    return this.#bypass[j][phase];
   }
 
   /** Concentration of what leaves stage j and what is led past it. */
-  #content(phase: Phase, j: number, k: number): Content {
-    const running = this.#running[j];
-    if (running === undefined) return this.#c.inletContent(phase, k);
-    const own = this.#book.contentOf(running.last[phase], k);
+  content(phase: Phase, j: number, k: number): Content {
+    const own = this.#book.contentOf(this.#last[j][phase], k);
     const bypass = this.#bypass[j][phase];
     if (bypass === null) return own;
-    const past = this.#content(phase, this.#before(phase, j), k);
+    const past = this.#c.streams().entering(this.#c.index, phase, j, k);
     const both = [own, past].map((c) => this.#book.signal(c.kernel, ...c.args));
     return { kernel: chosen, args: [bypass, both[1], both[0]] };
   }
 
-  /** The stage at which a phase leaves the train. */
-  #end(phase: Phase): number {
-    return phase === 'aqueous' ? this.vessels.length - 1 : 0;
-  }
-
-  /** The stream of a phase that leaves the train. Full vessels pass on at once what enters. */
-  outlet(phase: Phase): StreamFlow {
-    const known = this.#outlets[phase];
-    if (known) return known;
-    const end = this.#end(phase);
-    const carried = this.carried(phase);
-    const flow = this.#leaves(phase, end);
-    const made = { flow, carried };
-    this.#outlets[phase] = made;
-    return made;
-  }
-
-  /** Main flow of a phase that leaves stage j's settler, in full vessels: inlet + carried in − carried out. */
-  #main(phase: Phase, j: number): Ref {
-    const n = this.vessels.length;
-    const inlet = this.#c.inlet(phase).flow;
-    const step = phase === 'aqueous' ? 1 : -1;
-    const first = phase === 'aqueous' ? 0 : n - 1;
-    const out = this.#carried[first]?.[phase] ?? null;
-    const into = this.#carriedInto(phase, j + step);
-    if (out === into) return inlet;
-    const zero = this.#book.number(0);
-    return this.#book.signal(balance, inlet, into ?? zero, out ?? zero);
-  }
-
-  /** What stage j (or, past the end, the stream that enters there) sends of a phase with the other one. */
-  #carriedInto(phase: Phase, j: number): Ref | null {
-    if (j < 0 || j >= this.vessels.length) return this.#c.inlet(otherPhase(phase)).carried;
-    return this.#carried[j][phase];
-  }
-
-  /** What enters mixer j of a phase besides recycle, in full vessels. */
-  #mainInto(phase: Phase, j: number): Ref {
-    const from = this.#before(phase, j);
-    return this.vessels[from] === undefined ? this.#c.inlet(phase).flow : this.#main(phase, from);
-  }
-
   /** Flow back from a settler to its own mixer; a layer with a level gives no more than it holds. */
-  #recycled(v: Vessel, phase: Phase): Ref | null {
+  #recycled(v: Vessel, phase: Phase, nominal: Nominal): Ref | null {
     const r = this.#train.recycle;
     if (r === null || ('phase' in r && r.phase !== phase)) return null;
     const book = this.#book;
-    const { nominal } = this.#c;
     const missing = phase === 'aqueous' ? missingAqueous : missingOrganic;
     const wanted =
       'phase' in r
@@ -206,25 +153,50 @@ export class TrainWriter {
 
   /** Mixers, transfer, bands and layers of all stages. */
   run(): void {
-    this.#running = this.vessels.map((v, j) => this.#runStage(v, j));
+    this.#last = this.vessels.map((v, j) => (isCell(v) ? this.#runCell(v) : this.#runStage(v, j)));
   }
 
-  #runStage(v: Vessel, j: number): Running {
+  /** A stage without settler keeps its hold-ups: each phase leaves with the composition that it has there. */
+  #runCell(v: Vessel): Of<Part> {
+    const book = this.#book;
+    const { path, design, places, stage } = v;
+    const held = forBoth((phase) =>
+      book.ledger.parameter(`${path}.mixer.${phase}.volume`, 'm^3', design.mixer[phase]),
+    );
+    const last = forBoth((phase): Part => {
+      const perVolume = book.signal(book.perVolumeKernel, held[phase], v.least);
+      return { phase, path: `${path}.mixer`, places: places.mixer[phase], perVolume };
+    });
+    this.#contact(v, stage.mixer, held);
+    const none = forBoth(() => null);
+    writeStageOutputs(book, v, { mixer: held, layer: held, last, carried: none });
+    return last;
+  }
+
+  /** Transfer in the mixer of a stage, and what is said where its laws leave their range. */
+  #contact(v: Vessel, settings: Train['stages'][number]['mixer'], mixer: Of<Ref>): void {
+    const { path, design, places, least, continuity } = v;
+    const book = this.#book;
+    writeTransfer(book, path, settings, this.#c.laws, design, places.mixer, { mixer, least, continuity });
+    writeRangeGuards(book, this.#train.equilibrium, path, places.mixer, mixer, least);
+    writeSpeciesGuards(book, path, places.mixer.aqueous, mixer.aqueous, least);
+  }
+
+  #runStage(v: Vessel, j: number): Of<Part> {
     const book = this.#book;
     const { stage, path, design, places } = v;
     const carriedHere = this.#carried[j];
-    const recycle = forBoth((phase) => this.#recycled(v, phase));
-    const full = v.outlets === null;
-    const next = (phase: Phase): number => (phase === 'aqueous' ? j + 1 : j - 1);
-    const entering = full
-      ? forBoth((phase) =>
-          this.#add(
-            this.#through(this.#mainInto(phase, j), this.#bypass[j][phase]),
-            this.#carriedInto(phase, next(phase)),
-            recycle[phase],
-          ),
-        )
-      : null;
+    const recycle = forBoth((phase) => this.#recycled(v, phase, this.#nominal[j]));
+    const at = (phase: Phase) => this.#flows.stage(this.#c.index, phase, j);
+    const entering =
+      v.outlets === null
+        ? forBoth((phase) => {
+            const { enters, carriedIn } = at(phase);
+            const main = this.#through(book.total(enters), this.#bypass[j][phase]);
+            const whole = sums.add(just(main), carriedIn, ...(recycle[phase] ? [just(recycle[phase])] : []));
+            return book.total(whole);
+          })
+        : null;
 
     const V = book.ledger.parameter(`${path}.mixer.full`, 'm^3', stage.mixer.volume);
     const still = (): Of<Ref> => {
@@ -241,15 +213,10 @@ export class TrainWriter {
       book.pass(entering.organic, null, Vo);
       book.ledger.flux(drained, [rate, Vo], { from: Vo, to: null });
     }
-    const shares = { mixer, least: v.least, continuity: v.continuity };
-    writeTransfer(book, path, stage.mixer, this.#c.laws, design, places.mixer, shares);
-    writeRangeGuards(book, this.#train, path, places.mixer, mixer, v.least);
-    writeSpeciesGuards(book, path, places.mixer.aqueous, mixer.aqueous, v.least);
+    this.#contact(v, stage.mixer, mixer);
 
     const leaving = forBoth((phase) => book.signal(product, mixer[phase], rate));
-    const main = forBoth(
-      (phase) => v.outlets?.[phase] ?? this.#through(this.#main(phase, j), this.#bypass[j][phase]),
-    );
+    const main = forBoth((phase) => this.#own(v, phase, j));
     const entrained = forBoth((phase) => this.#withoutFlood(v, carriedHere, phase));
     const out = forBoth((phase) => this.#add(main[phase], entrained[phase], recycle[phase]));
     const last = forBoth((phase) => {
@@ -267,8 +234,15 @@ export class TrainWriter {
       const back = recycle[phase];
       if (back) book.send(last[phase], back, places.volumes.layer?.[phase] ?? null, this.#ownMixer(v));
     }
-    writeStageOutputs(book, v, { mixer, layer, last, rate, carried: carriedHere });
-    return { last };
+    writeStageOutputs(book, v, { mixer, layer, last, carried: carriedHere });
+    return last;
+  }
+
+  /** Main flow out of a stage's own settler, without what is led past it. */
+  #own(v: Vessel, phase: Phase, j: number): Ref {
+    if (v.outlets) return v.outlets[phase];
+    const { leaves } = this.#flows.stage(this.#c.index, phase, j);
+    return this.#through(this.#book.total(leaves.flow), this.#bypass[j][phase]);
   }
 
   /** Carried phase that comes out of the layer; what floods comes out of the band. */
@@ -328,66 +302,78 @@ export class TrainWriter {
     ]);
   }
 
+  /** Where the train's own stream of a phase goes. */
+  entry(phase: Phase): Sink {
+    const { order, enters } = route(this.#train, phase);
+    const book = this.#book;
+    const into = order
+      .filter((j) => enters[j] > 0)
+      .map((j) =>
+        enters[j] === 1 ? this.into(phase, j) : book.portionOf(this.into(phase, j), book.number(enters[j])),
+      );
+    return { aqueous: into.flatMap((q) => q.aqueous), organic: into.flatMap((q) => q.organic) };
+  }
+
   /** Where a stream of a phase goes that enters stage j: into its mixer, or past it with all that it carries. */
-  sink(phase: Phase, j: number, beyond: () => Sink): Sink {
-    const v = this.vessels[j];
-    if (v === undefined) return beyond();
-    const own = this.#ownMixer(v);
+  into(phase: Phase, j: number): Sink {
+    const book = this.#book;
+    const own = this.#ownMixer(this.vessels[j]);
     const bypass = this.#bypass[j][phase];
     if (bypass === null) return own;
-    const past = this.sink(phase, phase === 'aqueous' ? j + 1 : j - 1, beyond);
-    const stays = this.#book.signal(rest, bypass);
-    return forBoth((which) => [
-      ...own[which].map((i) => ({ ...i, share: stays })),
-      ...past[which].map((i) => ({
-        ...i,
-        share: i.share === null ? bypass : this.#book.signal(product, bypass, i.share),
-      })),
-    ]);
+    const stays = book.portionOf(own, book.signal(rest, bypass));
+    const past = book.portionOf(this.#beyond(phase, j), bypass);
+    return forBoth((which) => [...stays[which], ...past[which]]);
   }
 
-  /** The stage at which a phase enters the train. */
-  first(phase: Phase): number {
-    return phase === 'aqueous' ? 0 : this.vessels.length - 1;
+  /** Where the stream of a phase goes that leaves stage j: draws, then the next stage or out of the train. */
+  #beyond(phase: Phase, j: number): Sink {
+    const streams = this.#c.streams();
+    const draws = this.#train.stages[j].draws.filter((d) => d.phase === phase);
+    const next = route(this.#train, phase).after(j);
+    return streams.divided(draws, () =>
+      next === null ? streams.sink(this.#train[phase].to) : this.into(phase, next),
+    );
   }
 
-  /** The stream that leaves stage j's settler with a phase. */
-  source(phase: Phase, j: number): Source {
+  /** Sends what leaves stage j with the stream of a phase. */
+  #send(phase: Phase, j: number): void {
     const book = this.#book;
     const v = this.vessels[j];
-    const { last } = this.#running[j];
+    const last = this.#last[j];
     const other = otherPhase(phase);
-    const flow = v.outlets?.[phase] ?? this.#through(this.#main(phase, j), this.#bypass[j][phase]);
-    const all = this.#carried[j][other];
+    const to = this.#beyond(phase, j);
+    book.send(last[phase], this.#own(v, phase, j), v.places.volumes.layer?.[phase] ?? null, to);
     const fromLayer = this.#withoutFlood(v, this.#carried[j], other);
+    if (fromLayer) book.send(last[other], fromLayer, v.places.volumes.layer?.[other] ?? null, to);
     const flood = v.band === null ? null : other === 'aqueous' ? v.band.floodAqueous : v.band.floodOrganic;
-    return {
-      phase,
-      flow,
-      carried: all,
-      send: (to) => {
-        book.send(last[phase], flow, v.places.volumes.layer?.[phase] ?? null, to);
-        if (fromLayer) book.send(last[other], fromLayer, v.places.volumes.layer?.[other] ?? null, to);
-        if (flood && v.places.band && v.places.volumes.band) {
-          const perVolume = this.#perBand(v, v.places.volumes.band[other]);
-          const part: Part = {
-            phase: other,
-            path: `${v.path}.band`,
-            places: v.places.band[other],
-            perVolume,
-          };
-          book.send(part, flood, v.places.volumes.band[other], to);
-        }
-      },
-      content: (k) => this.#content(phase, j, k),
-    };
+    if (flood && v.places.band && v.places.volumes.band) {
+      const perVolume = this.#perBand(v, v.places.volumes.band[other]);
+      const part: Part = { phase: other, path: `${v.path}.band`, places: v.places.band[other], perVolume };
+      book.send(part, flood, v.places.volumes.band[other], to);
+    }
   }
 
-  /** Fluxes between the stages; what leaves at the ends goes to the sinks given. */
-  join(ends: Of<() => Sink>): void {
+  /** Flow back between neighbours without settlers: β times the net flow that passes, and as much more onward. */
+  #exchange(phase: Phase, j: number): void {
+    const beta = this.#train.backFlow[phase];
+    const next = route(this.#train, phase).after(j);
+    if (beta === 0 || next === null) return;
+    const book = this.#book;
+    const net = this.#flows.stage(this.#c.index, phase, j).onward.flow;
+    const both = book.total(sums.scale(net, beta));
+    book.send(this.#last[j][phase], both, null, this.#ownMixer(this.vessels[next]));
+    book.send(this.#last[next][phase], both, null, this.#ownMixer(this.vessels[j]));
+  }
+
+  /** Fluxes between the stages, and out of the train. */
+  join(): void {
     this.vessels.forEach((_, j) => {
-      this.source('aqueous', j).send(this.sink('aqueous', j + 1, ends.aqueous));
-      this.source('organic', j).send(this.sink('organic', j - 1, ends.organic));
+      for (const phase of PHASES) {
+        this.#send(phase, j);
+        this.#exchange(phase, j);
+      }
     });
   }
 }
+
+const isCell = (v: Vessel): boolean => v.stage.settler.parts === 0;

@@ -40,7 +40,7 @@ export interface Vessel {
   readonly rate: Ref | null;
 }
 
-/** Flows that the pumps and feeds behind a train set, and their sum at design. */
+/** Flows into a stage as pumps and feeds set them, and their sum at design. */
 export interface Nominal extends Of<Ref> {
   readonly total: Ref;
   /** One over the number of trains that share a flow: each may lose its part of it, and none runs back. */

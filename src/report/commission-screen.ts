@@ -23,7 +23,7 @@ export function commissionScreen(r: CommissionResult): string[] {
   ];
   const told = flows.slice(0, 3).map((f) => `${withUnit(f.flow, 'm^3/s')} ${f.name}`);
   return [
-    `START-UP  ${s.title}: from ${startWords(s.start)}; ${told.join(', ')}`,
+    `START-UP  ${s.title}: from ${startWords(s)}; ${told.join(', ')}`,
     ...answerLines(r),
     '',
     ...table(r),

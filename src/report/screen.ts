@@ -1,17 +1,15 @@
 import type { Plant } from '../plant/assemble.ts';
-import { thinMixers, trainFacts } from '../plant/facts.ts';
 import { explain } from '../solve/outcome.ts';
 import type { LimitReport } from '../study/limit-watch.ts';
 import type { RunResult, SteadyResult } from '../study/result.ts';
 import type { TrainFigures } from '../study/train-figures.ts';
 import { shortCaution } from './cautions.ts';
-import { commissioningLines } from './commissioning-lines.ts';
 import { clock, columns, figure, shown, withUnit } from './figures.ts';
 
 /** First lines of `run`: limits first, then what the outlets came to, then what may be trusted. */
 export function runScreen(r: RunResult): string[] {
   const s = r.plant.scenario;
-  const lines = [`RUN  ${s.title}: ${clock(r.stop.time)} from ${startWords(s.start)}`];
+  const lines = [`RUN  ${s.title}: ${clock(r.stop.time)} from ${startWords(s)}`];
   if (!r.complete) lines.push(`INCOMPLETE  ${explain(r.stop)}`);
   for (const q of r.shades) lines.push(`upset  ${q.words}, ${clock(q.from)} to ${clock(q.to)}`);
   for (const c of r.clamped)
@@ -34,15 +32,23 @@ export function runScreen(r: RunResult): string[] {
 }
 
 /** The start of a run in words. */
-export const startWords = (start: Plant['scenario']['start']): string =>
-  typeof start === 'object' ? `the state kept in ${start.file}` : start === 'steady' ? 'steady state' : start;
+export const startWords = ({ start, trains }: Plant['scenario']): string =>
+  typeof start === 'object'
+    ? `the state kept in ${start.file}`
+    : start === 'steady'
+      ? 'steady state'
+      : trains.length === 0
+        ? 'filled vessels'
+        : start;
 
 const rejected = ({ work: w }: RunResult): number =>
   w.rejectedByError + w.rejectedByNegative + w.rejectedByNonFinite + w.rejectedBySingular;
 
 /** One limit in words. */
 export function limitLines(l: LimitReport): string[] {
-  const name = `${l.path} ${l.limit.side === 'below' ? '<' : '>'} ${withUnit(l.limit.value, l.unit)}`;
+  const from = l.limit.from > 0 ? ` from ${clock(l.limit.from)} on` : '';
+  const name = `${l.path} ${l.limit.side === 'below' ? '<' : '>'} ${withUnit(l.limit.value, l.unit)}${from}`;
+  if (Number.isNaN(l.worst.value)) return [`NOT REACHED ${name}`];
   const negligible = Math.abs(l.worst.value) < 1e-6 * Math.abs(l.limit.value);
   const worst = `worst ${withUnit(negligible ? 0 : l.worst.value, l.unit)} at ${clock(l.worst.time)}`;
   if (l.spells.length === 0) return [`KEPT   ${name}: ${worst}`];
@@ -55,23 +61,48 @@ export function limitLines(l: LimitReport): string[] {
   return [`BROKEN ${name}: ${list}; ${worst}`, `       outside for ${clock(l.outside)} in all${beyond}`];
 }
 
-/** Outlets and tanks: at the start, before the first upset if there is one, and at the end. */
+/** Rows of the table of outlets; the rest stands in the files. */
+const MOST_ROWS = 16;
+
+/** Outlets, tanks and batches: at the start, before the first upset if there is one, and at the end. */
 function outletTable(r: RunResult): string[] {
   const { plant, snapshots } = r;
   const { outputs } = plant.system;
-  const names = [...plant.network.outlets.map((o) => o.name), ...plant.scenario.tanks.map((t) => t.name)];
+  const s = plant.scenario;
+  const names = [
+    ...plant.network.outlets.map((o) => o.name),
+    ...s.tanks.map((t) => t.name),
+    ...s.batches.flatMap((b) => [`${b.name} aqueous`, `${b.name} organic`]),
+  ];
+  const end = snapshots[snapshots.length - 1].outputs;
   const rows = names.flatMap((n) =>
-    outputs.flatMap((o, i) => (o.path.startsWith(`${n}.`) && !o.path.endsWith('.flow') ? [i] : [])),
+    outputs.flatMap((o, i) =>
+      o.path.startsWith(`${n}.`) && !o.path.endsWith('.flow') && tellsMost(o.path, end[i]) ? [i] : [],
+    ),
   );
-  return columns([
-    ['', ...snapshots.map((q) => q.label), 'unit'],
-    ['', ...snapshots.map((q) => (q.time === 0 ? '0 h' : clock(q.time))), ''],
-    ...rows.slice(0, 14).map((i) => {
-      const { unit, factor } = shown(outputs[i].unit);
-      return [outputs[i].path, ...snapshots.map((q) => figure(q.outputs[i] * factor, 4)), unit];
-    }),
-  ]);
+  const more = rows.length - MOST_ROWS;
+  return [
+    ...columns([
+      ['', ...snapshots.map((q) => q.label), 'unit'],
+      ['', ...snapshots.map((q) => (q.time === 0 ? '0 h' : clock(q.time))), ''],
+      ...rows.slice(0, MOST_ROWS).map((i) => {
+        const { unit, factor } = shown(outputs[i].unit);
+        return [
+          outputs[i].path,
+          ...snapshots.map((q) => figure(nil(q.outputs[i], outputs[i].scale) * factor, 4)),
+          unit,
+        ];
+      }),
+    ]),
+    ...(more > 0 ? [`  … and ${more} more in summary.json`] : []),
+  ];
 }
+
+/** A value that is nothing but rounding counts as zero. */
+const nil = (value: number, scale: number): number => (Math.abs(value) < 1e-12 * scale ? 0 : value);
+
+/** Of the purities of a stream one says it all. */
+const tellsMost = (path: string, value: number): boolean => !path.includes('.purity of ') || value > 50;
 
 export function steadyScreen(r: SteadyResult): string[] {
   const { plant } = r;
@@ -88,18 +119,34 @@ export function steadyScreen(r: SteadyResult): string[] {
       `${d.tank} ${d.rate > 0 ? 'gains' : 'loses'} ${figure(Math.abs(d.rate) * 86400)} m^3/d: ${d.rate > 0 ? 'full' : 'empty'} in ${clock(d.until)}`,
     );
   const dissolved = [...s.solutes, ...s.species];
-  lines.push('', 'Streams [m^3/h, g/L]');
-  const streams = [...plant.network.streams.values()];
-  lines.push(
-    ...columns([
-      ['', 'flow', ...dissolved],
-      ...streams.map((q) => [
-        q.name,
-        read(`${q.name}.flow`),
-        ...dissolved.map((c) => read(`${q.name}.${c}`)),
+  if (s.batches.length > 0)
+    lines.push(
+      '',
+      'Batches at equilibrium [g/L]',
+      ...columns([
+        ['', ...dissolved],
+        ...s.batches.flatMap((b) =>
+          (['aqueous', 'organic'] as const).map((phase) => [
+            `${b.name} ${phase}`,
+            ...dissolved.map((c) => read(`${b.name} ${phase}.${c}`)),
+          ]),
+        ),
       ]),
-    ]),
-  );
+    );
+  if (s.trains.length > 0) lines.push('', 'Streams [m^3/h, g/L]');
+  const streams = [...plant.network.streams.values()];
+  if (s.trains.length > 0)
+    lines.push(
+      ...columns([
+        ['', 'flow', ...dissolved, ...(s.solutes.length > 1 ? ['purity'] : [])],
+        ...streams.map((q) => [
+          q.name,
+          read(`${q.name}.flow`),
+          ...dissolved.map((c) => read(`${q.name}.${c}`)),
+          ...(s.solutes.length > 1 ? [purest(r, q.name)] : []),
+        ]),
+      ]),
+    );
   for (const t of s.trains) {
     if (t.stages.length > 12) {
       lines.push('', `Stages of ${t.name}: ${t.stages.length}, in summary.json`);
@@ -123,6 +170,16 @@ export function steadyScreen(r: SteadyResult): string[] {
     shortCaution,
   );
   return lines;
+}
+
+/** The solute of which a stream holds most, and its share in all of them. */
+function purest({ plant, outputs }: SteadyResult, stream: string): string {
+  const list = plant.scenario.solutes.map((solute) => ({
+    solute,
+    share: outputs[plant.system.outputs.findIndex((o) => o.path === `${stream}.purity of ${solute}`)],
+  }));
+  const most = list.reduce((a, b) => (b.share > a.share ? b : a));
+  return most.share > 0 ? `${figure(most.share, 4)} % ${most.solute}` : '-';
 }
 
 /** What people look for in a train, in two or three lines. */
@@ -162,68 +219,18 @@ function figureLines(f: TrainFigures): string[] {
         ]
       : []),
   ];
-  return [...lines, `  ${parts.join('; ')}`];
+  return [...lines, `  ${parts.join('; ')}`, ...separationLine(f, span)];
 }
 
-/** `check`: the plant as understood. */
-export function checkScreen(plant: Plant): string[] {
-  const s = plant.scenario;
-  const lines = [`OK  ${s.title}`, ''];
-  const span = (r: readonly [number, number], f: (v: number) => string): string =>
-    f(r[0]) === f(r[1]) ? f(r[0]) : `${f(r[0])} to ${f(r[1])}`;
-  lines.push(
-    ...columns([
-      [
-        'train',
-        'stages',
-        'aqueous',
-        'organic',
-        'O/A',
-        'mixer time',
-        'settler load',
-        'turnover aq',
-        'turnover org',
-      ],
-      ...trainFacts(plant).map((f) => [
-        f.train,
-        String(f.stages),
-        `${figure(f.aqueous * 3600)} m^3/h`,
-        `${figure(f.organic * 3600)} m^3/h`,
-        figure(f.ratio),
-        span(f.mixerResidence, (v) => clock(v)),
-        f.specificFlow === null ? '-' : `${span(f.specificFlow, (v) => figure(v * 3600))} m/h`,
-        clock(f.held.aqueous / f.aqueous),
-        clock(f.held.organic / f.organic),
-      ]),
-    ]),
-  );
-  lines.push('', 'Streams');
-  for (const q of plant.network.streams.values()) {
-    const who = (e: { kind: string; index: number }): string =>
-      e.kind === 'feed' ? 'feed' : e.kind === 'tank' ? s.tanks[e.index].name : s.trains[e.index].name;
-    lines.push(`  ${q.name} (${q.phase}): ${who(q.maker)} -> ${q.user ? who(q.user) : 'outlet'}`);
-  }
-  if (s.upsets.length > 0) lines.push('', 'Upsets');
-  const upsets = s.upsets.map((u) => {
-    const ramp = u.over > 0 ? ` over ${clock(u.over)}` : ' at once';
-    return `  ${clock(u.at)}: ${u.words}${ramp}, ${u.lasts === null ? 'to the end of the run' : `for ${clock(u.lasts)}`}`;
-  });
-  // One change in words can move several quantities.
-  lines.push(...new Set(upsets));
-  const thin = thinMixers(plant).map(
-    (q) =>
-      `  ${q.stage}: the continuous phase, ${q.continuity}, is ${figure(100 * q.share)} % of the mixer: beyond the usual limits it may invert`,
-  );
-  if (thin.length > 0) lines.push('', 'Worth a look', ...thin);
-  if (s.limits.length > 0) lines.push('', 'Limits');
-  for (const l of s.limits) {
-    const output = plant.system.outputs.find((o) => o.path === `${l.stream}.${l.quantity}`);
-    lines.push(`  ${l.stream}.${l.quantity} ${l.side} ${withUnit(l.value, output?.unit ?? '')}`);
-  }
-  lines.push(...commissioningLines(s));
-  lines.push(
-    '',
-    `${plant.system.places.length} states, ${s.horizon / s.recordEvery < 1e6 ? Math.floor(s.horizon / s.recordEvery) + 1 : '> 1e6'} records over ${clock(s.horizon)}, start ${startWords(s.start)}.`,
-  );
-  return lines;
+function separationLine(
+  { separation: q }: TrainFigures,
+  span: (list: readonly (number | null)[]) => string,
+): string[] {
+  if (q === null) return [];
+  const load = q.load === null ? [] : [`all solutes load ${figure(100 * q.load)} % of the organic's maximum`];
+  const factors = q.factors.map((x) => `separation factor ${x.one} over ${x.other} ${span(x.stages)}`);
+  const crowded = q.crowding
+    .filter((x) => x.share !== null && x.share < 0.99)
+    .map((x) => `${x.solute} crowded to ${figure(100 * (x.share as number))} % of its loading alone`);
+  return [`  ${[...factors, ...load, ...crowded].join('; ')}`];
 }

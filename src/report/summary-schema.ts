@@ -26,6 +26,26 @@ const trainFigures = object({
       stage_efficiency: list(orNull(number('Murphree, aqueous side'))),
     }),
   ),
+  separation: orNull(
+    object({
+      share_of_maximum_load: orNull(number('all solutes together, of the loaded organic')),
+      factors: list(
+        object({
+          of: text('the solute that is extracted more strongly'),
+          over: text('the other one'),
+          stages: list(orNull(number('ratio of the distribution ratios in each mixer'))),
+        }),
+      ),
+      crowding: list(
+        object({
+          solute: text('name'),
+          share_of_alone: orNull(
+            number('equilibrium loading beside the others over that of the solute alone, at the loaded end'),
+          ),
+        }),
+      ),
+    }),
+  ),
 });
 
 const run = object({

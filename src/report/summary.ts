@@ -112,4 +112,12 @@ const figuresOf = (f: TrainFigures): object => ({
     share_of_maximum_load: q.load,
     stage_efficiency: q.efficiency,
   })),
+  separation:
+    f.separation === null
+      ? null
+      : {
+          share_of_maximum_load: f.separation.load,
+          factors: f.separation.factors.map((q) => ({ of: q.one, over: q.other, stages: q.stages })),
+          crowding: f.separation.crowding.map((q) => ({ solute: q.solute, share_of_alone: q.share })),
+        },
 });

@@ -1,4 +1,5 @@
 import { readChange } from './changes.ts';
+import { arrangementOf, blendsOf, neutralisedBy, removalShares, removalsOf, splitsOf } from './circuit.ts';
 import { type Basis, carrierFlow, content } from './content.ts';
 import { readLaw } from './laws.ts';
 import { readLimit } from './limits.ts';
@@ -11,6 +12,7 @@ import type { Problem } from './refusal.ts';
 import { Releases } from './releases.ts';
 import { startOf } from './saved.ts';
 import type {
+  Batch,
   Feed,
   Initial,
   Law,
@@ -25,7 +27,7 @@ import type {
 import type { RawScenario } from './schema.ts';
 import { show } from './show.ts';
 import { checkSize } from './size.ts';
-import { stagesOf } from './vessels.ts';
+import { mixerOf, stagesOf } from './vessels.ts';
 
 /** Records of a run that says nothing about them. */
 const USUAL_RECORDS = 300;
@@ -38,8 +40,10 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
   const feeds = known.filter((f) => !outline.spare.has(f.name));
   const tanks = Object.entries(raw.tanks ?? {}).map(([name, t]) => builder.tank(name, t));
   const trains = Object.entries(raw.trains).map(([name, t]) => builder.train(name, t));
+  const batches = Object.entries(raw.batches ?? {}).map(([name, b]) => builder.batch(name, b));
   const { basis } = builder;
   const horizon = raw.horizon.value;
+  const shares = removalShares(tanks, builder.solutes);
   const contents = new Map([...known, ...tanks].map((q) => [q.name, q.content]));
   const scenario: Scenario = {
     title: raw.title,
@@ -49,6 +53,9 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
     feeds,
     tanks,
     trains,
+    splits: splitsOf(raw, problems),
+    blends: blendsOf(raw),
+    batches,
     releases: builder.releases.table(),
     start: startOf(raw.start, folder, problems),
     properties: builder.properties(raw),
@@ -57,11 +64,13 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
     upsets: (raw.upsets ?? []).flatMap((u, i) =>
       readChange(
         u,
-        { path: ['upsets', i], outline, basis, contents, feeds: known, horizon: raw.horizon, folder },
+        { path: ['upsets', i], outline, basis, contents, shares, feeds: known, horizon: raw.horizon, folder },
         problems,
       ),
     ),
-    limits: (raw.limits ?? []).flatMap((l, i) => readLimit(l, ['limits', i], outline, basis, problems) ?? []),
+    limits: (raw.limits ?? []).flatMap(
+      (l, i) => readLimit(l, ['limits', i], outline, basis, raw.horizon, problems) ?? [],
+    ),
   };
   checkNeeds(scenario, problems);
   checkSize(scenario, problems);
@@ -102,7 +111,9 @@ class Builder {
     const path = ['feeds', name];
     const c = this.#content(f, f.phase, path);
     const flow = carrierFlow(f.flow, f.phase, c, this.basis, [...path, 'flow'], this.#problems);
-    return { name, phase: f.phase, flow, content: c };
+    const used = neutralisedBy(f, this.species, path, this.#problems);
+    const content = c.map((v, k) => v - (used[k - this.solutes.length] ?? 0));
+    return { name, phase: f.phase, flow, content };
   }
 
   tank(name: string, t: NonNullable<RawScenario['tanks']>[string]): Tank {
@@ -127,13 +138,55 @@ class Builder {
         message: `must not exceed 100 %, got ${t.passes?.text}`,
       });
     const makeUp = t.make_up ?? plainTank.makeUp;
-    return { name, phase: t.phase, from: t.from, to: t.to, volume, held, flow, content: c, makeUp, passes };
+    const removes = removalsOf(t, this, path, this.#problems);
+    const { phase, from, to } = t;
+    return { name, phase, from, to, volume, held, flow, content: c, makeUp, passes, removes };
   }
 
   train(name: string, t: RawScenario['trains'][string]): Train {
     const path = ['trains', name];
+    const equilibrium = this.#laws(t.equilibrium, path);
+    return {
+      name,
+      aqueous: t.aqueous,
+      organic: t.organic,
+      stages: stagesOf(t, path, this.#problems),
+      equilibrium,
+      initial: this.#initial(t.initial, [...path, 'initial']),
+      hydraulics: t.hydraulics ?? plainTrain.hydraulics,
+      recycle: this.#recycle(t.recycle, [...path, 'recycle']),
+      ...arrangementOf(t, path, this.#problems),
+    };
+  }
+
+  batch(name: string, b: NonNullable<RawScenario['batches']>[string]): Batch {
+    const path = ['batches', name];
+    const mixer = mixerOf(b.mixer, [...path, 'mixer'], this.#problems);
+    if (mixer.organicShare === null)
+      this.#problems.push({
+        path: [...path, 'mixer'],
+        message: "a batch needs its organic_share, such as 'organic_share: 50 %'",
+      });
+    if (mixer.transfer.given === 'efficiency')
+      this.#problems.push({
+        path: [...path, 'mixer', 'stage_efficiency'],
+        message: 'an efficiency is that of a flow through a stage; a batch takes ka or an impeller',
+      });
+    return {
+      name,
+      mixer,
+      organicShare: mixer.organicShare ?? Number.NaN,
+      content: {
+        aqueous: this.#content(b.aqueous ?? {}, 'aqueous', [...path, 'aqueous']),
+        organic: this.#content(b.organic ?? {}, 'organic', [...path, 'organic']),
+      },
+      equilibrium: this.#laws(b.equilibrium, path),
+    };
+  }
+
+  #laws(given: RawScenario['trains'][string]['equilibrium'], path: Path): (Law | null)[] {
     const equilibrium: (Law | null)[] = this.solutes.map(() => null);
-    for (const [solute, law] of Object.entries(t.equilibrium ?? {})) {
+    for (const [solute, law] of Object.entries(given ?? {})) {
       const at = [...path, 'equilibrium', solute];
       const i = this.solutes.indexOf(solute);
       if (i < 0) {
@@ -144,16 +197,7 @@ class Builder {
       equilibrium[i] = readLaw(law, solute, this.#lawContext(), at, this.#problems);
       if ('releases' in law) this.releases.add(i, law.releases, [...at, 'releases'], this.#problems);
     }
-    return {
-      name,
-      aqueous: t.aqueous,
-      organic: t.organic,
-      stages: stagesOf(t, path, this.#problems),
-      equilibrium,
-      initial: this.#initial(t.initial, [...path, 'initial']),
-      hydraulics: t.hydraulics ?? plainTrain.hydraulics,
-      recycle: this.#recycle(t.recycle, [...path, 'recycle']),
-    };
+    return equilibrium;
   }
 
   #recycle(r: RawScenario['trains'][string]['recycle'], path: Path): Recycle | null {

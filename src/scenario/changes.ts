@@ -20,6 +20,8 @@ export interface Setting {
   readonly contents: ReadonlyMap<string, readonly number[]>;
   /** All feeds, those included that wait to be swapped in. */
   readonly feeds: readonly Feed[];
+  /** Removals that are stated as shares. */
+  readonly shares: ReadonlySet<string>;
   readonly horizon: Figure;
   readonly folder: string;
 }
@@ -165,6 +167,8 @@ class ChangeReader {
     const q = quantity(to, ...this.#kinds());
     if ('wrong' in q) return this.complain(q.wrong, 'to');
     if (q.value < 0) return this.complain(`must not be negative, got ${show(to)}`, 'to');
+    const most = this.#isShare() ? 1 : Infinity;
+    if (q.value > most) return this.complain(`must not exceed 100 %, got ${show(to)}`, 'to');
     return { how: { to: this.#inside(q, 'to') }, words: `${change} to ${to}` };
   }
 
@@ -172,8 +176,12 @@ class ChangeReader {
     const { change, by } = this.#raw;
     const bare = String(by).trim();
     if (/^[+-]?\d*\.?\d+$/.test(bare)) {
-      const unit = { flow: 'm^3/h', speed: 'rpm', weir: 'cm' }[this.#target.what as string] ?? 'g/L';
-      const message = `a change by ${bare} can be read in two ways: write '${bare} %' or give a unit, such as '${bare} ${unit}'`;
+      const unit =
+        { flow: 'm^3/h', speed: 'rpm', weir: 'cm', removal: 'kg/h' }[this.#target.what as string] ?? 'g/L';
+      const message =
+        this.#target.what === 'share'
+          ? `a change of a share by ${bare} can be read in two ways: state the new share with to, such as '20 %', or write '${bare} %' of the share as it is`
+          : `a change by ${bare} can be read in two ways: write '${bare} %' or give a unit, such as '${bare} ${unit}'`;
       return this.complain(message, 'by');
     }
     const q = quantity(by, 'a percentage', ...this.#kinds());
@@ -216,14 +224,22 @@ class ChangeReader {
     const { what } = this.#target;
     if (what === 'flow') return ['a flow by volume', 'a flow by mass'];
     if (what === 'speed') return ['a rate'];
+    if (what === 'share') return ['a percentage'];
+    if (what === 'removal') return this.#isShare() ? ['a percentage'] : ['a flow by mass'];
     return what === 'weir' ? ['a length'] : contentKinds;
+  }
+
+  /** What is stated as a share of something can only change as one. */
+  #isShare(): boolean {
+    const { what } = this.#target;
+    return what === 'share' || (what === 'removal' && this.#s.shares.has(this.#raw.change));
   }
 
   /** In SI; beside it in the stream stands what the feed or tank holds at time zero. */
   #inside(q: Quantity, ...at: string[]): number {
     const { basis, path, contents } = this.#s;
     const { phase, component, what } = this.#target;
-    if (what === 'speed' || what === 'weir') return q.value;
+    if (what === 'speed' || what === 'weir' || what === 'share' || what === 'removal') return q.value;
     const beside = contents.get(this.#raw.change.slice(0, this.#raw.change.lastIndexOf('.'))) ?? [];
     if (component === undefined)
       return carrierFlow(q, phase, beside, basis, [...path, ...at], this.#problems);

@@ -62,6 +62,9 @@ export function checkNames(plan: Outline, problems: Problem[]): void {
     ...plan.feeds.map((f) => f.name),
     ...plan.trains.flatMap((t) => [t.aqueous.to, t.organic.to]),
     ...plan.tanks.map((t) => t.to),
+    ...plan.trains.flatMap((t) => t.draws.map((d) => d.name)),
+    ...plan.splits.flatMap((q) => q.branches),
+    ...plan.blends.map((b) => b.name),
   ]);
   const tanks = new Set(plan.tanks.map((t) => t.name));
   const spills = new Set(plan.tanks.map((t) => `${t.name} overflow`));
@@ -73,6 +76,23 @@ export function checkNames(plan: Outline, problems: Problem[]): void {
     check(name, ['tanks', name], shared ?? spill(name));
     check(to, ['tanks', name, 'to'], spill(to));
   }
+  for (const { stream, branches } of plan.splits)
+    for (const name of branches) check(name, ['splits', stream, name], spill(name));
+  for (const { name } of plan.blends) check(name, ['blends', name], spill(name));
+  const trains = new Set(plan.trains.map((t) => t.name));
+  for (const name of plan.batches) {
+    const shared = [name, `${name} aqueous`, `${name} organic`].some(
+      (n) => streams.has(n) || tanks.has(n) || trains.has(n),
+    );
+    check(
+      name,
+      ['batches', name],
+      shared ? `'${name}' or one of its phases is also something else; rename it` : null,
+    );
+  }
+  for (const { name, draws } of plan.trains)
+    for (const d of draws)
+      check(d.name, ['trains', name, `stage ${d.stage + 1}`, 'draws', d.name], spill(d.name));
   for (const { name, aqueous, organic } of plan.trains) {
     const shared = streams.has(name) || tanks.has(name);
     const also = shared ? `'${name}' is also a stream or a tank; give the train another name` : null;

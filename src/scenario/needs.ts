@@ -8,6 +8,7 @@ export function checkNeeds(s: Scenario, problems: Problem[]): void {
     if (t.stages.some((q) => q.mixer.transfer.given === 'impeller')) agitatorNeeds(s, t, path, problems);
     if (t.hydraulics === 'weirs') weirNeeds(s, t, path, problems);
     bypassNeeds(s, t, path, problems);
+    cellNeeds(s, t, path, problems);
     upsetNeeds(s, t, problems);
   }
   if (s.start === 'empty')
@@ -57,6 +58,30 @@ function weirNeeds(s: Scenario, t: Train, path: Path, problems: Problem[]): void
       path: [...path, 'settler'],
       message: `hydraulics: weirs needs the weirs of every settler, such as 'weirs: {organic_length: 8 m, aqueous_length: 8 m}'; stage ${without + 1} has none`,
     });
+}
+
+/** Without settlers a stage keeps its hold-ups: nothing can be sent back from a settler, and no phase be led past. */
+function cellNeeds(s: Scenario, t: Train, path: Path, problems: Problem[]): void {
+  const cells = t.stages.some((q) => q.settler.parts === 0);
+  const refuse = (field: string, what: string): number =>
+    problems.push({
+      path: [...path, field],
+      message: `${what} needs settlers; this train has settler: none`,
+    });
+  if (!cells) {
+    const given = t.stages.findIndex((q) => q.mixer.organicShare !== null);
+    if (given >= 0)
+      problems.push({
+        path: [...path, 'mixer', 'organic_share'],
+        message:
+          'the share of a mixer with a settler follows from the flows; it can be stated with settler: none',
+      });
+    return;
+  }
+  if (t.recycle !== null) refuse('recycle', 'recycle');
+  if (t.stages.some((q) => q.mixer.inversion !== null)) refuse('mixer', 'inversion');
+  if (s.upsets.some((u) => u.quantity.startsWith(`${t.name}.`) && u.quantity.endsWith(' bypass')))
+    refuse('settler', 'a bypass');
 }
 
 /** What an upset changes must be there. */

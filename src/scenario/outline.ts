@@ -1,3 +1,13 @@
+import { phases } from './network.ts';
+import {
+  isObject,
+  type Loose,
+  looseBlends,
+  looseDraws,
+  looseSides,
+  looseSplits,
+  STAGE,
+} from './outline-circuit.ts';
 import type { Phase } from './scenario.ts';
 
 /** What a path in a scenario points at. */
@@ -12,6 +22,9 @@ export interface Target {
     | 'pump'
     | 'weir'
     | 'continuity'
+    | 'share'
+    | 'purity'
+    | 'removal'
     | 'feed';
   readonly phase: Phase;
   readonly component?: string;
@@ -32,13 +45,28 @@ export interface Outline {
     readonly to: string;
     readonly flow: number | null;
     readonly makeUp: string | null;
+    readonly removes: unknown;
   }[];
   readonly trains: readonly {
     readonly name: string;
     readonly stages: number;
     readonly aqueous: { readonly from: string; readonly to: string };
     readonly organic: { readonly from: string; readonly to: string };
+    readonly sides: readonly { readonly stage: number; readonly stream: string }[];
+    readonly draws: readonly {
+      readonly stage: number;
+      readonly name: string;
+      readonly phase: Phase;
+      readonly by: 'share' | 'flow';
+    }[];
   }[];
+  readonly splits: readonly {
+    readonly stream: string;
+    readonly branches: readonly string[];
+    readonly by: readonly ('share' | 'flow' | 'rest')[];
+  }[];
+  readonly blends: readonly { readonly name: string; readonly of: readonly string[] }[];
+  readonly batches: readonly string[];
   /** Feeds that nobody takes until an upset swaps one in. */
   readonly spare: ReadonlySet<string>;
   /** `stage 2` …: settings of single stages, as the trains have them. */
@@ -53,12 +81,6 @@ export interface Outline {
   readonly limitable: ReadonlyMap<string, Target>;
 }
 
-/** The setting of a single stage. */
-export const STAGE = /^stage (\d+)$/;
-
-type Loose = Record<string, unknown>;
-
-const isObject = (v: unknown): v is Loose => typeof v === 'object' && v !== null && !Array.isArray(v);
 const isListOfNames = (v: unknown): boolean => Array.isArray(v) && v.every((n) => typeof n === 'string');
 const names = (v: unknown): string[] =>
   Array.isArray(v) ? v.filter((n): n is string => typeof n === 'string') : [];
@@ -72,7 +94,8 @@ export function outline(raw: unknown): Outline {
     isListOfNames(top.solutes) &&
     solutes.length > 0 &&
     (top.species === undefined || isListOfNames(top.species));
-  let whole = top.feeds !== undefined && top.trains !== undefined;
+  const alone = top.batches !== undefined;
+  let whole = alone || (top.feeds !== undefined && top.trains !== undefined);
   const entries = (v: unknown): [string, Loose][] => {
     if (v === undefined) return [];
     if (!isObject(v)) {
@@ -102,6 +125,7 @@ export function outline(raw: unknown): Outline {
             to: t.to,
             flow: t.flow === undefined ? null : 1,
             makeUp: typeof t.make_up === 'string' ? t.make_up : null,
+            removes: t.removes,
           }
         : null,
     ),
@@ -110,8 +134,18 @@ export function outline(raw: unknown): Outline {
     const aqueous = arrow(t.aqueous);
     const organic = arrow(t.organic);
     const stages = Number.isInteger(t.stages) ? (t.stages as number) : 1;
-    return keep(aqueous && organic ? { name, stages, aqueous, organic } : null);
+    const sides = looseSides(t);
+    const draws = looseDraws(t);
+    return keep(
+      aqueous && organic && sides && draws ? { name, stages, aqueous, organic, sides, draws } : null,
+    );
   });
+  const splits = entries(top.splits).flatMap(([stream, q]) => keep(looseSplits(stream, q)));
+  const blends = isObject(top.blends)
+    ? Object.entries(top.blends).flatMap(([name, of]) => keep(looseBlends(name, of)))
+    : [];
+  if (top.blends !== undefined && !isObject(top.blends)) whole = false;
+  const batches = entries(top.batches).map(([name]) => name);
 
   const changeable = new Map<string, Target>();
   const limitable = new Map<string, Target>();
@@ -119,7 +153,10 @@ export function outline(raw: unknown): Outline {
     into.set(`${name}.flow`, { what: 'flow', phase });
     for (const c of phase === 'aqueous' ? [...solutes, ...species] : solutes)
       into.set(`${name}.${c}`, { what: 'content', phase, component: c });
+    if (into === limitable && solutes.length > 1)
+      for (const c of solutes) into.set(`${name}.purity of ${c}`, { what: 'purity', phase, component: c });
   };
+  const phaseOf = phases({ feeds, tanks, trains, splits, blends });
   for (const f of feeds) {
     stream(f.name, f.phase, changeable);
     changeable.set(f.name, { what: 'feed', phase: f.phase });
@@ -130,12 +167,31 @@ export function outline(raw: unknown): Outline {
       changeable.set(`${t.name}.flow`, { what: 'flow', phase: t.phase });
       changeable.set(`${t.name}.pump`, { what: 'pump', phase: t.phase });
     }
+    for (const c of isObject(t.removes) ? Object.keys(t.removes) : [])
+      if (solutes.includes(c))
+        changeable.set(`${t.name}.removal of ${c}`, { what: 'removal', phase: t.phase, component: c });
     stream(t.to, t.phase, limitable);
     stream(t.name, t.phase, limitable);
     limitable.delete(`${t.name}.flow`);
     limitable.set(`${t.name}.volume`, { what: 'volume', phase: t.phase });
   }
+  const takes = (name: string, by: 'share' | 'flow' | 'rest'): void => {
+    const phase = phaseOf.get(name) ?? 'aqueous';
+    stream(name, phase, limitable);
+    if (by !== 'rest') changeable.set(`${name}.${by}`, { what: by, phase });
+  };
+  for (const q of splits) for (const [i, name] of q.branches.entries()) takes(name, q.by[i]);
+  for (const b of blends) stream(b.name, phaseOf.get(b.name) ?? 'aqueous', limitable);
+  for (const name of batches) {
+    for (const phase of ['aqueous', 'organic'] as const) {
+      stream(`${name} ${phase}`, phase, limitable);
+      limitable.delete(`${name} ${phase}.flow`);
+    }
+    changeable.set(`${name}.mixer`, { what: 'mixer', phase: 'aqueous' });
+    changeable.set(`${name}.mixer.speed`, { what: 'speed', phase: 'aqueous' });
+  }
   for (const t of trains) {
+    for (const q of t.draws) takes(q.name, q.by);
     stream(t.aqueous.to, 'aqueous', limitable);
     stream(t.organic.to, 'organic', limitable);
     for (let j = 1; j <= Math.min(t.stages, 10_000); j++)
@@ -151,6 +207,9 @@ export function outline(raw: unknown): Outline {
     feeds,
     tanks,
     trains,
+    splits,
+    blends,
+    batches,
     stageKeys: [...new Set(stageKeys)],
     spare: spareFeeds([...listed(top.upsets), ...movesOf(top.procedures)], feeds),
     named,

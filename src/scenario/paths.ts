@@ -1,3 +1,4 @@
+import { quantitiesOf } from './limits.ts';
 import { hint } from './nearest.ts';
 import type { Outline } from './outline.ts';
 import type { Problem } from './refusal.ts';
@@ -30,6 +31,9 @@ export function checkPaths(raw: Record<string, unknown>, plan: Outline, problems
     const [, name, stage] = STAGE.exec(path) ?? [];
     const train = plan.trains.find((t) => t.name === name);
     if (train) return `no stage ${show(stage)}: ${train.name} has stages 1 to ${train.stages}`;
+    const share = path.replace(/\.flow$/, '.share');
+    if (share !== path && plan.changeable.has(share))
+      return `${show(path)} follows from a share; change ${show(share)}`;
     if (plan.limitable.has(path))
       return `${show(path)} is a result and cannot be changed; change a feed, the flow of a tank or a mixer`;
     return `unknown quantity ${show(path)}${hint(path, changeable)}`;
@@ -39,8 +43,10 @@ export function checkPaths(raw: Record<string, unknown>, plan: Outline, problems
     const message = change(quantity);
     if (message !== null) problems.push({ path, message });
   }
-  const result = (path: string): string | null =>
-    plan.limitable.has(path) ? null : `unknown quantity ${show(path)}${hint(path, limitable)}`;
+  const result = (path: string): string | null => {
+    const wrong = quantitiesOf(path, plan).find((q) => q !== null && !plan.limitable.has(q));
+    return wrong == null ? null : `unknown quantity ${show(wrong)}${hint(wrong, limitable)}`;
+  };
   check('limits', 'keep', result);
   for (const quantity of Object.keys(settings(settings(raw.compare).columns))) {
     const message = result(quantity);

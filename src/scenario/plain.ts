@@ -1,4 +1,4 @@
-import type { Mixer, Properties, Settler, Tank, Train } from './scenario.ts';
+import type { Mixer, Properties, Scenario, Settler, Stage, Tank, Train } from './scenario.ts';
 
 /*
  * What a plant has that says nothing about the finer points of its vessels. Each default is stated here, once.
@@ -7,6 +7,7 @@ import type { Mixer, Properties, Settler, Tank, Train } from './scenario.ts';
 export const plainMixer = {
   pumps: false,
   inversion: null,
+  organicShare: null,
   overflow: { length: 1, area: 1 },
 } as const satisfies Partial<Mixer>;
 
@@ -17,9 +18,22 @@ export const plainSettler = {
   weirs: null,
 } as const satisfies Partial<Settler>;
 
-export const plainTrain = { hydraulics: 'full', recycle: null } as const satisfies Partial<Train>;
+/** A stage without a settler. */
+export const noSettler: Settler = { aqueous: 0, organic: 0, parts: 0, area: null, ...plainSettler };
 
-export const plainTank = { makeUp: null, passes: 0 } as const satisfies Partial<Tank>;
+export const plainStage = { takes: [], draws: [] } as const satisfies Partial<Stage>;
+
+export const plainTrain = {
+  hydraulics: 'full',
+  recycle: null,
+  arrangement: { kind: 'counter-current' },
+  backFlow: { aqueous: 0, organic: 0 },
+} as const satisfies Partial<Train>;
+
+/** A plant in which no stream divides or runs together, and no vessel stands alone. */
+export const plainCircuit = { splits: [], blends: [], batches: [] } as const satisfies Partial<Scenario>;
+
+export const plainTank = { makeUp: null, passes: 0, removes: [] } as const satisfies Partial<Tank>;
 
 /** Properties of which nothing is stated, for a number of solutes. */
 export const noProperties = (solutes: number): Properties => ({

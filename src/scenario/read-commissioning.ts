@@ -1,8 +1,10 @@
 import { readChange } from './changes.ts';
+import { removalShares } from './circuit.ts';
 import type { Commissioning, Procedure, Uncertain } from './commissioning.ts';
 import { readCompare } from './compare.ts';
 import { type Basis, content } from './content.ts';
 import type { Figure } from './fields.ts';
+import { jointsOf } from './joints.ts';
 import { hint } from './nearest.ts';
 import { checkNeeds } from './needs.ts';
 import { network } from './network.ts';
@@ -52,7 +54,7 @@ export function readCommissioning(
 /** Feeds and outlets; null where the streams do not join up, which is complained about elsewhere. */
 function pricedStreams(s: Scenario): string[] | null {
   try {
-    return [...s.feeds.map((f) => f.name), ...network(s).outlets.map((q) => q.name)];
+    return [...s.feeds.map((f) => f.name), ...network(jointsOf(s)).outlets.map((q) => q.name)];
   } catch (e) {
     if (e instanceof Refusal) return null;
     throw e;
@@ -182,7 +184,16 @@ class ProcedureReader {
     const at: Figure = m.at ?? { kind: 'a time', value: 0, text: '0 h' };
     return readChange(
       { ...m, at },
-      { path, outline, basis, contents, feeds, horizon, folder },
+      {
+        path,
+        outline,
+        basis,
+        contents,
+        shares: removalShares(this.#s.tanks, this.#s.solutes),
+        feeds,
+        horizon,
+        folder,
+      },
       this.#problems,
     );
   }

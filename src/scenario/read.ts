@@ -78,6 +78,7 @@ function inOrder(list: readonly Located[]): Located[] {
 /** Plain data → scenario, from the names through the form of each setting to what settings say together. */
 function check({ raw }: Parsed, folder: string, problems: Problem[]): Scenario | null {
   const plan = outline(raw);
+  checkPresence(raw, problems);
   checkNames(plan, problems);
   checkStreams(plan, problems);
   checkPaths(raw, plan, problems);
@@ -88,6 +89,13 @@ function check({ raw }: Parsed, folder: string, problems: Problem[]): Scenario |
   problems.push(...issues.flatMap((i) => complaints(i, schema, plan)));
   checkTheRest(schema, raw, issues, plan, folder, problems);
   return null;
+}
+
+/** Without feeds and trains there is at least a batch. */
+function checkPresence(raw: object, problems: Problem[]): void {
+  if ('batches' in raw) return;
+  for (const key of ['feeds', 'trains'])
+    if (!(key in raw)) problems.push({ path: [key], message: `is missing; expected ${key} by name` });
 }
 
 /** What settings say together, as far as the wrong ones can be left out. */
@@ -108,7 +116,7 @@ function checkTheRest(
 
 function checkStreams(plan: Outline, problems: Problem[]): void {
   if (!plan.whole) return;
-  if (plan.trains.length === 0) {
+  if (plan.trains.length === 0 && plan.batches.length === 0) {
     problems.push({ path: ['trains'], message: 'a plant has at least one train' });
     return;
   }

@@ -13,7 +13,7 @@ export interface Feed {
   readonly phase: Phase;
   /** m³/s of carrier. */
   readonly flow: number;
-  /** kg/m³, solutes first, then species, in the scenario's order. */
+  /** kg/m³, solutes first, then species, in the scenario's order. What neutralises a species counts as less than none. */
   readonly content: readonly number[];
 }
 
@@ -33,6 +33,52 @@ export interface Tank {
   readonly makeUp: string | null;
   /** Share of the other phase that is passed on with the tank's stream; the rest stays as bottoms. */
   readonly passes: number;
+  /** What is taken out of it (by electrolysis, precipitation …), solute by solute; null: nothing. */
+  readonly removes: readonly (Removal | null)[];
+}
+
+/** A solute that leaves the plant from a tank, and what it gives back to the liquor. */
+export interface Removal {
+  /** kg/s, or the share of what flows in that does not flow out again. */
+  readonly how: { readonly rate: number } | { readonly share: number };
+  /** kg of each species returned per kg removed; null: what its extraction sets free. */
+  readonly returns: readonly number[] | null;
+}
+
+/** What is taken of a stream: a share of it, or a flow in m³/s (all there is where that is less). */
+export type Take = { readonly share: number } | { readonly flow: number };
+
+export interface Branch {
+  readonly name: string;
+  readonly take: Take;
+}
+
+/** A stream that divides; `rest` takes what the branches leave. */
+export interface Split {
+  readonly stream: string;
+  readonly branches: readonly Branch[];
+  readonly rest: string;
+}
+
+/** Streams that run together into one. */
+export interface Blend {
+  readonly name: string;
+  readonly of: readonly string[];
+}
+
+/** A stream drawn off a settler. */
+export interface Draw extends Branch {
+  readonly phase: Phase;
+}
+
+/** One vessel without flow: phases stirred at a given ratio, as in the laboratory. */
+export interface Batch {
+  readonly name: string;
+  readonly mixer: Mixer;
+  /** Organic share of the vessel. */
+  readonly organicShare: number;
+  readonly content: Readonly<Record<Phase, readonly number[]>>;
+  readonly equilibrium: readonly (Law | null)[];
 }
 
 export interface Impeller {
@@ -61,6 +107,8 @@ export interface Mixer {
   readonly pumps: boolean;
   /** Organic share of the mixer at which the continuous phase flips: below `low` aqueous, above `high` organic. */
   readonly inversion: { readonly low: number; readonly high: number } | null;
+  /** Organic share of a mixer without a settler; null: that of the flows at time zero. */
+  readonly organicShare: number | null;
   /** With weirs: length of its overflow and plan area, m and m². */
   readonly overflow: { readonly length: number; readonly area: number };
 }
@@ -121,7 +169,12 @@ export interface Settler {
 
 export interface Stage {
   readonly mixer: Mixer;
+  /** Without a settler all its figures are zero and it has no parts. */
   readonly settler: Settler;
+  /** Streams that enter its mixer from outside the train. */
+  readonly takes: readonly string[];
+  /** Streams drawn off what leaves it. */
+  readonly draws: readonly Draw[];
 }
 
 export type Formula =
@@ -168,7 +221,16 @@ export interface Train {
   readonly initial: Initial;
   readonly hydraulics: 'full' | 'weirs';
   readonly recycle: Recycle | null;
+  readonly arrangement: Arrangement;
+  /** Stages without settlers: flow back to the neighbour, over the flow onward of the same phase. */
+  readonly backFlow: Readonly<Record<Phase, number>>;
 }
+
+/** How the phases pass the stages. Cross-current: the fresh phase is shared out over all stages, summing to 1. */
+export type Arrangement =
+  | { readonly kind: 'counter-current' }
+  | { readonly kind: 'co-current' }
+  | { readonly kind: 'cross-current'; readonly fresh: Phase; readonly shares: readonly number[] };
 
 export interface Change {
   /** s from the start of the run. */
@@ -188,9 +250,12 @@ export interface Change {
 
 export interface Limit {
   readonly stream: string;
+  /** A quantity of the stream, or `<quantity> / <stream>.<quantity>`: a ratio to another one. */
   readonly quantity: string;
   readonly side: 'below' | 'above';
   readonly value: number;
+  /** s from which on it counts. */
+  readonly from: number;
 }
 
 /** A state kept by an earlier run. */
@@ -220,6 +285,9 @@ export interface Scenario {
   readonly feeds: readonly Feed[];
   readonly tanks: readonly Tank[];
   readonly trains: readonly Train[];
+  readonly splits: readonly Split[];
+  readonly blends: readonly Blend[];
+  readonly batches: readonly Batch[];
   /** kg of species set free per kg of solute extracted: releases[solute][species]. */
   readonly releases: readonly (readonly number[])[];
   readonly start: 'barren' | 'steady' | 'empty' | SavedState;

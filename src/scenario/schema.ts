@@ -23,6 +23,15 @@ import {
 import { FUNCTIONS } from './formula.ts';
 import { isBuiltIn } from './names.ts';
 import { dropSizeNames } from './plain.ts';
+import {
+  arrangement,
+  blends,
+  neutralises,
+  organicShare,
+  removes,
+  splits,
+  stageStreams,
+} from './schema-circuit.ts';
 import { show } from './show.ts';
 import { MOST } from './units.ts';
 
@@ -111,6 +120,8 @@ const law = z.discriminatedUnion(
   },
 );
 
+const laws = record(law, 'a law for each solute that transfers').optional();
+
 const length = figure(['a length'], positive);
 const specificFlow = figure(['a specific flow'], positive);
 const percentage = figure(['a percentage'], between(0, 1, '0 and 100 %'));
@@ -173,6 +184,7 @@ const mixer = object({
     .optional(),
   overflow_weir: length.optional(),
   area: figure(['an area'], positive).optional(),
+  organic_share: organicShare,
 });
 
 const settler = object({
@@ -187,6 +199,9 @@ const settler = object({
   entrainment: entrainment.optional(),
   weirs: weirs.optional(),
 });
+
+const stage = object({ mixer: mixer.optional(), settler: settler.optional(), ...stageStreams });
+export type RawStage = z.output<typeof stage>;
 
 const recycle = object({
   aqueous: flow.optional(),
@@ -205,9 +220,10 @@ const upset = object({
 });
 
 const limit = object({
-  keep: text(),
+  keep: text().describe('a quantity, or a ratio of two: one / other'),
   below: later("a limit such as '0.6 g/L'").optional(),
   above: later("a limit such as '0.6 g/L'").optional(),
+  from: figure(['a time'], notNegative).optional().describe('it counts from this time on'),
 });
 
 /** Names that a scenario uses as keys; the schema must know them beforehand. */
@@ -225,9 +241,7 @@ export function scenarioSchema({ solutes, species, stageKeys }: Keys) {
   const start = z.union([z.literal('as entering'), object(content)], {
     error: (i) => missing(i, "expected 'as entering' or concentrations by name"),
   });
-  const differs = Object.fromEntries(
-    stageKeys.map((k) => [k, object({ mixer: mixer.optional(), settler: settler.optional() }).optional()]),
-  );
+  const differs = Object.fromEntries(stageKeys.map((k) => [k, stage.optional()]));
   return object({
     title: text(200),
     about: text(10_000, '\n\t').optional(),
@@ -244,7 +258,17 @@ export function scenarioSchema({ solutes, species, stageKeys }: Keys) {
       'diffusivities by solute',
     ).optional(),
     // Settings after the content: a solute that is called like one is refused, and must not take its place here.
-    feeds: record(object({ ...content, phase, flow }), 'feeds by name'),
+    feeds: record(
+      object({
+        ...content,
+        phase,
+        flow,
+        neutralises: neutralises.describe('of each species, what a volume of this feed uses up'),
+      }),
+      'feeds by name',
+    ).default({}),
+    splits: splits.optional(),
+    blends: blends.optional(),
     tanks: record(
       object({
         ...content,
@@ -258,6 +282,8 @@ export function scenarioSchema({ solutes, species, stageKeys }: Keys) {
         passes: figure(['a percentage'], notNegative)
           .optional()
           .describe('share of the other phase that is passed on'),
+        removes,
+        returns: record(releases, 'what a removed solute gives back, by solute').optional(),
       }),
       'tanks by name',
     ).optional(),
@@ -267,15 +293,29 @@ export function scenarioSchema({ solutes, species, stageKeys }: Keys) {
         aqueous: arrow,
         organic: arrow,
         mixer: mixer.optional(),
-        settler: settler.optional(),
-        equilibrium: record(law, 'a law for each solute that transfers').optional(),
+        settler: z
+          .union([z.literal('none'), settler], {
+            error: (i) => missing(i, "expected the settler's settings, or none"),
+          })
+          .optional(),
+        ...arrangement,
+        equilibrium: laws,
         initial: object({ aqueous: start.optional(), organic: start.optional() }).optional(),
         hydraulics: word(['full', 'weirs']).optional(),
         recycle: recycle.optional(),
         ...differs,
       }),
       'trains by name',
-    ),
+    ).default({}),
+    batches: record(
+      object({
+        mixer,
+        aqueous: object(content).optional(),
+        organic: object(content).optional(),
+        equilibrium: laws,
+      }),
+      'batches by name',
+    ).optional(),
     start: z
       .union([word(STARTS), object({ saved: text() })], {
         error: (i) => oneOf(i, [...STARTS, '{saved: file}']),

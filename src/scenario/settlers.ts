@@ -3,7 +3,7 @@ import type { Problem } from './refusal.ts';
 import type { Band, Carry, Path, Settler, Weirs } from './scenario.ts';
 import type { RawScenario } from './schema.ts';
 
-type RawSettler = NonNullable<RawScenario['trains'][string]['settler']>;
+type RawSettler = Exclude<NonNullable<RawScenario['trains'][string]['settler']>, 'none'>;
 type Figures = Pick<Settler, 'shortCircuit' | 'band' | 'carry' | 'weirs'>;
 
 /** Band, entrainment, weirs and short circuit of a settler. */

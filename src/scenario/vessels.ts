@@ -1,25 +1,40 @@
-import { STAGE } from './outline.ts';
-import { dropSizeNames, plainMixer, usualInversion, usualPowerNumber } from './plain.ts';
+import { stageStreamsOf } from './circuit.ts';
+import { STAGE } from './outline-circuit.ts';
+import {
+  dropSizeNames,
+  noSettler,
+  plainMixer,
+  plainStage,
+  usualInversion,
+  usualPowerNumber,
+} from './plain.ts';
 import type { Problem } from './refusal.ts';
 import type { Mixer, Path, Phase, Settler, Stage } from './scenario.ts';
-import type { RawScenario } from './schema.ts';
+import type { RawStage as Own, RawScenario } from './schema.ts';
 import { settlerFigures } from './settlers.ts';
 
 type RawTrain = RawScenario['trains'][string];
 type RawMixer = NonNullable<RawTrain['mixer']>;
-type RawSettler = NonNullable<RawTrain['settler']>;
-interface Own {
-  readonly mixer?: RawMixer;
-  readonly settler?: RawSettler;
-}
+type RawSettler = Exclude<NonNullable<RawTrain['settler']>, 'none'>;
 
 /** The stages of a train: what all have in common, and what differs in one. */
 export function stagesOf(t: RawTrain, path: Path, problems: Problem[]): Stage[] {
   const own = ownSettings(t, path, problems);
   // Stages without settings of their own share one object, and one complaint; where none does there is none.
   const mixer = once(() => mixerOf(t.mixer ?? {}, [...path, 'mixer'], problems));
-  const settler = once(() => settlerOf(t.settler ?? {}, [...path, 'settler'], problems));
-  const common = once((): Stage => ({ mixer: mixer(), settler: settler() }));
+  const shared = t.settler ?? {};
+  const settler = once(() =>
+    shared === 'none' ? noSettler : settlerOf(shared, [...path, 'settler'], problems),
+  );
+  const common = once((): Stage => ({ mixer: mixer(), settler: settler(), ...plainStage }));
+  const settlerOfStage = (own: Own, at: Path): Settler => {
+    if (own.settler === undefined) return settler();
+    if (shared === 'none') {
+      problems.push({ path: at, message: 'the stages of this train have no settlers (settler: none)' });
+      return noSettler;
+    }
+    return settlerOf(inherit(shared, own.settler, SETTLER_ALTERNATIVES), at, problems);
+  };
   return Array.from({ length: t.stages }, (_, i): Stage => {
     const differs = own.get(i + 1);
     if (!differs) return common();
@@ -28,13 +43,8 @@ export function stagesOf(t: RawTrain, path: Path, problems: Problem[]): Stage[] 
       mixer: differs.mixer
         ? mixerOf(inherit(t.mixer ?? {}, differs.mixer, MIXER_ALTERNATIVES), [...at, 'mixer'], problems)
         : mixer(),
-      settler: differs.settler
-        ? settlerOf(
-            inherit(t.settler ?? {}, differs.settler, SETTLER_ALTERNATIVES),
-            [...at, 'settler'],
-            problems,
-          )
-        : settler(),
+      settler: settlerOfStage(differs, [...at, 'settler']),
+      ...stageStreamsOf(differs),
     };
   });
 }
@@ -86,7 +96,8 @@ function inherit<T extends object>(
   return { ...inherited, ...own };
 }
 
-function mixerOf(m: RawMixer, path: Path, problems: Problem[]): Mixer {
+/** A mixer as stated. Complains in place. */
+export function mixerOf(m: RawMixer, path: Path, problems: Problem[]): Mixer {
   if (m.volume === undefined)
     problems.push({ path, message: "the mixer needs its volume, such as 'volume: 42 m^3'" });
   const given = [m.ka, m.stage_efficiency, m.impeller].filter((q) => q !== undefined).length;
@@ -103,6 +114,7 @@ function mixerOf(m: RawMixer, path: Path, problems: Problem[]): Mixer {
     ...plainMixer,
     pumps: m.pumps ?? plainMixer.pumps,
     inversion: inversionOf(m, path, problems),
+    organicShare: m.organic_share?.value ?? plainMixer.organicShare,
     overflow: overflowOf(m),
   };
 }

@@ -1,5 +1,6 @@
 import type { Plant } from '../plant/assemble.ts';
 import type { F } from '../solve/system.ts';
+import { trainStreams } from './train-streams.ts';
 
 /** A figure that people look for and that follows from a row of outputs. */
 export interface Derived {
@@ -20,20 +21,29 @@ export function derivedFigures(plant: Plant): Derived[] {
     const i = at.get(path);
     return i === undefined ? () => 0 : (row) => row[i];
   };
-  return s.trains.flatMap((t) => {
-    const flow = { in: reader(`${t.organic.from}.flow`), out: reader(`${t.organic.to}.flow`) };
-    const aqueous = reader(`${t.aqueous.from}.flow`);
+  /** Σ flow · content of some streams, kg/s. */
+  const carries = (streams: readonly string[], solute: string): ((row: F) => number) => {
+    const parts = streams.map((n) => ({ flow: reader(`${n}.flow`), content: reader(`${n}.${solute}`) }));
+    return (row) => parts.reduce((n, q) => n + q.flow(row) * q.content(row), 0);
+  };
+  return s.trains.flatMap((t, index) => {
+    const organic = trainStreams(t, index, plant.network, 'organic');
+    const aqueous = trainStreams(t, index, plant.network, 'aqueous');
     const perSolute = s.solutes.flatMap((solute, i): Derived[] => {
       if (!t.equilibrium[i]) return [];
       const c = {
         lean: reader(`${t.organic.from}.${solute}`),
         loaded: reader(`${t.organic.to}.${solute}`),
-        feed: reader(`${t.aqueous.from}.${solute}`),
       };
-      const transferred = (row: F): number => flow.out(row) * c.loaded(row) - flow.in(row) * c.lean(row);
+      const [brought, taken, fed] = [
+        carries(organic.in, solute),
+        carries(organic.out, solute),
+        carries(aqueous.in, solute),
+      ];
+      const transferred = (row: F): number => taken(row) - brought(row);
       const share = (row: F): number => {
         const rate = transferred(row);
-        const offered = rate >= 0 ? aqueous(row) * c.feed(row) : flow.in(row) * c.lean(row);
+        const offered = rate >= 0 ? fed(row) : brought(row);
         return offered > 0 ? Math.abs(rate) / offered : 0;
       };
       return [

@@ -1,5 +1,8 @@
 import type { Plant } from '../plant/assemble.ts';
-import { isotherm } from '../plant/isotherm.ts';
+import { otherPhase } from '../plant/flow.ts';
+import { equilibriumAt, isotherm } from '../plant/isotherm.ts';
+import { route } from '../plant/route.ts';
+import type { Scenario, Train } from '../scenario/scenario.ts';
 import type { F } from '../solve/system.ts';
 import type { Snapshot } from './result.ts';
 
@@ -40,42 +43,100 @@ export function diagrams(plant: Plant, snapshots: readonly Snapshot[]): Diagram[
     s.solutes.flatMap((solute, i): Diagram[] => {
       const law = t.equilibrium[i];
       if (!law) return [];
-      const n = t.stages.length;
       const moments = snapshots.map(({ label, time, outputs: y }): Moment => {
         const vessel = (j: number, unit: string, phase: string): number =>
           read(y, `${t.name}.${j}.${unit}.${phase}.${solute}`);
         const feed = read(y, `${t.aqueous.from}.${solute}`);
         const solvent = read(y, `${t.organic.from}.${solute}`);
-        const operating = Array.from(
-          { length: n + 1 },
-          (_, j): Point => ({
-            x: j === 0 ? feed : vessel(j, 'settler', 'aqueous'),
-            y: j === n ? solvent : vessel(j + 1, 'settler', 'organic'),
-          }),
+        const leaving = (j: number): Point => ({
+          x: vessel(j + 1, 'settler', 'aqueous'),
+          y: vessel(j + 1, 'settler', 'organic'),
+        });
+        const operating = operatingLine(
+          t,
+          { x: feed, y: solvent },
+          t.stages.map((_, j) => leaving(j)),
         );
         const stages = Array.from(
-          { length: n },
+          { length: t.stages.length },
           (_, j): Point => ({
             x: vessel(j + 1, 'mixer', 'aqueous'),
             y: vessel(j + 1, 'mixer', 'organic'),
           }),
         );
-        const reach = 1.08 * Math.max(...operating.map((p) => p.x), ...stages.map((p) => p.x), 1e-9);
-        const entering = [...s.solutes, ...s.species].map((c) => read(y, `${t.aqueous.from}.${c}`));
+        const components = [...s.solutes, ...s.species];
+        const entering = components.map((c) => read(y, `${t.aqueous.from}.${c}`));
+        if (competes(s, t)) {
+          const mixers = t.stages.map((_, j) =>
+            components.map((c) => read(y, `${t.name}.${j + 1}.mixer.aqueous.${c}`)),
+          );
+          return {
+            label,
+            time,
+            isotherm: alongStages(plant, t, i, [entering, ...mixers]),
+            operating,
+            stages,
+          };
+        }
+        const drawn = [...operating.filter((p) => Number.isFinite(p.x)), ...stages];
+        const reach = 1.08 * Math.max(...drawn.map((p) => p.x), 1e-9);
         const curve = isotherm(plant, t, i, entering);
         const xs = Array.from({ length: POINTS + 1 }, (_, k) => reach * (k / POINTS) ** 2);
         return { label, time, isotherm: xs.map((x) => ({ x, y: curve(x) })), operating, stages };
       });
-      return [{ train: t.name, solute, along: along(plant, i, law.law), moments }];
+      return [{ train: t.name, solute, along: along(plant, t, i), moments }];
     }),
   );
 }
 
-function along(plant: Plant, solute: number, law: string): string {
+/**
+ * Streams that pass each other. Counter-current: what leaves a stage and what comes towards it. Co-current: what leaves
+ * each stage, from what enters. Cross-current: for each stage a line of its own from what enters to what leaves.
+ */
+function operatingLine(t: Train, entering: Point, leaving: readonly Point[]): Point[] {
+  const { arrangement: a } = t;
+  if (a.kind === 'counter-current')
+    return [entering, ...leaving].map((p, j) => ({ x: p.x, y: (leaving[j] ?? entering).y }));
+  if (a.kind === 'co-current') return [entering, ...leaving];
+  const order = route(t, otherPhase(a.fresh)).order;
+  return order.flatMap((j, k): Point[] => {
+    const before = k === 0 ? entering : leaving[order[k - 1]];
+    const from = a.fresh === 'organic' ? { x: before.x, y: entering.y } : { x: entering.x, y: before.y };
+    return [from, leaving[j], BREAK];
+  });
+}
+
+/** Ends a line, so that the next one begins anew. */
+const BREAK: Point = { x: Number.NaN, y: Number.NaN };
+
+/** Whether several solutes transfer in a train, so that the curve of one depends on the others. */
+const competes = (s: Scenario, t: Train): boolean =>
+  s.solutes.filter((_, i) => t.equilibrium[i] !== null).length > 1;
+
+/** Equilibrium of one solute where all others are as they are from stage to stage, between these by straight lines. */
+function alongStages(
+  plant: Plant,
+  t: Train,
+  solute: number,
+  aqueous: readonly (readonly number[])[],
+): Point[] {
+  const star = equilibriumAt(plant, t, solute, 'organic');
+  const none = plant.scenario.solutes.map(() => 0);
+  const pieces = Math.max(2, Math.ceil(POINTS / aqueous.length));
+  return aqueous.slice(1).flatMap((to, j) => {
+    const from = aqueous[j];
+    return Array.from({ length: pieces + (j === aqueous.length - 2 ? 1 : 0) }, (_, k): Point => {
+      const c = from.map((v, q) => v + ((to[q] - v) * k) / pieces);
+      return { x: c[solute], y: star(c, none) };
+    });
+  });
+}
+
+function along(plant: Plant, t: Train, solute: number): string {
   const { scenario: s } = plant;
+  if (competes(s, t)) return 'equilibrium with all else dissolved as it is from stage to stage';
   const released = s.releases[solute].flatMap((r, k) => (r !== 0 ? [s.species[k]] : []));
-  const others = s.solutes.length > 1 && (law === 'langmuir' || law === 'exchange') ? ', solute alone' : '';
-  if (released.length > 0)
-    return `isotherm at the ${released.join(', ')} that the transfer itself sets free${others}`;
-  return `isotherm${others}`;
+  return released.length > 0
+    ? `isotherm at the ${released.join(', ')} that the transfer itself sets free`
+    : 'isotherm';
 }

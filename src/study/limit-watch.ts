@@ -16,7 +16,7 @@ export interface LimitReport {
   readonly limit: Limit;
   readonly path: string;
   readonly unit: string;
-  /** Outside the limit from the very start. */
+  /** Outside the limit from the moment on from which it counts. */
   readonly atStart: boolean;
   readonly spells: readonly Spell[];
   /** s outside, in all spells together. */
@@ -60,7 +60,7 @@ export class LimitWatch implements Watcher {
     this.#plant = plant;
     this.#limit = limit;
     this.#output = find(limit.quantity);
-    this.#flow = limit.quantity === 'flow' || limit.quantity === 'volume' ? -1 : find('flow');
+    this.#flow = system.outputs[this.#output]?.unit === 'kg/m^3' ? find('flow') : -1;
     this.#sign = limit.side === 'below' ? 1 : -1;
     this.#x = new Float64Array(system.places.length);
     this.#w = new Float64Array(system.inputs.length);
@@ -68,22 +68,21 @@ export class LimitWatch implements Watcher {
   }
 
   begin: NonNullable<Watcher['begin']> = (t, x, w) => {
+    if (t < this.#limit.from) return;
     this.#plant.system.output(x, w, this.#plant.parameters, this.#y);
-    this.#last = this.#excess();
-    const over = this.#last > 0;
-    if (!this.#began) {
-      this.#began = true;
-      this.#atStart = over;
-      if (over) this.#spells.push({ from: t, to: null });
-    } else if (over !== this.#over) this.#turn(t, over);
-    this.#consider(t);
-    this.#over = over;
+    this.#stand(t);
   };
 
   step: NonNullable<Watcher['step']> = (step, inputs) => {
-    const span = step.t1 - step.t0;
+    if (step.t1 <= this.#limit.from) return;
+    const first = Math.max(step.t0, this.#limit.from);
+    if (!this.#began) {
+      this.#look(step, inputs, first);
+      this.#stand(first);
+    }
+    const span = step.t1 - first;
     const times = Array.from({ length: LOOKS + 1 }, (_, i) =>
-      i === LOOKS ? step.t1 : step.t0 + (span * i) / LOOKS,
+      i === LOOKS ? step.t1 : first + (span * i) / LOOKS,
     );
     let from = times[0];
     let best = { at: 0, excess: this.#last };
@@ -110,6 +109,19 @@ export class LimitWatch implements Watcher {
     if (inwards !== 0 && this.#excessAt(step, inputs, times[best.at] + inwards * span) <= best.excess) return;
     this.#climb(step, inputs, times[Math.max(0, best.at - 1)], times[Math.min(LOOKS, best.at + 1)]);
   };
+
+  /** How things stand at a moment that no step leads to: at the start, as the limit comes into force, after a jump. */
+  #stand(t: number): void {
+    this.#last = this.#excess();
+    const over = this.#last > 0;
+    if (!this.#began) {
+      this.#began = true;
+      this.#atStart = over;
+      if (over) this.#spells.push({ from: t, to: null });
+    } else if (over !== this.#over) this.#turn(t, over);
+    this.#consider(t);
+    this.#over = over;
+  }
 
   report(): LimitReport {
     const output = this.#plant.system.outputs[this.#output];

@@ -2,8 +2,11 @@ import type { Plant } from '../plant/assemble.ts';
 import { recycled } from '../plant/design.ts';
 import { forBoth } from '../plant/flow.ts';
 import { equilibriumAt } from '../plant/isotherm.ts';
-import type { Law, Train } from '../scenario/scenario.ts';
+import type { Law } from '../scenario/scenario.ts';
 import type { F } from '../solve/system.ts';
+import { loadOf, type Separation, separation } from './separation.ts';
+import { StageInlets } from './stage-inlets.ts';
+import { trainStreams } from './train-streams.ts';
 
 /** What people look for in a train at one moment, SI. */
 export interface TrainFigures {
@@ -15,6 +18,8 @@ export interface TrainFigures {
   readonly specificLoss: number;
   readonly stages: readonly StageFigures[];
   readonly solutes: readonly SoluteFigures[];
+  /** How its solutes are told apart; null where fewer than two transfer. */
+  readonly separation: Separation | null;
 }
 
 export interface StageFigures {
@@ -47,6 +52,7 @@ export function trainFigures(plant: Plant, y: F): TrainFigures[] {
   const at = new Map(plant.system.outputs.map((o, i) => [o.path, i]));
   const known = (path: string): number | undefined => y[at.get(path) ?? -1];
   const read = (path: string): number => known(path) ?? 0;
+  const now = new StageInlets(plant, read);
   return plant.scenario.trains.map((t, i): TrainFigures => {
     const flow = (name: string): number => read(`${name}.flow`);
     const solventLost = read(`${t.aqueous.to}.carried organic`);
@@ -56,11 +62,9 @@ export function trainFigures(plant: Plant, y: F): TrainFigures[] {
       advance: flow(t.organic.from) / flow(t.aqueous.from),
       solventLost,
       specificLoss: out > 0 ? solventLost / out : 0,
-      stages: t.stages.map((_, j) => stageFigures(plant, i, j, known)),
-      solutes: plant.scenario.solutes.flatMap((solute, k) => {
-        const law = t.equilibrium[k];
-        return law ? [soluteFigures(plant, t, k, solute, law, read)] : [];
-      }),
+      stages: t.stages.map((_, j) => stageFigures(plant, i, j, now, known)),
+      solutes: t.equilibrium.flatMap((law, k) => (law ? [soluteFigures(plant, i, k, law, now, read)] : [])),
+      separation: separation(plant, t, read),
     };
   });
 }
@@ -73,20 +77,21 @@ function stageFigures(
   plant: Plant,
   train: number,
   j: number,
+  now: StageInlets,
   read: (path: string) => number | undefined,
 ): StageFigures {
   const t = plant.scenario.trains[train];
   const { mixer, settler } = t.stages[j];
-  const { inlet, stages } = plant.designs[train];
-  const d = stages[j];
+  const d = plant.designs[train].stages[j];
   const path = `${t.name}.${j + 1}`;
   const share = read(`${path}.mixer.organic_share`) ?? d.mixer.organic / mixer.volume;
-  const through = forBoth((phase) => read(`${t[phase].from}.flow`) ?? inlet[phase]);
+  const through = forBoth((phase) => now.flows.stage(train, phase, j).enters);
   const back = recycled(t, through);
-  // What neighbours carry over is small and taken as at design.
-  const entering = forBoth((phase) =>
-    Math.max(0, through[phase] + back[phase] + d.entering[phase] - d.recycled[phase] - inlet[phase]),
-  );
+  // What neighbours carry over and send back goes with the flow, as at design.
+  const entering = forBoth((phase) => {
+    const beside = d.set[phase] > 0 ? (d.entering[phase] - d.recycled[phase]) / d.set[phase] : 1;
+    return Math.max(0, through[phase] * beside + back[phase]);
+  });
   const held = forBoth((phase) => {
     const depth = read(`${path}.settler.${phase}_depth`);
     if (depth === undefined || settler.area === null) return d.mixer[phase] + d.band[phase] + d.layer[phase];
@@ -104,18 +109,21 @@ function stageFigures(
 
 function soluteFigures(
   plant: Plant,
-  t: Train,
+  train: number,
   k: number,
-  solute: string,
   law: Law,
+  now: StageInlets,
   read: Read,
 ): SoluteFigures {
-  const rate = (name: string): number => read(`${name}.flow`) * read(`${name}.${solute}`);
-  const transferred = rate(t.organic.to) - rate(t.organic.from);
-  const offered = transferred >= 0 ? rate(t.aqueous.from) : rate(t.organic.from);
+  const t = plant.scenario.trains[train];
+  const solute = plant.scenario.solutes[k];
+  const rate = (names: readonly string[]): number =>
+    names.reduce((n, name) => n + read(`${name}.flow`) * read(`${name}.${solute}`), 0);
+  const organic = trainStreams(t, train, plant.network, 'organic');
+  const transferred = rate(organic.out) - rate(organic.in);
+  const offered =
+    transferred >= 0 ? rate(trainStreams(t, train, plant.network, 'aqueous').in) : rate(organic.in);
   const loaded = read(`${t.organic.to}.${solute}`);
-  const ceiling =
-    law.law === 'langmuir' ? law.capacity : law.law === 'exchange' ? law.extractant / law.perSolute : null;
   const star = equilibriumAt(plant, t, k, 'aqueous');
   const { solutes, species } = plant.scenario;
   return {
@@ -123,13 +131,12 @@ function soluteFigures(
     transferred,
     recovery: offered > 0 ? Math.abs(transferred) / offered : 0,
     netTransfer: loaded - read(`${t.organic.from}.${solute}`),
-    load: ceiling === null ? null : loaded / ceiling,
+    load: loadOf(law, loaded),
     efficiency: t.stages.map((_, j) => {
       const mixer = `${t.name}.${j + 1}.mixer`;
       const aqueous = [...solutes, ...species].map((n) => read(`${mixer}.aqueous.${n}`));
       const organic = solutes.map((n) => read(`${mixer}.organic.${n}`));
-      const before =
-        j === 0 ? read(`${t.aqueous.from}.${solute}`) : read(`${t.name}.${j}.settler.aqueous.${solute}`);
+      const before = now.content(train, 'aqueous', j, solute);
       const possible = before - star(aqueous, organic);
       return Math.abs(possible) > 1e-9 * Math.max(before, 1e-9) ? (before - aqueous[k]) / possible : null;
     }),

@@ -23,12 +23,17 @@ const { values: options } = parseArgs({
   },
 });
 const repeats = Number(options.repeats);
-const cases = { ten: 'ten', circuit: 'saltbush-copper' };
+const cases = {
+  ten: { file: 'ten' },
+  circuit: { file: 'saltbush-copper' },
+  'two metals': { file: 'mulga-two-metals', horizon: 24 * 3600 },
+};
 const tolerances = [3e-3, 1e-3, 1e-4, 1e-5, 1e-6];
 
 function prepare(name) {
-  const file = fileURLToPath(new URL(`../../scenarios/${cases[name]}.yaml`, import.meta.url));
-  const { scenario } = readScenario(readFileSync(file, 'utf8'), { file, folder: dirname(file) });
+  const file = fileURLToPath(new URL(`../../scenarios/${cases[name].file}.yaml`, import.meta.url));
+  const read = readScenario(readFileSync(file, 'utf8'), { file, folder: dirname(file) }).scenario;
+  const scenario = { ...read, horizon: cases[name].horizon ?? read.horizon };
   const plant = assemble(scenario);
   const { schedule } = upsetSchedule(plant, scenario.upsets, scenario.horizon);
   return { scenario, plant, schedule, initial: startState(plant) };
@@ -81,17 +86,12 @@ function worstError(p, list, reference) {
 function volumes({ scenario, plant }) {
   const { places } = plant.system;
   const at = new Map();
-  for (const t of scenario.trains)
+  scenario.trains.forEach((t, i) => {
     t.stages.forEach((stage, j) => {
-      const flow = (phase) => {
-        const m = plant.network.flowSource(t[phase].from);
-        return m.kind === 'feed' ? scenario.feeds[m.index].flow : scenario.tanks[m.index].flow;
-      };
-      const share = { aqueous: flow('aqueous') / (flow('aqueous') + flow('organic')) };
-      share.organic = 1 - share.aqueous;
+      const { mixer } = plant.designs[i].stages[j];
       for (const phase of ['aqueous', 'organic'])
         for (const c of [...scenario.solutes, ...(phase === 'aqueous' ? scenario.species : [])]) {
-          at.set(`${t.name}.${j + 1}.mixer.${phase}.${c}`, stage.mixer.volume * share[phase]);
+          at.set(`${t.name}.${j + 1}.mixer.${phase}.${c}`, mixer[phase]);
           for (let k = 1; k <= stage.settler.parts; k++)
             at.set(
               `${t.name}.${j + 1}.settler.${k}.${phase}.${c}`,
@@ -99,6 +99,7 @@ function volumes({ scenario, plant }) {
             );
         }
     });
+  });
   for (const t of scenario.tanks)
     for (const c of scenario.solutes) at.set(`${t.name}.${t.phase}.${c}`, t.held);
   return places.flatMap((q, i) => (at.has(q.path) ? [[i, at.get(q.path)]] : []));

@@ -1,6 +1,6 @@
 import fc from 'fast-check';
 import { assemble } from '../../src/plant/assemble.ts';
-import { noProperties, plainMixer, plainTank, usualInversion } from '../../src/scenario/plain.ts';
+import { noProperties, plainMixer, plainTank, plainTrain, usualInversion } from '../../src/scenario/plain.ts';
 import { Refusal } from '../../src/scenario/refusal.ts';
 import type {
   Band,
@@ -94,6 +94,7 @@ const anyMixer = (volume: number): fc.Arbitrary<Mixer> =>
     side: fc.constantFrom<Phase>('aqueous', 'organic'),
     pumps: fc.boolean(),
     inversion: fc.constantFrom(null, usualInversion),
+    organicShare: fc.constant(null),
     overflow: fc.constant(plainMixer.overflow),
     transfer: fc.oneof(
       fc.record({ given: fc.constant('ka' as const), ka: decades(1e-3, 1), fixed: fc.boolean() }),
@@ -138,6 +139,8 @@ const anyStage = (both: number): fc.Arbitrary<Stage> =>
         carry: fc.oneof({ weight: 2, arbitrary: fc.constant(null) }, anyCarry),
         weirs: fc.constant(null),
       }),
+      takes: fc.constant([]),
+      draws: fc.constant([]),
     }),
   );
 
@@ -241,6 +244,8 @@ function anyTrain(k: Skeleton, index: number, extractant: number): fc.Arbitrary<
       maxLength: k.solutes,
     }),
     hydraulics: fc.constant('full' as const),
+    arrangement: fc.constant(plainTrain.arrangement),
+    backFlow: fc.constant(plainTrain.backFlow),
     recycle: fc.oneof(
       { weight: 3, arbitrary: fc.constant(null) },
       between(0.5, 2).map((hold) => ({ hold })),
@@ -320,6 +325,9 @@ export const anyPlant: fc.Arbitrary<Scenario> = fc
         species: fc.constant(['acid']),
         feeds,
         tanks,
+        splits: fc.constant([]),
+        blends: fc.constant([]),
+        batches: fc.constant([]),
         trains: fc.tuple(...Array.from({ length: k.trains }, (_, i) => anyTrain(k, i, extractant))),
         releases: fc.array(
           fc.oneof(fc.constant(0), between(0.3, 2)).map((r) => [r]),

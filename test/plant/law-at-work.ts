@@ -1,6 +1,6 @@
 import { type Derive, type Execution, generated, kernel } from '../../src/math/kernel.ts';
 import { chemistry } from '../../src/plant/chemistry.ts';
-import { noProperties, plainTrain } from '../../src/scenario/plain.ts';
+import { noProperties, plainCircuit, plainTrain } from '../../src/scenario/plain.ts';
 import type { Law, Phase, Scenario, Train } from '../../src/scenario/scenario.ts';
 
 /** Concentrations at one point, g/L: one figure for each solute, and the acid. */
@@ -36,6 +36,7 @@ export class LawsAtWork {
       species: ['acid'],
       feeds: [],
       tanks: [],
+      ...plainCircuit,
       trains: [train],
       releases: solutes.map(() => [0]),
       start: 'barren',
@@ -45,7 +46,7 @@ export class LawsAtWork {
       upsets: [],
       limits: [],
     };
-    const c = chemistry(scenario, train);
+    const c = chemistry(scenario, train.equilibrium);
     const args = [...solutes, ...solutes.map((q) => `organic ${q}`), 'acid', ...c.numbers.map((q) => q.name)];
     this.#n = n;
     this.#numbers = c.numbers.map((q) => q.value);

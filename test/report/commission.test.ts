@@ -79,7 +79,7 @@ describe('random plants', () => {
       fc.property(anyPlant, (s) => {
         const moves = s.upsets.map((u, i) => ({ ...u, at: i % 2 === 0 ? 0 : u.at }));
         const limits = [
-          { stream: s.trains[0].aqueous.to, quantity: s.solutes[0], side: 'below', value: 1 },
+          { stream: s.trains[0].aqueous.to, quantity: s.solutes[0], side: 'below', value: 1, from: 0 },
         ] as const;
         const r = plainly({ ...s, upsets: moves, limits });
         expect(commissionScreen(r).join('\n')).not.toMatch(/NaN|undefined|Infinity|null/);

@@ -4,7 +4,14 @@ import type { RunResult } from '../../src/study/result.ts';
 import { run } from '../../src/study/run.ts';
 import { scenario } from '../support/plants.ts';
 
-const plants = ['ten', 'saltbush-copper', 'wattle-acid-ratio', 'wattle-acid-table'];
+const plants = [
+  'ten',
+  'saltbush-copper',
+  'wattle-acid-ratio',
+  'wattle-acid-table',
+  'mulga-two-metals',
+  'saltbush-tank-house',
+];
 const TOLERANCE = 1e-8;
 
 /** Largest difference of two runs over all records and outputs, in units of the tolerance that both were run at. */

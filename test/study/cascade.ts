@@ -1,5 +1,12 @@
 import type { Plant } from '../../src/plant/assemble.ts';
-import { noProperties, plainMixer, plainSettler, plainTrain } from '../../src/scenario/plain.ts';
+import {
+  noProperties,
+  plainCircuit,
+  plainMixer,
+  plainSettler,
+  plainStage,
+  plainTrain,
+} from '../../src/scenario/plain.ts';
 import type { Change, Law, Limit, Phase, Scenario, Transfer } from '../../src/scenario/scenario.ts';
 import type { F } from '../../src/solve/system.ts';
 import type { RunResult } from '../../src/study/result.ts';
@@ -42,6 +49,7 @@ export function cascade(c: Cascade): Scenario {
       area: null,
       ...plainSettler,
     },
+    ...plainStage,
   } as const;
   return {
     title: 'cascade',
@@ -53,6 +61,7 @@ export function cascade(c: Cascade): Scenario {
       { name: 'solvent', phase: 'organic', flow: c.organic, content: [c.solvent ?? 0] },
     ],
     tanks: [],
+    ...plainCircuit,
     trains: [
       {
         name: 'train',

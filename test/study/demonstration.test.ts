@@ -63,7 +63,8 @@ describe('copper circuit', () => {
   test('barren start: the raffinate is at 95 % of its end after 3.3 h, at 99 % after 4.8 h', () => {
     const end = at('raffinate.copper');
     const limits = [0.95, 0.99].map(
-      (share) => ({ stream: 'raffinate', quantity: 'copper', side: 'below', value: share * end }) as const,
+      (share) =>
+        ({ stream: 'raffinate', quantity: 'copper', side: 'below', value: share * end, from: 0 }) as const,
     );
     const { limits: reports } = run({ ...circuit, limits, horizon: 12 * HOUR }, usual);
     [3.3, 4.8].forEach((hours, i) => {

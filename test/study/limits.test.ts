@@ -20,6 +20,7 @@ const limit = (value: number, more: Partial<Limit> = {}): Limit => ({
   stream: 'raffinate',
   quantity: 's',
   side: 'below',
+  from: 0,
   value,
   ...more,
 });

@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { assemble } from '../../src/plant/assemble.ts';
-import { checkScreen } from '../../src/report/screen.ts';
+import { checkScreen } from '../../src/report/check-screen.ts';
 import type { Scenario } from '../../src/scenario/scenario.ts';
 import type { RunResult } from '../../src/study/result.ts';
 import { run } from '../../src/study/run.ts';

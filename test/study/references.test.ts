@@ -201,6 +201,7 @@ describe('carboxylic acid on a measured isotherm', () => {
     trains: plant.trains.map((t) => ({
       ...t,
       stages: t.stages.map((q) => ({
+        ...q,
         mixer: { ...q.mixer, volume: (30 + perHour) / 20 },
         settler: { ...q.settler, organic: perHour / 4 },
       })),
@@ -223,7 +224,9 @@ describe('carboxylic acid on a measured isotherm', () => {
       });
       const final = read(outputs, 'raffinate.acid');
       expect(Math.abs(final - raffinate)).toBeLessThan(5.1e-4);
-      const limits = [{ stream: 'raffinate', quantity: 'acid', side: 'below', value: 0.99 * final } as const];
+      const limits = [
+        { stream: 'raffinate', quantity: 'acid', side: 'below', value: 0.99 * final, from: 0 } as const,
+      ];
       const [spell] = run({ ...s, horizon: 40 * HOUR, limits }, fine).limits[0].spells;
       expect(Math.abs(spell.from / HOUR - course.raffinate_within_1_percent_after_h)).toBeLessThan(1e-4);
       expect(Math.abs(spell.from / HOUR - hours)).toBeLessThan(0.051);

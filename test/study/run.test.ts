@@ -51,7 +51,7 @@ describe('records', () => {
 });
 
 describe('snapshots', () => {
-  const limits = [{ stream: 'raffinate', quantity: 's', side: 'below', value: 0.05 } as const];
+  const limits = [{ stream: 'raffinate', quantity: 's', side: 'below', value: 0.05, from: 0 } as const];
 
   test('are the start, the moment before the first upset, the worst and the end, in the order of time', () => {
     const pulse: Change = { ...change(400), lasts: 150 };

@@ -3,7 +3,13 @@ import type { Limit, Scenario } from '../../src/scenario/scenario.ts';
 import { cascade, reader, runToEnd } from './cascade.ts';
 
 const exact = { integrator: 'rodas5p', tolerance: 1e-10 };
-const keep = (stream: string, value: number): Limit => ({ stream, quantity: 's', side: 'below', value });
+const keep = (stream: string, value: number): Limit => ({
+  stream,
+  quantity: 's',
+  side: 'below',
+  value,
+  from: 0,
+});
 
 describe('a layer of n parts passes a step and a pulse as n tanks in series', () => {
   // F(θ) = 1 − e^(−nθ)·Σ_(i<n) (nθ)^i/i!, E(θ) = n(nθ)^(n−1)·e^(−nθ)/(n − 1)!: O. Levenspiel, Chemical Reaction

@@ -71,6 +71,7 @@ const anyVessels: fc.Arbitrary<Scenario> = fc
         ...t,
         recycle: t.name === 'extraction' ? v.recycle : null,
         stages: t.stages.map((q) => ({
+          ...q,
           mixer: {
             ...q.mixer,
             transfer:

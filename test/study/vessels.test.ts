@@ -29,6 +29,7 @@ function everywhere(
       ...t,
       ...train,
       stages: t.stages.map((q) => ({
+        ...q,
         mixer: { ...q.mixer, ...mixer },
         settler: { ...q.settler, ...settler },
       })),

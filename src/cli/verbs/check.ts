@@ -1,5 +1,5 @@
 import { assemble } from '../../plant/assemble.ts';
-import { checkScreen } from '../../report/screen.ts';
+import { checkScreen } from '../../report/check-screen.ts';
 import { restoreState } from '../../study/saved.ts';
 import type { Console } from '../console.ts';
 import { exits } from '../exit.ts';

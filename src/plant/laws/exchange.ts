@@ -23,6 +23,12 @@ const FREE = 1e-3;
 /** kg/m³: powers of acid are taken of a value that stays positive, δ of physics "x₊ = ½(x + √(x² + 4δ²))". */
 const ACID = 1e-6;
 
+/**
+ * Distribution ratios beyond this can be told from no other: where acid is used up the law stops here, since c_a would
+ * be a figure of the rounding alone.
+ */
+const LARGEST = 1e6;
+
 const positive = (x: Expr): Expr => mul(0.5, add(x, sqrt(add(mul(x, x), 4 * ACID * ACID))));
 
 /**
@@ -40,7 +46,7 @@ export const exchange: LawKind<Exchange> = {
   structure: (l) => [exponent(l.p), exponent(l.q), l.acid].join(),
   aqueous(self, at, peers) {
     const [K, E] = self.q;
-    const acid = pow(positive(at.species[self.law.acid]), power(self, 'q'));
+    const acid = acidTerm(self, at);
     const used = peers.map((m) => mul(m.q[2], max(at.organic[m.solute], 0)));
     const free = sub(E, add(...used));
     const p = power(self, 'p');
@@ -66,9 +72,15 @@ function power(m: Member<Exchange>, which: 'p' | 'q'): Expr {
   return m.q[which === 'p' ? 3 : 4];
 }
 
+/** acid^q, no less than gives the largest distribution ratio with all extractant free: K·E^p/D. */
+const acidTerm = (m: Member<Exchange>, at: Local): Expr => {
+  const [K, E] = m.q;
+  const least = div(mul(K, pow(E, power(m, 'p'))), LARGEST);
+  return max(pow(positive(at.species[m.law.acid]), power(m, 'q')), least);
+};
+
 /** K/acid^q: the distribution ratio per F^p. */
-const strength = (m: Member<Exchange>, at: Local): Expr =>
-  div(m.q[0], pow(positive(at.species[m.law.acid]), power(m, 'q')));
+const strength = (m: Member<Exchange>, at: Local): Expr => div(m.q[0], acidTerm(m, at));
 
 /** F as the root of F + Σ aᵢ·F^pᵢ = E with aᵢ = nᵢ·Kᵢ·c_a,i/acid^qᵢ: rising in F, one root in 0…E. */
 function freeExtractant(at: Local, peers: readonly Member<Exchange>[]): Expr {

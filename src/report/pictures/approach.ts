@@ -96,7 +96,7 @@ function config(r: CommissionResult): ChartConfiguration {
             display: true,
             text: [
               `time [${unit.name}]`,
-              `${short(s.title, 60)}: approach over ${figure(end)} ${unit.name}, start ${startWords(s.start)}`,
+              `${short(s.title, 60)}: approach over ${figure(end)} ${unit.name}, start ${startWords(s)}`,
             ],
           },
           ticks: { stepSize: tickStep(end, 20, unit), maxRotation: 0 },

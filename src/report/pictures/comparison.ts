@@ -18,7 +18,7 @@ export const comparison: Picture<CommissionResult> = {
     return panelSheet({
       title: `${short(s.title, 60)}: model and plant`,
       answer: data.columns.slice(0, MOST_PANELS).map((c) => short(verdict(c), 150)),
-      source: `${short(s.title, 60)}: samples of ${short(data.file, 40)}, start ${startWords(s.start)}`,
+      source: `${short(s.title, 60)}: samples of ${short(data.file, 40)}, start ${startWords(s)}`,
       span: r.run.records.times[r.run.records.times.length - 1],
       panels: data.columns.slice(0, MOST_PANELS).map((c) => panel(r, c)),
       shades: r.run.shades,
@@ -49,5 +49,6 @@ function panel(r: CommissionResult, c: Compared): Panel {
       },
     ],
     limits: [],
+    from: 0,
   };
 }

@@ -22,7 +22,7 @@ export const levels: Picture<RunResult> = {
         ? events
         : ['No event: no settler flooded, no interface was lost, no tank ran empty or over.']
       ).map((l) => short(l, 150)),
-      source: `${short(s.title, 60)}: levels over ${figure(s.horizon / unit.seconds)} ${unit.name}, start ${startWords(s.start)}`,
+      source: `${short(s.title, 60)}: levels over ${figure(s.horizon / unit.seconds)} ${unit.name}, start ${startWords(s)}`,
       span: s.horizon,
       panels: panelsOf(r),
       shades: r.shades,
@@ -38,7 +38,7 @@ function panelsOf(r: RunResult): Panel[] {
   const lines = (pick: (path: string) => boolean): PanelLine[] =>
     outputs.flatMap((o, i) => (pick(o.path) && moves(i) ? [line(r, i)] : [])).slice(0, MOST_LINES);
   const panel = (title: string, unit: string, weight: number, list: readonly PanelLine[]): Panel[] =>
-    list.length === 0 ? [] : [{ title, unit, weight, lines: list, limits: [] }];
+    list.length === 0 ? [] : [{ title, unit, weight, lines: list, limits: [], from: 0 }];
   return [
     ...panel(
       'interface',

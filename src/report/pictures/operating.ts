@@ -32,7 +32,7 @@ function config(d: Diagram, title: string): ChartConfiguration {
   const moments = d.moments.slice(0, MOST_MOMENTS);
   const across = moments.length > 1 ? 2 : 1;
   const down = Math.ceil(moments.length / across);
-  const all = moments.flatMap((m) => [...m.operating, ...m.stages]);
+  const all = moments.flatMap((m) => [...m.operating.filter((p) => Number.isFinite(p.x)), ...m.stages]);
   const maxX = wholeSteps(1.04 * Math.max(1e-9, ...all.map((p) => p.x)));
   const maxY = wholeSteps(1.1 * Math.max(1e-9, ...all.map((p) => p.y)));
   const datasets = moments.flatMap((m, i) => {

@@ -32,7 +32,7 @@ export const outlets: Picture<RunResult> = {
     return panelSheet({
       title: r.complete ? s.title : `INCOMPLETE: ${s.title}`,
       answer: answer.map((l) => short(l, WIDEST)),
-      source: `${short(s.title, 60)}: outlets over ${figure(s.horizon / unit.seconds)} ${unit.name}, start ${startWords(s.start)}`,
+      source: `${short(s.title, 60)}: outlets over ${figure(s.horizon / unit.seconds)} ${unit.name}, start ${startWords(s)}`,
       span: s.horizon,
       panels: [...panels.slice(0, MOST_PANELS - Math.min(2, changed.length)), ...changed.slice(0, 2)],
       shades: r.shades,
@@ -72,7 +72,10 @@ function line(r: RunResult, path: string): PanelLine & { largest: number; unit: 
 }
 
 /** The lines name their streams in the legend; the axis says what they show. */
-const quantityOf = (path: string): string => path.slice(path.lastIndexOf('.') + 1);
+function quantityOf(path: string): string {
+  if (path.includes(' / ')) return 'ratio';
+  return path.slice(path.lastIndexOf('.') + 1).replace(/^removal of .*/, 'removal');
+}
 
 function limitPanels(r: RunResult, limited: readonly string[]): Panel[] {
   return limited.slice(0, 3).map((path) => {
@@ -83,6 +86,8 @@ function limitPanels(r: RunResult, limited: readonly string[]): Panel[] {
       unit: l.unit,
       weight: 2,
       lines: [l],
+      // A purity comes from zero in start-up: that must not flatten what its limits are about.
+      from: l.unit === '%' ? Math.min(...own.map((q) => q.limit.from)) : 0,
       limits: own.map((q) => ({
         value: q.limit.value * shown(q.unit).factor,
         label: `limit ${q.limit.side === 'below' ? '<' : '>'} ${withUnit(q.limit.value, q.unit)}`,
@@ -91,11 +96,19 @@ function limitPanels(r: RunResult, limited: readonly string[]): Panel[] {
   });
 }
 
-/** Solutes in outlets, tanks and streams between trains, those of like size together. */
+/**
+ * Solutes in outlets, tanks and batches, and with one solute also in streams between trains; those of like size
+ * together. Several solutes in every stream would bury the outlets.
+ */
 function otherPanels(r: RunResult, limited: readonly string[]): Panel[] {
   const { scenario: s, network } = r.plant;
-  const made = [...network.streams.values()].filter((q) => q.maker.kind === 'train').map((q) => q.name);
-  const names = [...made, ...s.tanks.map((t) => t.name)];
+  const streams = s.solutes.length > 1 ? network.outlets : [...network.streams.values()];
+  const made = streams.filter((q) => q.maker.kind !== 'feed' && q.maker.kind !== 'tank').map((q) => q.name);
+  const names = [
+    ...made,
+    ...s.tanks.map((t) => t.name),
+    ...s.batches.flatMap((b) => [`${b.name} aqueous`, `${b.name} organic`]),
+  ];
   const lines = s.solutes
     .flatMap((solute) => names.map((n) => `${n}.${solute}`))
     .filter((p) => !limited.includes(p))
@@ -107,13 +120,17 @@ function otherPanels(r: RunResult, limited: readonly string[]): Panel[] {
     if (group && group[0].largest <= COMPARABLE * l.largest) group.push(l);
     else groups.push([l]);
   }
-  return groups.slice(0, 3).map((g) => ({
-    title: quantityOf(g[0].label),
-    unit: g[0].unit,
-    weight: 1,
-    lines: g.slice(0, 4),
-    limits: [],
-  }));
+  return groups.slice(0, 3).map((g) => {
+    const shown = g.slice(0, 4);
+    return {
+      title: [...new Set(shown.map((l) => quantityOf(l.label)))].join(', '),
+      unit: g[0].unit,
+      weight: 1,
+      lines: shown,
+      limits: [],
+      from: 0,
+    };
+  });
 }
 
 /** The inputs that upsets changed, as they were: a reader sees cause and effect on one sheet. */
@@ -138,5 +155,6 @@ function changedPanels(r: RunResult): Panel[] {
     weight: 1,
     lines: g,
     limits: [],
+    from: 0,
   }));
 }

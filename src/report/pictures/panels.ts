@@ -18,6 +18,8 @@ export interface Panel {
   readonly weight: number;
   readonly lines: readonly PanelLine[];
   readonly limits: readonly { readonly value: number; readonly label: string }[];
+  /** s from which on the axis holds all of the lines. */
+  readonly from: number;
 }
 
 export interface Sheet {
@@ -89,7 +91,7 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
         label: {
           display: true,
           content: l.label,
-          position: 'start',
+          position: isCrowded(panel, l.value, sheet.span) ? 'end' : 'start',
           yAdjust: -10,
           color: LIMIT,
           backgroundColor: 'rgba(255,255,255,0.8)',
@@ -118,7 +120,7 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
       ...range(panel),
       title: {
         display: true,
-        text: [short(panel.title, 6 + 8 * panel.weight), `[${panel.unit.replace('^3', '³')}]`],
+        text: [short(panel.title, 6 + 8 * panel.weight), `[${panel.unit.replace('^3', '³') || '-'}]`],
         font: { size: 12 },
       },
       border: { color: '#888888' },
@@ -126,7 +128,12 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
         color: (c: { tick?: { value: number } }) =>
           c.tick?.value === range(panel).min ? '#888888' : '#e2e2e2',
       },
-      ticks: { maxTicksLimit: 3 + 2 * panel.weight, callback: tick, font: { size: 12 } },
+      ticks: {
+        maxTicksLimit: 3 + 2 * panel.weight,
+        includeBounds: false,
+        callback: tick,
+        font: { size: 12 },
+      },
       afterFit: (scale: { width: number }) => {
         scale.width = 84;
       },
@@ -149,9 +156,24 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
   };
 }
 
+/** Whether a curve runs where the label of a limit would stand at its start. */
+function isCrowded(panel: Panel, limit: number, span: number): boolean {
+  const { min, max } = range(panel);
+  return panel.lines.some((l) =>
+    l.data.some((p) => {
+      const above = (p.y - limit) / (max - min);
+      return p.x < 0.12 * span && above > -0.02 && above < 0.14;
+    }),
+  );
+}
+
 /** From zero unless everything happens far above it; room above for labels, limits inside. */
 function range(panel: Panel): { min: number; max: number } {
-  const values = [...panel.lines.flatMap((l) => l.data.map((p) => p.y)), ...panel.limits.map((l) => l.value)];
+  const counts = (p: { x: number }): boolean => p.x >= panel.from;
+  const values = [
+    ...panel.lines.flatMap((l) => l.data.filter(counts).map((p) => p.y)),
+    ...panel.limits.map((l) => l.value),
+  ];
   let high = -Infinity;
   let low = Infinity;
   for (const v of values) {

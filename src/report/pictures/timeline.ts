@@ -113,7 +113,7 @@ function config(r: CommissionResult): ChartConfiguration {
           max: end,
           title: {
             display: true,
-            text: [`time [${unit.name}]`, `${short(s.title, 60)}: start ${startWords(s.start)}`],
+            text: [`time [${unit.name}]`, `${short(s.title, 60)}: start ${startWords(s)}`],
           },
           ticks: {
             stepSize: tickStep(end, 20, unit),

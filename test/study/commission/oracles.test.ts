@@ -86,6 +86,7 @@ describe('start-up of equilibrium stages', () => {
       quantity: 's',
       side: 'above',
       value: 2,
+      from: 0,
     }));
     const horizon = 60 * unit * (N + 1) ** 2 * 0.25;
     const stages = equilibriumStages(N, 1, { limits, horizon });

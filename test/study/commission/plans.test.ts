@@ -119,8 +119,8 @@ describe('what the waiting costs', () => {
     power: 5000,
   };
   const limits = [
-    { stream: 'raffinate', quantity: 's', side: 'below', value: 2 },
-    { stream: 'extract', quantity: 's', side: 'above', value: 3.5 },
+    { stream: 'raffinate', quantity: 's', side: 'below', value: 2, from: 0 },
+    { stream: 'extract', quantity: 's', side: 'above', value: 3.5, from: 0 },
   ] as const;
   const { plain, limits: onSpec } = commission(plant({ prices }, { limits }), usual);
   const [raffinate, extract] = onSpec.map((l) => l.from as number);
