@@ -23,7 +23,7 @@ export function commissionScreen(r: CommissionResult): string[] {
   ];
   const told = flows.slice(0, 3).map((f) => `${withUnit(f.flow, 'm^3/s')} ${f.name}`);
   return [
-    `START-UP  ${s.title}: from ${startWords(s)}; ${told.join(', ')}`,
+    `START-UP  ${s.title}: from ${[startWords(s), ...(told.length > 0 ? [told.join(', ')] : [])].join('; ')}`,
     ...answerLines(r),
     '',
     ...table(r),
@@ -48,10 +48,10 @@ export function answerLines(r: CommissionResult): string[] {
   if (!('state' in rest)) lines.push(`NO STEADY STATE  ${rest.reason}`);
   else if (!followed.settled) lines.push(`DOES NOT SETTLE  ${unsettled(r)}`);
   else if (r.steady === 0)
-    lines.push('At rest from the start: no outlet moves by more than 1 % of anything.');
+    lines.push(`At rest from the start: no ${whatIsJudged(r)} moves by more than 1 % of anything.`);
   else
     lines.push(
-      `At rest at ${when(r.steady)}: from then on every outlet stays within 1 % of its change (of its final value: from ${when(r.nearFinal)}).${r.extended ? ` The horizon of ${clock(followed.asked)} was too short for that; it was run to ${clock(followed.ran)}.` : ''}`,
+      `At rest at ${when(r.steady)}: from then on every ${whatIsJudged(r)} stays within 1 % of its change (of its final value: from ${when(r.nearFinal)}).${r.extended ? ` The horizon of ${clock(followed.asked)} was too short for that; it was run to ${clock(followed.ran)}.` : ''}`,
     );
   lines.push(...r.limits.map(limitLine));
   if ('state' in rest)
@@ -83,6 +83,9 @@ export function answerLines(r: CommissionResult): string[] {
   }
   return lines;
 }
+
+const whatIsJudged = (r: CommissionResult): string =>
+  r.quantities.some((q) => q.quantity.kind === 'outlet') ? 'outlet' : 'vessel';
 
 function unsettled(r: CommissionResult): string {
   const { events, ran, rest } = r.followed;
@@ -120,10 +123,15 @@ function modeWords(m: SlowMode): string {
 
 /** What comes good when, in that order; stages together by train. */
 function table(r: CommissionResult): string[] {
-  const single = r.quantities.filter((q) => q.quantity.kind !== 'stage');
+  const all = r.quantities.filter((q) => q.quantity.kind !== 'stage');
+  // What does not move says nothing, unless nothing moves.
+  const single = all.some((q) => q.change !== null) ? all.filter((q) => q.change !== null) : all;
   const order = (q: ComesGood): number => q.ofChange[3] ?? q.ofFinal[3] ?? Number.MAX_VALUE;
-  const sorted = [...single].sort((a, b) => order(a) - order(b));
-  const rows = sorted.slice(-MOST_ROWS).map((q) => {
+  // Outlets and tanks before the streams between, the last ones before the first.
+  const inner = (q: ComesGood): number => (q.quantity.kind === 'stream' ? 1 : 0);
+  const chosen = [...single].sort((a, b) => inner(a) - inner(b) || order(b) - order(a)).slice(0, MOST_ROWS);
+  const sorted = chosen.sort((a, b) => order(a) - order(b));
+  const rows = sorted.map((q) => {
     const { unit, factor } = shown('kg/m^3');
     const last = q.ofChange[3] ?? q.ofFinal[3];
     return [
@@ -154,11 +162,11 @@ function table(r: CommissionResult): string[] {
       '',
     ];
   });
-  const more = sorted.length - rows.length;
+  const more = single.length - rows.length;
   return [
     ...columns([
       [
-        more > 0 ? `comes good (last ${rows.length} of ${sorted.length})` : 'comes good',
+        more > 0 ? `comes good (${rows.length} of ${single.length})` : 'comes good',
         'from -> to',
         '10 %',
         '5 %',
@@ -209,6 +217,7 @@ function waitingLines(r: CommissionResult): string[] {
     ...(waiting.costs.length > 0 ? [`${figure(sum)} ${waiting.currency} (${money})`] : []),
     ...solvent,
   ];
+  if (outlets.length === 0 && told.length === 0) return [];
   return [
     `Cost of waiting, ${clock(waiting.until)} in all${told.length > 0 ? `: ${told.join(', ')}` : ''}`,
     ...outlets.slice(0, 4).map((o) => `  ${o}`),

@@ -92,6 +92,16 @@ export function uncertainInputs(s: Scenario): ReadonlyMap<string, Multiply> {
         );
     });
   });
+  s.batches.forEach((batch, index) => {
+    const edit =
+      (change: (q: Scenario['batches'][number], by: number) => Scenario['batches'][number]): Multiply =>
+      (t, by) => ({ ...t, batches: t.batches.map((q, i) => (i === index ? change(q, by) : q)) });
+    if (batch.mixer.transfer.given !== 'impeller')
+      found.set(
+        `${batch.name}.mixer.ka`,
+        edit((q, by) => ({ ...q, mixer: { ...q.mixer, transfer: faster(q.mixer.transfer, by) } })),
+      );
+  });
   return found;
 }
 

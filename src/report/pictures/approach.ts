@@ -72,7 +72,7 @@ function config(r: CommissionResult): ChartConfiguration {
       borderWidth: 1.5,
       label: {
         display: true,
-        content: `outlets within 1 %: ${clock(r.steady as number)}`,
+        content: `at rest within 1 %: ${clock(r.steady as number)}`,
         position: 'end',
         rotation: 0,
         xAdjust: (r.steady as number) > 0.7 * span ? -100 : 100,

@@ -6,7 +6,7 @@ import { type RunSettings, run } from '../run.ts';
 import { type Comparison, compareWith } from './comparison.ts';
 import type { Ensemble } from './ensemble.ts';
 import { type Followed, follow } from './follow.ts';
-import { allCome, type ComesGood, comesGood, type OnSpec, onSpec, outletsWithin } from './good.ts';
+import { allCome, type ComesGood, comesGood, judged, type OnSpec, onSpec, outletsWithin } from './good.ts';
 import { Keeper } from './kept.ts';
 import { movesEnd } from './moves.ts';
 import { followProcedure, measure, rankStarts, type StartResult, startResult } from './procedures.ts';
@@ -162,9 +162,7 @@ export function commission(scenario: Scenario, settings: RunSettings): StartUp {
 
 /** The outlet that comes good last, over a span that leaves room for slower plants than the one stated. */
 function fanOf(list: readonly ComesGood[], solutes: readonly string[], span: number): StartUp['fan'] {
-  const own = list.filter(
-    (q) => q.quantity.kind === 'outlet' && solutes.includes(q.quantity.component) && q.change !== null,
-  );
+  const own = judged(list).filter((q) => solutes.includes(q.quantity.component) && q.change !== null);
   if (own.length === 0) return null;
   const last = own.reduce((a, b) => ((b.ofChange[3] ?? 0) > (a.ofChange[3] ?? 0) ? b : a));
   const times = Array.from({ length: FAN + 1 }, (_, k) => (k * WIDER * span) / FAN);

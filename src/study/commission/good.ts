@@ -1,3 +1,4 @@
+import type { Plant } from '../../plant/assemble.ts';
 import { trainFacts } from '../../plant/facts.ts';
 import type { Limit } from '../../scenario/scenario.ts';
 import { PERCENTS, TAIL } from './approach.ts';
@@ -101,11 +102,10 @@ function turnoversOf({ plant, rest, start }: Followed): (q: Watched) => number |
  */
 export function onSpec(f: Followed): OnSpec[] {
   const { plant, approach, quantities, rest } = f;
-  const { scenario: s, network, system } = plant;
+  const { scenario: s, system } = plant;
   return s.limits.map((limit, i): OnSpec => {
-    const maker = network.streams.get(limit.stream)?.maker;
-    const all = Math.max(...approach.turned);
-    const turned = maker?.kind === 'train' ? approach.turned[maker.index] : all;
+    const makers = trainsOf(plant, limit.stream);
+    const turned = Math.max(0, ...approach.turned.filter((_, k) => makers.size === 0 || makers.has(k)));
     const last = approach.last[quantities.length + i][0];
     const { output } = approach.lines[quantities.length + i];
     return {
@@ -120,9 +120,31 @@ export function onSpec(f: Followed): OnSpec[] {
   });
 }
 
+/** The trains that make a stream, through however many blends, splits and tanks. */
+function trainsOf({ scenario: s, network }: Plant, name: string): Set<number> {
+  const found = new Set<number>();
+  const seen = new Set<string>();
+  const queue = [s.tanks.find((t) => t.name === name)?.from ?? name];
+  for (const stream of queue) {
+    if (seen.has(stream)) continue;
+    seen.add(stream);
+    const maker = network.streams.get(stream)?.maker;
+    if (maker?.kind === 'train' || maker?.kind === 'draw') found.add(maker.index);
+    else if (maker?.kind === 'tank') queue.push(s.tanks[maker.index].from);
+    else if (maker) queue.push(...network.behind(stream));
+  }
+  return found;
+}
+
 /** The time at which all of a list has come; null where one does not. */
 export const allCome = (times: readonly (number | null)[]): number | null =>
   times.includes(null) ? null : Math.max(0, ...(times as number[]));
+
+/** What a plant is judged by: its outlets, or in a laboratory without any its vessels. */
+export function judged(list: readonly ComesGood[]): ComesGood[] {
+  const outlets = list.filter((q) => q.quantity.kind === 'outlet');
+  return outlets.length > 0 ? outlets : list.filter((q) => q.quantity.kind === 'tank');
+}
 
 /**
  * When every outlet is within a number of per cent of its change, or of its final value, for good; what hardly moves is
@@ -134,6 +156,6 @@ export function outletsWithin(
   of: 'ofChange' | 'ofFinal' = 'ofChange',
 ): number | null {
   const band = PERCENTS.indexOf(percent);
-  const own = list.filter((q) => q.quantity.kind === 'outlet' && q.final !== null && q.change !== null);
+  const own = judged(list).filter((q) => q.final !== null && q.change !== null);
   return allCome(own.filter((q) => of === 'ofChange' || q.final !== 0).map((q) => q[of][band]));
 }

@@ -15,7 +15,7 @@ export interface Watched {
   readonly train: string | null;
 }
 
-/** All concentrations of outlets, of streams between trains and tanks, of tanks and of stages, in that order. */
+/** All concentrations of outlets, of streams between trains and tanks, of tanks, batches and stages, in that order. */
 export function watched(plant: Plant): Watched[] {
   const { scenario: s, network, system } = plant;
   const at = new Map(system.outputs.map((o, i) => [o.path, i]));
@@ -43,6 +43,12 @@ export function watched(plant: Plant): Watched[] {
     ...streams.filter((q) => q.kind === 'stream').flatMap((q) => q.list),
     ...s.tanks.flatMap((t) =>
       take(t.name, (c) => `${t.name}.${c}`, { kind: 'tank', phase: t.phase, train: null }),
+    ),
+    // A batch is a vessel without flow: each of its phases is one.
+    ...s.batches.flatMap((b) =>
+      (['aqueous', 'organic'] as const).flatMap((phase) =>
+        take(`${b.name} ${phase}`, (c) => `${b.name} ${phase}.${c}`, { kind: 'tank', phase, train: null }),
+      ),
     ),
     ...s.trains.flatMap((t) =>
       t.stages.flatMap((_, j) =>

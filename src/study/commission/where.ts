@@ -54,7 +54,8 @@ export function describe(plant: Plant, mode: Mode, state: Float64Array): SlowMod
 
 /** `extraction.2.settler.1.organic.copper` → organic layers of extraction. */
 function whereabouts(path: string, plant: Plant): string {
-  const [first, , unit, ...rest] = path.split('.');
+  const [first, second, unit, ...rest] = path.split('.');
+  if (second === 'mixer') return `${unit} of ${first}`;
   if (plant.scenario.tanks.some((t) => t.name === first))
     return path.startsWith(`${first}.bottoms`) ? `bottoms of ${first}` : first;
   if (unit === 'mixer') return `mixers of ${first}`;

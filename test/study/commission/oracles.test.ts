@@ -132,6 +132,21 @@ describe('a layer of n parts is n tanks in series', () => {
   });
 });
 
+describe('a batch', () => {
+  test('is within 1 % when its closed exponential is', () => {
+    // c_a = c* + (c_0 − c*)·e^(−k·a·(V/V_a + V/(D·V_o))·t), the balance of two stirred phases solved; here with V_a = V_o.
+    const s = { ...scenario('wattle-shake-out'), upsets: [], limits: [] };
+    const found = commission(s, { ...exact, tolerance: 1e-9 });
+    const rate = 0.02 * (2 + 2 / 0.75);
+    expect(Math.abs(found.modes[0].time * rate - 1)).toBeLessThan(1e-6);
+    expect(Math.abs(((found.steady as number) * rate) / Math.log(100) - 1)).toBeLessThan(1e-6);
+    expect(found.modes[0].lives.map((q) => q.where).sort()).toEqual([
+      'aqueous of beaker',
+      'organic of beaker',
+    ]);
+  });
+});
+
 describe('the invented plants at the figures with which they were laid out', () => {
   test('copper circuit: 95 % at 3.3 h, 99 % at 4.8 h, slowest mode 0.90 h', () => {
     const found = commission(scenario('saltbush-copper'), usual);
