@@ -14,6 +14,7 @@ import { type CommissionResult, commission } from '../../src/study/commission/co
 import { ensemble } from '../../src/study/commission/ensemble.ts';
 import { samples } from '../../src/study/commission/sample.ts';
 import { usual } from '../../src/study/run.ts';
+import { anyCircuit } from '../plant/any-circuit.ts';
 import { anyPlant } from '../plant/any-plant.ts';
 import { scenario } from '../support/plants.ts';
 
@@ -76,7 +77,7 @@ describe('summary.json of a commissioning', () => {
 describe('random plants', () => {
   it('give figures and words, and nothing that is no number', () => {
     fc.assert(
-      fc.property(anyPlant, (s) => {
+      fc.property(fc.oneof(anyPlant, anyCircuit), (s) => {
         const moves = s.upsets.map((u, i) => ({ ...u, at: i % 2 === 0 ? 0 : u.at }));
         const limits = [
           { stream: s.trains[0].aqueous.to, quantity: s.solutes[0], side: 'below', value: 1, from: 0 },

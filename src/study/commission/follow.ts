@@ -79,7 +79,8 @@ export function follow(s: Scenario, settings: FollowSettings): Followed {
   const asked = Math.max(settings.atLeast ?? s.horizon, after > 0 ? after + 1 : 0);
   for (let attempt = 1; ; attempt++) {
     const made = new Attempt(plant, quantities, rest, initial, modes, settings);
-    const next = made.run(asked, after, attempt < ATTEMPTS);
+    // Nearer to rest each time: what it goes for is then the clearer.
+    const next = made.run(asked * 2 ** (attempt - 1), after, attempt < ATTEMPTS);
     if (next === null) return { ...made.result(), asked: s.horizon };
     rest = next;
   }
@@ -231,10 +232,10 @@ class Attempt {
     if (!('state' in own) || !('state' in next)) return 'state' in own !== 'state' in next;
     return this.#quantities.some((q) => {
       const [a, b] = [own.outputs[q.output], next.outputs[q.output]];
-      const change = Math.abs(b - this.#start[q.output]);
-      return (
-        Math.abs(a - b) > SAME * change + 1e-6 * (Math.abs(b) + this.#plant.system.outputs[q.output].scale)
-      );
+      const { scale } = this.#plant.system.outputs[q.output];
+      // What hardly moves is not judged, as long as it goes on hardly to move.
+      const change = changeOf(this.#start[q.output], b, scale) ?? Math.abs(b);
+      return Math.abs(a - b) > SAME * change + 1e-6 * scale;
     });
   }
 }
