@@ -118,7 +118,9 @@ function config(r: CommissionResult): ChartConfiguration {
           `${short(s.title, 60)}: how it comes to rest`,
           answerLines(r)
             .slice(0, 3)
-            .map((l) => short(l, 150)),
+            .map((l) =>
+              short(l.replace(/; never outside, .*$/, ', counted from the first aqueous turnover.'), 150),
+            ),
         ),
         annotation: { annotations },
       } as NonNullable<ChartConfiguration['options']>['plugins'],

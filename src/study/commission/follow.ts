@@ -90,6 +90,8 @@ class Attempt {
   readonly #plant: Plant;
   readonly #quantities: readonly Watched[];
   #rest: Rest | NoRest;
+  /** It has gone for another rest than its bands are around. */
+  #astray = false;
   readonly #settings: FollowSettings;
   readonly #approach: ApproachWatch;
   readonly #start: F;
@@ -135,15 +137,17 @@ class Attempt {
     for (let to = asked; ; ) {
       this.#runTo(to);
       if (this.#stop.reason !== 'reached-end') return null;
-      const check = restFrom(this.#plant, this.#x, this.#w, this.#time, 0);
-      if (this.#differs(check)) {
-        const next = restFrom(this.#plant, this.#x, this.#w, this.#time, this.#settings.modes);
-        if (mayTurn) return next;
-        // It has turned too often: what it goes for now is said, and that it does not settle.
-        this.#rest = next;
-        return null;
+      const check = this.#restNow(0);
+      const elsewhere = this.#differs(check);
+      const cycles = this.#cycles();
+      if (elsewhere && mayTurn && !cycles) return this.#restNow(this.#settings.modes);
+      if (elsewhere) {
+        // It turns again and again: what it goes for now is said, and that it does not settle.
+        this.#rest = this.#restNow(this.#settings.modes);
+        this.#astray = true;
       }
-      if (!('state' in this.#rest) || repels(this.#rest) || this.#cycles()) return null;
+      if (elsewhere || cycles) return null;
+      if (!('state' in this.#rest) || repels(this.#rest)) return null;
       const slow = slowest(this.#rest);
       const needed = Math.max(this.#lastOutside() + AFTER * slow, this.#lastUnrepeatable());
       const most = Math.max(asked, after + MOST_DECAYS * slow);
@@ -161,7 +165,7 @@ class Attempt {
       start: this.#start,
       changes: this.#changes,
       rest: this.#rest,
-      settled: rested && Number.isFinite(this.#lastOutside()),
+      settled: rested && !this.#astray && Number.isFinite(this.#lastOutside()),
       ran: this.#time,
       events: this.#events,
       stop: this.#stop,
@@ -193,6 +197,10 @@ class Attempt {
     this.#stop = run.stop;
     this.#steps += run.work.steps;
     this.#events.push(...run.events);
+  }
+
+  #restNow(modes: number): Rest | NoRest {
+    return restFrom(this.#plant, this.#x, this.#w, this.#time, modes);
   }
 
   /** Whether something keeps happening again and again, such as a pump that runs its tank dry. */
