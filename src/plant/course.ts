@@ -14,7 +14,12 @@ export interface Line {
  * The value is exact at every corner and a straight line between: only where a ramp of the base and a relative
  * ramp overlap does that differ from the product, which bends there.
  */
-export function track(initial: number, changes: readonly Change[], horizon: number): Line {
+export function track(
+  initial: number,
+  changes: readonly Change[],
+  horizon: number,
+  most = Number.POSITIVE_INFINITY,
+): Line {
   const list = [...changes].sort((a, b) => a.at - b.at);
   const corners = list.flatMap((c) => {
     const ends = c.lasts === null ? [] : [c.at + c.lasts, c.at + c.lasts + c.over];
@@ -46,7 +51,7 @@ export function track(initial: number, changes: readonly Change[], horizon: numb
     if (t > 0 && left !== right) push(t, left);
     push(t, right);
   }
-  return clampAtZero(line);
+  return clampAt(most, clampAt(0, line));
 }
 
 /** How far a change is in force, 0 … 1, just before (−1) or just after (1) a time. */
@@ -75,25 +80,35 @@ function interpolate(
   return values[lo] + ((values[hi] - values[lo]) * (t - times[lo])) / (times[hi] - times[lo]);
 }
 
-/** No flow and no concentration is negative: the line is cut at zero, with corners where it meets it. */
-function clampAtZero(line: { times: number[]; values: number[] }): Line {
-  if (line.values.every((v) => v >= 0)) return { ...line, clampedAt: null };
+/** No flow and no concentration is negative, no share more than all: the line is cut there, with corners where it meets. */
+function clampAt(
+  bound: number,
+  line: { times: number[]; values: number[]; clampedAt?: number | null },
+): Line {
+  const upper = bound > 0;
+  const past = (v: number): boolean => (upper ? v > bound : v < bound);
+  const before = line.clampedAt ?? null;
+  if (!line.values.some(past)) return { ...line, clampedAt: before };
   const times: number[] = [];
   const values: number[] = [];
   let clampedAt: number | null = null;
   const push = (t: number, v: number): void => {
     times.push(t);
-    values.push(Math.max(0, v));
+    values.push(upper ? Math.min(bound, v) : Math.max(bound, v));
   };
   line.times.forEach((t, i) => {
     const v = line.values[i];
     const [t0, v0] = [line.times[i - 1], line.values[i - 1]];
-    const crosses = i > 0 && v < 0 !== v0 < 0 && t > t0;
+    const crosses = i > 0 && past(v) !== past(v0) && t > t0;
     // Rounding must not carry the crossing beyond the corner.
-    const met = crosses ? Math.min(t, t0 + ((t - t0) * v0) / (v0 - v)) : t;
-    if (crosses) push(met, 0);
-    if (v < 0) clampedAt ??= met;
+    const met = crosses ? Math.min(t, t0 + ((t - t0) * (v0 - bound)) / (v0 - v)) : t;
+    if (crosses) push(met, bound);
+    if (past(v)) clampedAt ??= met;
     push(t, v);
   });
-  return { times, values, clampedAt };
+  return { times, values, clampedAt: before === null ? clampedAt : Math.min(before, clampedAt ?? before) };
 }
+
+/** The most that an input can be: a share is at most all. */
+export const mostOf = ({ path, unit }: { readonly path: string; readonly unit: string }): number =>
+  unit === '' && (path.endsWith('.share') || path.includes('.removal of ')) ? 1 : Number.POSITIVE_INFINITY;

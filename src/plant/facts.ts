@@ -22,8 +22,13 @@ export function trainFacts(plant: Plant): TrainFacts[] {
   const set = setFlows(s, network);
   return s.trains.map((t, i) => {
     const { stages } = plant.designs[i];
-    const aqueous = set.stream(t.aqueous.from).flow;
-    const organic = set.stream(t.organic.from).flow;
+    const enters = (phase: Phase): number =>
+      [t[phase].from, ...t.stages.flatMap((_, j) => network.sides(i, j, phase))].reduce(
+        (n, q) => n + set.stream(q).flow,
+        0,
+      );
+    const aqueous = enters('aqueous');
+    const organic = enters('organic');
     const both = stages.map((d) => d.set.aqueous + d.set.organic + d.recycled.aqueous + d.recycled.organic);
     const range = (list: number[]): [number, number] => [Math.min(...list), Math.max(...list)];
     const loads = t.stages.flatMap((q, j) => (q.settler.area === null ? [] : [both[j] / q.settler.area]));
@@ -47,6 +52,10 @@ export function streamFlows({ scenario, network }: Plant): Map<string, number> {
   const set = setFlows(scenario, network);
   return new Map([...network.streams.keys()].map((name) => [name, set.stream(name).flow]));
 }
+
+/** Trains in which no solute has an equilibrium: nothing transfers there. */
+export const idleTrains = ({ scenario: s }: Plant): string[] =>
+  s.trains.filter((t) => t.equilibrium.every((law) => law === null)).map((t) => t.name);
 
 /** Mixers without inversion of their own whose continuous phase is, at design, less than the usual limits ask for. */
 export function thinMixers(plant: Plant): { stage: string; continuity: Phase; share: number }[] {

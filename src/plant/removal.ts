@@ -15,6 +15,8 @@ const atRate = kernel('removal at a rate', ['rate', 'amount', 'volume', 'least']
   mul(rate, smoothStep(div(m, mul(V, least)))),
 );
 
+const above = kernel('content above', ['amount', 'volume', 'least'], (m, V, least) => sub(div(m, V), least));
+
 /**
  * Of what flows in, the share s does not flow out again: N = s/(1 − s)·Q·c, by the balance of a well-mixed tank at rest,
  * Q·c_in = Q·c + N with c = (1 − s)·c_in.
@@ -51,6 +53,20 @@ export function writeRemovals(book: Book, t: Tank, part: Part, volume: Ref, flow
             m,
             part.perVolume,
           );
+    if ('rate' in r.how)
+      ledger.guard(
+        {
+          name: `${path} ceases`,
+          direction: -1,
+          message: `${t.name} holds too little ${s.solutes[i]}: less is taken out of it than asked`,
+          fromStart: true,
+          action: 'report',
+        },
+        above,
+        m,
+        volume,
+        book.number(CEASES * book.typical[i]),
+      );
     ledger.flux(passed, [rate], { from: m, to: out.components[i] });
     book.showValue(path, 'kg/s', 'rate' in r.how ? r.how.rate : 1, rate);
     r.returns?.forEach((back, k) => {

@@ -2,7 +2,7 @@ import type { Network, Origin, Stream } from '../scenario/network.ts';
 import type { Branch, Phase, Scenario } from '../scenario/scenario.ts';
 import type { Book, Content, Sink } from './book.ts';
 import { type FlowAlgebra, Flows } from './flows.ts';
-import { meanOf, shareOfFlow, whereLeft } from './kernels.ts';
+import { meanOf, past, shareOfFlow, whereLeft } from './kernels.ts';
 import type { Ref } from './ledger.ts';
 import { ends, route } from './route.ts';
 import { isNothing, just, type Sum, sums } from './sum.ts';
@@ -106,7 +106,25 @@ export class Streams {
       this.#taken.set(b.name, taken);
       left = this.#left([taken], left);
     }
+    if (grow) this.#tellExhausted(branches, left);
     return this.#taken.get(name) as Ref;
+  }
+
+  /** What a stream divides into can take all of it: said, with the time. */
+  #tellExhausted(branches: readonly Branch[], left: Ref): void {
+    const names = branches.map((b) => b.name).join(', ');
+    this.#book.ledger.guard(
+      {
+        name: `${names} take all`,
+        direction: -1,
+        message: `${names} ${branches.length > 1 ? 'take' : 'takes'} all there is of the stream: nothing is left for the rest`,
+        fromStart: true,
+        action: 'report',
+      },
+      past,
+      left,
+      this.#book.number(1e-9),
+    );
   }
 
   #left(taken: readonly Ref[], of = this.#book.number(1)): Ref {

@@ -90,7 +90,7 @@ function risingFormulas(
       const slope = f.slope(ca, at);
       if (!(slope > 0 && slope < Infinity))
         return complain(
-          `an isotherm rises from 0 to ${show(reach)} g/L (twice the largest feed), but the slope of the formula is ${show(slope)} at c_a = ${show(ca)} g/L`,
+          `an isotherm rises from 0 to ${show(reach)} g/L (twice the largest feed), but the slope of the formula is ${show(slope)} at c_a = ${show(ca)} g/L${ca === 0 && slope === Infinity ? '; a power below 1 is a Freundlich isotherm: use law: freundlich' : ''}`,
         );
     }
     return [];

@@ -1,5 +1,5 @@
 import type { Plant } from '../plant/assemble.ts';
-import { streamFlows, thinMixers, trainFacts } from '../plant/facts.ts';
+import { idleTrains, streamFlows, thinMixers, trainFacts } from '../plant/facts.ts';
 import { endWords, settingLines } from './circuit-words.ts';
 import { commissioningLines } from './commissioning-lines.ts';
 import { clock, columns, figure, withUnit } from './figures.ts';
@@ -22,7 +22,10 @@ export function checkScreen(plant: Plant): string[] {
     (q) =>
       `  ${q.stage}: the continuous phase, ${q.continuity}, is ${figure(100 * q.share)} % of the mixer: beyond the usual limits it may invert`,
   );
-  if (thin.length > 0) lines.push('', 'Worth a look', ...thin);
+  const idle = idleTrains(plant).map(
+    (name) => `  ${name}: no solute has an equilibrium here, so nothing transfers in this train`,
+  );
+  if (thin.length + idle.length > 0) lines.push('', 'Worth a look', ...idle, ...thin);
   if (s.limits.length > 0) lines.push('', 'Limits');
   for (const l of s.limits) {
     const output = plant.system.outputs.find((o) => o.path === `${l.stream}.${l.quantity}`);

@@ -48,7 +48,12 @@ export function settingLines({ scenario: s, designs }: Plant): string[] {
       return c < 0 ? [`  ${f.name} neutralises ${figure(-c)} g/L of ${n}`] : [];
     }),
   );
-  const trains = s.trains.flatMap((t, i) => arrangementLines(t, designs[i].stages[0].mixer));
+  const trains = s.trains.flatMap((t, i) =>
+    arrangementLines(
+      t,
+      designs[i].stages.map((d) => (100 * d.mixer.organic) / (d.mixer.aqueous + d.mixer.organic)),
+    ),
+  );
   const batches = s.batches.map(
     (b) =>
       `  ${b.name}: ${figure(1000 * b.mixer.volume)} L stirred without flow, O/A ${figure(b.organicShare / (1 - b.organicShare))}`,
@@ -57,17 +62,20 @@ export function settingLines({ scenario: s, designs }: Plant): string[] {
   return all.length > 0 ? ['', 'Arrangement', ...all] : [];
 }
 
-function arrangementLines(t: Train, mixer: { aqueous: number; organic: number }): string[] {
+/** `organic`: the organic share that each mixer holds, in %. */
+function arrangementLines(t: Train, organic: readonly number[]): string[] {
   const { arrangement: a, backFlow: b } = t;
   const lines: string[] = [];
   if (a.kind === 'co-current') lines.push(`  ${t.name}: co-current, both phases enter stage 1`);
   if (a.kind === 'cross-current')
     lines.push(
-      `  ${t.name}: cross-current, the ${a.fresh} enters every stage fresh, ${a.shares.map((v) => figure(100 * v)).join(' / ')} %`,
+      `  ${t.name}: cross-current, the ${a.fresh} enters every stage fresh, ${a.fresh === 'aqueous' ? 'while the organic passes from the last stage to the first, ' : ''}${a.shares.map((v) => figure(100 * v)).join(' / ')} %`,
     );
-  if (t.stages[0].settler.parts === 0)
+  if (t.stages[0].settler.parts === 0) {
+    const [least, most] = [figure(Math.min(...organic)), figure(Math.max(...organic))];
     lines.push(
-      `  ${t.name}: without settlers, ${figure((100 * mixer.organic) / (mixer.aqueous + mixer.organic))} % organic held; back-flow ${figure(100 * b.aqueous)} % aqueous, ${figure(100 * b.organic)} % organic`,
+      `  ${t.name}: without settlers, ${least === most ? least : `${least} to ${most}`} % organic held; back-flow ${figure(100 * b.aqueous)} % aqueous, ${figure(100 * b.organic)} % organic`,
     );
+  }
   return lines;
 }

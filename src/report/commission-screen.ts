@@ -51,7 +51,7 @@ export function answerLines(r: CommissionResult): string[] {
     lines.push(`At rest from the start: no ${whatIsJudged(r)} moves by more than 1 % of anything.`);
   else
     lines.push(
-      `At rest at ${when(r.steady)}: from then on every ${whatIsJudged(r)} stays within 1 % of its change (of its final value: from ${when(r.nearFinal)}).${r.extended ? ` The horizon of ${clock(followed.asked)} was too short for that; it was run to ${clock(followed.ran)}.` : ''}`,
+      `At rest at ${when(r.steady)}: from then on every ${whatIsJudged(r)} stays within 1 % of its change (of its final value: from ${when(r.nearFinal)}).${r.extended ? ` The horizon of ${clock(followed.asked)} was too short for all of the plant; it was run to ${clock(followed.ran)}.` : ''}`,
     );
   lines.push(...r.limits.map(limitLine));
   if ('state' in rest)
@@ -68,7 +68,8 @@ export function answerLines(r: CommissionResult): string[] {
     lines.push(`Slowest mode ${modeWords(slow)}.${seen}`);
   }
   const others = r.modes.slice(1, 3).filter((m) => m.time > 0 && slow && m.time > slow.time / 3);
-  if (others.length > 0) lines.push(`Next: ${others.map(modeWords).join('; ')}.`);
+  const next = [...new Set(others.map(modeWords))];
+  if (next.length > 0) lines.push(`Next: ${next.join('; ')}.`);
   if (r.begun.length > 0) lines.push(`Begins with the start: ${r.begun.join('; ')}.`);
   if (r.leftOut.length > 0)
     lines.push(
@@ -101,6 +102,7 @@ function limitLine(l: OnSpec): string {
   const name = `${l.path} ${l.limit.side === 'below' ? '<' : '>'} ${withUnit(l.limit.value, l.unit)}`;
   const final = l.final === null ? '' : ` (at rest ${withUnit(l.final, l.unit)})`;
   if (l.from === null) return `NEVER ON-SPEC  ${name}${final}`;
+  if (l.neverOutside && l.from === 0) return `On-spec throughout: ${name}${final}.`;
   if (l.neverOutside)
     return `On-spec from ${clock(l.from)}: ${name}${final}; never outside, but a barren outlet proves nothing: counted from the first aqueous turnover.`;
   return `On-spec from ${clock(l.from)}: ${name}${final}.`;
@@ -231,7 +233,7 @@ function sampleLines(r: CommissionResult): string[] {
   const pairs = p.pairs.map((q) =>
     q.equalFrom === null
       ? `${clock(q.gap)} apart: not equal within the run`
-      : `${clock(q.gap)} apart, equal at ${clock(q.equalFrom)}: still ${percent(q.left ?? 0)} off (at most about ${percent(q.allowed)})`,
+      : `${clock(q.gap)} apart, equal at ${clock(q.equalFrom)}: still ${percent(q.left ?? 0)} off (by the slowest mode alone ${percent(q.allowed)})`,
   );
   return [
     `Samples mean steady state (drift below ${percent(p.repeatability)}) from: ${trusted.join(', ')}.`,

@@ -13,7 +13,9 @@ export function runScreen(r: RunResult): string[] {
   if (!r.complete) lines.push(`INCOMPLETE  ${explain(r.stop)}`);
   for (const q of r.shades) lines.push(`upset  ${q.words}, ${clock(q.from)} to ${clock(q.to)}`);
   for (const c of r.clamped)
-    lines.push(`note   ${c.quantity} would fall below 0 after ${clock(c.time)}: held at 0`);
+    lines.push(
+      `note   ${c.quantity} would ${c.at > 0 ? 'exceed 100 %' : 'fall below 0'} after ${clock(c.time)}: held there`,
+    );
   for (const l of r.limits) lines.push(...limitLines(l));
   if (r.events.length > 0) lines.push('Events:');
   // Start-up has many events; those at the end tell how the plant stands.
@@ -48,7 +50,8 @@ const rejected = ({ work: w }: RunResult): number =>
 export function limitLines(l: LimitReport): string[] {
   const from = l.limit.from > 0 ? ` from ${clock(l.limit.from)} on` : '';
   const name = `${l.path} ${l.limit.side === 'below' ? '<' : '>'} ${withUnit(l.limit.value, l.unit)}${from}`;
-  if (Number.isNaN(l.worst.value)) return [`NOT REACHED ${name}`];
+  if (Number.isNaN(l.worst.value))
+    return [`NOT JUDGED ${name}: there was never enough to compare, or the time was not reached`];
   const negligible = Math.abs(l.worst.value) < 1e-6 * Math.abs(l.limit.value);
   const worst = `worst ${withUnit(negligible ? 0 : l.worst.value, l.unit)} at ${clock(l.worst.time)}`;
   if (l.spells.length === 0) return [`KEPT   ${name}: ${worst}`];
@@ -69,7 +72,9 @@ function outletTable(r: RunResult): string[] {
   const { plant, snapshots } = r;
   const { outputs } = plant.system;
   const s = plant.scenario;
+  const limited = s.limits.map((l) => l.stream).filter((n) => plant.network.streams.get(n)?.user);
   const names = [
+    ...new Set(limited),
     ...plant.network.outlets.map((o) => o.name),
     ...s.tanks.map((t) => t.name),
     ...s.batches.flatMap((b) => [`${b.name} aqueous`, `${b.name} organic`]),
@@ -83,7 +88,7 @@ function outletTable(r: RunResult): string[] {
   const more = rows.length - MOST_ROWS;
   return [
     ...columns([
-      ['', ...snapshots.map((q) => q.label), 'unit'],
+      ['', ...snapshots.map((q) => (q.label === 'worst' ? 'at the worst' : q.label)), 'unit'],
       ['', ...snapshots.map((q) => (q.time === 0 ? '0 h' : clock(q.time))), ''],
       ...rows.slice(0, MOST_ROWS).map((i) => {
         const { unit, factor } = shown(outputs[i].unit);
@@ -114,6 +119,10 @@ export function steadyScreen(r: SteadyResult): string[] {
   };
   const lines = [`STEADY STATE  ${s.title}`];
   for (const f of r.figures) lines.push(...figureLines(f));
+  for (const q of r.usedUp.slice(0, 4))
+    lines.push(
+      `WARNING  ${q.species} in ${q.stage}.mixer is used up: more base is dosed or stripped than it can carry, and these figures are not to be trusted`,
+    );
   for (const d of r.drifts)
     lines.push(
       `${d.tank} ${d.rate > 0 ? 'gains' : 'loses'} ${figure(Math.abs(d.rate) * 86400)} m^3/d: ${d.rate > 0 ? 'full' : 'empty'} in ${clock(d.until)}`,
@@ -152,7 +161,7 @@ export function steadyScreen(r: SteadyResult): string[] {
       lines.push('', `Stages of ${t.name}: ${t.stages.length}, in summary.json`);
       continue;
     }
-    lines.push('', `Stages of ${t.name}, leaving the settlers [g/L]`);
+    lines.push('', `Stages of ${t.name}, leaving each stage [g/L]`);
     lines.push(
       ...columns([
         ['', ...dissolved.map((c) => `aqueous ${c}`), ...s.solutes.map((c) => `organic ${c}`)],
@@ -199,20 +208,18 @@ function figureLines(f: TrainFigures): string[] {
     const [a, b] = [figure(Math.min(...known), digits), figure(Math.max(...known), digits)];
     return a === b ? a : `${a} to ${b}`;
   };
-  const total = (list: readonly (number | null)[]): string =>
-    list.includes(null) ? '-' : clock(list.reduce<number>((n, v) => n + (v as number), 0));
-  const efficiency = f.solutes.map((q) =>
-    span(
-      q.efficiency.map((e) => (e === null ? null : 100 * e)),
-      3,
-    ),
-  );
+  const time = (v: number | null): string => (v === null ? '-' : clock(v));
+  const efficiency = f.solutes.map((q) => {
+    const own = span(q.efficiency.map((e) => (e === null ? null : 100 * e)));
+    return f.solutes.length > 1 ? `${own} % (${q.solute})` : `${own} %`;
+  });
+  const side = f.side === null ? 'on the side of each mixer' : `${f.side} side`;
   const loads = f.stages.map((q) => (q.settlerLoad === null ? null : q.settlerLoad * 3600));
   const parts = [
     `O/A ${figure(f.advance)} through, ${span(f.stages.map((q) => q.mixerRatio))} in the mixers`,
-    `stage efficiency ${efficiency.join(', ')} %`,
+    ...(efficiency.length > 0 ? [`stage efficiency ${efficiency.join(', ')}, ${side}`] : []),
     ...(loads.some((v) => v !== null) ? [`settlers ${span(loads)} m³/h·m²`] : []),
-    `held ${total(f.stages.map((q) => q.aqueousHeld))} aqueous, ${total(f.stages.map((q) => q.organicHeld))} organic`,
+    `held ${time(f.held.aqueous)} aqueous, ${time(f.held.organic)} organic`,
     ...(f.solventLost > 0
       ? [
           `solvent lost ${figure(f.solventLost * 86400)} m³/d (${figure(f.specificLoss * 1e6)} mL/m³ of aqueous)`,
@@ -228,9 +235,11 @@ function separationLine(
 ): string[] {
   if (q === null) return [];
   const load = q.load === null ? [] : [`all solutes load ${figure(100 * q.load)} % of the organic's maximum`];
-  const factors = q.factors.map((x) => `separation factor ${x.one} over ${x.other} ${span(x.stages)}`);
+  const known = q.factors.filter((x) => x.stages.some((v) => v !== null));
+  const factors = known.map((x) => `separation factor ${x.one} over ${x.other} ${span(x.stages)}`);
   const crowded = q.crowding
     .filter((x) => x.share !== null && x.share < 0.99)
     .map((x) => `${x.solute} crowded to ${figure(100 * (x.share as number))} % of its loading alone`);
-  return [`  ${[...factors, ...load, ...crowded].join('; ')}`];
+  const words = [...factors, ...load, ...crowded];
+  return words.length > 0 ? [`  ${words.join('; ')}`] : [];
 }

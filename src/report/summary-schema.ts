@@ -7,6 +7,9 @@ const trainFigures = object({
   advance_organic_to_aqueous: number('as they pass through'),
   solvent_lost_m3_per_s: number('with the aqueous outlet'),
   solvent_lost_m3_per_m3_aqueous: number('of the aqueous outlet'),
+  aqueous_held_s: orNull(number('all that the train holds by all that enters it')),
+  organic_held_s: orNull(number('likewise')),
+  efficiency_side: orNull(text('the side that the stage efficiencies are of; null where the stages differ')),
   stages: list(
     object({
       mixer_organic_to_aqueous: orNull(number('recycle and carry-over included')),
@@ -23,7 +26,7 @@ const trainFigures = object({
       recovery: number('share of what enters with the phase that gives'),
       net_transfer_kg_per_m3: number('loaded less lean organic'),
       share_of_maximum_load: orNull(number('null where the law has no ceiling')),
-      stage_efficiency: list(orNull(number('Murphree, aqueous side'))),
+      stage_efficiency: list(orNull(number('Murphree, on the side that the mixer is stated for'))),
     }),
   ),
   separation: orNull(
@@ -90,7 +93,7 @@ const run = object({
       ),
       outside_s: number('in all'),
       beyond_kg: orNull(number('∫ Q·max(c − limit, 0) dt; null where that has no meaning')),
-      worst: number('in `unit`'),
+      worst: orNull(number('in `unit`; null where it was never judged')),
       worst_time_s: number('when'),
     }),
   ),
@@ -117,6 +120,9 @@ const steady = object({
   ...head,
   values: figures('every output at steady state, key `path [unit]`'),
   figures: list(trainFigures),
+  used_up: list(
+    object({ stage: text('train.stage'), species: text('that is taken up more than there is of it') }),
+  ),
   drifts: list(
     object({
       tank: text('name'),

@@ -33,7 +33,7 @@ export const notNegative = (q: Quantity): string | null => (q.value >= 0 ? null 
 export const between =
   (least: number, most: number, inWords = `${least} and ${most}`) =>
   (q: Quantity): string | null =>
-    q.value > least && q.value < most ? null : `must lie between ${inWords}`;
+    q.value > least && q.value < most ? null : `must lie between ${inWords}, neither of them included`;
 
 export const number = (check = positive) => figure(['a plain number'], check);
 

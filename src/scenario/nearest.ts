@@ -15,7 +15,7 @@ export function nearest(word: string, candidates: readonly string[]): string | n
   for (const c of candidates) {
     const [a, b] = [word.toLowerCase(), c.toLowerCase()];
     const tooFar = Math.abs(a.length - b.length) >= least;
-    const d = isStart(a, b) ? 1 : tooFar ? least : distance(a, b);
+    const d = isStart(a, b) || startsSame(a, b) ? 1 : tooFar ? least : distance(a, b);
     if (d < least) {
       least = d;
       best = c;
@@ -27,6 +27,12 @@ export function nearest(word: string, candidates: readonly string[]): string | n
 /** Letters that may differ: of one letter nothing would be left but its case. */
 const changes = (length: number): number =>
   length === 1 ? 0 : length <= SHORT ? 1 : Math.max(2, Math.floor(length * 0.4));
+
+/** Paths that differ by a first name cut short: `raff.copper` for `raffinate.copper`. */
+function startsSame(a: string, b: string): boolean {
+  const [i, j] = [a.indexOf('.'), b.indexOf('.')];
+  return i > 0 && j > 0 && a.slice(i) === b.slice(j) && isStart(a.slice(0, i), b.slice(0, j));
+}
 
 /** A word cut short, or one that goes on. */
 const isStart = (a: string, b: string): boolean =>

@@ -43,13 +43,22 @@ export function readCommissioning(
       ? { repeatability: raw.samples.repeatability.value, gap: raw.samples.gap.value }
       : null,
     prices: readPrices(raw.prices, s.solutes, pricedStreams(s), problems),
-    procedures: Object.entries(raw.procedures ?? {}).map(([name, p]) =>
-      new ProcedureReader(name, p, s, around, problems).read(),
-    ),
+    procedures: Object.entries(raw.procedures ?? {}).map(([name, p]) => {
+      if (name === PLAIN_START)
+        problems.push({
+          path: ['procedures', name],
+          message: `'${name}' is the start without a procedure; choose another name`,
+          atKey: true,
+        });
+      return new ProcedureReader(name, p, s, around, problems).read();
+    }),
     uncertain: Object.entries(raw.uncertain ?? {}).flatMap(([path, text]) => range(path, text, s, problems)),
     compare: readCompare(raw.compare, around.outline, around.basis, around.folder, problems),
   };
 }
+
+/** What the start is called that no procedure changes. */
+export const PLAIN_START = 'plain start';
 
 /** Feeds and outlets; null where the streams do not join up, which is complained about elsewhere. */
 function pricedStreams(s: Scenario): string[] | null {

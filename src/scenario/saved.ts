@@ -30,6 +30,7 @@ export function startOf(raw: RawScenario['start'], folder: string, problems: Pro
     places,
     values,
     modes = {},
+    volumes_m3: volumes,
   } = (data ?? {}) as Record<string, unknown>;
   const whole =
     format === 1 &&
@@ -41,7 +42,8 @@ export function startOf(raw: RawScenario['start'], folder: string, problems: Pro
     values.every((v) => typeof v === 'number' && Number.isFinite(v)) &&
     typeof modes === 'object' &&
     modes !== null &&
-    Object.values(modes).every((v) => v === 0 || v === 1);
+    Object.values(modes).every((v) => v === 0 || v === 1) &&
+    isVolumes(volumes, places.length);
   if (!whole) return complain(`${file} is not a kept state of this program`);
   return {
     file,
@@ -49,5 +51,11 @@ export function startOf(raw: RawScenario['start'], folder: string, problems: Pro
     places: places as string[],
     values: values as number[],
     modes: modes as Record<string, number>,
+    ...(volumes === undefined ? {} : { volumes: volumes as (number | null)[] }),
   };
 }
+
+/** States kept by earlier versions say nothing of volumes. */
+const isVolumes = (v: unknown, places: number): boolean =>
+  v === undefined ||
+  (Array.isArray(v) && v.length === places && v.every((q) => q === null || typeof q === 'number'));

@@ -264,6 +264,8 @@ export interface SavedState {
   readonly topology: string;
   readonly places: readonly string[];
   readonly values: readonly number[];
+  /** m³ that each amount stood in; null where that is no question. */
+  readonly volumes?: readonly (number | null)[];
   /** Inputs that events had set, by path. */
   readonly modes: Readonly<Record<string, number>>;
 }

@@ -10,6 +10,8 @@ import type { Snapshot } from './result.ts';
 export interface Diagram {
   readonly train: string;
   readonly solute: string;
+  /** Whether other solutes shape the curve: then it runs from stage to stage, and need not begin at zero. */
+  readonly competing: boolean;
   /** What the isotherm is drawn along, in words. */
   readonly along: string;
   readonly moments: readonly Moment[];
@@ -84,7 +86,7 @@ export function diagrams(plant: Plant, snapshots: readonly Snapshot[]): Diagram[
         const xs = Array.from({ length: POINTS + 1 }, (_, k) => reach * (k / POINTS) ** 2);
         return { label, time, isotherm: xs.map((x) => ({ x, y: curve(x) })), operating, stages };
       });
-      return [{ train: t.name, solute, along: along(plant, t, i), moments }];
+      return [{ train: t.name, solute, competing: competes(s, t), along: along(plant, t, i), moments }];
     }),
   );
 }

@@ -33,12 +33,25 @@ const LOOKS = 5;
 /** Share of a step from its end within which a peak differs from the end by less than a millionth of the bend. */
 const BESIDE = 1e-3;
 
+/** Share of what is typical below which there is nothing to compare. */
+const NOTHING = 1e-3;
+
+/** What a purity is a share of, and what a ratio is divided by. */
+function needed({ scenario: s }: Plant, { stream, quantity }: Limit): string[] {
+  const over = quantity.split(' / ')[1];
+  if (over !== undefined) return [over];
+  return quantity.startsWith('purity of ') ? s.solutes.map((n) => `${stream}.${n}`) : [];
+}
+
 /** Follows one limit through a run, on dense output: crossings, worst value, amount beyond. */
 export class LimitWatch implements Watcher {
   readonly #plant: Plant;
   readonly #limit: Limit;
   readonly #output: number;
   readonly #flow: number;
+  /** Outputs that must be there for a purity or a ratio to be one, and how much of them. */
+  readonly #needs: readonly number[];
+  readonly #least: number;
   readonly #sign: 1 | -1;
   readonly #spells: Spell[] = [];
   readonly #x: F;
@@ -62,6 +75,8 @@ export class LimitWatch implements Watcher {
     this.#output = find(limit.quantity);
     this.#flow = system.outputs[this.#output]?.unit === 'kg/m^3' ? find('flow') : -1;
     this.#sign = limit.side === 'below' ? 1 : -1;
+    this.#needs = needed(plant, limit).map((path) => system.outputs.findIndex((o) => o.path === path));
+    this.#least = NOTHING * Math.max(0, ...this.#needs.map((i) => system.outputs[i].scale));
     this.#x = new Float64Array(system.places.length);
     this.#w = new Float64Array(system.inputs.length);
     this.#y = new Float64Array(system.outputs.length);
@@ -143,8 +158,15 @@ export class LimitWatch implements Watcher {
     else if (this.#spells.length > 0) this.#spells[this.#spells.length - 1].to = t;
   }
 
+  /** How far outside; a purity or a ratio of nothing is inside. */
   #excess(): number {
+    if (!this.#defined()) return -Math.abs(this.#limit.value);
     return this.#sign * (this.#y[this.#output] - this.#limit.value);
+  }
+
+  #defined(): boolean {
+    if (this.#needs.length === 0) return true;
+    return this.#needs.reduce((n, i) => n + this.#y[i], 0) > this.#least;
   }
 
   #look(step: Step, inputs: Inputs, t: number): void {
@@ -170,6 +192,7 @@ export class LimitWatch implements Watcher {
   }
 
   #consider(t: number): void {
+    if (!this.#defined()) return;
     const value = this.#y[this.#output];
     if (!Number.isNaN(this.#worst.value) && this.#sign * value <= this.#sign * this.#worst.value) return;
     this.#worst = { value, time: t };

@@ -29,7 +29,7 @@ export interface RunResult {
   readonly shades: readonly Shade[];
   /** Inputs that changed, as they were. */
   readonly courses: readonly Course[];
-  readonly clamped: readonly { readonly quantity: string; readonly time: number }[];
+  readonly clamped: readonly { readonly quantity: string; readonly time: number; readonly at: number }[];
   readonly closures: readonly Closure[];
   readonly snapshots: readonly Snapshot[];
   readonly diagrams: readonly Diagram[];
@@ -56,6 +56,8 @@ export interface SteadyResult {
   readonly drifts: readonly { readonly tank: string; readonly rate: number; readonly until: number }[];
   readonly figures: readonly TrainFigures[];
   readonly diagrams: readonly Diagram[];
+  /** Mixers in which more of a species is taken up than there is: what is said of them is not to be trusted. */
+  readonly usedUp: readonly { readonly stage: string; readonly species: string }[];
   /** Largest imbalance at the boundary less what drifting tanks gain, relative to what enters, by component. */
   readonly imbalance: number;
 }

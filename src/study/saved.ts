@@ -1,4 +1,5 @@
 import type { Plant } from '../plant/assemble.ts';
+import { heldVolumes } from '../plant/held.ts';
 import { Refusal } from '../scenario/refusal.ts';
 import type { SavedState } from '../scenario/scenario.ts';
 import type { F } from '../solve/system.ts';
@@ -18,6 +19,7 @@ export function saveState(plant: Plant, x: F, time: number, modes: ReadonlyMap<n
     time_s: time,
     places: plant.system.places.map((p) => p.path),
     values: Array.from(x),
+    volumes_m3: Array.from(heldVolumes(plant, x), (v) => (Number.isFinite(v) ? v : null)),
     modes: Object.fromEntries([...modes].map(([i, v]) => [plant.system.inputs[i].path, v])),
   };
 }
@@ -32,7 +34,8 @@ export const restoreModes = (plant: Plant, saved: SavedState): Map<number, numbe
 
 /**
  * A kept state on the places of a plant. Boundary totals start at zero again. A hold-up that was no state in the
- * earlier run, because no flow moved there, starts at rest.
+ * earlier run, because no flow moved there, starts at rest. Where a vessel has another size, or holds a phase in another
+ * share, the concentrations are those that were kept.
  *
  * @throws Refusal naming the places in which the two plants differ.
  */
@@ -51,7 +54,7 @@ export function restoreState(plant: Plant, saved: SavedState): F {
   });
   const own = new Set(plant.system.places.map((p) => p.path));
   const extra = saved.places.filter((p) => !own.has(p) && !isTotal(p) && !isRestingHoldup(p));
-  if (missing.length === 0 && extra.length === 0) return x;
+  if (missing.length === 0 && extra.length === 0) return resized(plant, saved, x);
   const list = (what: string, paths: readonly string[]): string[] =>
     paths.length === 0
       ? []
@@ -64,3 +67,18 @@ export function restoreState(plant: Plant, saved: SavedState): F {
 
 const isRestingHoldup = (path: string): boolean => /\.mixer\.organic\.volume$/.test(path);
 const isTotal = (path: string): boolean => /\.(in|out)\./.test(path);
+
+/** Amounts in the ratio of the volumes that they stand in now and stood in then. */
+function resized(plant: Plant, saved: SavedState, x: F): F {
+  const then = new Map(saved.places.map((p, i) => [p, saved.volumes?.[i] ?? Number.NaN]));
+  const scale = (kind: 'volume' | 'amount', now: F): void => {
+    plant.system.places.forEach((p, i) => {
+      const ratio = now[i] / (then.get(p.path) ?? Number.NaN);
+      if (p.kind === kind && Number.isFinite(ratio)) x[i] *= ratio;
+    });
+  };
+  // Hold-ups first: what the amounts stand in follows from them.
+  scale('volume', heldVolumes(plant, x));
+  scale('amount', heldVolumes(plant, x));
+  return x;
+}

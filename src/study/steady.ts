@@ -23,8 +23,23 @@ export function steady(s: Scenario): SteadyResult {
     drifts: drifts(plant, found.state, change),
     figures: trainFigures(plant, outputs),
     diagrams: diagrams(plant, [{ label: 'steady state', time: 0, outputs }]),
+    usedUp: usedUp(plant, outputs),
     imbalance: imbalance(plant, change),
   };
+}
+
+function usedUp(plant: Plant, y: F): SteadyResult['usedUp'] {
+  const { trains, species } = plant.scenario;
+  const at = new Map(plant.system.outputs.map((o, i) => [o.path, i]));
+  return trains.flatMap((t) =>
+    t.stages.flatMap((_, j) =>
+      species.flatMap((name) => {
+        const i = at.get(`${t.name}.${j + 1}.mixer.aqueous.${name}`) as number;
+        const lacks = y[i] < -1e-6 * plant.system.outputs[i].scale;
+        return lacks ? [{ stage: `${t.name}.${j + 1}`, species: name }] : [];
+      }),
+    ),
+  );
 }
 
 /** Tanks that gain or lose volume while all else is at rest; `until` is s from then. */

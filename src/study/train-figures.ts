@@ -2,7 +2,7 @@ import type { Plant } from '../plant/assemble.ts';
 import { recycled } from '../plant/design.ts';
 import { forBoth } from '../plant/flow.ts';
 import { equilibriumAt } from '../plant/isotherm.ts';
-import type { Law } from '../scenario/scenario.ts';
+import type { Law, Phase } from '../scenario/scenario.ts';
 import type { F } from '../solve/system.ts';
 import { loadOf, type Separation, separation } from './separation.ts';
 import { StageInlets } from './stage-inlets.ts';
@@ -16,8 +16,12 @@ export interface TrainFigures {
   /** m³/s of organic that leaves with the aqueous outlet, and per m³/s of it. */
   readonly solventLost: number;
   readonly specificLoss: number;
+  /** s: all that the train holds of a phase, by what enters it of that phase; null while nothing flows. */
+  readonly held: Readonly<Record<Phase, number | null>>;
   readonly stages: readonly StageFigures[];
   readonly solutes: readonly SoluteFigures[];
+  /** The side that the efficiencies are of; null where the stages differ. */
+  readonly side: Phase | null;
   /** How its solutes are told apart; null where fewer than two transfer. */
   readonly separation: Separation | null;
 }
@@ -43,7 +47,10 @@ export interface SoluteFigures {
   readonly netTransfer: number;
   /** Share of what the organic can hold; null where the law has no ceiling. */
   readonly load: number | null;
-  /** Murphree efficiency of the aqueous, stage by stage: (c_in − c)/(c_in − c*); null where there is nothing to do. */
+  /**
+   * Murphree efficiency stage by stage, on the side that its mixer is stated for: (c_in − c)/(c_in − c*); null where
+   * there is nothing to do.
+   */
   readonly efficiency: readonly (number | null)[];
 }
 
@@ -62,8 +69,13 @@ export function trainFigures(plant: Plant, y: F): TrainFigures[] {
       advance: flow(t.organic.from) / flow(t.aqueous.from),
       solventLost,
       specificLoss: out > 0 ? solventLost / out : 0,
+      held: forBoth((phase) => {
+        const volume = t.stages.reduce((n, _, j) => n + heldIn(plant, i, j, known)[phase], 0);
+        return finite(volume / trainStreams(t, i, plant.network, phase).in.reduce((n, q) => n + flow(q), 0));
+      }),
       stages: t.stages.map((_, j) => stageFigures(plant, i, j, now, known)),
       solutes: t.equilibrium.flatMap((law, k) => (law ? [soluteFigures(plant, i, k, law, now, read)] : [])),
+      side: t.stages.every((q) => q.mixer.side === t.stages[0].mixer.side) ? t.stages[0].mixer.side : null,
       separation: separation(plant, t, read),
     };
   });
@@ -83,8 +95,7 @@ function stageFigures(
   const t = plant.scenario.trains[train];
   const { mixer, settler } = t.stages[j];
   const d = plant.designs[train].stages[j];
-  const path = `${t.name}.${j + 1}`;
-  const share = read(`${path}.mixer.organic_share`) ?? d.mixer.organic / mixer.volume;
+  const share = shareIn(plant, train, j, read);
   const through = forBoth((phase) => now.flows.stage(train, phase, j).enters);
   const back = recycled(t, through);
   // What neighbours carry over and send back goes with the flow, as at design.
@@ -92,11 +103,7 @@ function stageFigures(
     const beside = d.set[phase] > 0 ? (d.entering[phase] - d.recycled[phase]) / d.set[phase] : 1;
     return Math.max(0, through[phase] * beside + back[phase]);
   });
-  const held = forBoth((phase) => {
-    const depth = read(`${path}.settler.${phase}_depth`);
-    if (depth === undefined || settler.area === null) return d.mixer[phase] + d.band[phase] + d.layer[phase];
-    return mixer.volume * (phase === 'organic' ? share : 1 - share) + d.band[phase] + depth * settler.area;
-  });
+  const held = heldIn(plant, train, j, read);
   const both = entering.aqueous + entering.organic;
   return {
     mixerRatio: finite(share / (1 - share)),
@@ -105,6 +112,28 @@ function stageFigures(
     organicHeld: finite(held.organic / entering.organic),
     settlerLoad: settler.area === null ? null : both / settler.area,
   };
+}
+
+type Known = (path: string) => number | undefined;
+
+/** Organic share of a mixer as it is, or at design where it does not move. */
+function shareIn(plant: Plant, train: number, j: number, read: Known): number {
+  const t = plant.scenario.trains[train];
+  const d = plant.designs[train].stages[j];
+  return read(`${t.name}.${j + 1}.mixer.organic_share`) ?? d.mixer.organic / t.stages[j].mixer.volume;
+}
+
+/** m³ that a stage holds of each phase. */
+function heldIn(plant: Plant, train: number, j: number, read: Known): Readonly<Record<Phase, number>> {
+  const t = plant.scenario.trains[train];
+  const { mixer, settler } = t.stages[j];
+  const d = plant.designs[train].stages[j];
+  const share = shareIn(plant, train, j, read);
+  return forBoth((phase) => {
+    const depth = read(`${t.name}.${j + 1}.settler.${phase}_depth`);
+    if (depth === undefined || settler.area === null) return d.mixer[phase] + d.band[phase] + d.layer[phase];
+    return mixer.volume * (phase === 'organic' ? share : 1 - share) + d.band[phase] + depth * settler.area;
+  });
 }
 
 function soluteFigures(
@@ -124,7 +153,7 @@ function soluteFigures(
   const offered =
     transferred >= 0 ? rate(trainStreams(t, train, plant.network, 'aqueous').in) : rate(organic.in);
   const loaded = read(`${t.organic.to}.${solute}`);
-  const star = equilibriumAt(plant, t, k, 'aqueous');
+  const star = forBoth((phase) => equilibriumAt(plant, t, k, phase));
   const { solutes, species } = plant.scenario;
   return {
     solute,
@@ -132,13 +161,14 @@ function soluteFigures(
     recovery: offered > 0 ? Math.abs(transferred) / offered : 0,
     netTransfer: loaded - read(`${t.organic.from}.${solute}`),
     load: loadOf(law, loaded),
-    efficiency: t.stages.map((_, j) => {
+    efficiency: t.stages.map(({ mixer: { side } }, j) => {
       const mixer = `${t.name}.${j + 1}.mixer`;
       const aqueous = [...solutes, ...species].map((n) => read(`${mixer}.aqueous.${n}`));
       const organic = solutes.map((n) => read(`${mixer}.organic.${n}`));
-      const before = now.content(train, 'aqueous', j, solute);
-      const possible = before - star(aqueous, organic);
-      return Math.abs(possible) > 1e-9 * Math.max(before, 1e-9) ? (before - aqueous[k]) / possible : null;
+      const before = now.content(train, side, j, solute);
+      const possible = before - star[side](aqueous, organic);
+      const after = (side === 'aqueous' ? aqueous : organic)[k];
+      return Math.abs(possible) > 1e-9 * Math.max(before, 1e-9) ? (before - after) / possible : null;
     }),
   };
 }

@@ -1,5 +1,5 @@
 import type { Plant } from '../plant/assemble.ts';
-import { track } from '../plant/course.ts';
+import { mostOf, track } from '../plant/course.ts';
 import type { Change } from '../scenario/scenario.ts';
 import { makeSchedule, type Track } from '../solve/schedule.ts';
 import type { Schedule } from '../solve/system.ts';
@@ -23,19 +23,20 @@ export interface Upsets {
   readonly schedule: Schedule;
   readonly courses: readonly Course[];
   readonly shades: readonly Shade[];
-  /** Quantities that a change would have made negative, with the time at which they were held at zero. */
-  readonly clamped: readonly { readonly quantity: string; readonly time: number }[];
+  /** Quantities that a change would have made negative, or shares of more than all, from when and at what they were held. */
+  readonly clamped: readonly { readonly quantity: string; readonly time: number; readonly at: number }[];
 }
 
 /** Upsets → schedule of the inputs from 0 to the horizon. */
 export function upsetSchedule(plant: Plant, changes: readonly Change[], horizon: number): Upsets {
-  const clamped: { quantity: string; time: number }[] = [];
+  const clamped: { quantity: string; time: number; at: number }[] = [];
   const quantities = [...new Set(changes.map((c) => c.quantity))];
   const tracks = quantities.map((quantity): Track => {
     const input = plant.system.inputs.findIndex((i) => i.path === quantity);
     const own = changes.filter((c) => c.quantity === quantity);
-    const line = track(plant.inputs[input], own, horizon);
-    if (line.clampedAt !== null) clamped.push({ quantity, time: line.clampedAt });
+    const most = mostOf(plant.system.inputs[input]);
+    const line = track(plant.inputs[input], own, horizon, most);
+    if (line.clampedAt !== null) clamped.push({ quantity, time: line.clampedAt, at: most === 1 ? 1 : 0 });
     return { input, times: line.times, values: line.values };
   });
   // One upset can stand for changes of several inputs: it is one shade.

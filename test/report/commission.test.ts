@@ -112,7 +112,7 @@ describe('the screen', () => {
 
   it('says what was left out, and when the horizon was too short', () => {
     const short = commissionScreen(plainly({ ...scenario('saltbush-copper'), horizon: 3600 })).join('\n');
-    expect(short).toMatch(/The horizon of 1 h was too short for that; it was run to \d+ h/);
+    expect(short).toMatch(/The horizon of 1 h was too short for all of the plant; it was run to \d+ h/);
     expect(short).toContain(
       'Left out, because it comes later: leach liquor.copper +35 %; extraction.2.mixer stopped.',
     );

@@ -54,7 +54,7 @@ describe('laws', () => {
     [
       'freundlich with a wild exponent',
       law('{law: freundlich, coefficient: 2, exponent: 21}'),
-      [at(71, 'exponent'), 'between 0 and 20, got 21'],
+      [at(71, 'exponent'), 'between 0 and 20, neither of them included, got 21'],
     ],
     [
       'freundlich with half its settings',

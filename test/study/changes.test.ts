@@ -183,7 +183,7 @@ describe('nothing is negative', () => {
       [change(10, percent(-150), 0, 20), change(60, to(5), 5, 30)],
       HORIZON,
     );
-    expect(clamped).toEqual([{ quantity: 'feed.s', time: 10 }]);
+    expect(clamped).toEqual([{ quantity: 'feed.s', time: 10, at: 0 }]);
     expect(shades.map(({ from, to: end }) => [from, end])).toEqual([
       [10, 30],
       [60, 95],

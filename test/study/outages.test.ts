@@ -156,6 +156,37 @@ describe('a kept state', () => {
     expect(() => run({ ...s, start: other })).toThrow(/of another plant: it lacks extraction\.1\./);
   });
 
+  it('keeps its concentrations in vessels of another size', () => {
+    const base = { ...scenario('saltbush-copper'), horizon: 30 * 3600, upsets: [] };
+    const whole = run(base);
+    const state = { ...kept(whole), volumes: (whole.kept as { volumes_m3: (number | null)[] }).volumes_m3 };
+    const larger = {
+      ...base,
+      horizon: 3600,
+      start: state,
+      tanks: base.tanks.map((t) => ({ ...t, held: 0.5 * t.held })),
+      trains: base.trains.map((t) => ({
+        ...t,
+        stages: t.stages.map((q) => ({
+          ...q,
+          mixer: { ...q.mixer, volume: 2 * q.mixer.volume },
+          settler: { ...q.settler, aqueous: 3 * q.settler.aqueous },
+        })),
+      })),
+    };
+    const next = run(larger);
+    for (const path of [
+      'raffinate.copper',
+      'raffinate.acid',
+      'rich electrolyte.copper',
+      'organic tank.copper',
+    ]) {
+      const i = next.plant.system.outputs.findIndex((o) => o.path === path);
+      for (const row of next.records.rows)
+        expect(Math.abs(row[i] / last(whole, path) - 1)).toBeLessThan(1e-5);
+    }
+  });
+
   it('may come from a run in which no flow moved', () => {
     const base = { ...scenario('saltbush-copper'), horizon: 3600 };
     const still = kept(run({ ...base, upsets: [] }));

@@ -81,7 +81,7 @@ function config(r: RunResult, { train, solute }: Part): ChartConfiguration {
           offset: false,
           title: {
             display: true,
-            text: [`time [${unit.name}]`, `${short(s.title, 60)}: aqueous ${solute} leaving each settler`],
+            text: [`time [${unit.name}]`, `${short(s.title, 60)}: aqueous ${solute} leaving each stage`],
           },
           ticks: { stepSize: tickStep(end, 20, unit), maxRotation: 0 },
           grid: { display: false },
@@ -104,7 +104,7 @@ function config(r: RunResult, { train, solute }: Part): ChartConfiguration {
       },
       plugins: {
         ...captions(`${short(train, 40)}: ${solute} over stages and time`, [
-          'Aqueous leaving each settler; stage 1, where the aqueous enters, is on top. Dashed: upsets begin and end.',
+          'Aqueous leaving each stage; stage 1, where the aqueous enters, is on top. Dashed: upsets begin and end.',
         ]),
         legend: { display: false },
         annotation: { annotations: shadeLines(r, unit.seconds) },

@@ -29,11 +29,14 @@ export const operating: Picture<HasDiagrams> = {
  * one chart, each moment takes the pair that makes its field.
  */
 function config(d: Diagram, title: string): ChartConfiguration {
-  const moments = d.moments.slice(0, MOST_MOMENTS);
+  // Where solutes compete, a plant without any has nothing to show.
+  const some = d.moments.filter((m) => m.stages.some((p) => p.x > 0 || p.y > 0));
+  const moments = (d.competing && some.length > 0 ? some : d.moments).slice(0, MOST_MOMENTS);
   const across = moments.length > 1 ? 2 : 1;
   const down = Math.ceil(moments.length / across);
   const all = moments.flatMap((m) => [...m.operating.filter((p) => Number.isFinite(p.x)), ...m.stages]);
   const maxX = wholeSteps(1.04 * Math.max(1e-9, ...all.map((p) => p.x)));
+  const minX = d.competing ? fromSteps(0.97 * Math.min(...all.map((p) => p.x)), maxX) : 0;
   const maxY = wholeSteps(1.1 * Math.max(1e-9, ...all.map((p) => p.y)));
   const datasets = moments.flatMap((m, i) => {
     const axes = { xAxisID: `x${i % across}`, yAxisID: `y${down - 1 - Math.floor(i / across)}` };
@@ -82,7 +85,7 @@ function config(d: Diagram, title: string): ChartConfiguration {
       position: 'bottom',
       stack: 'across',
       stackWeight: 1,
-      min: 0,
+      min: minX,
       max: maxX,
       title: {
         display: true,
@@ -91,7 +94,7 @@ function config(d: Diagram, title: string): ChartConfiguration {
             ? [`aqueous ${short(d.solute, 20)} [g/L]`, short(title, 60)]
             : [`aqueous ${short(d.solute, 20)} [g/L]`, ''],
       },
-      ticks: { stepSize: step(maxX), autoSkip: false, maxRotation: 0, callback: inner },
+      ticks: { stepSize: step(maxX - minX), autoSkip: false, maxRotation: 0, callback: inner },
       grid: { color: '#e2e2e2' },
       border: { color: '#888888' },
     };
@@ -113,7 +116,7 @@ function config(d: Diagram, title: string): ChartConfiguration {
     type: 'label',
     xScaleID: `x${i % across}`,
     yScaleID: `y${down - 1 - Math.floor(i / across)}`,
-    xValue: (low ? 0.98 : 0.02) * maxX,
+    xValue: minX + (low ? 0.98 : 0.02) * (maxX - minX),
     yValue: (low ? 0.05 : 0.95) * maxY,
     position: low ? { x: 'end', y: 'end' } : { x: 'start', y: 'start' },
     content: moment(m),
@@ -140,6 +143,13 @@ function config(d: Diagram, title: string): ChartConfiguration {
 
 /** The end of an axis on a whole number of ticks. */
 const wholeSteps = (v: number): number => Math.ceil(v / step(v)) * step(v);
+
+/** The start of an axis on a whole number of its ticks; zero where that is near. */
+function fromSteps(v: number, max: number): number {
+  const size = step(max - v);
+  const start = Math.floor(v / size) * size;
+  return start > 0.2 * max ? start : 0;
+}
 
 /** A round tick distance that gives five to ten ticks. */
 function step(span: number): number {

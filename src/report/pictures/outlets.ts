@@ -63,7 +63,7 @@ function line(r: RunResult, path: string): PanelLine & { largest: number; unit: 
   });
   // Records may stride over the worst moment, which the text names.
   for (const l of r.limits)
-    if (l.path === path) {
+    if (l.path === path && !Number.isNaN(l.worst.value)) {
       const at = data.findIndex((p) => p.x > l.worst.time);
       data.splice(at < 0 ? data.length : at, 0, { x: l.worst.time, y: l.worst.value * factor });
       largest = Math.max(largest, Math.abs(l.worst.value * factor));
@@ -90,6 +90,7 @@ function limitPanels(r: RunResult, limited: readonly string[]): Panel[] {
       from: l.unit === '%' ? Math.min(...own.map((q) => q.limit.from)) : 0,
       limits: own.map((q) => ({
         value: q.limit.value * shown(q.unit).factor,
+        from: q.limit.from,
         label: `limit ${q.limit.side === 'below' ? '<' : '>'} ${withUnit(q.limit.value, q.unit)}`,
       })),
     };
@@ -103,7 +104,16 @@ function limitPanels(r: RunResult, limited: readonly string[]): Panel[] {
 function otherPanels(r: RunResult, limited: readonly string[]): Panel[] {
   const { scenario: s, network } = r.plant;
   const streams = s.solutes.length > 1 ? network.outlets : [...network.streams.values()];
-  const made = streams.filter((q) => q.maker.kind !== 'feed' && q.maker.kind !== 'tank').map((q) => q.name);
+  // What a stream divides into has its composition.
+  const own = streams.filter((q) => !['feed', 'tank', 'split'].includes(q.maker.kind));
+  const divided = s.splits.flatMap((q) =>
+    network.streams.get(q.stream)?.maker.kind === 'feed'
+      ? []
+      : [...q.branches.map((b) => b.name), q.rest]
+          .filter((n) => network.streams.get(n)?.user === null)
+          .slice(0, 1),
+  );
+  const made = [...own.map((q) => q.name), ...(s.solutes.length > 1 ? divided : [])];
   const names = [
     ...made,
     ...s.tanks.map((t) => t.name),

@@ -17,7 +17,8 @@ export interface Panel {
   readonly unit: string;
   readonly weight: number;
   readonly lines: readonly PanelLine[];
-  readonly limits: readonly { readonly value: number; readonly label: string }[];
+  /** Values in the shown unit, and s from which on they count. */
+  readonly limits: readonly { readonly value: number; readonly label: string; readonly from: number }[];
   /** s from which on the axis holds all of the lines. */
   readonly from: number;
 }
@@ -83,6 +84,8 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
       annotations[`limit${i}-${k}`] = {
         type: 'line',
         yScaleID: axis(i),
+        xMin: l.from / unit.seconds,
+        xMax: end,
         yMin: l.value,
         yMax: l.value,
         borderColor: LIMIT,
@@ -107,7 +110,7 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
       min: 0,
       max: end,
       title: { display: true, text: [`time [${unit.name}]`, sheet.source], font: { size: 13 } },
-      ticks: { stepSize: tickStep(end, 20, unit), maxRotation: 0 },
+      ticks: { stepSize: tickStep(end, 20, unit), maxRotation: 0, includeBounds: false },
     },
   };
   order.forEach((panel, i) => {
@@ -167,6 +170,25 @@ function isCrowded(panel: Panel, limit: number, span: number): boolean {
   );
 }
 
+/**
+ * Purities and ratios can be anything in a start-up, while their limits are about the last per cent: the axis is cut to
+ * where these can be read.
+ */
+function aroundLimits({ unit, limits }: Panel, low: number, high: number): [number, number] {
+  if (limits.length === 0) return [low, high];
+  const values = limits.map((l) => l.value);
+  if (unit === '%') {
+    const room = 100 - Math.min(...values);
+    return [Math.max(low, 100 - MOST_OF_LIMIT * Math.max(room, 1)), high];
+  }
+  return unit === '-' || unit === ''
+    ? [low, Math.min(high, MOST_OF_LIMIT * Math.max(...values))]
+    : [low, high];
+}
+
+/** How far beyond a limit the axis of a purity or a ratio goes. */
+const MOST_OF_LIMIT = 5;
+
 /** From zero unless everything happens far above it; room above for labels, limits inside. */
 function range(panel: Panel): { min: number; max: number } {
   const counts = (p: { x: number }): boolean => p.x >= panel.from;
@@ -181,16 +203,20 @@ function range(panel: Panel): { min: number; max: number } {
     if (v < low) low = v;
   }
   if (!Number.isFinite(high)) return { min: 0, max: 1 };
+  [low, high] = aroundLimits(panel, low, high);
   const span = high - low;
   const min = low > 0.6 * high && span > 0 ? low - 0.15 * span : Math.min(0, low);
   const max = high + 0.16 * (high - min || Math.abs(high) || 1);
   return { min, max };
 }
 
+/** Pixels between the middle of a label and its edge. */
+const HALF_A_LINE = 8;
+
 /** No label at the very ends of an axis: those of two panels would meet. */
-function tick(this: { min: number; max: number; chart?: unknown }, value: number | string): string | null {
+function tick(this: { min: number; max: number; height?: number }, value: number | string): string | null {
   const v = Number(value);
-  const near = (this.max - this.min) * 0.03;
+  const near = (this.max - this.min) * Math.max(0.03, HALF_A_LINE / (this.height || Infinity));
   if (v > this.max - near || (v < this.min + near && this.min !== 0)) return null;
-  return String(Number(v.toPrecision(6)));
+  return Math.abs(v) >= 1e6 ? v.toExponential(0) : String(Number(v.toPrecision(6)));
 }

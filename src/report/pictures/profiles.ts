@@ -5,7 +5,7 @@ import { moment } from './moment.ts';
 import { fileName, type Part, type Picture } from './picture.ts';
 import { captions, legend, lineStyle, points, short } from './style.ts';
 
-/** What leaves the settlers along a train at chosen moments: aqueous above, organic below. */
+/** What leaves the stages along a train at chosen moments: aqueous above, organic below. */
 export const profiles: Picture<RunResult> = {
   name: (_, part) => fileName('profiles', (part as Part).train, (part as Part).solute),
   parts: (r) =>
@@ -68,7 +68,7 @@ function config(r: RunResult, { train, solute }: Part): ChartConfiguration {
             display: true,
             text: [
               `stage of ${train} (1 = where the aqueous enters)`,
-              `${short(r.plant.scenario.title, 60)}: what leaves the settlers`,
+              `${short(r.plant.scenario.title, 60)}: what leaves the stages`,
             ],
           },
           ticks: { stepSize: Math.max(1, Math.round(n / 20)) },

@@ -13,7 +13,8 @@ export const lineStyle = (
 ): { borderColor: string; backgroundColor: string; borderDash: number[]; borderWidth: number } => ({
   borderColor: colours[i % colours.length],
   backgroundColor: colours[i % colours.length],
-  borderDash: dashes[i % dashes.length],
+  // Another round of colours comes with other dashes.
+  borderDash: dashes[(i + Math.floor(i / colours.length)) % dashes.length],
   borderWidth: 2,
 });
 

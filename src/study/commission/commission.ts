@@ -1,4 +1,5 @@
 import type { Plant } from '../../plant/assemble.ts';
+import { PLAIN_START } from '../../scenario/read-commissioning.ts';
 import type { Scenario } from '../../scenario/scenario.ts';
 import type { Watcher } from '../../solve/integrate.ts';
 import type { RunResult } from '../result.ts';
@@ -53,7 +54,7 @@ export interface StartUp extends Omit<CommissionResult, 'ensemble'> {
   readonly fan: { readonly shown: string; readonly times: readonly number[] } | null;
 }
 
-export const PLAIN = 'plain start';
+export const PLAIN = PLAIN_START;
 /** Records over the span that is shown. */
 const RECORDS = 600;
 /** Modes that are looked for, and told. */

@@ -105,7 +105,11 @@ export function onSpec(f: Followed): OnSpec[] {
   const { scenario: s, system } = plant;
   return s.limits.map((limit, i): OnSpec => {
     const makers = trainsOf(plant, limit.stream);
-    const turned = Math.max(0, ...approach.turned.filter((_, k) => makers.size === 0 || makers.has(k)));
+    // A plant that starts at rest or from a kept state is full of what plant feed has made.
+    const fresh = s.start === 'barren' || s.start === 'empty';
+    const turned = fresh
+      ? Math.max(0, ...approach.turned.filter((_, k) => makers.size === 0 || makers.has(k)))
+      : 0;
     const last = approach.last[quantities.length + i][0];
     const { output } = approach.lines[quantities.length + i];
     return {

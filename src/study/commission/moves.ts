@@ -1,5 +1,5 @@
 import type { Plant } from '../../plant/assemble.ts';
-import { track } from '../../plant/course.ts';
+import { mostOf, track } from '../../plant/course.ts';
 import type { Change } from '../../scenario/scenario.ts';
 import { makeSchedule, type Track } from '../../solve/schedule.ts';
 import type { F, Schedule } from '../../solve/system.ts';
@@ -21,7 +21,7 @@ export function movesSchedule(plant: Plant, moves: readonly Change[], from: numb
   const tracks = quantities.map((quantity): Track => {
     const input = plant.system.inputs.findIndex((i) => i.path === quantity);
     const own = moves.filter((c) => c.quantity === quantity);
-    const line = track(plant.inputs[input], own, to);
+    const line = track(plant.inputs[input], own, to, mostOf(plant.system.inputs[input]));
     return { input, times: line.times, values: line.values };
   });
   return makeSchedule(plant.inputs, tracks, from, to);

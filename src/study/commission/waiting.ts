@@ -40,7 +40,8 @@ export type GoodTimes = readonly Pick<OffSpec, 'outlet' | 'until' | 'by' | 'lose
 export function goodTimes(plant: Plant, list: readonly ComesGood[], limits: readonly OnSpec[]): GoodTimes {
   const band = PERCENTS.indexOf(5);
   return plant.network.outlets.map(({ name }) => {
-    const own = limits.filter((l) => l.limit.stream === name);
+    const same = alike(plant, name);
+    const own = limits.filter((l) => same.includes(l.limit.stream));
     const solutes = list.filter(
       (q) => q.quantity.of === name && plant.scenario.solutes.includes(q.quantity.component),
     );
@@ -52,6 +53,14 @@ export function goodTimes(plant: Plant, list: readonly ComesGood[], limits: read
       loses: own.some((l) => l.limit.side === 'below'),
     };
   });
+}
+
+/** A stream and those that it is split off: what holds for one holds for all. */
+function alike(plant: Plant, name: string): string[] {
+  const { network, scenario } = plant;
+  const maker = network.streams.get(name)?.maker;
+  if (maker?.kind !== 'split') return [name];
+  return [name, ...alike(plant, scenario.splits[maker.index].stream)];
 }
 
 /** Boundary totals at the times at which outlets came good → what was made, fed and lost until then. */
