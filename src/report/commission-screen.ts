@@ -306,7 +306,7 @@ function ensembleLines(e: Ensemble): string[] {
     .slice(0, 3)
     .map((q) => `${q.path} ${q.correlation >= 0 ? '+' : ''}${q.correlation.toFixed(2)}`);
   return [
-    `How sure: at rest ${spread(e.steady)}${e.onSpec ? `; on-spec P90 ${when(e.onSpec.p90)}` : ''} (${e.runs} runs, seed ${e.seed}${odd.length > 0 ? `; ${odd.join(', ')}` : ''}).`,
+    `How sure: ${odd.length > 0 ? `of ${e.runs} runs ${odd.join(', ')}; ` : ''}at rest ${spread(e.steady)}${e.onSpec ? `; on-spec P90 ${when(e.onSpec.p90)}` : ''} (${e.runs} runs, seed ${e.seed}).`,
     `  What matters (rank correlation with the time): ${most.join(', ')}.`,
   ];
 }

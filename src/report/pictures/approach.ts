@@ -4,8 +4,9 @@ import type { ComesGood } from '../../study/commission/good.ts';
 import { answerLines } from '../commission-screen.ts';
 import { clock, figure } from '../figures.ts';
 import { startWords } from '../screen.ts';
+import { distinct } from './distinct.ts';
 import type { Picture } from './picture.ts';
-import { captions, LIMIT, lineStyle, short } from './style.ts';
+import { captions, LIMIT, lineStyle, short, wrapped } from './style.ts';
 import { tickStep, timeUnit } from './time-axis.ts';
 
 const MOST_LINES = 7;
@@ -21,13 +22,13 @@ export const approach: Picture<CommissionResult> = {
   config,
 };
 
-/** Those that come good last, solutes before what only follows them. */
+/** Those with limits, then those that come good last; solutes before what only follows them. */
 function shownOf(r: CommissionResult): ComesGood[] {
   const { solutes } = r.plant.scenario;
-  const moving = r.quantities.filter(
-    (q) => q.quantity.kind !== 'stage' && q.change !== null && q.final !== null,
-  );
-  const rank = (q: ComesGood): number => (solutes.includes(q.quantity.component) ? 0 : 1);
+  const moving = distinct(r).filter((q) => q.change !== null && q.final !== null);
+  const limited = new Set(r.limits.map((l) => l.path));
+  const rank = (q: ComesGood): number =>
+    limited.has(q.quantity.path) ? 0 : solutes.includes(q.quantity.component) ? 1 : 2;
   const last = (q: ComesGood): number => q.ofChange[3] ?? Number.MAX_VALUE;
   return [...moving].sort((a, b) => rank(a) - rank(b) || last(b) - last(a)).slice(0, MOST_LINES);
 }
@@ -99,7 +100,7 @@ function config(r: CommissionResult): ChartConfiguration {
               `${short(s.title, 60)}: approach over ${figure(end)} ${unit.name}, start ${startWords(s)}`,
             ],
           },
-          ticks: { stepSize: tickStep(end, 20, unit), maxRotation: 0 },
+          ticks: { stepSize: tickStep(end, 20, unit), maxRotation: 0, includeBounds: false },
         },
         y: {
           type: 'logarithmic',
@@ -118,8 +119,8 @@ function config(r: CommissionResult): ChartConfiguration {
           `${short(s.title, 60)}: how it comes to rest`,
           answerLines(r)
             .slice(0, 3)
-            .map((l) =>
-              short(l.replace(/; never outside, .*$/, ', counted from the first aqueous turnover.'), 150),
+            .flatMap((l) =>
+              wrapped(l.replace(/; never outside, .*$/, ', counted from the first aqueous turnover.'), 150),
             ),
         ),
         annotation: { annotations },

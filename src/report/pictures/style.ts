@@ -83,3 +83,15 @@ export function legend(
 /** Fits a long text to a number of characters. */
 export const short = (text: string, most: number): string =>
   text.length <= most ? text : `${text.slice(0, most - 1)}…`;
+
+/** A long text on lines of a number of characters at most, broken between words. */
+export function wrapped(text: string, most: number): string[] {
+  const lines: string[] = [];
+  for (const word of text.split(' ')) {
+    const last = lines[lines.length - 1];
+    if (last !== undefined && last.length + 1 + word.length <= most)
+      lines[lines.length - 1] = `${last} ${word}`;
+    else lines.push(word);
+  }
+  return lines;
+}

@@ -3,6 +3,7 @@ import type { CommissionResult } from '../../study/commission/commission.ts';
 import type { ComesGood } from '../../study/commission/good.ts';
 import { clock, withUnit } from '../figures.ts';
 import { startWords } from '../screen.ts';
+import { distinct } from './distinct.ts';
 import type { Picture } from './picture.ts';
 import { captions, LIMIT, short } from './style.ts';
 import { tickStep, timeUnit } from './time-axis.ts';
@@ -35,8 +36,8 @@ export const timeline: Picture<CommissionResult> = {
 function rowsOf(r: CommissionResult): Row[] {
   const come = r.quantities.filter((q) => q.ofChange.every((t) => t !== null));
   const limits = new Map(r.limits.map((l) => [l.path, l.from]));
-  const single = come
-    .filter((q) => q.quantity.kind !== 'stage')
+  const single = distinct(r)
+    .filter((q) => come.includes(q))
     .map((q) => ({
       name: q.quantity.path,
       times: q.ofChange as number[],
@@ -55,7 +56,17 @@ function rowsOf(r: CommissionResult): Row[] {
     times: [0, 1, 2, 3].map((i) => Math.max(...list.map((q) => q.ofChange[i] as number))),
     onSpec: null,
   }));
-  return [...single, ...together].sort((a, b) => a.times[3] - b.times[3]).slice(-MOST_ROWS);
+  // A limit on a purity or a ratio has no band of its own, but a time from which on it is kept.
+  const named = new Set(single.map((q) => q.name));
+  const marks = [...limits]
+    .filter(([path, from]) => from !== null && !named.has(path))
+    .map(([name, from]) => ({ name, times: [0, 0, 0, 0], onSpec: from }));
+  const end = (q: Row): number => Math.max(q.times[3], q.onSpec ?? 0);
+  const all = [...single, ...together].sort((a, b) => end(a) - end(b));
+  const least = all.slice(0, Math.max(0, all.length + marks.length - MOST_ROWS));
+  return [...all.filter((q) => !least.includes(q) || q.onSpec !== null), ...marks].sort(
+    (a, b) => end(a) - end(b),
+  );
 }
 
 function config(r: CommissionResult): ChartConfiguration {
@@ -81,9 +92,9 @@ function config(r: CommissionResult): ChartConfiguration {
   rows.forEach((q, i) => {
     annotations[`at${i}`] = {
       type: 'label',
-      xValue: q.times[3] / unit.seconds,
+      xValue: Math.max(q.times[3], q.times[3] > 0 ? 0 : (q.onSpec ?? 0)) / unit.seconds,
       yValue: i,
-      content: clock(q.times[3]),
+      content: clock(q.times[3] > 0 ? q.times[3] : (q.onSpec ?? 0)),
       xAdjust: 38,
       font: { size: 12 },
       color: '#222222',
