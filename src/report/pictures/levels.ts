@@ -1,12 +1,14 @@
 import type { RunResult } from '../../study/result.ts';
 import { clock, figure, shown } from '../figures.ts';
 import { startWords } from '../screen.ts';
+import { packed, upsetWords, WIDEST } from './heading.ts';
 import { type Panel, type PanelLine, panelSheet } from './panels.ts';
 import type { Picture } from './picture.ts';
 import { short } from './style.ts';
 import { timeUnit } from './time-axis.ts';
 
 const MOST_LINES = 6;
+const MOST_EVENTS = 4;
 
 /** Levels, interfaces and bands of the settlers, mixers while they fill, and what tanks hold. */
 export const levels: Picture<RunResult> = {
@@ -15,13 +17,22 @@ export const levels: Picture<RunResult> = {
   config(r) {
     const s = r.plant.scenario;
     const unit = timeUnit(s.horizon);
-    const events = r.events.slice(0, 3).map((e) => `${clock(e.time)}: ${e.message}`);
+    // Each kind once, the latest first: start-up has many events, and those at the end tell how the plant stands.
+    const kinds = new Map(r.events.map((e) => [e.message, e]));
+    const told = [...kinds.values()].sort((a, b) => b.time - a.time).slice(0, MOST_EVENTS);
+    const more = r.events.length - told.length;
+    const events = [
+      ...told.reverse().map((e) => `${clock(e.time)}: ${e.message}`),
+      ...(more > 0 ? [`${more} more in summary.json`] : []),
+    ];
     return panelSheet({
       title: `${r.complete ? '' : 'INCOMPLETE: '}${short(s.title, 60)}: levels and bands`,
-      answer: (events.length > 0
-        ? events
-        : ['No event: no settler flooded, no interface was lost, no tank ran empty or over.']
-      ).map((l) => short(l, 150)),
+      answer: [
+        ...(events.length > 0
+          ? packed(events)
+          : ['No event: no settler flooded, no interface was lost, no tank ran empty or over.']),
+        ...packed(upsetWords(r.shades, unit)).slice(0, 2),
+      ].map((l) => short(l, WIDEST)),
       source: `${short(s.title, 60)}: levels over ${figure(s.horizon / unit.seconds)} ${unit.name}, start ${startWords(s)}`,
       span: s.horizon,
       panels: panelsOf(r),

@@ -7,8 +7,11 @@ import { tickStep, timeUnit } from './time-axis.ts';
 
 /** Cells across: more would be finer than the pixels. */
 const ACROSS = 240;
-/** Decades of concentration shown below the largest. */
-const DECADES = 3;
+/** Decades of concentration shown below the largest: at most, and at least. */
+const MOST_DECADES = 3;
+const LEAST_DECADES = 0.5;
+/** Labels of the colour bar, one more than its parts. */
+const PARTS = 3;
 
 /** Aqueous concentration leaving each stage, over stages and time; colours by the logarithm. */
 export const stageTimeMap: Picture<RunResult> = {
@@ -54,8 +57,9 @@ function config(r: RunResult, { train, solute }: Part): ChartConfiguration {
       cells.push({ x: ((k + 0.5) * end) / columns, y: j + 1, v });
     }
   }
-  const floor = largest / 10 ** DECADES;
-  const colour = (v: number): string => palette(Math.log10(Math.max(v, floor) / floor) / DECADES);
+  const decades = decadesOf(cells, end, largest);
+  const floor = largest / 10 ** decades;
+  const colour = (v: number): string => palette(Math.log10(Math.max(v, floor) / floor) / decades);
   return {
     type: 'matrix' as ChartConfiguration['type'],
     data: {
@@ -110,8 +114,16 @@ function config(r: RunResult, { train, solute }: Part): ChartConfiguration {
         annotation: { annotations: shadeLines(r, unit.seconds) },
       } as never,
     },
-    plugins: [colourBar(largest)],
+    plugins: [colourBar(largest, decades)],
   };
+}
+
+/** Decades between the largest concentration and the smallest of the second half, where a start-up is over. */
+function decadesOf(cells: readonly Cell[], end: number, largest: number): number {
+  const late = cells.filter((c) => c.x > end / 2 && c.v > 0).map((c) => c.v);
+  const smallest = late.reduce((a, b) => Math.min(a, b), largest);
+  const wanted = Math.ceil(2 * Math.log10(largest / smallest)) / 2;
+  return Math.min(MOST_DECADES, Math.max(LEAST_DECADES, Number.isFinite(wanted) ? wanted : MOST_DECADES));
 }
 
 function shadeLines(r: RunResult, seconds: number): object[] {
@@ -146,7 +158,7 @@ function palette(share: number): string {
 }
 
 /** What the colours mean, beside the map. */
-function colourBar(largest: number): Plugin {
+function colourBar(largest: number, decades: number): Plugin {
   return {
     id: 'colourBar',
     afterDraw(chart) {
@@ -161,9 +173,9 @@ function colourBar(largest: number): Plugin {
       ctx.textAlign = 'left';
       ctx.textBaseline = 'middle';
       ctx.font = `13px ${chart.options.font && 'family' in chart.options.font ? chart.options.font.family : 'upsettle-sans'}`;
-      for (let d = 0; d <= DECADES; d++) {
-        const y = area.top + (area.height * d) / DECADES;
-        const text = `${d === DECADES ? '≤ ' : ''}${figure(largest / 10 ** d, 2)}`;
+      for (let d = 0; d <= PARTS; d++) {
+        const y = area.top + (area.height * d) / PARTS;
+        const text = `${d === PARTS ? '≤ ' : ''}${figure(largest / 10 ** ((decades * d) / PARTS), 2)}`;
         ctx.fillText(text, x + 28, Math.min(area.bottom - 7, Math.max(area.top + 7, y)));
       }
       ctx.fillText('g/L', x, area.top - 12);

@@ -1,6 +1,7 @@
 import type { RunResult } from '../../study/result.ts';
 import { figure, shown, withUnit } from '../figures.ts';
 import { limitLines, startWords } from '../screen.ts';
+import { packed, upsetWords, WIDEST } from './heading.ts';
 import { type Panel, type PanelLine, panelSheet } from './panels.ts';
 import type { Picture } from './picture.ts';
 import { short } from './style.ts';
@@ -9,8 +10,6 @@ import { timeUnit } from './time-axis.ts';
 /** Curves whose largest values differ by more than this share no panel. */
 const COMPARABLE = 4;
 const MOST_PANELS = 5;
-/** Characters that a line of the heading holds. */
-const WIDEST = 150;
 
 /** Outlets against their limits over time, with the upsets shaded and what was changed at the foot. */
 export const outlets: Picture<RunResult> = {
@@ -21,10 +20,7 @@ export const outlets: Picture<RunResult> = {
     const limited = [...new Set(r.limits.map((l) => l.path))];
     const panels = [...limitPanels(r, limited), ...otherPanels(r, limited)];
     const changed = changedPanels(r);
-    const upsets = r.shades.map(
-      (q, i) =>
-        `${i + 1}: ${q.words}, ${figure(q.from / unit.seconds)} to ${figure(q.to / unit.seconds)} ${unit.name}`,
-    );
+    const upsets = upsetWords(r.shades, unit);
     const answer = [
       ...r.limits.slice(0, 2).flatMap((l) => packed(limitLines(l).map((q) => q.replace(/\s+/g, ' ').trim()))),
       ...packed(upsets).slice(0, 3),
@@ -39,18 +35,6 @@ export const outlets: Picture<RunResult> = {
     });
   },
 };
-
-/** Pieces of text put together on lines that the heading holds. */
-function packed(pieces: readonly string[]): string[] {
-  const lines: string[] = [];
-  for (const piece of pieces) {
-    const last = lines[lines.length - 1];
-    if (last !== undefined && last.length + 2 + piece.length <= WIDEST)
-      lines[lines.length - 1] = `${last}; ${piece}`;
-    else lines.push(piece);
-  }
-  return lines;
-}
 
 function line(r: RunResult, path: string): PanelLine & { largest: number; unit: string } {
   const output = r.plant.system.outputs.findIndex((o) => o.path === path);
