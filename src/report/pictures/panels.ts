@@ -9,6 +9,8 @@ export interface PanelLine {
   readonly data: readonly { readonly x: number; readonly y: number }[];
   /** Drawn as marks in the colour of the line before it. */
   readonly marks?: true;
+  /** Number of its colour and dash; the next one by default. */
+  readonly style?: number;
 }
 
 /** One of several diagrams over each other with a common time axis. */
@@ -27,6 +29,9 @@ export interface Sheet {
   readonly answer: readonly string[];
   readonly source: string;
   readonly span: number;
+  /** s at which the axis begins, 0 by default, and what it says. */
+  readonly begin?: number;
+  readonly axis?: string;
   readonly panels: readonly Panel[];
   readonly shades: readonly Shade[];
 }
@@ -46,7 +51,7 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
       yAxisID: axis(order.length - 1 - i),
       ...(line.marks
         ? { showLine: false, pointRadius: 4, pointStyle: 'circle' as const, ...lineStyle(style - 1) }
-        : { pointRadius: 0, pointStyle: 'line' as const, ...lineStyle(style++) }),
+        : { pointRadius: 0, pointStyle: 'line' as const, ...lineStyle(line.style ?? style++) }),
     })),
   );
   const annotations: Record<string, object> = {};
@@ -104,9 +109,13 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
   const scales: Record<string, unknown> = {
     x: {
       type: 'linear',
-      min: 0,
+      min: (sheet.begin ?? 0) / unit.seconds,
       max: end,
-      title: { display: true, text: [`time [${unit.name}]`, sheet.source], font: { size: 13 } },
+      title: {
+        display: true,
+        text: [`${sheet.axis ?? 'time'} [${unit.name}]`, sheet.source],
+        font: { size: 13 },
+      },
       ticks: { stepSize: tickStep(end, 20, unit), maxRotation: 0 },
     },
   };
