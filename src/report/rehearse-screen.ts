@@ -3,7 +3,7 @@ import type { AnswerResult, RehearseResult } from '../study/rehearse/rehearse.ts
 import type { Kept } from '../study/rehearse/scan.ts';
 import { shortCaution } from './cautions.ts';
 import { clock, columns, figure, shown, withUnit } from './figures.ts';
-import { clockTime, limitWords, movesWords, since, sizeWords, upsetWords } from './rehearse-words.ts';
+import { clockTime, hourOf, limitWords, movesWords, since, sizeWords, upsetWords } from './rehearse-words.ts';
 import { startWords } from './screen.ts';
 
 /** Answers, events and islands told on the screen; all of them stand in summary.json. */
@@ -48,8 +48,8 @@ function brokenWords(r: RehearseResult, l: LimitFigures): string {
   if (l.overBefore) return `over already before the upset, ${worst}`;
   const which = l.breaks && r.ground.upsets.length > 1 ? `upset ${l.breaks.upset}` : 'the upset';
   const back = l.stillOver ? 'still over at the end' : `back at ${since(r, l.back ?? 0)}`;
-  const clocked = l.breaks ? clockTime(r, l.breaks.time) : '';
-  const when = clocked === '' ? '' : ` (${clocked.slice(5)})`;
+  const clocked = l.breaks ? hourOf(r, l.breaks.time) : '';
+  const when = clocked === '' ? '' : ` (${clocked})`;
   return `broken ${clock(l.breaks?.after ?? 0)} after ${which} begins${when}, ${worst}, ${back}`;
 }
 
@@ -76,7 +76,11 @@ function nothingLines(r: RehearseResult): string[] {
           ? 'not recovered by the end'
           : `recovered (within 2 %) at ${since(r, l.recovered)}`,
       ];
-      return [`Nothing done:${name} ${brokenWords(r, l)};`, `  ${parts.join(', ')}.`];
+      return [
+        `Nothing done:${name} ${brokenWords(r, l)};`,
+        `  ${parts.slice(0, -2).join(', ')},`,
+        `  ${parts.slice(-2).join(', ')}.`,
+      ];
     });
 }
 
@@ -101,15 +105,17 @@ function bestLines(r: RehearseResult): string[] {
         ]
       : [`None helps: neither an earlier start nor a larger size of any answer keeps the limit${words}.`];
   }
-  return good.slice(0, 1).map((a) => {
+  return good.slice(0, 1).flatMap((a) => {
     const l = a.figures.limits[r.chief];
     const many = a.figures.limits.length > 1 ? 'all limits' : 'it';
     const end = a.bounds?.ends?.at(-1);
     const left =
       end === undefined || end.fromBracket === null ? '' : ` and not taken back before ${since(r, end.from)}`;
-    const begun =
-      a.latest === null ? '' : ` if begun within ${since(r, a.latest)} after the upset begins${left}`;
-    return `${a.answer.name} (${movesWords(a.answer)}) keeps ${many} (worst ${withUnit(l.worst.value, l.unit)})${begun}.`;
+    const begun = a.latest === null ? '' : ` if begun within ${since(r, a.latest)}${left}`;
+    return [
+      `${a.answer.name} (${movesWords(a.answer)}) keeps ${many}: worst ${withUnit(l.worst.value, l.unit)},`,
+      ` ${begun}.`,
+    ];
   });
 }
 

@@ -27,17 +27,25 @@ export function clockTime(r: Pick<RehearseResult, 'scenario'>, t: number): strin
   return new Date(Math.round((zero + 1e3 * t) / 60e3) * 60e3).toISOString().slice(0, 16).replace('T', ' ');
 }
 
+/** The hour by the plant's clock, with the day where it is another than that of the upset. */
+export function hourOf(r: Pick<RehearseResult, 'scenario' | 'ground'>, t: number): string {
+  const at = clockTime(r, t);
+  return at.slice(0, 10) === clockTime(r, r.ground.first).slice(0, 10) ? at.slice(11) : at.slice(5);
+}
+
 /** A time of the run as time since the upset began, with the plant's clock beside it where that is stated. */
 export function since(r: Pick<RehearseResult, 'scenario' | 'ground'>, t: number): string {
-  const at = clockTime(r, t);
+  const at = hourOf(r, t);
   const words = clock(t - r.ground.first);
-  return at === '' ? words : `${words} (${at.slice(5)})`;
+  return at === '' ? words : `${words} (${at})`;
 }
 
 /** What an answer does, at a size: `organic tank.flow +10.3 %`. */
 export function sizeWords(answer: Answer, factor: number, of: RehearseResult['plant']): string {
-  const move = answer.steps.flatMap((s) => s.moves).find((m) => 'by' in m.how);
+  const sized = answer.steps.flatMap((s) => s.moves).filter((m) => 'by' in m.how);
+  const [move] = sized;
   if (!move || !('by' in move.how)) return '';
+  if (sized.length > 1) return `${figure(100 * factor)} % of it`;
   const { by, relative } = move.how;
   const sign = by * factor < 0 ? '-' : '+';
   const size = Math.abs(by * factor);

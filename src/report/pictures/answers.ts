@@ -12,7 +12,7 @@ import { legend, short } from './style.ts';
 /** Answers drawn, the best first; more lines could not be told apart. */
 const MOST_ANSWERS = 5;
 const MOST_LIMITS = 2;
-const MOST_INPUTS = 2;
+const MOST_INPUTS = 3;
 const MOST_LEVELS = 3;
 const NOTHING = 'nothing done';
 
@@ -91,6 +91,7 @@ function panel(r: RehearseResult, path: string, list: readonly ShownLine[], weig
   const { times } = r.shown;
   return {
     title: path.slice(path.lastIndexOf('.') + 1),
+    heading: short(path, 60),
     unit,
     weight,
     lines: names.flatMap((name, i) => {
@@ -111,7 +112,7 @@ function limitPanel(r: RehearseResult, path: string): Panel {
   const own = r.nothing.limits.filter((l) => l.path === path);
   return {
     ...panel(r, path, r.shown.limited, 3),
-    title: path,
+    title: path.includes(' / ') ? 'ratio' : path.slice(path.lastIndexOf('.') + 1),
     limits: own.map((l) => ({
       value: l.limit.value * shown(l.unit).factor,
       label: `limit ${l.limit.side === 'below' ? '<' : '>'} ${withUnit(l.limit.value, l.unit)}`,
@@ -131,7 +132,8 @@ function inputPanels(r: RehearseResult): Panel[] {
     const { unit, factor } = shown(r.plant.system.inputs[input].unit);
     const flat = [before.time, horizon].map((t) => ({ x: t - first, y: r.plant.inputs[input] * factor }));
     return {
-      title: quantity,
+      title: quantity.slice(quantity.lastIndexOf('.') + 1),
+      heading: short(quantity, 60),
       unit,
       weight: 1,
       lines: runs.map((q, i) => {

@@ -1,6 +1,7 @@
 import type { ChartConfiguration } from 'chart.js';
 import type { FrequencyView } from '../../study/rehearse/frequency.ts';
 import { clock, figure, shown } from '../figures.ts';
+import { inner } from './axis.ts';
 import type { Picture } from './picture.ts';
 import type { Rehearsed } from './start-size.ts';
 import { captions, LIMIT, lineStyle, short } from './style.ts';
@@ -28,9 +29,9 @@ function config(f: FrequencyView, title: string): ChartConfiguration {
     ...lineStyle(style),
   });
   const annotations: Record<string, object> = {};
-  const upright = (name: string, period: number | null, text: string, colour: string, at: string): void => {
+  const mark = (name: string, period: number | null, text: string, colour: string, at: string): void => {
     if (period === null) return;
-    annotations[name] = {
+    const upright = {
       type: 'line',
       xScaleID: 'x',
       xMin: period / 3600,
@@ -38,11 +39,17 @@ function config(f: FrequencyView, title: string): ChartConfiguration {
       borderColor: colour,
       borderWidth: 1.5,
       borderDash: [4, 4],
+    };
+    annotations[`${name} below`] = { ...upright, yScaleID: 'lag' };
+    annotations[name] = {
+      ...upright,
+      yScaleID: 'ratio',
       label: {
         display: true,
         content: text,
         position: at,
-        xAdjust: 96,
+        xAdjust: 100,
+        yAdjust: at === 'start' ? -14 : 10,
         color: colour,
         backgroundColor: 'rgba(255,255,255,0.9)',
         padding: 2,
@@ -50,8 +57,8 @@ function config(f: FrequencyView, title: string): ChartConfiguration {
       },
     };
   };
-  upright('half', f.half, `half gets through: ${f.half === null ? '' : clock(f.half)}`, '#444444', 'start');
-  upright(
+  mark('half', f.half, `half gets through: ${f.half === null ? '' : clock(f.half)}`, '#444444', 'start');
+  mark(
     'reach',
     f.reaches,
     `upset-sized swings break the limit: ${f.reaches === null ? '' : clock(f.reaches)}`,
@@ -97,7 +104,7 @@ function config(f: FrequencyView, title: string): ChartConfiguration {
               (t) => t >= 0.999 * hours[0] && t <= 1.001 * (hours.at(-1) as number),
             ).map((value) => ({ value }));
           },
-          ticks: { autoSkip: false, callback: (v) => figure(Number(v), 2).replace(/\.?0+$/, '') },
+          ticks: { autoSkip: false, callback: (v) => String(Number(figure(Number(v), 2))) },
         },
         lag: {
           type: 'linear',
@@ -106,7 +113,7 @@ function config(f: FrequencyView, title: string): ChartConfiguration {
           stackWeight: 1,
           title: { display: true, text: 'lag [h]' },
           grace: '6%',
-          ticks: { includeBounds: false },
+          ticks: { includeBounds: false, callback: inner },
         },
         ratio: {
           type: 'linear',

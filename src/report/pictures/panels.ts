@@ -22,6 +22,8 @@ export interface Panel {
   readonly limits: readonly { readonly value: number; readonly label: string }[];
   /** s from which on the axis holds all of the lines. */
   readonly from: number;
+  /** What it shows where the axis has no room for it, inside at its upper right. */
+  readonly heading?: string;
 }
 
 export interface Sheet {
@@ -84,6 +86,20 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
     };
   });
   order.forEach((panel, i) => {
+    if (panel.heading !== undefined)
+      annotations[`heading${i}`] = {
+        type: 'label',
+        xValue: end,
+        yValue: (c: { chart: { scales: Record<string, { max: number }> } }) => c.chart.scales[axis(i)].max,
+        yScaleID: axis(i),
+        position: { x: 'end', y: 'start' },
+        yAdjust: 3,
+        xAdjust: -4,
+        content: panel.heading,
+        backgroundColor: 'rgba(255,255,255,0.85)',
+        padding: 2,
+        font: { size: 12 },
+      };
     panel.limits.forEach((l, k) => {
       annotations[`limit${i}-${k}`] = {
         type: 'line',
@@ -192,7 +208,8 @@ function range(panel: Panel): { min: number; max: number } {
   if (!Number.isFinite(high)) return { min: 0, max: 1 };
   const span = high - low;
   const min = low > 0.6 * high && span > 0 ? low - 0.15 * span : Math.min(0, low);
-  const max = high + 0.16 * (high - min || Math.abs(high) || 1);
+  const room = panel.heading === undefined ? 0.16 : 0.16 + 0.24 / panel.weight;
+  const max = high + room * (high - min || Math.abs(high) || 1);
   return { min, max };
 }
 

@@ -73,6 +73,7 @@ function config(r: RehearseResult, m: StartSizeMap): ChartConfiguration {
           min: y[0] - dy / 2,
           max: y[y.length - 1] + dy / 2,
           offset: false,
+          reverse: false,
           title: {
             display: true,
             text: `size [% of the answer as written${answer ? `: ${sizeWords(answer.answer, 1, r.plant)}` : ''}]`,
@@ -83,7 +84,7 @@ function config(r: RehearseResult, m: StartSizeMap): ChartConfiguration {
       },
       plugins: {
         ...captions(`${short(m.answer, 50)}: how late and how little is enough`, [
-          `${what}; left of and above the line${m.of === 'worst' ? ` of ${figure(m.limit * factor)} ${text}` : ''} the limit is kept.`,
+          `${what}: blue where the limit is kept, red line where it is just kept${m.of === 'worst' ? ` (${figure(m.limit * factor)} ${text})` : ''}.`,
           'The ring marks the answer as written.',
         ]),
         legend: { display: false },

@@ -5,6 +5,7 @@ import { Courses } from './course.ts';
 import { type Ground, integrateFrom, type Standing } from './ground.ts';
 import { type How, Standings, tried, type Verdict } from './judge.ts';
 import { spread } from './scan.ts';
+import { WorstWatch } from './worst.ts';
 
 /** Standings kept of a run that others branch off from. */
 const KEPT = 160;
@@ -71,13 +72,14 @@ export class Branches {
   goesOn(changes: readonly Change[], parts: number, limit: number): { worst: number; outside: number } {
     const g = this.#g;
     const from = this.#before(parts);
-    const watch = new LimitWatch(g.plant, g.scenario.limits[limit]);
+    const l = g.scenario.limits[limit];
+    const watch = new WorstWatch(g.plant, l);
     const all = [...g.background, ...changes];
     integrateFrom(g.plant, from, all, g.horizon, this.#care.quick, [watch]);
-    const { worst, outside, limit: l } = watch.report();
+    const { worst, outside } = watch;
     const earlier = this.#until(from.time, limit);
     const sign = l.side === 'below' ? 1 : -1;
-    const value = sign * earlier.worst > sign * worst.value ? earlier.worst : worst.value;
+    const value = sign * worst >= sign * earlier.worst ? worst : earlier.worst;
     return { worst: value, outside: outside + earlier.outside };
   }
 

@@ -7,6 +7,7 @@ import { type LimitReport, LimitWatch } from '../limit-watch.ts';
 import type { RunSettings } from '../run.ts';
 import { Courses } from './course.ts';
 import { type Ground, integrateFrom, type Standing } from './ground.ts';
+import { WorstWatch } from './worst.ts';
 
 export type How = Pick<RunSettings, 'integrator' | 'tolerance'>;
 
@@ -130,13 +131,12 @@ export function tried(
 ): Verdict {
   const all = [...g.background, ...changes];
   const excess = new Excess(g.plant, depth === 'first' ? 0 : Number.POSITIVE_INFINITY);
-  const limits = depth === 'peaks' ? g.scenario.limits.map((l) => new LimitWatch(g.plant, l)) : [];
+  const limits = depth === 'peaks' ? g.scenario.limits.map((l) => new WorstWatch(g.plant, l)) : [];
   try {
     const run = integrateFrom(g.plant, from, all, g.horizon, settings, [excess, ...limits]);
-    const peaks = limits.map((w) => {
-      const { worst, limit, spells } = w.report();
-      const peak = ((limit.side === 'below' ? 1 : -1) * (worst.value - limit.value)) / limit.value;
-      return spells.length > 0 ? Math.max(peak, Number.MIN_VALUE) : peak;
+    const peaks = limits.map((w, i) => {
+      const limit = g.scenario.limits[i];
+      return ((limit.side === 'below' ? 1 : -1) * (w.worst - limit.value)) / limit.value;
     });
     // What could not be computed to the end has not been kept.
     const whole = run.stop.reason === 'reached-end' ? [] : [Number.POSITIVE_INFINITY];
