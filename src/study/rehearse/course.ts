@@ -10,6 +10,7 @@ import { LOOKS, StepCourse } from '../commission/course.ts';
 export class Courses implements Watcher {
   readonly outputs: readonly number[];
   readonly #plant: Plant;
+  readonly #before: F | null;
   readonly #ends: number[] = [];
   #begin = Number.NaN;
   /** By step: looks of the first output, of the second … */
@@ -18,8 +19,10 @@ export class Courses implements Watcher {
   readonly #w: F;
   readonly #y: F;
 
-  constructor(plant: Plant, outputs: readonly number[]) {
+  /** `before`: all outputs as they were until the run begins, which may begin with a jump. */
+  constructor(plant: Plant, outputs: readonly number[], before: F | null = null) {
     this.#plant = plant;
+    this.#before = before;
     this.outputs = outputs;
     this.#x = new Float64Array(plant.system.places.length);
     this.#w = new Float64Array(plant.system.inputs.length);
@@ -51,9 +54,10 @@ export class Courses implements Watcher {
     return this.#ends[this.#ends.length - 1];
   }
 
-  /** Values [unit] of an output at a time [s]; at the ends of the run beyond them. At a jump the value before it. */
+  /** Values [unit] of an output at a time [s]; as before the run, and at its end, beyond them. At a jump the value before it. */
   value(output: number, t: number): number {
     const k = this.#index(output);
+    if (t < this.#begin && this.#before) return this.#before[output];
     const i = this.#stepAt(t);
     const start = i === 0 ? this.#begin : this.#ends[i - 1];
     const share = Math.min(1, Math.max(0, (t - start) / (this.#ends[i] - start)));
@@ -64,7 +68,7 @@ export class Courses implements Watcher {
   mean(output: number, from: number, to: number): number {
     if (!(to > from)) return this.value(output, to);
     let sum = 0;
-    const cuts = [from, ...this.#ends.filter((t) => t > from && t < to), to];
+    const cuts = [from, ...[this.#begin, ...this.#ends].filter((t) => t > from && t < to), to];
     // Gauss-Legendre with three points is exact for the polynomial of fifth degree.
     const node = Math.sqrt(0.6) / 2;
     for (let i = 1; i < cuts.length; i++) {

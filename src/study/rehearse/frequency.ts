@@ -82,7 +82,7 @@ export function frequencyView(g: Ground, limit: number): FrequencyView | null {
     lags: lagsOf(
       periods,
       found.map((p) => p.angle),
-      lasting.angle,
+      Math.abs(lasting.angle) < Math.PI / 2 ? 0 : Math.PI,
     ),
     lasting: lasting.ratio,
     half: passes(lasting.ratio / 2),

@@ -35,6 +35,8 @@ export interface Ground {
   readonly first: number;
   /** The plant just before the first upset or the earliest answer. */
   readonly before: Standing;
+  /** All outputs just before. */
+  readonly calm: F;
   readonly horizon: number;
   /** Largest relative change per hour of a limited quantity or outlet as the upset begins, and which one. */
   readonly moving: { readonly path: string; readonly perHour: number };
@@ -84,7 +86,14 @@ export function ground(
   const g = { scenario: s, plant, upsets, changes: s.upsets, background, horizon: s.horizon };
   const before =
     known === undefined && from > 0 ? runOn({ ...g, before: initial }, background, from, settings) : initial;
-  return { ...g, first, before, moving: movement(plant, before), startStated };
+  return {
+    ...g,
+    first,
+    before,
+    calm: calmOutputs(plant, before, background),
+    moving: movement(plant, before),
+    startStated,
+  };
 }
 
 function runOn(
@@ -126,6 +135,14 @@ export function integrateFrom(
     optionsOf(settings),
     watchers,
   );
+}
+
+function calmOutputs(plant: Plant, { time, state, modes }: Standing, background: readonly Change[]): F {
+  const schedule = movesSchedule(plant, background, time, time + 1);
+  const w = new Float64Array(plant.inputs.length);
+  schedule.value(0, time, w);
+  for (const [i, v] of modes) w[i] = v;
+  return outputsAt(plant, state, w);
 }
 
 /** How fast the plant still moves: the relative change of each outlet's solutes by its rates over one minute. */

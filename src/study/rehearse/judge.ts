@@ -32,7 +32,7 @@ export function judge(
   outputs: readonly number[],
 ): Judged {
   const limits = g.scenario.limits.map((l) => new LimitWatch(g.plant, l));
-  const courses = new Courses(g.plant, outputs);
+  const courses = new Courses(g.plant, outputs, g.calm);
   let inputs: F = new Float64Array(0);
   const keep: Watcher = {
     end: (_, __, w) => {

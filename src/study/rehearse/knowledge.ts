@@ -20,6 +20,8 @@ export interface Knowledge {
 const SURE = 0.95;
 /** Moments of sampling tried within one interval, besides those just beside the passing of the level. */
 const PHASES = 60;
+/** s beside the passing of the level. */
+const BESIDE = 0.5;
 /** Without a level: standard deviations of noise, and share of the value, that are no longer taken for nothing. */
 const STRIKING = 3;
 const VISIBLE = 0.01;
@@ -31,7 +33,7 @@ const VISIBLE = 0.01;
  */
 export function knowledge(plant: Plant, q: Instrument, courses: Courses, begins: number): Knowledge {
   const output = plant.system.outputs.findIndex((o) => o.path === q.quantity);
-  const calm = courses.value(output, courses.from);
+  const calm = courses.value(output, courses.from - 1);
   const warns = warning(q, calm);
   const seen = (phase: number): number | null => {
     let unseen = 1;
@@ -42,10 +44,10 @@ export function knowledge(plant: Plant, q: Instrument, courses: Courses, begins:
     return null;
   };
   const phases = Array.from({ length: PHASES }, (_, i) => ((i + 1) / PHASES) * q.every);
-  // The best moment is just when the level is passed, the worst just before it.
+  // The best moment is just after the level is passed, the worst just before it.
   const passes = firstPassing(q, output, courses, begins, warns);
   if (passes !== null)
-    for (const t of [passes, passes - 1]) {
+    for (const t of [passes + BESIDE, passes - BESIDE]) {
       const phase = (((t - begins) % q.every) + q.every) % q.every;
       phases.push(phase === 0 ? q.every : phase);
     }

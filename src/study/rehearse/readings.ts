@@ -35,7 +35,7 @@ export function readings(plant: Plant, index: number, courses: Courses): Reading
     const sampled = q.first + k * q.every;
     const z = normal();
     const failed = q.dropout > 0 && cumulativeNormal(fails()) < q.dropout;
-    if (sampled < courses.from || failed) continue;
+    if (failed) continue;
     const true_ = sampleOf(q, output, courses, sampled);
     list.push({ sampled, known: sampled + q.delay, value: true_ + q.bias + z * deviationOf(q, true_) });
   }
