@@ -107,6 +107,12 @@ export async function main(argv: readonly string[]): Promise<number> {
     .option('--out <dir>', 'folder for the results (default: out/<scenario>/rehearse)')
     .option('--no-pictures', 'write no PNG pictures')
     .addOption(scale())
+    .option('--step', 'drive the plant through the upset yourself, and be scored')
+    .addOption(
+      new Option('--speed <number>', 'seconds of the plant in one of yours, with --step')
+        .argParser(whole(1, 100_000))
+        .default(120),
+    )
     .option('--map <answer>', 'map start × size of an answer, by its name')
     .addOption(
       new Option('--map-of <what>', 'what the map shows').choices(['worst', 'time']).default('worst'),
@@ -120,6 +126,11 @@ export async function main(argv: readonly string[]): Promise<number> {
       new Option('--workers <number>', 'threads for the map (default: all cores)').argParser(whole(1, 256)),
     )
     .action(async (file: string, o) => {
+      if (o.step) {
+        const { step } = await import('./verbs/step.ts');
+        code = await step(file, o, quiet(o));
+        return;
+      }
       const { rehearse } = await import('./verbs/rehearse.ts');
       code = await rehearse(file, o, quiet(o));
     });

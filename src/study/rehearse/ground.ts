@@ -56,13 +56,13 @@ export function upsetsOf(changes: readonly Change[]): Upset[] {
 /**
  * Assembles the plant for everything that upsets and answers may change, and runs it to the first of them.
  *
- * @param known the standing just before, where it has been computed.
+ * @param options `known`: the standing just before, where it has been computed; `from`: s from which it goes on at the latest.
  * @throws Refusal as `assemble`, or where there is no upset or no limit; Incomplete where a steady start is not found.
  */
 export function ground(
   scenario: Scenario,
   settings: Pick<RunSettings, 'integrator' | 'tolerance'>,
-  known?: Standing,
+  options: { readonly known?: Standing; readonly from?: number } = {},
 ): Ground {
   const { rehearsing } = scenario;
   const moves = (rehearsing?.answers ?? []).flatMap((a) => a.steps.flatMap((s) => s.moves));
@@ -77,7 +77,8 @@ export function ground(
     if (begin === undefined || 'when' in begin) return first;
     return 'at' in begin ? begin.at : (upsets[begin.upset - 1]?.begins ?? first) + begin.after;
   });
-  const from = Math.max(0, Math.min(first, ...starts));
+  const { known } = options;
+  const from = Math.max(0, Math.min(first, options.from ?? first, ...starts));
   const initial: Standing = known ?? {
     time: 0,
     state: startState(plant),

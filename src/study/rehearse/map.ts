@@ -138,7 +138,7 @@ class Columns {
     const how = { integrator: batch.integrator, tolerance: TOLERANCE };
     this.#batch = batch;
     this.#care = { sure: how, quick: how };
-    this.#g = ground(batch.scenario, how, batch.before);
+    this.#g = ground(batch.scenario, how, { known: batch.before });
     const outputs = followedOutputs(this.#g.plant);
     this.#trigger = makeTrigger(this.#g, judge(this.#g, this.#g.changes, how, outputs), how, outputs);
     this.#nothing = new Branches(this.#g, this.#g.changes, this.#care);
