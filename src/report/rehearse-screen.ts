@@ -17,7 +17,7 @@ export function rehearseScreen(r: RehearseResult): string[] {
   const { nothing, chief, ground: g } = r;
   const main = nothing.limits[chief];
   const lines = [
-    `REHEARSAL  ${upsetWords(r).join('; ')}; limit ${limitWords(main.limit, main.unit)}; from ${startWords(r.scenario)}`,
+    `REHEARSAL  ${headline(r)}; limit ${limitWords(main.limit, main.unit)}; from ${startWords(r.scenario)}`,
   ];
   const at = clockTime(r, g.first);
   if (at !== '') lines.push(`The upset begins at ${at}; times count from then.`);
@@ -26,6 +26,14 @@ export function rehearseScreen(r: RehearseResult): string[] {
   else lines.push('No answers are stated: see answers in README.');
   lines.push(...noteLines(r), ...unaidedLines(r), ...frequencyLines(r), shortCaution);
   return lines;
+}
+
+/** The first two upsets; the others stand in the summary. */
+function headline(r: RehearseResult): string {
+  const words = upsetWords(r);
+  return words.length <= 2
+    ? words.join('; ')
+    : `${words.slice(0, 2).join('; ')} and ${words.length - 2} more`;
 }
 
 function warnings(r: RehearseResult): string[] {
@@ -250,7 +258,11 @@ function noteLines(r: RehearseResult): string[] {
   const events = r.nothing.events.slice(0, MOST_EVENTS);
   if (events.length > 0)
     lines.push(
-      `With nothing done: ${events.map((e) => `${clock(e.time - r.ground.first)} ${e.message}`).join('; ')}`,
+      'With nothing done:',
+      ...events.map((e) => `  ${clock(e.time - r.ground.first)}  ${e.message}`),
+      ...(r.nothing.events.length > MOST_EVENTS
+        ? [`  … and ${r.nothing.events.length - MOST_EVENTS} more in summary.json`]
+        : []),
     );
   return lines;
 }

@@ -31,7 +31,7 @@ export const answerLevels: Picture<Rehearsed> = {
   name: () => 'levels.png',
   parts: ({ result: r }) => (r.shown.levels.length > 0 ? [{ train: '', solute: '' }] : []),
   config({ result: r }) {
-    const paths = [...new Set(r.shown.levels.map((l) => l.path))].slice(0, MOST_LEVELS);
+    const paths = mixed([...new Set(r.shown.levels.map((l) => l.path))]).slice(0, MOST_LEVELS);
     const panels = paths.map((path) => panel(r, path, r.shown.levels, 1));
     const events = r.nothing.events
       .slice(0, 2)
@@ -45,6 +45,15 @@ export const answerLevels: Picture<Rehearsed> = {
     return sheet(r, 'levels', answer, panels, panels[0].lines.length);
   },
 };
+
+/** One of each kind (tank, interface, band) in turn. */
+function mixed(paths: readonly string[]): string[] {
+  const kinds = ['.volume', '.interface', '.band'].map((k) => paths.filter((p) => p.endsWith(k)));
+  return kinds
+    .flatMap((own, k) => own.map((path, i) => ({ path, at: i * kinds.length + k })))
+    .sort((a, b) => a.at - b.at)
+    .map((q) => q.path);
+}
 
 function sheet(
   r: RehearseResult,
@@ -127,7 +136,11 @@ function inputPanels(r: RehearseResult): Panel[] {
     ...new Set(runs.flatMap((q) => q.courses.filter((c) => c.unit !== '').map((c) => c.quantity))),
   ];
   const { first, horizon, before } = r.ground;
-  return quantities.slice(0, MOST_INPUTS).map((quantity): Panel => {
+  // The first upset, then what answers move, then the other upsets.
+  const moved = new Set(r.answers.flatMap((a) => a.plan.moves.map((m) => m.quantity)));
+  const rank = (q: string): number => (q === quantities[0] ? 0 : moved.has(q) ? 1 : 2);
+  const order = [...quantities].sort((a, b) => rank(a) - rank(b));
+  return order.slice(0, MOST_INPUTS).map((quantity): Panel => {
     const input = r.plant.system.inputs.findIndex((i) => i.path === quantity);
     const { unit, factor } = shown(r.plant.system.inputs[input].unit);
     const flat = [before.time, horizon].map((t) => ({ x: t - first, y: r.plant.inputs[input] * factor }));

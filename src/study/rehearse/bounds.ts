@@ -118,8 +118,12 @@ function sizesOf(
     const v = nothing.tries(changes(of({ size }, depth)), begun, depth);
     return { excess: v.excess, event: v.events.find((e) => !known.has(e.name))?.message ?? null };
   };
+  // Beyond the plant's limit there is nothing to be looked for: what floods stays flooded.
+  let most = Number.POSITIVE_INFINITY;
   const trySize = trialOf((size, depth) => {
+    if (depth === 'first' && size > most) return 1;
     const { excess, event } = added(size, depth);
+    if (depth === 'first' && event !== null) most = Math.min(most, size);
     return event === null ? excess : Math.max(excess, 1);
   });
   const sizes = keptStretches(spread(0, LARGEST, POINTS + 1), trySize, SIZE_PRECISION);

@@ -41,7 +41,7 @@ export function frequencyView(g: Ground, limit: number): FrequencyView | null {
   if (!change || !l) return null;
   const input = system.inputs.findIndex((i) => i.path === change.quantity);
   const output = system.outputs.findIndex((o) => o.path === `${l.stream}.${l.quantity}`);
-  const rest = steadyState(system, plant.inputs, parameters, plant.barren);
+  const rest = steadyState(system, plant.inputs, parameters, g.before.state);
   if (!rest.found) return null;
   const y = new Float64Array(system.outputs.length);
   system.output(rest.state, plant.inputs, parameters, y);
