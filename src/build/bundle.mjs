@@ -6,6 +6,7 @@ export default {
     upsettle: fileURLToPath(new URL('../cli/upsettle.ts', import.meta.url)),
     // Worker threads load a file of their own.
     'ensemble-worker': fileURLToPath(new URL('../study/commission/worker.ts', import.meta.url)),
+    'map-worker': fileURLToPath(new URL('../study/rehearse/worker.ts', import.meta.url)),
   },
   platform: 'node',
   external: [/^chart/, /^canvas/, /^@napi-rs/, /^dejavu/, /^tinypool/],

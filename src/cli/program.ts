@@ -99,6 +99,41 @@ export async function main(argv: readonly string[]): Promise<number> {
       const { commission } = await import('./verbs/commission.ts');
       code = await commission(file, o, quiet(o));
     });
+  verb(
+    'rehearse',
+    'upsets before they happen: what breaks, which answer helps, how late it may come',
+    'upsettle rehearse scenarios/saltbush-rehearsal.yaml --map "more organic"',
+  )
+    .option('--out <dir>', 'folder for the results (default: out/<scenario>/rehearse)')
+    .option('--no-pictures', 'write no PNG pictures')
+    .addOption(scale())
+    .option('--step', 'drive the plant through the upset yourself, and be scored')
+    .addOption(
+      new Option('--speed <number>', 'seconds of the plant in one of yours, with --step')
+        .argParser(whole(1, 100_000))
+        .default(120),
+    )
+    .option('--map <answer>', 'map start × size of an answer, by its name')
+    .addOption(
+      new Option('--map-of <what>', 'what the map shows').choices(['worst', 'time']).default('worst'),
+    )
+    .addOption(
+      new Option('--grid <columns>', 'starts × sizes of the map, such as 20x16')
+        .argParser(grid)
+        .default([20, 16], '20x16'),
+    )
+    .addOption(
+      new Option('--workers <number>', 'threads for the map (default: all cores)').argParser(whole(1, 256)),
+    )
+    .action(async (file: string, o) => {
+      if (o.step) {
+        const { step } = await import('./verbs/step.ts');
+        code = await step(file, o, quiet(o));
+        return;
+      }
+      const { rehearse } = await import('./verbs/rehearse.ts');
+      code = await rehearse(file, o, quiet(o));
+    });
   if (argv.length <= 2) {
     process.stdout.write(greeting());
     return exits.done;
@@ -129,6 +164,13 @@ const whole =
     throw new InvalidArgumentError(`Expected a whole number from ${least} to ${most}.`);
   };
 
+function grid(text: string): [number, number] {
+  const [, columns, rows] = /^(\d+)\s*[x×]\s*(\d+)$/.exec(text) ?? [];
+  const [a, b] = [Number(columns), Number(rows)];
+  if (a >= 2 && a <= 200 && b >= 2 && b <= 200) return [a, b];
+  throw new InvalidArgumentError('Expected two whole numbers from 2 to 200, such as 20x16.');
+}
+
 const greeting =
   (): string => `Upsettle ${version()}: what happens between steady states of a mixer-settler cascade.
 
@@ -136,6 +178,7 @@ const greeting =
   upsettle steady scenarios/saltbush-copper.yaml   where it comes to rest
   upsettle run scenarios/saltbush-copper.yaml      start-up and upsets, with pictures
   upsettle commission scenarios/saltbush-startup.yaml   when the start-up comes good
+  upsettle rehearse scenarios/saltbush-rehearsal.yaml   an upset before it happens
 
 upsettle --help lists all options.
 `;

@@ -37,7 +37,7 @@ export function track(
       if ('by' in c.how) {
         if (c.how.relative) relative += weight * c.how.by;
         else absolute += weight * c.how.by;
-      } else base += weight * (('to' in c.how ? c.how.to : interpolate(c.how.follow, t)) - base);
+      } else base += weight * (('to' in c.how ? c.how.to : interpolate(c.how.follow, t, side)) - base);
     }
     return base * relative + absolute;
   };
@@ -66,17 +66,20 @@ function share(c: Change, t: number, side: -1 | 1): number {
 function interpolate(
   data: { readonly times: readonly number[]; readonly values: readonly number[] },
   t: number,
+  side: -1 | 1,
 ): number {
   const { times, values } = data;
   let lo = 0;
   let hi = times.length - 1;
-  if (t <= times[0]) return values[0];
-  if (t >= times[hi]) return values[hi];
+  if (t < times[0] || (t === times[0] && times[1] > t)) return values[0];
+  if (t > times[hi] || (t === times[hi] && times[hi - 1] < t)) return values[hi];
+  // Two equal times are a jump: on its left the row before it counts, on its right the row after.
   while (hi - lo > 1) {
     const mid = (lo + hi) >> 1;
-    if (times[mid] <= t) lo = mid;
+    if (times[mid] < t || (side > 0 && times[mid] === t)) lo = mid;
     else hi = mid;
   }
+  if (times[hi] === times[lo]) return side > 0 ? values[hi] : values[lo];
   return values[lo] + ((values[hi] - values[lo]) * (t - times[lo])) / (times[hi] - times[lo]);
 }
 

@@ -1,4 +1,5 @@
 import { commission } from './commission-schema.ts';
+import { rehearse } from './rehearse-schema.ts';
 import { figures, head, list, number, object, orNull, plant, text, yes } from './schema-words.ts';
 import { SCHEMA } from './summary.ts';
 
@@ -144,5 +145,5 @@ const steady = object({
 export const summarySchema = {
   $schema: 'https://json-schema.org/draft/2020-12/schema',
   title: 'Upsettle summary.json',
-  oneOf: [run, steady, commission],
+  oneOf: [run, steady, commission, rehearse],
 } as const;

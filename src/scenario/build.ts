@@ -3,11 +3,13 @@ import { arrangementOf, blendsOf, neutralisedBy, removalShares, removalsOf, spli
 import { type Basis, carrierFlow, content } from './content.ts';
 import { readLaw } from './laws.ts';
 import { readLimit } from './limits.ts';
+import { readClock } from './moment.ts';
 import { hint } from './nearest.ts';
 import { checkNeeds } from './needs.ts';
 import type { Outline } from './outline.ts';
 import { noProperties, plainTank, plainTrain } from './plain.ts';
 import { readCommissioning } from './read-commissioning.ts';
+import { readRehearsing } from './read-rehearsing.ts';
 import type { Problem } from './refusal.ts';
 import { Releases } from './releases.ts';
 import { startOf } from './saved.ts';
@@ -64,7 +66,17 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
     upsets: (raw.upsets ?? []).flatMap((u, i) =>
       readChange(
         u,
-        { path: ['upsets', i], outline, basis, contents, shares, feeds: known, horizon: raw.horizon, folder },
+        {
+          path: ['upsets', i],
+          outline,
+          basis,
+          contents,
+          shares,
+          feeds: known,
+          horizon: raw.horizon,
+          folder,
+          timeZero: raw.time_zero === undefined ? null : readClock(raw.time_zero),
+        },
         problems,
       ),
     ),
@@ -75,7 +87,11 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
   checkNeeds(scenario, problems);
   checkSize(scenario, problems);
   const around = { outline, basis, folder, feeds: known, contents };
-  return { ...scenario, commissioning: readCommissioning(raw, scenario, around, problems) };
+  return {
+    ...scenario,
+    commissioning: readCommissioning(raw, scenario, around, problems),
+    rehearsing: readRehearsing(raw, scenario, around, problems),
+  };
 }
 
 class Builder {

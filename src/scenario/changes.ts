@@ -1,6 +1,7 @@
 import { type Basis, carrierFlow, concentration, contentKinds } from './content.ts';
-import { BadData, columnIndex, elapsed, headerUnit, numbers, readTable } from './csv.ts';
+import { BadData } from './csv.ts';
 import type { Figure } from './fields.ts';
+import { readFollow } from './follow.ts';
 import { guess } from './nearest.ts';
 import type { Outline, Target } from './outline.ts';
 import type { Problem } from './refusal.ts';
@@ -24,6 +25,8 @@ export interface Setting {
   readonly shares: ReadonlySet<string>;
   readonly horizon: Figure;
   readonly folder: string;
+  /** ms of the plant's clock at time zero; null or left out where it is not stated. */
+  readonly timeZero?: number | null;
 }
 
 /**
@@ -198,22 +201,14 @@ class ChangeReader {
 
   follow(): Read {
     const { change } = this.#raw;
-    const { file, column, time } = this.#raw.follow as NonNullable<RawChange['follow']>;
+    const raw = this.#raw.follow as NonNullable<RawChange['follow']>;
     try {
-      const t = readTable(this.#s.folder, file);
-      const at = columnIndex(t, column);
-      const { kind, factor } = headerUnit(t, at, ...this.#kinds());
-      const times = elapsed(t, time === undefined ? 0 : columnIndex(t, time));
-      const list = numbers(t, at);
-      if (list.length < 2)
-        throw new BadData(`${t.file}:${t.rows[0].line}: the only row; two or more make a course`);
-      const low = list.findIndex((v) => v < 0);
-      if (low >= 0)
-        throw new BadData(`${t.file}:${t.rows[low].line}: must not be negative, got ${list[low]}`);
-      const values = list.map((v) => this.#inside({ kind, value: v * factor }, 'follow', 'column'));
-      const start = this.#raw.at.value;
-      const how = { follow: { times: times.map((v) => v + start), values } };
-      return { how, words: `${change} follows ${file}` };
+      const data = readFollow(raw, this.#s.folder, this.#kinds(), this.#s.timeZero ?? null);
+      const { kind } = data;
+      const values = data.values.map((value) => this.#inside({ kind, value }, 'follow', 'column'));
+      const start = raw.by_clock ? 0 : this.#raw.at.value;
+      const how = { follow: { times: data.times.map((v) => v + start), values } };
+      return { how, words: `${change} follows ${raw.file}` };
     } catch (e) {
       if (e instanceof BadData) return this.complain(e.message, 'follow');
       throw e;

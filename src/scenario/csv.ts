@@ -103,6 +103,14 @@ export function numbers(t: Table, column: number): number[] {
   });
 }
 
+/** The same, with null where a cell is blank: a value that is missing. */
+export function optionalNumbers(t: Table, column: number): (number | null)[] {
+  const filled = { ...t, rows: t.rows.filter(({ cells }) => cells[column].trim() !== '') };
+  const values = numbers(filled, column);
+  let next = 0;
+  return t.rows.map(({ cells }) => (cells[column].trim() === '' ? null : values[next++]));
+}
+
 const HEADERS: Partial<Record<Kind, string>> = {
   'a time': 'time [h]',
   'a flow by volume': 'feed [m^3/h]',
@@ -143,6 +151,14 @@ function inUnits(t: Table, column: number): number[] {
 }
 
 const STAMP = /^(\d{4}-\d{2}-\d{2})(?:[T ](\d{2}:\d{2}(?::\d{2}(?:\.\d+)?)?)(Z|[+-]\d{2}:?\d{2})?)?$/i;
+
+/** ms of the first time stamp of a column, without a zone taken as UTC; null where the column holds no stamps. */
+export function stamped(t: Table, column: number): number | null {
+  const first = t.rows[0].cells[column].trim();
+  if (!/^\d{4}-\d{2}-\d{2}/.test(first)) return null;
+  const [, day, time = '00:00', zone = 'Z'] = STAMP.exec(first) ?? [];
+  return Date.parse(`${day}T${time}${zone}`);
+}
 
 /** Stamps without a zone are taken as they stand: only differences count, and no plant clock is known here. */
 function fromStamps(t: Table, stamps: readonly string[]): number[] {

@@ -211,7 +211,7 @@ export function outline(raw: unknown): Outline {
     blends,
     batches,
     stageKeys: [...new Set(stageKeys)],
-    spare: spareFeeds([...listed(top.upsets), ...movesOf(top.procedures)], feeds),
+    spare: spareFeeds([...listed(top.upsets), ...movesOf(top.procedures), ...movesOf(top.answers)], feeds),
     named,
     whole,
     changeable,
@@ -229,7 +229,7 @@ const stageTargets = (stage: string): [string, Target['what']][] => [
 ];
 
 const listed = (v: unknown): unknown[] => (Array.isArray(v) ? v : []);
-/** Moves of all procedures. */
+/** Moves of all procedures or answers. */
 const movesOf = (v: unknown): unknown[] =>
   isObject(v) ? Object.values(v).flatMap((p) => (isObject(p) ? listed(p.moves) : [])) : [];
 

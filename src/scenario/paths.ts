@@ -39,6 +39,7 @@ export function checkPaths(raw: Record<string, unknown>, plan: Outline, problems
     return `unknown quantity ${show(path)}${hint(path, changeable)}`;
   };
   check('upsets', 'change', change);
+  check('variation', 'change', change);
   for (const { path, quantity } of movesOf(raw)) {
     const message = change(quantity);
     if (message !== null) problems.push({ path, message });
@@ -58,16 +59,18 @@ type Settings = Record<string, unknown>;
 const settings = (v: unknown): Settings =>
   typeof v === 'object' && v !== null && !Array.isArray(v) ? (v as Settings) : {};
 
-/** What the moves of procedures change, with their places. */
+/** What the moves of procedures and answers change, with their places. */
 function movesOf(raw: Settings): { path: Path; quantity: string }[] {
-  return Object.entries(settings(raw.procedures)).flatMap(([name, p]) => {
-    const { moves } = settings(p);
-    if (!Array.isArray(moves)) return [];
-    return moves.flatMap((m, i) => {
-      const { change } = settings(m);
-      return typeof change === 'string'
-        ? [{ path: ['procedures', name, 'moves', i, 'change'], quantity: change }]
-        : [];
-    });
-  });
+  return (['procedures', 'answers'] as const).flatMap((key) =>
+    Object.entries(settings(raw[key])).flatMap(([name, p]) => {
+      const { moves } = settings(p);
+      if (!Array.isArray(moves)) return [];
+      return moves.flatMap((m, i) => {
+        const { change } = settings(m);
+        return typeof change === 'string'
+          ? [{ path: [key, name, 'moves', i, 'change'], quantity: change }]
+          : [];
+      });
+    }),
+  );
 }

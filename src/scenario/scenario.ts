@@ -1,5 +1,6 @@
 import type { Commissioning } from './commissioning.ts';
 import type { DropSizeName } from './plain.ts';
+import type { Rehearsing } from './rehearsing.ts';
 
 /** A checked scenario: plain data, SI inside (m, s, kg, kg/m³, m³/s). Names are the user's own. */
 
@@ -300,4 +301,6 @@ export interface Scenario {
   readonly limits: readonly Limit[];
   /** What is stated for the commissioning. */
   readonly commissioning?: Commissioning;
+  /** What is stated for the rehearsal of upsets. */
+  readonly rehearsing?: Rehearsing;
 }

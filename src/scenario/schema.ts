@@ -20,9 +20,11 @@ import {
   whole,
   word,
 } from './fields.ts';
+import { followSchema } from './follow.ts';
 import { FUNCTIONS } from './formula.ts';
 import { isBuiltIn } from './names.ts';
 import { dropSizeNames } from './plain.ts';
+import { rehearsingKeys } from './rehearsing-schema.ts';
 import {
   arrangement,
   blends,
@@ -214,7 +216,7 @@ const upset = object({
   change: text(),
   to: later("a value such as '8 g/L'").optional(),
   by: later("a change such as '+35 %'").optional(),
-  follow: object({ file: text(), column: text(), time: text().optional() }).optional(),
+  follow: followSchema.optional(),
   over: figure(['a time'], notNegative).optional(),
   for: duration.optional(),
 });
@@ -326,6 +328,7 @@ export function scenarioSchema({ solutes, species, stageKeys }: Keys) {
     upsets: list(upset, 'a list of changes').optional(),
     limits: list(limit, 'a list of limits').optional(),
     ...commissioningKeys(upset, content, start),
+    ...rehearsingKeys(upset),
   });
 }
 

@@ -23,6 +23,8 @@ export interface LimitReport {
   readonly outside: number;
   /** kg beyond a concentration limit: ∫ Q·max(c − L, 0) dt, null for other quantities and lower limits. */
   readonly beyond: number | null;
+  /** m³ of the stream that left outside the limit; null where it has no flow. */
+  readonly volume: number | null;
   readonly worst: { readonly value: number; readonly time: number };
   /** All outputs at the worst moment. */
   readonly atWorst: F;
@@ -48,7 +50,9 @@ export class LimitWatch implements Watcher {
   readonly #plant: Plant;
   readonly #limit: Limit;
   readonly #output: number;
+  /** Flow of the stream, and whether what it carries beyond the limit is an amount. */
   readonly #flow: number;
+  readonly #carries: boolean;
   /** Outputs that must be there for a purity or a ratio to be one, and how much of them. */
   readonly #needs: readonly number[];
   readonly #least: number;
@@ -63,6 +67,7 @@ export class LimitWatch implements Watcher {
   /** Excess where the last step or stretch ended. */
   #last = 0;
   #beyond = 0;
+  #volume = 0;
   #outside = 0;
   #worst = { value: Number.NaN, time: 0 };
   #atWorst: F = new Float64Array(0);
@@ -73,7 +78,8 @@ export class LimitWatch implements Watcher {
     this.#plant = plant;
     this.#limit = limit;
     this.#output = find(limit.quantity);
-    this.#flow = system.outputs[this.#output]?.unit === 'kg/m^3' ? find('flow') : -1;
+    this.#flow = find('flow');
+    this.#carries = this.#flow >= 0 && system.outputs[this.#output]?.unit === 'kg/m^3';
     this.#sign = limit.side === 'below' ? 1 : -1;
     this.#needs = needed(plant, limit).map((path) => system.outputs.findIndex((o) => o.path === path));
     this.#least = NOTHING * Math.max(0, ...this.#needs.map((i) => system.outputs[i].scale));
@@ -147,7 +153,8 @@ export class LimitWatch implements Watcher {
       atStart: this.#atStart,
       spells: this.#spells,
       outside: this.#outside,
-      beyond: this.#flow >= 0 && this.#sign > 0 ? this.#beyond : null,
+      beyond: this.#carries && this.#sign > 0 ? this.#beyond : null,
+      volume: this.#flow >= 0 ? this.#volume : null,
       worst: this.#worst,
       atWorst: this.#atWorst,
     };
@@ -184,11 +191,13 @@ export class LimitWatch implements Watcher {
   #accrue(step: Step, inputs: Inputs, from: number, to: number): void {
     this.#outside += to - from;
     if (this.#flow < 0) return;
-    const rate = (t: number): number => {
-      const excess = this.#excessAt(step, inputs, t);
-      return Math.max(0, excess) * this.#y[this.#flow];
-    };
-    this.#beyond += ((to - from) / 6) * (rate(from) + 4 * rate((from + to) / 2) + rate(to));
+    [from, (from + to) / 2, to].forEach((t, i) => {
+      const excess = Math.max(0, this.#excessAt(step, inputs, t));
+      const flow = this.#y[this.#flow];
+      const weight = ((i === 1 ? 4 : 1) / 6) * (to - from);
+      this.#beyond += weight * excess * flow;
+      this.#volume += weight * flow;
+    });
   }
 
   #consider(t: number): void {

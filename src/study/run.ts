@@ -20,6 +20,7 @@ import type { RunResult, Snapshot } from './result.ts';
 import { restoreModes, restoreState, saveState } from './saved.ts';
 import { trainFigures } from './train-figures.ts';
 import { upsetSchedule } from './upsets.ts';
+import { realised } from './variation.ts';
 
 export interface RunSettings {
   readonly integrator: string;
@@ -95,8 +96,9 @@ interface Prepared {
 }
 
 function prepare(s: Scenario, settings: RunSettings): Prepared {
-  const plant = assemble(s);
-  const { schedule, courses, shades, clamped } = upsetSchedule(plant, s.upsets, s.horizon);
+  const background = (s.rehearsing?.variations ?? []).map((v) => realised(v, s.horizon));
+  const plant = assemble({ ...s, upsets: [...s.upsets, ...background] });
+  const { schedule, courses, shades, clamped } = upsetSchedule(plant, s.upsets, s.horizon, background);
   const initial = startState(plant);
   const first = s.upsets.length > 0 ? Math.min(...s.upsets.map((u) => u.at)) : null;
   const before = first === null || first <= 0 ? null : Math.min(first, s.horizon);

@@ -27,8 +27,17 @@ export interface Upsets {
   readonly clamped: readonly { readonly quantity: string; readonly time: number; readonly at: number }[];
 }
 
-/** Upsets → schedule of the inputs from 0 to the horizon. */
-export function upsetSchedule(plant: Plant, changes: readonly Change[], horizon: number): Upsets {
+/**
+ * Upsets → schedule of the inputs from 0 to the horizon. What goes on in the background (feeds that vary at random)
+ * is in the schedule and casts no shade.
+ */
+export function upsetSchedule(
+  plant: Plant,
+  stated: readonly Change[],
+  horizon: number,
+  background: readonly Change[] = [],
+): Upsets {
+  const changes = [...background, ...stated];
   const clamped: { quantity: string; time: number; at: number }[] = [];
   const quantities = [...new Set(changes.map((c) => c.quantity))];
   const tracks = quantities.map((quantity): Track => {
@@ -40,9 +49,7 @@ export function upsetSchedule(plant: Plant, changes: readonly Change[], horizon:
     return { input, times: line.times, values: line.values };
   });
   // One upset can stand for changes of several inputs: it is one shade.
-  const upsets = changes.filter(
-    (c, i) => changes.findIndex((o) => o.words === c.words && o.at === c.at) === i,
-  );
+  const upsets = stated.filter((c, i) => stated.findIndex((o) => o.words === c.words && o.at === c.at) === i);
   const shades = upsets.map((c): Shade => {
     const data = 'follow' in c.how ? c.how.follow.times : [];
     const end =

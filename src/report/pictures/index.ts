@@ -1,15 +1,19 @@
 import type { CommissionResult } from '../../study/commission/commission.ts';
 import type { RunResult, SteadyResult } from '../../study/result.ts';
+import { answerLevels, answers } from './answers.ts';
 import { approach } from './approach.ts';
 import { draw } from './canvas.ts';
 import { comparison } from './comparison.ts';
 import { fan } from './fan.ts';
+import { frequency } from './frequency.ts';
 import { levels } from './levels.ts';
 import { stageTimeMap } from './map.ts';
 import { operating } from './operating.ts';
 import { outlets } from './outlets.ts';
 import type { Picture } from './picture.ts';
 import { profiles } from './profiles.ts';
+import { ranked } from './ranked.ts';
+import { type Rehearsed, startSize } from './start-size.ts';
 import { timeline } from './timeline.ts';
 
 /** Pictures of `run`, in the order in which they are drawn. */
@@ -33,6 +37,15 @@ export const commissionTable: readonly Picture<CommissionResult>[] = [
   comparison,
 ];
 
+/** Pictures of `rehearse`. */
+export const rehearseTable: readonly Picture<Rehearsed>[] = [
+  answers,
+  ranked,
+  startSize,
+  frequency,
+  answerLevels,
+];
+
 export interface Drawn {
   readonly name: string;
   readonly png: Buffer;
@@ -44,6 +57,9 @@ export const steadyPictures = (r: SteadyResult, scale = 1): AsyncGenerator<Drawn
 
 export const commissionPictures = (r: CommissionResult, scale = 1): AsyncGenerator<Drawn> =>
   all(commissionTable, r, scale);
+
+export const rehearsePictures = (r: Rehearsed, scale = 1): AsyncGenerator<Drawn> =>
+  all(rehearseTable, r, scale);
 
 async function* all<R>(table: readonly Picture<R>[], r: R, scale: number): AsyncGenerator<Drawn> {
   const used = new Map<string, number>();

@@ -9,6 +9,8 @@ export interface PanelLine {
   readonly data: readonly { readonly x: number; readonly y: number }[];
   /** Drawn as marks in the colour of the line before it. */
   readonly marks?: true;
+  /** Number of its colour and dash; the next one by default. */
+  readonly style?: number;
 }
 
 /** One of several diagrams over each other with a common time axis. */
@@ -21,6 +23,8 @@ export interface Panel {
   readonly limits: readonly { readonly value: number; readonly label: string; readonly from: number }[];
   /** s from which on the axis holds all of the lines. */
   readonly from: number;
+  /** What it shows where the axis has no room for it, inside at its upper right. */
+  readonly heading?: string;
 }
 
 export interface Sheet {
@@ -28,6 +32,9 @@ export interface Sheet {
   readonly answer: readonly string[];
   readonly source: string;
   readonly span: number;
+  /** s at which the axis begins, 0 by default, and what it says. */
+  readonly begin?: number;
+  readonly axis?: string;
   readonly panels: readonly Panel[];
   readonly shades: readonly Shade[];
 }
@@ -47,7 +54,7 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
       yAxisID: axis(order.length - 1 - i),
       ...(line.marks
         ? { showLine: false, pointRadius: 4, pointStyle: 'circle' as const, ...lineStyle(style - 1) }
-        : { pointRadius: 0, pointStyle: 'line' as const, ...lineStyle(style++) }),
+        : { pointRadius: 0, pointStyle: 'line' as const, ...lineStyle(line.style ?? style++) }),
     })),
   );
   const annotations: Record<string, object> = {};
@@ -80,11 +87,25 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
     };
   });
   order.forEach((panel, i) => {
+    if (panel.heading !== undefined)
+      annotations[`heading${i}`] = {
+        type: 'label',
+        xValue: end,
+        yValue: (c: { chart: { scales: Record<string, { max: number }> } }) => c.chart.scales[axis(i)].max,
+        yScaleID: axis(i),
+        position: { x: 'end', y: 'start' },
+        yAdjust: 3,
+        xAdjust: -4,
+        content: panel.heading,
+        backgroundColor: 'rgba(255,255,255,0.85)',
+        padding: 2,
+        font: { size: 12 },
+      };
     panel.limits.forEach((l, k) => {
       annotations[`limit${i}-${k}`] = {
         type: 'line',
         yScaleID: axis(i),
-        xMin: l.from / unit.seconds,
+        xMin: Math.max(sheet.begin ?? 0, l.from) / unit.seconds,
         xMax: end,
         yMin: l.value,
         yMax: l.value,
@@ -107,9 +128,13 @@ export function panelSheet(sheet: Sheet): ChartConfiguration {
   const scales: Record<string, unknown> = {
     x: {
       type: 'linear',
-      min: 0,
+      min: (sheet.begin ?? 0) / unit.seconds,
       max: end,
-      title: { display: true, text: [`time [${unit.name}]`, sheet.source], font: { size: 13 } },
+      title: {
+        display: true,
+        text: [`${sheet.axis ?? 'time'} [${unit.name}]`, sheet.source],
+        font: { size: 13 },
+      },
       ticks: { stepSize: tickStep(end, 20, unit), maxRotation: 0, includeBounds: false },
     },
   };
@@ -206,7 +231,8 @@ function range(panel: Panel): { min: number; max: number } {
   [low, high] = aroundLimits(panel, low, high);
   const span = high - low;
   const min = low > 0.6 * high && span > 0 ? low - 0.15 * span : Math.min(0, low);
-  const max = high + 0.16 * (high - min || Math.abs(high) || 1);
+  const room = panel.heading === undefined ? 0.16 : 0.16 + 0.24 / panel.weight;
+  const max = high + room * (high - min || Math.abs(high) || 1);
   return { min, max };
 }
 
