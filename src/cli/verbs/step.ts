@@ -6,7 +6,13 @@ import { exerciseHelp, scoreLines, viewLines } from '../../report/exercise-scree
 import { rehearseSummary } from '../../report/rehearse-summary.ts';
 import { upsetWords } from '../../report/rehearse-words.ts';
 import { readScenario, ScenarioError } from '../../scenario/read.ts';
-import { exerciseName, type TypedMove, typedMove, withExercise } from '../../scenario/replay.ts';
+import {
+  changeablePaths,
+  exerciseName,
+  type TypedMove,
+  typedMove,
+  withExercise,
+} from '../../scenario/replay.ts';
 import type { Scenario } from '../../scenario/scenario.ts';
 import { quantity } from '../../scenario/units.ts';
 import { Exercise, scoreOf } from '../../study/rehearse/exercise.ts';
@@ -97,7 +103,7 @@ class Driver {
     this.scenario = scenario;
     this.name = exerciseName((scenario.rehearsing?.answers ?? []).map((a) => a.name));
     this.#exercise = new Exercise(scenario, this.name);
-    this.#changeable = scenario.rehearsing?.changeable ?? [];
+    this.#changeable = changeablePaths(this.#text);
   }
 
   /** Until `end`, the last line, or the horizon. */
