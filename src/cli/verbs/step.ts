@@ -126,6 +126,8 @@ class Driver {
           if (this.#exercise.over) lines.close();
         }, TICK)
       : null;
+    // An interrupt ends the exercise; what was driven until then is scored.
+    lines.on('SIGINT', () => lines.close());
     if (live) lines.prompt();
     for await (const line of lines) {
       if (this.#hear(line.trim()) || this.#exercise.over) break;
