@@ -52,7 +52,6 @@ export function readRehearsing(
     answers: entries.map(([name, a]) => reader.read(name, a)),
     instruments,
     variations: readVariations(raw, s, around, problems),
-    changeable: [...around.outline.changeable.keys()],
     startStated: raw.start !== undefined,
     timeZero,
   };

@@ -6,8 +6,6 @@ export interface Rehearsing {
   readonly answers: readonly Answer[];
   readonly instruments: readonly Instrument[];
   readonly variations: readonly Variation[];
-  /** Paths that moves may change. */
-  readonly changeable: readonly string[];
   /** Whether the scenario says how the run starts; a rehearsal starts steady otherwise. */
   readonly startStated: boolean;
   /** Milliseconds of the plant's clock at time zero, as if its zone were UTC; null: not stated. */

@@ -1,6 +1,7 @@
 import { isAbsolute, join, relative } from 'node:path';
 import { isMap, isScalar, parseDocument, visit } from 'yaml';
 import { hint } from './nearest.ts';
+import { outline } from './outline.ts';
 import { show } from './show.ts';
 
 /** A move as it was typed: the keys of a move in a scenario, and when it was made, in whole seconds of the run. */
@@ -13,6 +14,11 @@ export interface TypedMove {
   readonly for?: string;
 }
 
+/** Paths that moves may change, of a scenario that is sound. */
+export const changeablePaths = (text: string): string[] => [
+  ...outline(parseDocument(text.normalize('NFC')).toJS()).changeable.keys(),
+];
+
 const FORM = "expected a move such as 'organic tank.flow +10 %', with 'over 10 min' or 'for 2 h' after it";
 
 /**
@@ -24,7 +30,7 @@ export function typedMove(
   time: number,
   changeable: readonly string[],
 ): TypedMove | { readonly wrong: string } {
-  const text = line.trim().replace(/\s+/g, ' ');
+  const text = line.normalize('NFC').trim().replace(/\s+/g, ' ');
   const change = [...changeable]
     .sort((a, b) => b.length - a.length)
     .find((q) => text === q || text.startsWith(`${q} `));

@@ -145,6 +145,30 @@ describe('the command', () => {
     expect(files()).toEqual(before);
   });
 
+  it('a map has the same figures on one worker thread and on two', () => {
+    const answers = 'answers: {less: {start: 10 min after upset, moves: [{change: feed.flow, by: -10 %}]}}';
+    writeFileSync(join(folder, 'answered.yaml'), `${sound}${answers}\n`);
+    const maps = ['1', '2'].map((workers) => {
+      const args = ['answered.yaml', '--no-pictures', '--map', 'less', '--grid', '5x3', '--workers', workers];
+      const { code, out, error } = upsettle('rehearse', ...args, '--out', `map-${workers}`);
+      expect({ code, error }).toEqual({ code: exits.done, error: '' });
+      expect(out).toMatch(/^REHEARSAL/);
+      return JSON.parse(readFileSync(join(folder, `map-${workers}/summary.json`), 'utf8')).map;
+    });
+    expect(maps[0].values).toHaveLength(3);
+    expect(maps[1]).toEqual(maps[0]);
+  });
+
+  it('a rehearsal that is refused writes nothing, and one without an upset is refused', () => {
+    const before = files();
+    writeFileSync(join(folder, 'calm.yaml'), sound.replace(/upsets:\n(?: +.*\n)+/, ''));
+    const { code, out, error } = upsettle('rehearse', 'calm.yaml');
+    expect({ code, out }).toEqual({ code: exits.refused, out: '' });
+    expect(error).toMatch(/^calm\.yaml:\d+:\d+ upsets: a rehearsal needs an upset/);
+    rmSync(join(folder, 'calm.yaml'));
+    expect(files()).toEqual(before);
+  });
+
   it('a check writes nothing, and a reader that stops reading is no fault', async () => {
     const before = files();
     const child = spawn(process.execPath, [program, 'check', 'sound.yaml'], { cwd: folder });

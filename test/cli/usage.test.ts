@@ -54,6 +54,10 @@ describe('wrong usage is exit 2 with a short message', () => {
         ] as const,
     ),
     [['commission', sound, '--workers', '0'], /Expected a whole number from 1 to 256/],
+    [['rehearse', sound, '--grid', '20'], /Expected two whole numbers from 2 to 200, such as 20x16/],
+    [['rehearse', sound, '--map-of', 'all'], /'all' is invalid\. Allowed choices are worst, time/],
+    [['rehearse', sound, '--speed', '0'], /Expected a whole number from 1 to 100000/],
+    [['rehearse', sound, '--map', 'nobody'], /--map: no answer 'nobody'/],
     [['run', sound, '--scale', '3'], /'3' is invalid\. Allowed choices are 1, 2/],
     ...['0.5', '0', '-1e-6', '1e-13', '1e400', 'NaN', 'small', '', '1e-6x', '1,0e-6'].map(
       (text) =>
@@ -104,7 +108,7 @@ describe('questions about the command itself', () => {
       expect(help.out).toContain(option);
     const greeting = await upsettle();
     expect(greeting).toMatchObject({ code: exits.done, error: '' });
-    for (const verb of ['check', 'steady', 'run', 'commission'])
+    for (const verb of ['check', 'steady', 'run', 'commission', 'rehearse'])
       expect(greeting.out).toContain(`upsettle ${verb} scenarios/`);
   });
 });

@@ -167,7 +167,6 @@ describe('random plants', () => {
             answers: [{ name: 'again', between: 0, steps: [step] }],
             instruments: [],
             variations: [],
-            changeable: [],
             startStated: true,
             timeZero: null,
           },

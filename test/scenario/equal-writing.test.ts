@@ -9,8 +9,15 @@ import type { Scenario } from '../../src/scenario/scenario.ts';
 import { fromText, inRepo, scenario } from '../support/plants.ts';
 import { closed, exchange, instead, sound } from './wrong.ts';
 
-/** A scenario but for the user's own words, in which an upset is repeated to him. */
-const plain = (s: Scenario): unknown => ({ ...s, upsets: s.upsets.map((u) => ({ ...u, words: '' })) });
+/**
+ * A scenario but for the user's own words, in which an upset is repeated to him, and for whether its start was stated:
+ * only a rehearsal minds that, which starts steady where it was not.
+ */
+const plain = (s: Scenario): unknown => ({
+  ...s,
+  upsets: s.upsets.map((u) => ({ ...u, words: '' })),
+  rehearsing: { ...s.rehearsing, startStated: true },
+});
 const of = (text: string): unknown => plain(fromText(text));
 
 const LAW = '{law: ratio, ratio: 3}';

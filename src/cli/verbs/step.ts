@@ -6,7 +6,13 @@ import { exerciseHelp, scoreLines, viewLines } from '../../report/exercise-scree
 import { rehearseSummary } from '../../report/rehearse-summary.ts';
 import { upsetWords } from '../../report/rehearse-words.ts';
 import { readScenario, ScenarioError } from '../../scenario/read.ts';
-import { exerciseName, type TypedMove, typedMove, withExercise } from '../../scenario/replay.ts';
+import {
+  changeablePaths,
+  exerciseName,
+  type TypedMove,
+  typedMove,
+  withExercise,
+} from '../../scenario/replay.ts';
 import type { Scenario } from '../../scenario/scenario.ts';
 import { quantity } from '../../scenario/units.ts';
 import { Exercise, scoreOf } from '../../study/rehearse/exercise.ts';
@@ -97,7 +103,7 @@ class Driver {
     this.scenario = scenario;
     this.name = exerciseName((scenario.rehearsing?.answers ?? []).map((a) => a.name));
     this.#exercise = new Exercise(scenario, this.name);
-    this.#changeable = scenario.rehearsing?.changeable ?? [];
+    this.#changeable = changeablePaths(this.#text);
   }
 
   /** Until `end`, the last line, or the horizon. */
@@ -120,6 +126,8 @@ class Driver {
           if (this.#exercise.over) lines.close();
         }, TICK)
       : null;
+    // An interrupt ends the exercise; what was driven until then is scored.
+    lines.on('SIGINT', () => lines.close());
     if (live) lines.prompt();
     for await (const line of lines) {
       if (this.#hear(line.trim()) || this.#exercise.over) break;

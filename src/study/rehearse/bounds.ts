@@ -92,6 +92,7 @@ function endsOf(
 ): Kept[] | null {
   const without = of({ end: Number.POSITIVE_INFINITY });
   const stays = new Branch(g, changes(without), care);
+  if (written.moves.length === 0) return null;
   const from = Math.max(...written.moves.map((m) => m.at));
   if (!(from < g.horizon)) return null;
   const tryEnd = trialOf((end, depth) =>

@@ -181,3 +181,50 @@ answers: {dip: {start: 10 min after upset, moves: [{change: brine.salt, by: -2.5
     });
   });
 });
+
+describe('limits and upsets', () => {
+  const s = (upsets: string, limit: string): Scenario =>
+    tanksInSeries(1, `horizon: 10 h\nupsets: [${upsets}]\nlimits: [{keep: outlet.salt, ${limit}}]\n`);
+
+  it('a limit that is over already has no time of break', () => {
+    const [l] = rehearse(s('{at: 1 h, change: brine.salt, by: +3 g/L}', 'below: 4.9 g/L')).nothing.limits;
+    expect(l).toMatchObject({ overBefore: true, breaks: null, stillOver: true, kept: false });
+    expect(l.outside).toBeCloseTo(9 * HOUR, 3);
+  });
+
+  it('a break belongs to the upset that began last before it', () => {
+    const two = '{at: 1 h, change: brine.salt, by: +0.5 g/L}, {at: 4 h, change: brine.salt, by: +1 g/L}';
+    const [l] = rehearse(s(two, 'below: 6 g/L')).nothing.limits;
+    // 5.5 + (1 − e^(−t/600)) passes 6 at 600·ln 2.
+    expect(l.breaks?.upset).toBe(2);
+    expect(l.breaks?.after).toBeCloseTo(600 * Math.LN2, 1);
+    expect(l.stillOver).toBe(true);
+    // Inputs end elsewhere: recovery is to the new steady state of 6.5 g/L, 2 % of the largest departure of 1.5 from it.
+    expect(l.goesElsewhere).toBe(true);
+    expect((l.recovered ?? 0) - 4 * HOUR).toBeCloseTo(600 * Math.log(1 / 0.03), -1);
+  });
+
+  it('a lower limit is broken downwards', () => {
+    const r = rehearse(s('{at: 1 h, change: brine.salt, by: -3 g/L, for: 1 h}', 'above: 4 g/L'));
+    const [l] = r.nothing.limits;
+    expect((l.breaks?.time ?? 0) - HOUR).toBeCloseTo(600 * Math.log(1.5), 1);
+    expect(l.worst.value).toBeCloseTo(5 - 3 * (1 - Math.exp(-6)), 4);
+    expect(l.beyond).toBeNull();
+    expect(r.unaided.sizes?.[0].to).toBeCloseTo(1 / (3 * (1 - Math.exp(-6))), 2);
+  });
+
+  it('an answer that would begin after the end changes nothing', () => {
+    const late = tanksInSeries(
+      1,
+      `horizon: 4 h
+upsets: [{at: 1 h, change: brine.salt, by: +3 g/L}]
+limits: [{keep: outlet.salt, below: 6 g/L}]
+answers: {late: {start: 20 h after upset, moves: [{change: brine.salt, by: -3 g/L}]}}
+`,
+    );
+    const r = rehearse(late);
+    expect(r.answers[0].figures.outside).toBeCloseTo(r.nothing.outside, 6);
+    expect(r.answers[0].binds).toBe('too late');
+    expect(r.answers[0].bounds?.ends).toBeNull();
+  });
+});
