@@ -2,7 +2,7 @@ import { rehearseScreen } from '../../report/rehearse-screen.ts';
 import { rehearseSummary } from '../../report/rehearse-summary.ts';
 import { hint } from '../../scenario/nearest.ts';
 import { show } from '../../scenario/show.ts';
-import { type MapBatch, type StartSizeMap, startSizeMap } from '../../study/rehearse/map.ts';
+import { type MapBatch, type MapCell, type StartSizeMap, startSizeMap } from '../../study/rehearse/map.ts';
 import { type RehearseResult, rehearse as rehearseUpsets } from '../../study/rehearse/rehearse.ts';
 import { usual } from '../../study/run.ts';
 import { cores, workersOf } from '../../study/workers.ts';
@@ -75,7 +75,7 @@ async function mapOf(
 ): Promise<StartSizeMap | null> {
   if (answer === undefined) return null;
   const progress = (share: number): void => console.progress(share, 'map');
-  const compute = workersOf<MapBatch, number[][]>('map-worker.js', workers ?? cores());
+  const compute = workersOf<MapBatch, MapCell[][]>('map-worker.js', workers ?? cores());
   const map = await startSizeMap(result, answer, { columns, rows, of, progress, stop }, compute);
   return stop.aborted ? null : map;
 }

@@ -40,8 +40,9 @@ const trialOf = (excess: (v: number, depth: Depth) => number): Trial => ({
   surely: (v) => excess(v, 'peaks'),
 });
 
-/** Points of a scan. */
+/** Points of a scan over times, and steps of one over factors. */
 const POINTS = 40;
+const FACTORS = 20;
 /** s to which starts, ends and durations are settled. */
 export const TIME_PRECISION = 10;
 /** Factor to which sizes are. */
@@ -127,7 +128,7 @@ function sizesOf(
     if (depth === 'first' && event !== null) most = Math.min(most, size);
     return event === null ? excess : Math.max(excess, 1);
   });
-  const sizes = keptStretches(spread(0, LARGEST, POINTS + 1), trySize, SIZE_PRECISION);
+  const sizes = keptStretches(spread(0, LARGEST, FACTORS + 1), trySize, SIZE_PRECISION);
   const over = sizes[0]?.toBracket?.[1];
   return { sizes, above: over === undefined ? null : added(over, 'peaks').event };
 }
@@ -139,7 +140,7 @@ export function unaided(g: Ground, broken: boolean, care: Care): Unaided {
       (f, depth) => tried(g, g.before, make(f), depth === 'peaks' ? care.sure : care.quick, depth).excess,
     );
   const scan = (most: number, make: (f: number) => readonly Change[], precision: number): Kept[] =>
-    keptStretches(spread(0, most, POINTS + 1), trial(make), precision);
+    keptStretches(spread(0, most, FACTORS + 1), trial(make), precision);
   const scalable = g.changes.some((c) => scaled(c, 0, g.plant) !== c);
   const long = longest(g);
   return {

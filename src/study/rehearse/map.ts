@@ -24,7 +24,7 @@ export interface StartSizeMap {
   readonly sizes: readonly number[];
   /** values[size][start] */
   readonly values: readonly (readonly number[])[];
-  /** Pieces of the line on which the limit is just kept; of a time, on which it becomes more than a minute. */
+  /** Pieces of the line on which the limit is just kept. */
   readonly contour: readonly (readonly [MapPoint, MapPoint])[];
 }
 
@@ -44,12 +44,15 @@ export interface MapBatch {
   readonly chief: number;
   readonly starts: readonly number[];
   readonly sizes: readonly number[];
-  readonly of: 'worst' | 'time';
   readonly integrator: string;
 }
 
-/** s out of a limit that count for nothing on a map of times. */
-const MINUTE = 60;
+/** Worst value of the limited quantity, and s out of its limit. */
+export interface MapCell {
+  readonly worst: number;
+  readonly outside: number;
+}
+
 /** Relative tolerance of a map: its colours show three digits. */
 const TOLERANCE = 1e-4;
 /** Pieces of work for each column of the map: few columns each, so that progress is seen. */
@@ -63,7 +66,7 @@ export async function startSizeMap(
   r: RehearseResult,
   answer: string,
   settings: MapSettings,
-  compute: Spread<MapBatch, number[][]>,
+  compute: Spread<MapBatch, MapCell[][]>,
 ): Promise<StartSizeMap> {
   const { ground: g, chief } = r;
   const l = r.nothing.limits[chief];
@@ -83,18 +86,18 @@ export async function startSizeMap(
       chief,
       starts: own,
       sizes,
-      of: settings.of,
       integrator: r.settings.integrator,
     }),
   );
-  const values = sizes.map(() => new Array<number>(starts.length).fill(Number.NaN));
+  const none: MapCell = { worst: Number.NaN, outside: Number.NaN };
+  const cells = sizes.map(() => new Array<MapCell>(starts.length).fill(none));
   let done = 0;
   await compute(
     batches,
     (b, block) => {
       block.forEach((column, i) => {
         column.forEach((v, k) => {
-          values[k][b * COLUMNS + i] = v;
+          cells[k][b * COLUMNS + i] = v;
         });
       });
       done += block.length;
@@ -112,8 +115,14 @@ export async function startSizeMap(
     limit: time ? 0 : l.limit.value,
     starts,
     sizes,
-    values,
-    contour: contourPieces(starts, sizes, values, time ? MINUTE : l.limit.value),
+    values: cells.map((row) => row.map((c) => (time ? c.outside : c.worst))),
+    // A time is zero wherever the limit is kept and does not say by how much: the worst value does.
+    contour: contourPieces(
+      starts,
+      sizes,
+      cells.map((row) => row.map((c) => c.worst)),
+      l.limit.value,
+    ),
   };
 }
 
@@ -121,8 +130,8 @@ export async function startSizeMap(
 let last: { key: string; made: Columns } | null = null;
 
 /** Values of a batch, by start and then by size. */
-export function mapColumns(batch: MapBatch): number[][] {
-  const key = JSON.stringify([batch.scenario, batch.answer, batch.chief, batch.of]);
+export function mapColumns(batch: MapBatch): MapCell[][] {
+  const key = JSON.stringify([batch.scenario, batch.answer, batch.chief]);
   if (last?.key !== key) last = { key, made: new Columns(batch) };
   return batch.starts.map((start) => last?.made.column(start, batch.sizes) ?? []);
 }
@@ -144,14 +153,13 @@ class Columns {
     this.#nothing = new Branches(this.#g, this.#g.changes, this.#care);
   }
 
-  column(start: number, sizes: readonly number[]): number[] {
+  column(start: number, sizes: readonly number[]): MapCell[] {
     const g = this.#g;
     const answer = g.scenario.rehearsing?.answers.find((a) => a.name === this.#batch.answer);
     if (!answer) return [];
     return sizes.map((size) => {
       const { moves } = plan(answer, g.upsets, g.horizon, this.#trigger, { start, size });
-      const { worst, outside } = this.#nothing.goesOn([...g.changes, ...moves], start, this.#batch.chief);
-      return this.#batch.of === 'time' ? outside : worst;
+      return this.#nothing.goesOn([...g.changes, ...moves], start, this.#batch.chief);
     });
   }
 }
