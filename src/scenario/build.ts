@@ -8,6 +8,7 @@ import { checkNeeds } from './needs.ts';
 import type { Outline } from './outline.ts';
 import { noProperties, plainTank, plainTrain } from './plain.ts';
 import { readCommissioning } from './read-commissioning.ts';
+import { withLoops } from './read-loops.ts';
 import type { Problem } from './refusal.ts';
 import { Releases } from './releases.ts';
 import { startOf } from './saved.ts';
@@ -75,7 +76,8 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
   checkNeeds(scenario, problems);
   checkSize(scenario, problems);
   const around = { outline, basis, folder, feeds: known, contents };
-  return { ...scenario, commissioning: readCommissioning(raw, scenario, around, problems) };
+  const made = withLoops(raw, scenario, around, problems);
+  return { ...made, commissioning: readCommissioning(raw, made, around, problems) };
 }
 
 class Builder {

@@ -1,4 +1,5 @@
 import type { Commissioning } from './commissioning.ts';
+import type { Loop } from './loops.ts';
 import type { DropSizeName } from './plain.ts';
 
 /** A checked scenario: plain data, SI inside (m, s, kg, kg/m³, m³/s). Names are the user's own. */
@@ -298,4 +299,6 @@ export interface Scenario {
   readonly limits: readonly Limit[];
   /** What is stated for the commissioning. */
   readonly commissioning?: Commissioning;
+  /** Control loops; none where nothing is stated. */
+  readonly loops?: readonly Loop[];
 }

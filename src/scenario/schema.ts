@@ -21,6 +21,7 @@ import {
   word,
 } from './fields.ts';
 import { FUNCTIONS } from './formula.ts';
+import { loopsSchema } from './loops.ts';
 import { isBuiltIn } from './names.ts';
 import { dropSizeNames } from './plain.ts';
 import {
@@ -217,6 +218,7 @@ const upset = object({
   follow: object({ file: text(), column: text(), time: text().optional() }).optional(),
   over: figure(['a time'], notNegative).optional(),
   for: duration.optional(),
+  put: text().optional().describe("'<loop> in manual', where a loop moves the quantity"),
 });
 
 const limit = object({
@@ -326,6 +328,7 @@ export function scenarioSchema({ solutes, species, stageKeys }: Keys) {
     upsets: list(upset, 'a list of changes').optional(),
     limits: list(limit, 'a list of limits').optional(),
     ...commissioningKeys(upset, content, start),
+    loops: loopsSchema,
   });
 }
 
