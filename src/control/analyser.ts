@@ -53,8 +53,14 @@ export class Sampler {
     return this.#spec.first + this.#taken * this.#spec.every;
   }
 
+  /** s of the next result, of a sample that has been taken or of the next one. */
   nextResult(): number {
-    return this.#pending.length > 0 ? this.#pending[0].at : Infinity;
+    return this.#pending.length > 0 ? this.#pending[0].at : this.nextSample() + this.#spec.delay;
+  }
+
+  /** Whether a result has come by `t`. */
+  ready(t: number): boolean {
+    return this.#pending.length > 0 && this.#pending[0].at <= t;
   }
 
   get output(): number {

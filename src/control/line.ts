@@ -12,7 +12,7 @@ function before(line: Line, t: number): number {
 }
 
 /** Value just after `t`. */
-export function valueOf(line: Line, t: number): number {
+export function valueAt(line: Line, t: number): number {
   const k = before(line, t);
   if (k < 0) return line.values[0];
   if (k + 1 === line.times.length) return line.values[k];

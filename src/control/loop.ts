@@ -2,7 +2,7 @@ import type { Device, Drive } from '../solve/device.ts';
 import type { F } from '../solve/system.ts';
 import { Sampler } from './analyser.ts';
 import { Feedforward } from './feedforward.ts';
-import { cornerAfter, slopeOf, valueOf } from './line.ts';
+import { cornerAfter, slopeOf, valueAt } from './line.ts';
 import { OutputCourse } from './output-course.ts';
 import { type Beside, Pid } from './pid.ts';
 import { follow, type Segment } from './scan.ts';
@@ -85,7 +85,7 @@ export class SampledLoop implements Device {
     this.#out.set(t, w[inputs.output]);
     drive(inputs.measurement, t, this.#pv, 0);
     if (setPoint.times.length > 0) {
-      drive(inputs.setPoint, t, valueOf(setPoint, t), slopeOf(setPoint, t));
+      drive(inputs.setPoint, t, valueAt(setPoint, t), slopeOf(setPoint, t));
       this.#nextSetPoint = cornerAfter(setPoint, t);
     }
     if (manual) this.#nextManual = cornerAfter(manual, t - 1e-9);
@@ -110,9 +110,8 @@ export class SampledLoop implements Device {
     if (this.#sampler.nextSample() <= t) this.#sampler.sample(y);
     if (this.#ahead && this.#ahead.sampler.nextSample() <= t) this.#ahead.sampler.sample(y);
     if (this.#auto) return;
-    if (this.#ahead && this.#ahead.sampler.nextResult() <= t)
-      this.#ahead.take(this.#ahead.sampler.nextResult());
-    if (this.#sampler.nextResult() <= t) {
+    if (this.#ahead?.sampler.ready(t)) this.#ahead.take(this.#ahead.sampler.nextResult());
+    if (this.#sampler.ready(t)) {
       const at = this.#sampler.nextResult();
       this.#takeResult(at, drive);
       this.#pid.begin(this.#pv);
@@ -154,6 +153,11 @@ export class SampledLoop implements Device {
     return changed || moved;
   }
 
+  /** The run is over: what went on until then counts. */
+  finish(t: number): void {
+    this.#account(t);
+  }
+
   #scanning(): boolean {
     return this.#auto && this.#s.runs === 'scan';
   }
@@ -165,13 +169,13 @@ export class SampledLoop implements Device {
   #setPoint(t: number, w: F, drive: Drive): number {
     if (this.#s.setPoint.times.length === 0) return w[this.#s.inputs.setPoint];
     while (this.#nextSetPoint <= t) this.#passSetPoint(drive);
-    return valueOf(this.#s.setPoint, t);
+    return valueAt(this.#s.setPoint, t);
   }
 
   #passSetPoint(drive: Drive): void {
     const at = this.#nextSetPoint;
     const { setPoint, inputs } = this.#s;
-    drive(inputs.setPoint, at, valueOf(setPoint, at), slopeOf(setPoint, at));
+    drive(inputs.setPoint, at, valueAt(setPoint, at), slopeOf(setPoint, at));
     this.#nextSetPoint = cornerAfter(setPoint, at);
   }
 
@@ -226,19 +230,19 @@ export class SampledLoop implements Device {
   #byHand(t: number): void {
     const line = this.#s.manual;
     if (!line) return;
-    this.#out.toward(t, valueOf(line, t));
+    this.#out.toward(t, valueAt(line, t));
     this.#nextManual = cornerAfter(line, t);
   }
 
   #automatic(t: number, w: F, drive: Drive): void {
     let fresh = false;
     let bad = false;
-    if (this.#ahead && this.#ahead.sampler.nextResult() <= t) {
+    if (this.#ahead?.sampler.ready(t)) {
       this.#ahead.take(t);
       fresh = true;
     }
     let due = false;
-    while (this.#sampler.nextResult() <= t) {
+    while (this.#sampler.ready(t)) {
       if (this.#takeResult(t, drive)) due = true;
       else bad = true;
     }

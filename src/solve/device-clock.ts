@@ -5,6 +5,8 @@ import type { F, System } from './system.ts';
 
 /** Moments closer than this many units in the last place are one moment. */
 const SAME = 16 * Number.EPSILON;
+/** Moves of one device at one moment; more are a circle. */
+const MOST_AT_ONCE = 1000;
 
 /** Lets devices read and move as the time passes over their moments. */
 export class DeviceClock {
@@ -51,10 +53,12 @@ export class DeviceClock {
     for (const d of this.#devices) {
       while (d.nextRead() <= late) this.#read(d, t, x);
       for (let n = 0; d.nextMove() <= late; n++) {
-        if (n > 1000) throw new RangeError(`${d.name} does not come past ${t} s`);
+        if (n > MOST_AT_ONCE) throw new RangeError(`${d.name} does not come past ${t} s`);
+        // A moment that rounding puts a hair later is still that moment to the device.
+        const at = Math.max(t, d.nextMove());
         this.#look(t, x);
         this.moves += 1;
-        d.move(t, this.#y, this.#w, this.#drive);
+        d.move(at, this.#y, this.#w, this.#drive);
         while (d.nextRead() <= late) this.#read(d, t, x);
       }
     }
@@ -81,7 +85,7 @@ export class DeviceClock {
 
   #read(d: Device, t: number, x: F): void {
     this.#look(t, x);
-    d.read(t, this.#y, this.#w, this.#drive);
+    d.read(Math.max(t, d.nextRead()), this.#y, this.#w, this.#drive);
   }
 
   #look(t: number, x: F): void {

@@ -18,6 +18,7 @@ export interface LoopReport extends LoopHistory {
 export function loopReports(c: ControlledPlant, devices: readonly SampledLoop[], run: Run): LoopReport[] {
   return c.loops.map(({ loop }) => {
     const d = devices.find((q) => q.name === loop.name) as SampledLoop;
+    d.finish(run.time);
     return {
       ...d.history,
       name: loop.name,
