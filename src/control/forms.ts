@@ -3,7 +3,11 @@ import type { Settings } from './rules.ts';
 /** The same settings in the three forms in use; s and output per unit of measurement. */
 export interface Forms {
   readonly standard: Settings;
-  readonly parallel: { readonly proportional: number; readonly integral: number; readonly derivative: number };
+  readonly parallel: {
+    readonly proportional: number;
+    readonly integral: number;
+    readonly derivative: number;
+  };
   /** Null where there is no series form: Ti < 4·Td. */
   readonly series: Settings | null;
   readonly repeatsPerMinute: number;
@@ -22,7 +26,11 @@ export function forms(s: Settings, spans: { measurement: number; output: number 
   const percent = spans && (s.gain * spans.measurement) / spans.output;
   return {
     standard: s,
-    parallel: { proportional: s.gain, integral: s.gain / s.integralTime, derivative: s.gain * s.derivativeTime },
+    parallel: {
+      proportional: s.gain,
+      integral: s.gain / s.integralTime,
+      derivative: s.gain * s.derivativeTime,
+    },
     series:
       square < 0
         ? null

@@ -52,7 +52,10 @@ export function leastSquares(test: StepTest): Fitted | null {
  * Krishnaswamy, Can. J. Chem. Eng. 56, 257 (1978): T = 0.67(t85.3 − t35.3), θ = 1.3·t35.3 − 0.29·t85.3. The final value is
  * the mean of the last twentieth of the test. Null where the test does not pass the points.
  */
-export function twoPoint({ step, times, values }: StepTest, by: 'smith' | 'sundaresan-krishnaswamy'): Fopdt | null {
+export function twoPoint(
+  { step, times, values }: StepTest,
+  by: 'smith' | 'sundaresan-krishnaswamy',
+): Fopdt | null {
   const tail = values.slice(-Math.max(1, Math.floor(values.length / 20)));
   const final = tail.reduce((s, v) => s + v, 0) / tail.length;
   const reach = (share: number): number => {
@@ -62,7 +65,9 @@ export function twoPoint({ step, times, values }: StepTest, by: 'smith' | 'sunda
     return times[k - 1] + part * (times[k] - times[k - 1]);
   };
   const made = (lag: number, delay: number): Fopdt | null =>
-    Number.isFinite(lag) && lag > 0 && step !== 0 ? { gain: final / step, lag, delay: Math.max(0, delay) } : null;
+    Number.isFinite(lag) && lag > 0 && step !== 0
+      ? { gain: final / step, lag, delay: Math.max(0, delay) }
+      : null;
   if (by === 'smith') {
     const lag = 1.5 * (reach(-Math.expm1(-1)) - reach(-Math.expm1(-1 / 3)));
     return made(lag, reach(-Math.expm1(-1)) - lag);
@@ -77,15 +82,33 @@ export const fopdtResponse = ({ gain, lag, delay }: Fopdt, omega: number): Compl
   return { re: g.re * d.re - g.im * d.im, im: g.re * d.im + g.im * d.re };
 };
 
+/** Factors by which a fit may leave its first guess: over part of the frequencies gain and lag can run away together. */
+const MOST_GAIN = 3;
+const MOST_LAG = 20;
+
 /** FOPDT fitted to a frequency response by least squares of the relative error; `start` is a first guess. */
 export function fitResponse(response: readonly { omega: number; g: Complex }[], start: Fopdt): Fitted {
   const sign = Math.sign(start.gain) || 1;
-  const model = ([k, T, d]: readonly number[]): Fopdt => ({ gain: sign * Math.exp(k), lag: Math.exp(T), delay: d * d });
+  const model = ([k, T, d]: readonly number[]): Fopdt => ({
+    gain: sign * Math.exp(k),
+    lag: Math.exp(T),
+    delay: d * d,
+  });
   const error = (x: readonly number[]): number =>
     Math.sqrt(
-      response.reduce((s, { omega, g }) => s + (abs(minus(fopdtResponse(model(x), omega), g)) / abs(g)) ** 2, 0) /
-        response.length,
+      response.reduce(
+        (s, { omega, g }) => s + (abs(minus(fopdtResponse(model(x), omega), g)) / abs(g)) ** 2,
+        0,
+      ) / response.length,
     );
-  const x = simplex(error, [Math.log(Math.abs(start.gain)), Math.log(start.lag), Math.sqrt(Math.max(1, start.delay))], 0.3);
+  const beyond = (x: number, from: number, most: number): number =>
+    Math.max(0, Math.abs(x - Math.log(from)) - Math.log(most));
+  const judged = (x: readonly number[]): number =>
+    error(x) + beyond(x[0], Math.abs(start.gain), MOST_GAIN) + beyond(x[1], start.lag, MOST_LAG);
+  const x = simplex(
+    judged,
+    [Math.log(Math.abs(start.gain)), Math.log(start.lag), Math.sqrt(Math.max(1, start.delay))],
+    0.3,
+  );
   return { ...model(x), error: error(x) };
 }

@@ -79,7 +79,11 @@ export function margins(L: OpenLoop, bottom: number, top: number, looks = LOOKS)
     crossover180 = top;
   }
   const k = grid.indexOf(sensitivityAt);
-  const peak = climb((q) => 1 / abs(plus(ONE, L(q))), grid[Math.max(0, k - 1)], grid[Math.min(looks - 1, k + 1)]);
+  const peak = climb(
+    (q) => 1 / abs(plus(ONE, L(q))),
+    grid[Math.max(0, k - 1)],
+    grid[Math.min(looks - 1, k + 1)],
+  );
   if (peak.value > sensitivity) {
     sensitivity = peak.value;
     sensitivityAt = peak.at;

@@ -26,7 +26,12 @@ function project(p: LinearPlant): LinearPlant {
     let block: Dense | null = p.b;
     for (let k = 0; k < DEPTH && block; k++) {
       block = solve(shifted, block);
-      if (block) for (let j = 0; j < block.m; j++) enter(basis, Float64Array.from({ length: n }, (_, i) => (block as Dense).a[i * (block as Dense).m + j]));
+      if (block)
+        for (let j = 0; j < block.m; j++)
+          enter(
+            basis,
+            Float64Array.from({ length: n }, (_, i) => (block as Dense).a[i * (block as Dense).m + j]),
+          );
     }
   }
   const m = basis.length;

@@ -54,7 +54,8 @@ export const zieglerNicholsPid = (ultimateGain: number, period: number): Setting
   derivativeTime: period / 8,
 });
 /** The same from the reaction curve. */
-export const zieglerNicholsCurve = ({ gain: k, lag: T, delay: L }: Fopdt): Settings => pi((0.9 * T) / (k * L), 3.3 * L);
+export const zieglerNicholsCurve = ({ gain: k, lag: T, delay: L }: Fopdt): Settings =>
+  pi((0.9 * T) / (k * L), 3.3 * L);
 
 /**
  * G. H. Cohen and G. A. Coon, Trans. ASME 75, 827 (1953), PI. For reference only. The gain is the usual 0.9 + r/12; one

@@ -1,5 +1,14 @@
-import { minus, over as divided, plus, scale, times, turn } from '../math/complex.ts';
-import { type Dense, exponential, type Hessenberg, hessenberg, identity, multiply, resolvent, zeros } from '../math/dense.ts';
+import { over as divided, minus, plus, scale, times, turn } from '../math/complex.ts';
+import {
+  type Dense,
+  exponential,
+  type Hessenberg,
+  hessenberg,
+  identity,
+  multiply,
+  resolvent,
+  zeros,
+} from '../math/dense.ts';
 import type { Complex } from '../math/eigen.ts';
 import type { LinearPlant } from './linearise.ts';
 import { DERIVATIVE_FILTER, type PidSettings } from './spec.ts';
@@ -151,7 +160,10 @@ export class OpenLoops {
       let c = plus({ re: 1, im: 0 }, divided({ re: h / s.integralTime, im: 0 }, difference));
       if (s.derivativeTime > 0) {
         const Tn = s.derivativeTime / DERIVATIVE_FILTER;
-        c = plus(c, divided(scale(difference, s.derivativeTime), plus(scale(difference, Tn), { re: h, im: 0 })));
+        c = plus(
+          c,
+          divided(scale(difference, s.derivativeTime), plus(scale(difference, Tn), { re: h, im: 0 })),
+        );
       }
       if (s.filter > 0) {
         const a = h / (s.filter + h);
@@ -161,4 +173,3 @@ export class OpenLoops {
     };
   }
 }
-

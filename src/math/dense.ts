@@ -210,7 +210,15 @@ function exchange(a: Float64Array, m: number, k: number): void {
 }
 
 /** Row k + 1 less f times row k, from column `from` on. */
-function take(re: Float64Array, im: Float64Array, m: number, k: number, from: number, fr: number, fi: number): void {
+function take(
+  re: Float64Array,
+  im: Float64Array,
+  m: number,
+  k: number,
+  from: number,
+  fr: number,
+  fi: number,
+): void {
   for (let j = from; j < m; j++) {
     const [p, q] = [k * m + j, (k + 1) * m + j];
     re[q] -= fr * re[p] - fi * im[p];

@@ -6,7 +6,11 @@ const CLOSE = 1e-9;
  * A minimum of f near `start` by the downhill simplex of J. A. Nelder and R. Mead, Comput. J. 7, 308 (1965); first steps
  * of `step` in each direction. A value that is no number counts as infinitely bad.
  */
-export function simplex(f: (x: readonly number[]) => number, start: readonly number[], step: number): number[] {
+export function simplex(
+  f: (x: readonly number[]) => number,
+  start: readonly number[],
+  step: number,
+): number[] {
   const worth = (x: number[]): { x: number[]; f: number } => {
     const v = f(x);
     return { x, f: Number.isNaN(v) ? Infinity : v };
@@ -18,7 +22,10 @@ export function simplex(f: (x: readonly number[]) => number, start: readonly num
     points.sort((a, b) => a.f - b.f);
     const [best, worst] = [points[0], points[n]];
     if (Math.abs(worst.f - best.f) <= CLOSE * (Math.abs(best.f) + 1e-300) && spread(points) < 1e-7) break;
-    const middle = Array.from({ length: n }, (_, k) => points.slice(0, n).reduce((s, p) => s + p.x[k], 0) / n);
+    const middle = Array.from(
+      { length: n },
+      (_, k) => points.slice(0, n).reduce((s, p) => s + p.x[k], 0) / n,
+    );
     const along = (t: number) => worth(middle.map((m, k) => m + t * (worst.x[k] - m)));
     const mirrored = along(-1);
     if (mirrored.f < best.f) {
@@ -37,4 +44,8 @@ export function simplex(f: (x: readonly number[]) => number, start: readonly num
 }
 
 const spread = (points: readonly { x: number[] }[]): number =>
-  Math.max(...points[0].x.map((_, k) => Math.max(...points.map((p) => p.x[k])) - Math.min(...points.map((p) => p.x[k]))));
+  Math.max(
+    ...points[0].x.map(
+      (_, k) => Math.max(...points.map((p) => p.x[k])) - Math.min(...points.map((p) => p.x[k])),
+    ),
+  );

@@ -2,6 +2,7 @@ import type { Plant } from '../plant/assemble.ts';
 import { streamFlows, thinMixers, trainFacts } from '../plant/facts.ts';
 import { endWords, settingLines } from './circuit-words.ts';
 import { clock, columns, figure, withUnit } from './figures.ts';
+import { loopLines } from './loop-words.ts';
 import { startWords } from './screen.ts';
 
 /** `check`: the plant as understood. */
@@ -17,6 +18,7 @@ export function checkScreen(plant: Plant): string[] {
   });
   // One change in words can move several quantities.
   lines.push(...new Set(upsets));
+  if (s.loops && s.loops.length > 0) lines.push('', 'Loops', ...s.loops.flatMap(loopLines));
   const thin = thinMixers(plant).map(
     (q) =>
       `  ${q.stage}: the continuous phase, ${q.continuity}, is ${figure(100 * q.share)} % of the mixer: beyond the usual limits it may invert`,

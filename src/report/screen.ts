@@ -5,6 +5,7 @@ import type { RunResult, SteadyResult } from '../study/result.ts';
 import type { TrainFigures } from '../study/train-figures.ts';
 import { shortCaution } from './cautions.ts';
 import { clock, columns, figure, shown, withUnit } from './figures.ts';
+import { reportLines, restLines } from './loop-words.ts';
 
 /** First lines of `run`: limits first, then what the outlets came to, then what may be trusted. */
 export function runScreen(r: RunResult): string[] {
@@ -15,6 +16,7 @@ export function runScreen(r: RunResult): string[] {
   for (const c of r.clamped)
     lines.push(`note   ${c.quantity} would fall below 0 after ${clock(c.time)}: held at 0`);
   for (const l of r.limits) lines.push(...limitLines(l));
+  lines.push(...reportLines(s.loops ?? [], r.loops));
   if (r.events.length > 0) lines.push('Events:');
   // Start-up has many events; those at the end tell how the plant stands.
   const told = (e: { time: number; message: string }): string => `  ${clock(e.time)}  ${e.message}`;
@@ -113,6 +115,7 @@ export function steadyScreen(r: SteadyResult): string[] {
     return i < 0 ? '-' : figure(r.outputs[i] * shown(outputs[i].unit).factor, 4);
   };
   const lines = [`STEADY STATE  ${s.title}`];
+  lines.push(...restLines(s.loops ?? [], r.loops));
   for (const f of r.figures) lines.push(...figureLines(f));
   for (const d of r.drifts)
     lines.push(

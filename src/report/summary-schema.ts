@@ -1,6 +1,8 @@
 import { commission } from './commission-schema.ts';
+import { loopsAtRestSchema, loopsOfRunSchema } from './loop-schema.ts';
 import { figures, head, list, number, object, orNull, plant, text, yes } from './schema-words.ts';
 import { SCHEMA } from './summary.ts';
+import { tune } from './tune-schema.ts';
 
 const trainFigures = object({
   train: text('name'),
@@ -101,6 +103,7 @@ const run = object({
   events: list(object({ time_s: number('when'), name: text('which'), message: text('in words') })),
   final: figures('every output at the end, key `path [unit]`'),
   figures: list(trainFigures),
+  loops: loopsOfRunSchema,
   plant,
   solver: object({
     integrator: text('method'),
@@ -117,6 +120,7 @@ const steady = object({
   ...head,
   values: figures('every output at steady state, key `path [unit]`'),
   figures: list(trainFigures),
+  loops: loopsAtRestSchema,
   drifts: list(
     object({
       tank: text('name'),
@@ -138,5 +142,5 @@ const steady = object({
 export const summarySchema = {
   $schema: 'https://json-schema.org/draft/2020-12/schema',
   title: 'Upsettle summary.json',
-  oneOf: [run, steady, commission],
+  oneOf: [run, steady, commission, tune],
 } as const;

@@ -1,9 +1,9 @@
 import { describe, expect, it } from 'vitest';
-import { over, scale, times, turn } from '../../src/math/complex.ts';
 import type { LinearPlant } from '../../src/control/linearise.ts';
 import { margins } from '../../src/control/margins.ts';
-import { OpenLoops, type Sampling, SampledPlant } from '../../src/control/sampled.ts';
+import { OpenLoops, SampledPlant, type Sampling } from '../../src/control/sampled.ts';
 import type { PidSettings } from '../../src/control/spec.ts';
+import { over, scale, times, turn } from '../../src/math/complex.ts';
 
 /** k/(1 + T·s) as a state. */
 const lag = (T: number, k = 1): LinearPlant => ({
@@ -21,7 +21,9 @@ const settings = (gain: number, integralTime: number): PidSettings => ({
   setPointWeight: 1,
 });
 const sampled = (T: number, s: Partial<Sampling>, gain: number, Ti: number) => {
-  const loops = new OpenLoops(new SampledPlant(lag(T), { every: 10, delay: 0, takes: 'grab', runs: 'scan', ...s }));
+  const loops = new OpenLoops(
+    new SampledPlant(lag(T), { every: 10, delay: 0, takes: 'grab', runs: 'scan', ...s }),
+  );
   return margins(loops.loop(settings(gain, Ti)), 1e-4, loops.top);
 };
 
@@ -79,7 +81,10 @@ describe('margins of a sampled loop, exact in z', () => {
     const plant = new SampledPlant(slow, { every: 10, delay: 0, takes: 'composite', runs: 'on each result' });
     const grab = new SampledPlant(slow, { every: 10, delay: 0, takes: 'grab', runs: 'on each result' });
     for (const w of [0.01, 0.1, 0.3]) {
-      const exact = scale(times(grab.response(w).held, { re: 1 + Math.cos(10 * w), im: -Math.sin(10 * w) }), 0.5);
+      const exact = scale(
+        times(grab.response(w).held, { re: 1 + Math.cos(10 * w), im: -Math.sin(10 * w) }),
+        0.5,
+      );
       expect(plant.response(w).held.re).toBeCloseTo(exact.re, 9);
       expect(plant.response(w).held.im).toBeCloseTo(exact.im, 9);
     }

@@ -1,9 +1,20 @@
 import { describe, expect, it } from 'vitest';
-import { over, turn, times, scale } from '../../src/math/complex.ts';
 import { forms } from '../../src/control/forms.ts';
 import { fitResponse, fopdtStep, leastSquares, twoPoint } from '../../src/control/identify.ts';
 import { margins } from '../../src/control/margins.ts';
-import { amigo, amigoPid, cohenCoon, type Fopdt, type Settings, simc, tyreusLuyben, zieglerNichols, zieglerNicholsCurve, zieglerNicholsPid } from '../../src/control/rules.ts';
+import {
+  amigo,
+  amigoPid,
+  cohenCoon,
+  type Fopdt,
+  type Settings,
+  simc,
+  tyreusLuyben,
+  zieglerNichols,
+  zieglerNicholsCurve,
+  zieglerNicholsPid,
+} from '../../src/control/rules.ts';
+import { over, scale, times, turn } from '../../src/math/complex.ts';
 
 const plant: Fopdt = { gain: 1, lag: 10, delay: 2 };
 /** Ku and Pu of that plant, from ω with atan(10 ω) + 2 ω = π. */
@@ -20,7 +31,8 @@ describe('rules on k = 1, T = 10, θ = 2', () => {
   it('AMIGO', () => expectPair(amigo(plant), 1.20556, 7.76522));
   it('AMIGO PID', () => expectPair(amigoPid(plant), 2.45, 5.86667, 0.9434));
   it('Ziegler and Nichols, ultimate', () => expectPair(zieglerNichols(Ku, Pu), 3.86474, 6.20127));
-  it('Ziegler and Nichols, ultimate, PID', () => expectPair(zieglerNicholsPid(Ku, Pu), 5.00142, 3.72076, 0.93019));
+  it('Ziegler and Nichols, ultimate, PID', () =>
+    expectPair(zieglerNicholsPid(Ku, Pu), 5.00142, 3.72076, 0.93019));
   it('Ziegler and Nichols, curve', () => expectPair(zieglerNicholsCurve(plant), 4.5, 6.6));
   it('Cohen and Coon', () => expectPair(cohenCoon(plant), 4.58333, 4.70769));
   it('Tyreus and Luyben', () => expectPair(tyreusLuyben(Ku, Pu), 2.657, 16.37134));
@@ -56,7 +68,11 @@ describe('Ms of those settings on their plant', () => {
 
 describe('identification', () => {
   const times_ = Array.from({ length: 200 }, (_, k) => 0.5 * k);
-  const test = { step: 0.05, times: times_, values: times_.map((t) => fopdtStep({ gain: -1.2, lag: 10, delay: 2 }, 0.05, t)) };
+  const test = {
+    step: 0.05,
+    times: times_,
+    values: times_.map((t) => fopdtStep({ gain: -1.2, lag: 10, delay: 2 }, 0.05, t)),
+  };
   it('least squares gives back the plant that made the test', () => {
     const f = leastSquares(test);
     expect(f?.gain).toBeCloseTo(-1.2, 6);
@@ -73,7 +89,10 @@ describe('identification', () => {
   });
   it('a frequency response likewise', () => {
     const omega = [0.01, 0.03, 0.1, 0.3];
-    const g = omega.map((w) => ({ omega: w, g: times(over({ re: -1.2, im: 0 }, { re: 1, im: 10 * w }), turn(-2 * w)) }));
+    const g = omega.map((w) => ({
+      omega: w,
+      g: times(over({ re: -1.2, im: 0 }, { re: 1, im: 10 * w }), turn(-2 * w)),
+    }));
     const f = fitResponse(g, { gain: -1, lag: 7, delay: 3 });
     expect(f.gain).toBeCloseTo(-1.2, 4);
     expect(f.lag).toBeCloseTo(10, 3);
@@ -85,7 +104,10 @@ describe('forms', () => {
   it('series and standard are the same controller', () => {
     // Kc(1 + 1/(τI s))(1 + τD s) with c = 1 + τD/τI: Kc' = Kc·c, Ti = τI·c, Td = τD/c.
     const c = 1 + 2 / 8;
-    const f = forms({ gain: 3 * c, integralTime: 8 * c, derivativeTime: 2 / c }, { measurement: 2, output: 0.8 });
+    const f = forms(
+      { gain: 3 * c, integralTime: 8 * c, derivativeTime: 2 / c },
+      { measurement: 2, output: 0.8 },
+    );
     expect(f.series?.gain).toBeCloseTo(3, 12);
     expect(f.series?.integralTime).toBeCloseTo(8, 12);
     expect(f.series?.derivativeTime).toBeCloseTo(2, 12);

@@ -1,7 +1,15 @@
 import type { Margins } from '../../control/margins.ts';
-import { abs } from '../../math/complex.ts';
-import { amigo, cohenCoon, type Fopdt, lambda, type Settings, simc, zieglerNichols } from '../../control/rules.ts';
+import {
+  amigo,
+  cohenCoon,
+  type Fopdt,
+  lambda,
+  type Settings,
+  simc,
+  zieglerNichols,
+} from '../../control/rules.ts';
 import type { LoopSpec, PidSettings } from '../../control/spec.ts';
+import { abs } from '../../math/complex.ts';
 import type { Point } from './point.ts';
 
 export interface Candidate {

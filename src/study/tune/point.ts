@@ -1,11 +1,17 @@
-import { abs, arg, times, turn } from '../../math/complex.ts';
-import type { Complex } from '../../math/eigen.ts';
 import { type Fitted, fitResponse } from '../../control/identify.ts';
-import { frequencyResponse, type LinearPlant, linearise, restGains, stepGains } from '../../control/linearise.ts';
+import {
+  frequencyResponse,
+  type LinearPlant,
+  linearise,
+  restGains,
+  stepGains,
+} from '../../control/linearise.ts';
 import { logSpace, type Margins, margins } from '../../control/margins.ts';
 import { reduced } from '../../control/reduce.ts';
 import { OpenLoops, SampledPlant } from '../../control/sampled.ts';
 import type { LoopSpec, PidSettings } from '../../control/spec.ts';
+import { abs, arg, times, turn } from '../../math/complex.ts';
+import type { Complex } from '../../math/eigen.ts';
 import type { Plant } from '../../plant/assemble.ts';
 import type { F } from '../../solve/system.ts';
 
@@ -28,7 +34,13 @@ const FIT_POINTS = 14;
 const BOTTOM = 2e-6;
 
 /** Linearisation at (x, w): input 0 is the loop's output, the others are `disturbances`; the output is what it measures. */
-export function pointAt(plant: Plant, spec: LoopSpec, x: F, w: F, disturbances: readonly number[] = []): Point {
+export function pointAt(
+  plant: Plant,
+  spec: LoopSpec,
+  x: F,
+  w: F,
+  disturbances: readonly number[] = [],
+): Point {
   const inputs = [spec.inputs.output, ...disturbances];
   const linear = reduced(linearise(plant.system, x, w, plant.parameters, inputs, [spec.measured]));
   const { every, delay, takes } = spec.analyser;
