@@ -46,6 +46,8 @@ export class SampledLoop implements Device {
   /** While it runs on a scan: how output and integral go on until the next event. */
   #segment: Segment | null = null;
   #now = 0;
+  /** The course that the input was last given. */
+  #given = { from: 0, value: 0, slope: 0 };
 
   /** `atRest`: the run starts from the steady state with this loop closed. */
   constructor(spec: LoopSpec, inner: SampledLoop | null = null, atRest = false) {
@@ -83,6 +85,7 @@ export class SampledLoop implements Device {
     this.#pid.begin(this.#pv);
     this.#ahead?.begin(t, y);
     this.#out.set(t, w[inputs.output]);
+    this.#given = { from: t, value: w[inputs.output], slope: 0 };
     drive(inputs.measurement, t, this.#pv, 0);
     if (setPoint.times.length > 0) {
       drive(inputs.setPoint, t, valueAt(setPoint, t), slopeOf(setPoint, t));
@@ -139,17 +142,21 @@ export class SampledLoop implements Device {
   }
 
   move(t: number, _y: F, w: F, drive: Drive): boolean {
-    const before = { value: this.#out.at(t), slope: this.#out.slopeAt(t) };
+    const before = this.#given.value + this.#given.slope * (t - this.#given.from);
     this.#account(t);
     this.#advance(t);
     this.#out.settle(t);
     const moved = this.#switch(t, w, drive);
     if (this.#auto) this.#automatic(t, w, drive);
     else if (this.#nextManual <= t) this.#byHand(t);
-    const { value, slope } = { value: this.#out.at(t), slope: this.#out.slopeAt(t) };
-    this.history.travel += Math.abs(value - before.value);
-    const changed = Math.abs(value - before.value) > SAME * Math.abs(value) || slope !== before.slope;
-    if (changed) drive(this.#s.inputs.output, t, value, slope);
+    const value = this.#out.at(t);
+    const slope = this.#out.slopeAt(t);
+    const changed = Math.abs(value - before) > SAME * Math.abs(value) || slope !== this.#given.slope;
+    if (changed) {
+      this.history.travel += Math.abs(value - before);
+      this.#given = { from: t, value, slope };
+      drive(this.#s.inputs.output, t, value, slope);
+    }
     return changed || moved;
   }
 
@@ -199,7 +206,6 @@ export class SampledLoop implements Device {
       drive(inputs.gate, t, on ? 1 : 0, 0);
       // Back in service it goes on from the flow as it is.
       if (on) this.#out.set(t, inputs.wild < 0 ? w[inputs.flow] : w[inputs.flow] / w[inputs.wild]);
-      if (on) drive(inputs.output, t, this.#out.at(t), 0);
     }
     for (; (modes[this.#nextMode]?.at ?? Infinity) <= t; this.#nextMode++) {
       const { auto } = modes[this.#nextMode];
@@ -296,7 +302,7 @@ export class SampledLoop implements Device {
 
   #account(t: number): void {
     const span = t - this.#now;
-    this.history.travel += Math.abs(this.#out.slopeAt(this.#now)) * span;
+    this.history.travel += Math.abs(this.#given.slope) * span;
     if (this.#auto) {
       this.history.automatic += span;
       if (this.#out.bound(this.#now)) this.history.atLimit += span;

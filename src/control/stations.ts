@@ -234,10 +234,15 @@ class Equations {
     pw: Pattern,
   ): void {
     for (const q of map.direct) {
-      const [out, values, p] = q.of === 'x' ? [outX, byX, px] : [outW, byW, pw];
-      if (out === null) continue;
-      if (q.slot < 0) q.slot = slotOf(p, q.row, q.column);
-      out[q.slot] += values[q.from];
+      if (q.of === 'x') {
+        if (outX === null) continue;
+        if (q.slot < 0) q.slot = slotOf(px, q.row, q.column);
+        outX[q.slot] += byX[q.from];
+      } else {
+        if (outW === null) continue;
+        if (q.slot < 0) q.slot = slotOf(pw, q.row, q.column);
+        outW[q.slot] += byW[q.from];
+      }
     }
     for (const q of map.through) {
       const { flowPlace } = this.#at[q.station];

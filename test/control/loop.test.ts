@@ -26,7 +26,9 @@ describe('PI on each result', () => {
       { ...plan, setPoint: { times: [0, 5, 5], values: [0, 0, 1] } },
       [10, 20, 30, 40],
     );
-    [0, 0.5, 0.75, 0.875].forEach((y, k) => expect(at[k][0]).toBeCloseTo(y, 6));
+    [0, 0.5, 0.75, 0.875].forEach((y, k) => {
+      expect(at[k][0]).toBeCloseTo(y, 6);
+    });
   });
 
   it('keeps the books: u(t) − u(0) = Kc[e(t) − e(0)] + (Kc/Ti)·Σ h·e, whatever the interval', () => {
@@ -110,7 +112,9 @@ describe('PI on each result', () => {
       { load: [{ input: 1, times: [0], values: [1] }] },
     );
     // The measurement is 1 from the start: filtered 1 − (T/(T + h))^k, and u = −that.
-    at.forEach((y, k) => expect(y[1]).toBeCloseTo(-(1 - (30 / 40) ** (k + 1)), 6));
+    at.forEach((y, k) => {
+      expect(y[1]).toBeCloseTo(-(1 - (30 / 40) ** (k + 1)), 6);
+    });
   });
 });
 
@@ -128,7 +132,9 @@ describe('PI on the held value', () => {
       { ...plan, setPoint: { times: [0, 9.9999999, 9.9999999], values: [0, 0, 1] } },
       [20, 30, 40, 50],
     );
-    at.forEach((y, k) => expect(y[0]).toBeCloseTo(1 - (1 - kappa) ** (k + 1), 5));
+    at.forEach((y, k) => {
+      expect(y[0]).toBeCloseTo(1 - (1 - kappa) ** (k + 1), 5);
+    });
   });
 
   it('with short intervals is the continuous loop: load and set-point peaks of 1/(60 s + 1) with Kc 2, Ti 30', () => {
@@ -180,11 +186,28 @@ describe('limits', () => {
       setPoint: { times: [0, 5, 5, 45, 45], values: [0, 0, 1, 1, 0] },
     });
     const { at, loop } = follow(firstOrder(0, 60), plan, [10, 20, 30, 50, 52, 54]);
-    [0, 0.1, 0.2, 0.4, 0.3, 0.2].forEach((u, k) => expect(at[k][1]).toBeCloseTo(u, 9));
+    [0, 0.1, 0.2, 0.4, 0.3, 0.2].forEach((u, k) => {
+      expect(at[k][1]).toBeCloseTo(u, 9);
+    });
     loop.finish(54);
     expect(loop.history.travel).toBeCloseTo(0.6, 9);
     expect(loop.history.slewing).toBeGreaterThan(40);
   });
+});
+
+it('a ramp of the slew ends at the limit, however long the next result is in coming', () => {
+  const plan = spec({
+    settings: { gain: 10, integralTime: 1e9 },
+    analyser: { every: 100, first: 10 },
+    move: { low: 0, high: 0.2, up: 0.01, down: 0.01 },
+    setPoint: { times: [0, 5, 5], values: [0, 0, 1] },
+  });
+  const { at, loop } = follow(firstOrder(0, 60), plan, [20, 29.9, 30.1, 60, 109, 400]);
+  [0.1, 0.199, 0.2, 0.2, 0.2, 0.2].forEach((u, k) => {
+    expect(at[k][1]).toBeCloseTo(u, 9);
+  });
+  loop.finish(400);
+  expect(loop.history.travel).toBeCloseTo(0.2, 9);
 });
 
 describe('a loop in a run', () => {
@@ -211,7 +234,9 @@ describe('a loop in a run', () => {
       times.map((t) => t + 30),
       { load: shifted },
     );
-    c.at.forEach((y, k) => expect(d.at[k][0]).toBeCloseTo(y[0], 9));
+    c.at.forEach((y, k) => {
+      expect(d.at[k][0]).toBeCloseTo(y[0], 9);
+    });
     expect(a.at[10][0]).not.toBe(b.at[10][0]);
   });
 
@@ -243,6 +268,8 @@ describe('a loop in a run', () => {
     const ramp = [{ input: 1, times: [0, 1000], values: [0, 1000] }];
     const still = spec({ auto: false, analyser: { every: 10, takes: 'composite' } });
     const { loop } = follow(firstOrder(0, 1e-6), still, [100], { load: ramp });
-    loop.history.results.forEach((r, k) => expect(r.value).toBeCloseTo(10 * k + 5, 4));
+    loop.history.results.forEach((r, k) => {
+      expect(r.value).toBeCloseTo(10 * k + 5, 4);
+    });
   });
 });

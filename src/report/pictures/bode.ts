@@ -2,7 +2,7 @@ import type { ChartConfiguration } from 'chart.js';
 import type { Tuned } from '../../study/tune/tune.ts';
 import { figure } from '../figures.ts';
 import type { Picture } from './picture.ts';
-import { captions, lineStyle, short } from './style.ts';
+import { captions, lineStyle, named, short } from './style.ts';
 
 /** Gain and phase of the open loops over frequency, with the margins of the best marked. */
 export const bode: Picture<Tuned> = { name: () => 'bode.png', config };
@@ -111,9 +111,11 @@ function config(r: Tuned): ChartConfiguration {
         },
       },
       plugins: {
-        ...captions(`${loop.name}: open loops over frequency`, [
-          `${r.best.name}: gain margin ${figure(margins.gain, 2)}, phase margin ${figure(margins.phase, 2)}°, spare delay ${figure(margins.delay / 60, 2)} min, sensitivity ${figure(margins.sensitivity)}`,
-        ]),
+        ...named(
+          captions(`${loop.name}: open loops over frequency`, [
+            `${r.best.name}: gain margin ${figure(margins.gain, 2)}, phase margin ${figure(margins.phase, 2)}°, spare delay ${figure(margins.delay / 60, 2)} min, sensitivity ${figure(margins.sensitivity)}`,
+          ]),
+        ),
         annotation: { annotations },
       } as NonNullable<ChartConfiguration['options']>['plugins'],
     },

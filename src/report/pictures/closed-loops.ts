@@ -5,7 +5,7 @@ import { figure, withUnit } from '../figures.ts';
 import { outputText } from '../loop-words.ts';
 import { type PanelLine, panelSheet } from './panels.ts';
 import type { Picture } from './picture.ts';
-import { short } from './style.ts';
+import { named, short } from './style.ts';
 
 /** Curves on one picture; more hide each other. */
 const MOST = 4;
@@ -77,10 +77,6 @@ function config(r: Tuned): ChartConfiguration {
       label: '',
     });
   }
-  const legend = sheet.options?.plugins?.legend?.labels;
-  if (legend?.generateLabels) {
-    const all = legend.generateLabels;
-    legend.generateLabels = (chart) => all(chart).filter((q) => q.text !== '');
-  }
+  named(sheet.options?.plugins ?? {});
   return sheet;
 }

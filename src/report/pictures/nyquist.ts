@@ -4,8 +4,8 @@ import { figure } from '../figures.ts';
 import type { Picture } from './picture.ts';
 import { captions, LIMIT, lineStyle, short } from './style.ts';
 
-/** Window of the complex plane: what matters lies about −1. */
-const WINDOW = { left: -2.6, right: 1, down: -1.45, up: 0.65 } as const;
+/** Window of the complex plane: what matters lies about −1; in the shape of the sheet, so that a circle is one. */
+const WINDOW = { left: -2.5, right: 1.25, down: -1.2, up: 0.6 } as const;
 
 /** Open loops in the complex plane, with the circle that they must stay outside of. */
 export const nyquist: Picture<Tuned> = { name: () => 'nyquist.png', config };
@@ -44,6 +44,7 @@ function config(r: Tuned): ChartConfiguration {
         x: {
           min: WINDOW.left,
           max: WINDOW.right,
+          ticks: { stepSize: 0.25 },
           title: {
             display: true,
             text: [
@@ -52,7 +53,12 @@ function config(r: Tuned): ChartConfiguration {
             ],
           },
         },
-        y: { min: WINDOW.down, max: WINDOW.up, title: { display: true, text: 'imaginary part of L [-]' } },
+        y: {
+          min: WINDOW.down,
+          max: WINDOW.up,
+          ticks: { stepSize: 0.2 },
+          title: { display: true, text: 'imaginary part of L [-]' },
+        },
       },
       plugins: {
         ...captions(`${loop.name}: open loops about the point -1`, [

@@ -23,7 +23,7 @@ function config(r: Tuned): ChartConfiguration {
   const panels = tests.map((t): Panel => {
     const base = r.atRest.measurement;
     return {
-      title: `${t.name}: ${loop.measure.of}`,
+      title: t.name === 'real' ? 'real plant' : `step ${t.name}`,
       unit: 'g/L',
       weight: 1,
       lines: [
@@ -38,7 +38,7 @@ function config(r: Tuned): ChartConfiguration {
     };
   });
   return panelSheet({
-    title: `${loop.name}: step tests and their fits`,
+    title: `${loop.name}: step tests of ${short(loop.measure.of, 40)} and their fits`,
     answer: tests.map((t) =>
       short(
         `${t.name}: ${gainText(loop, 1 / (t.fit?.gain ?? 1), true)}, lag ${minutes(t.fit?.lag ?? 0)}, delay ${minutes(t.fit?.delay ?? 0)}; off ${figure(100 * (t.fit?.error ?? 0), 2)} % of the largest deviation`,

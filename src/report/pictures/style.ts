@@ -82,3 +82,11 @@ export function legend(
 /** Fits a long text to a number of characters. */
 export const short = (text: string, most: number): string =>
   text.length <= most ? text : `${text.slice(0, most - 1)}…`;
+
+/** Leaves lines without a name out of a legend: they continue others in a further field. */
+export function named<T extends NonNullable<ChartOptions['plugins']>>(plugins: T): T {
+  const labels = plugins.legend?.labels;
+  const all = labels?.generateLabels;
+  if (labels && all) labels.generateLabels = (chart) => all(chart).filter((q) => q.text !== '');
+  return plugins;
+}

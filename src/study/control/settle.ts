@@ -29,7 +29,7 @@ export type SettleResult = ({ readonly found: true } & Settled) | (Steady & { re
 const LOOKS = 8;
 /** Loops that touch each other are settled in turn. */
 const SWEEPS = 40;
-const DIGITS = 1e-12;
+const DIGITS = 1e-11;
 /** A measurement this near to its set point, relative to it, is there. */
 const THERE = 1e-10;
 
@@ -142,7 +142,7 @@ function reachSetPoint(
   if (first.g === 0) return null;
   for (const end of first.g * sense > 0 ? [high, low] : [low, high]) {
     let from = first;
-    at(from.u);
+    if (w[output] !== first.u) at(first.u);
     for (let k = 1; k <= LOOKS; k++) {
       const u = first.u + ((end - first.u) * k) / LOOKS;
       if (u === from.u) break;

@@ -16,7 +16,7 @@ export interface BackOff {
   readonly flow: number;
 }
 
-const ROUNDS = 7;
+const ROUNDS = 6;
 const LEAST = 0.5;
 
 export function backOff(g: Ground, best: Candidate, noiseless: Ground): BackOff | null {
@@ -29,6 +29,7 @@ export function backOff(g: Ground, best: Candidate, noiseless: Ground): BackOff 
   const at = (keepAt: number): { worst: number; output: number; flow: number } | null => {
     const joined = {
       ...g.joined,
+      plant: { ...plant, barren: g.initial },
       loops: g.joined.loops.map((l, i) =>
         i === g.loop
           ? {

@@ -16,7 +16,7 @@ export interface Optimum extends Candidate {
 /** Moments of an upset within the analyser's interval at which it is tried. */
 const PHASES = [0, 0.2, 0.4, 0.6, 0.8];
 /** Settings on the bound that are tried on the nonlinear plant, the most promising first. */
-const TRIED = 5;
+const TRIED = 4;
 
 /**
  * Least IAE through the scenario's upsets, the worst of five sampling phases, with the exact sensitivity no more than

@@ -8,7 +8,7 @@ import { type LimitReport, LimitWatch } from '../limit-watch.ts';
 import { optionsOf } from '../run.ts';
 
 /** Relative tolerance of trials: their figures are read to three digits. */
-const TOLERANCE = 1e-5;
+const TOLERANCE = 1e-4;
 
 /** Where trials begin, and what happens to them. */
 export interface Ground {

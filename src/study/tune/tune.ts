@@ -159,6 +159,7 @@ export function tune(scenario: Scenario, settings: TuneSettings): TuneResult {
     sensitivity: settings.sensitivity,
     curves: candidates
       .filter((c) => [best.name, 'as set', 'SIMC'].includes(c.name))
+      .sort((a, b) => Number(b.name === best.name) - Number(a.name === best.name))
       .map((c) => curveOf(c, point, spec.settings)),
     circle: sensitivityCircle(settings.sensitivity),
   };
