@@ -40,7 +40,7 @@ function project(p: LinearPlant): LinearPlant {
     for (let i = 0; i < n; i++) v.a[i * m + j] = q[i];
   });
   const t: Dense = zeros(m, n);
-  basis.forEach((q, j) => t.a.set(q, j * n));
+  for (const [j, q] of basis.entries()) t.a.set(q, j * n);
   return { a: multiply(t, multiply(p.a, v)), b: multiply(t, p.b), c: multiply(p.c, v), d: p.d };
 }
 

@@ -21,6 +21,12 @@ export interface Station {
   readonly output: Named;
 }
 
+/**
+ * A flow on its way to its set point is judged by what it does to the vessels, which have tolerances of their own: its
+ * transient of seconds would cost most of the steps otherwise.
+ */
+const LENIENT = 30;
+
 /** A value that is only shown: an input that no balance reads, and an output of the same name. */
 export type Shown = Named;
 
@@ -44,8 +50,8 @@ export interface Joined {
 export function join(inner: System, stations: readonly Station[], shown: readonly Shown[]): Joined {
   const places: Place[] = [...inner.places];
   const inputs: Named[] = [...inner.inputs];
-  const place = (path: string, scale: number): number =>
-    places.push({ path, unit: 'm^3/s', kind: 'controller', scale, floor: null }) - 1;
+  const place = (path: string, flow: number): number =>
+    places.push({ path, unit: 'm^3/s', kind: 'controller', scale: LENIENT * flow, floor: null }) - 1;
   const at = stations.map((s) => ({
     output: inputs.push(s.output) - 1,
     gate: inputs.push({ path: `${s.name}.in service`, unit: '', scale: 1 }) - 1,

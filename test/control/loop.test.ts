@@ -146,9 +146,9 @@ describe('PI on the held value', () => {
     });
     const load = [{ input: 1, times: [0], values: [1] }];
     const { at } = follow(firstOrder(1, 60), plan, [10, 30, 32.78, 60, 120], { load });
-    [0.128751, 0.219334, 0.220325, 0.163513, 0.017906].forEach((y, k) =>
-      expect(Math.abs(at[k][0] - y)).toBeLessThan(2e-4),
-    );
+    [0.128751, 0.219334, 0.220325, 0.163513, 0.017906].forEach((y, k) => {
+      expect(Math.abs(at[k][0] - y)).toBeLessThan(2e-4);
+    });
   });
 });
 

@@ -58,6 +58,7 @@ export function settle(c: ControlledPlant): SettleResult {
   };
   const measured = (l: JoinedLoop): number => outputsOf(plant, state, w)[l.spec.measured];
   const binds = new Map<JoinedLoop, 'low' | 'high'>();
+  const led = new Map<JoinedLoop, Asked>();
   if (!rest() && failed) return failed;
   const active = c.loops.filter((l) => l.loop.controller.auto && l.inner < 0);
   const leaders = active.map((l) => leaderOf(c, l));
@@ -66,12 +67,28 @@ export function settle(c: ControlledPlant): SettleResult {
     for (const [k, l] of active.entries()) {
       const judge = leaders[k] ?? l;
       const gap = (): number => measured(judge) - judge.loop.keepAt;
-      if (sweep > 0 && (binds.has(l) || Math.abs(gap()) <= THERE * judge.loop.keepAt) && active.length === 1)
+      if (
+        sweep > 0 &&
+        (binds.has(l) || led.has(judge) || Math.abs(gap()) <= THERE * judge.loop.keepAt) &&
+        active.length === 1
+      )
         break;
-      if (sweep > 0 && !binds.has(l) && Math.abs(gap()) <= THERE * Math.max(judge.loop.keepAt, 1e-9))
+      if (
+        sweep > 0 &&
+        !binds.has(l) &&
+        !led.has(judge) &&
+        Math.abs(gap()) <= THERE * Math.max(judge.loop.keepAt, 1e-9)
+      )
         continue;
       const before = w[l.spec.inputs.output];
-      const bound = reachSetPoint(l, senseOf(l, judge), gap, w, rest);
+      let bound = reachSetPoint(l, senseOf(l, judge), gap, w, rest);
+      const asked = judge === l ? null : outOfReach(judge, measured(l));
+      if (asked && bound !== 'failed') {
+        // The outer loop may not ask for that: at its limit it leads the inner one there.
+        led.set(judge, asked);
+        const own = l.spec.settings.sense;
+        bound = reachSetPoint(l, own, () => measured(l) - asked.value, w, rest);
+      }
       if (bound === null) binds.delete(l);
       else if (bound !== 'failed') binds.set(l, bound);
       else if (failed) return failed;
@@ -103,10 +120,21 @@ export function settle(c: ControlledPlant): SettleResult {
       measurement: y[l.spec.measured],
       setPoint: w[l.spec.inputs.setPoint],
       output: w[l.spec.inputs.output],
-      binds: binds.get(l.inner >= 0 ? c.loops[l.inner] : l) ?? null,
+      binds: led.get(l)?.at ?? binds.get(l.inner >= 0 ? c.loops[l.inner] : l) ?? null,
       automatic: l.loop.controller.auto,
     })),
   };
+}
+
+/** A limit of an outer loop's output that the inner measurement lies beyond. */
+interface Asked {
+  readonly at: 'low' | 'high';
+  readonly value: number;
+}
+
+function outOfReach({ loop: { move } }: JoinedLoop, measurement: number): Asked | null {
+  if (measurement < move.low) return { at: 'low', value: move.low };
+  return measurement > move.high ? { at: 'high', value: move.high } : null;
 }
 
 /** The loop in automatic that moves the set point of this one. */
