@@ -70,6 +70,8 @@ export function answerLines(r: CommissionResult): string[] {
   const others = r.modes.slice(1, 3).filter((m) => m.time > 0 && slow && m.time > slow.time / 3);
   if (others.length > 0) lines.push(`Next: ${others.map(modeWords).join('; ')}.`);
   if (r.begun.length > 0) lines.push(`Begins with the start: ${r.begun.join('; ')}.`);
+  if ((r.plant.scenario.loops ?? []).length > 0)
+    lines.push('Loops are left in manual, at the flows as stated: a start-up is followed without them.');
   if (r.leftOut.length > 0)
     lines.push(
       `Left out, because it comes later: ${r.leftOut.slice(0, 3).join('; ')}${r.leftOut.length > 3 ? ' …' : ''}.`,

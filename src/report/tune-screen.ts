@@ -13,7 +13,13 @@ export function tuneScreen(r: TuneResult): string[] {
   if (r.kind === 'unreachable')
     return unreachable(loop, r.atRest.binds as string, r.atRest.measurement, r.atRest.output);
   const lines = [headLine(r, loop), useLine(r, loop), plantLine(r, loop), ...warnings(r, loop)];
-  lines.push('', ...table(r, loop), '');
+  const through = r.shades.map((q) => `${q.words}, ${clock(q.from)} to ${clock(q.to)}`);
+  lines.push(
+    '',
+    `Through ${through.length > 0 ? through.join('; ') : 'noise alone'}:`,
+    ...table(r, loop),
+    '',
+  );
   lines.push(...references(r, loop), ...answer(r, loop), ...schedule(r, loop), ...tests(r, loop));
   lines.push(shortCaution);
   return lines;

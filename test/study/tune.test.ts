@@ -1,4 +1,4 @@
-import Ajv from 'ajv/dist/2020.js';
+import { Ajv2020 } from 'ajv/dist/2020.js';
 import { beforeAll, describe, expect, it } from 'vitest';
 import { restGains } from '../../src/control/linearise.ts';
 import { tunePictures } from '../../src/report/pictures/tune.ts';
@@ -116,7 +116,7 @@ describe('tune on the copper circuit', () => {
   });
 
   it('writes what its schema says', () => {
-    const ajv = new Ajv({ strict: false });
+    const ajv = new Ajv2020({ strict: false });
     const valid = ajv.compile(summarySchema);
     const unreachable = tune(changed({}, { high: 0.75 }), usual);
     const ran = runSummary(run({ ...scenario('saltbush-loop'), horizon: 3600 }), origin);

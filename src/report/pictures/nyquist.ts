@@ -5,7 +5,7 @@ import type { Picture } from './picture.ts';
 import { captions, LIMIT, lineStyle, short } from './style.ts';
 
 /** Window of the complex plane: what matters lies about −1; in the shape of the sheet, so that a circle is one. */
-const WINDOW = { left: -2.5, right: 1.25, down: -1.2, up: 0.6 } as const;
+const WINDOW = { left: -2.5, right: 1.25, down: -1.1, up: 0.7 } as const;
 
 /** Open loops in the complex plane, with the circle that they must stay outside of. */
 export const nyquist: Picture<Tuned> = { name: () => 'nyquist.png', config };
@@ -44,7 +44,7 @@ function config(r: Tuned): ChartConfiguration {
         x: {
           min: WINDOW.left,
           max: WINDOW.right,
-          ticks: { stepSize: 0.25 },
+          ticks: { stepSize: 0.5 },
           title: {
             display: true,
             text: [

@@ -117,7 +117,7 @@ export function operatingMap(
 }
 
 /** The wild flow, or the largest feed of the phase that is measured. */
-function throughputOf({ plant, loops }: ControlledPlant, loop: number): number {
+export function throughputOf({ plant, loops }: ControlledPlant, loop: number): number {
   const { spec, loop: l } = loops[loop];
   if (spec.inputs.wild >= 0) return spec.inputs.wild;
   const { feeds } = plant.scenario;
@@ -131,7 +131,7 @@ function throughputOf({ plant, loops }: ControlledPlant, loop: number): number {
 }
 
 /** What is measured, in the feed that stands for the throughput. */
-function gradeOf({ plant, loops }: ControlledPlant, loop: number, throughput: number): number {
+export function gradeOf({ plant, loops }: ControlledPlant, loop: number, throughput: number): number {
   if (throughput < 0) return -1;
   const { of } = loops[loop].loop.measure;
   const feed = plant.system.inputs[throughput].path.replace(/\.flow$/, '');

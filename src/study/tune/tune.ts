@@ -2,7 +2,7 @@ import { type Forms, forms } from '../../control/forms.ts';
 import type { StepTest } from '../../control/identify.ts';
 import type { Fopdt } from '../../control/rules.ts';
 import { Refusal } from '../../scenario/refusal.ts';
-import type { Scenario } from '../../scenario/scenario.ts';
+import type { Change, Scenario } from '../../scenario/scenario.ts';
 import { makeSchedule } from '../../solve/schedule.ts';
 import { type ControlledPlant, controlled } from '../control/joined.ts';
 import type { LoopAtRest } from '../control/settle.ts';
@@ -12,7 +12,7 @@ import { type Ahead, ahead } from './ahead.ts';
 import { type BackOff, backOff } from './back-off.ts';
 import { byRules, type Candidate, modelFor } from './candidates.ts';
 import { type Curve, curveOf, sensitivityCircle } from './curves.ts';
-import { type OperatingMap, operatingMap } from './map.ts';
+import { gradeOf, type OperatingMap, operatingMap, throughputOf } from './map.ts';
 import { type Optimum, optimum } from './optimum.ts';
 import { type Point, pointAt } from './point.ts';
 import { type Proof, prove, set, stepTrial } from './prove.ts';
@@ -105,13 +105,14 @@ export function tune(scenario: Scenario, settings: TuneSettings): TuneResult {
   if (atRest.binds !== null) return { kind: 'unreachable', joined, loop, atRest };
   const { plant } = joined;
   const { spec } = joined.loops[loop];
-  const disturbed = [...new Set(s.upsets.map((u) => u.quantity))].filter(
+  const upsets = s.upsets.length > 0 ? s.upsets : assumedUpset(joined, loop);
+  const disturbed = [...new Set(upsets.map((u) => u.quantity))].filter(
     (q) => q !== plant.system.inputs[spec.inputs.wild]?.path,
   );
   const numbers = disturbed.map((q) => plant.system.inputs.findIndex((i) => i.path === q));
   const point = pointAt(plant, spec, settled.state, settled.inputs, numbers);
   checkAction(scenario, loop, point);
-  const { schedule, shades } = upsetSchedule(plant, s.upsets, s.horizon);
+  const { schedule, shades } = upsetSchedule(plant, upsets, s.horizon);
   const ground: Ground = {
     joined,
     loop,
@@ -126,8 +127,7 @@ export function tune(scenario: Scenario, settings: TuneSettings): TuneResult {
   const chosenBy = steepest([point.fit, ...tests.flatMap((t) => t.fit ?? [])]);
   const model = modelFor(chosenBy, spec);
   const rules = byRules(model, point, spec);
-  const upset = s.upsets.length > 0;
-  const own = optimum(upset ? ground : { ...calm }, model, point, spec, settings.sensitivity);
+  const own = optimum(ground, model, point, spec, settings.sensitivity);
   const candidates = [...rules, own];
   const proofs = prove(
     ground,
@@ -163,6 +163,24 @@ export function tune(scenario: Scenario, settings: TuneSettings): TuneResult {
       .map((c) => curveOf(c, point, spec.settings)),
     circle: sensitivityCircle(settings.sensitivity),
   };
+}
+
+/** Where the scenario has no upset, a feed that is a tenth richer from an eighth of the horizon on. */
+function assumedUpset(joined: ControlledPlant, loop: number): Change[] {
+  const { plant } = joined;
+  const grade = gradeOf(joined, loop, throughputOf(joined, loop));
+  if (grade < 0) return [];
+  const quantity = plant.system.inputs[grade].path;
+  return [
+    {
+      at: plant.scenario.horizon / 8,
+      quantity,
+      how: { by: 0.1, relative: true },
+      over: 0,
+      lasts: null,
+      words: `${quantity} +10 % (assumed: the scenario has no upset)`,
+    },
+  ];
 }
 
 /** Tuned on the larger gain: up and down steps and the exact response differ. */
