@@ -113,6 +113,7 @@ const found: Schema = object({
       realisable: yes('the ideal can be had'),
       analyser_assumed: yes('none is stated for it'),
       proof,
+      proof_with_lead_lag: proof,
     }),
   ),
   back_off: orNull(

@@ -2,6 +2,7 @@ import type { Loop } from '../scenario/loops.ts';
 import type { Candidate } from '../study/tune/candidates.ts';
 import type { MapPoint } from '../study/tune/map.ts';
 import type { Proof } from '../study/tune/prove.ts';
+import type { Tested } from '../study/tune/step-test.ts';
 import type { Tuned, TuneResult } from '../study/tune/tune.ts';
 import { shortCaution } from './cautions.ts';
 import { clock, columns, figure, withUnit } from './figures.ts';
@@ -165,7 +166,7 @@ function answer(r: Tuned, loop: Loop): string[] {
   const lines: string[] = [];
   const helps = ahead.map(
     (a) =>
-      `feedforward from ${a.from}, ${gainText(loop, a.gain)} (${a.realisable ? 'the ideal can be had' : `the ideal would have to act ${minutes(a.late)} sooner`}; ${a.assumed ? 'analyser assumed' : 'analyser as stated'} every ${minutes(a.analyser.every)}, ${minutes(a.analyser.delay)} late): worst ${figure(a.proof.worst)} g/L, ${figure(a.proof.beyond, 2)} kg above`,
+      `feedforward from ${a.from}, ${gainText(loop, a.gain)} (${a.realisable ? 'the ideal can be had' : `the ideal would have to act ${minutes(a.late)} sooner`}; ${a.assumed ? 'analyser assumed' : 'analyser as stated'} every ${minutes(a.analyser.every)}, ${minutes(a.analyser.delay)} late): worst ${figure(a.proof.worst)} g/L, ${figure(a.proof.beyond, 2)} kg above; with lead ${minutes(a.lead)} and lag ${minutes(a.lag)} ${figure(a.shaped.worst)} g/L`,
   );
   if (b) {
     const sigma = `noise moves the outlet by ${figure(b.sigma, 2)} g/L (one sigma)`;
@@ -225,8 +226,17 @@ function tests(r: Tuned, loop: Loop): string[] {
     t.fit === null
       ? []
       : [
-          `${t.name} ${gainText(loop, 1 / t.fit.gain, true)}, lag ${minutes(t.fit.lag)}, delay ${minutes(t.fit.delay)} (off ${figure(100 * t.fit.error, 2)} %)`,
+          `${t.name} ${gainText(loop, 1 / t.fit.gain, true)}, lag ${minutes(t.fit.lag)}, delay ${minutes(t.fit.delay)} (off ${figure(100 * t.fit.error, 2)} %${t.name === 'real' ? twoPoints(t) : ''})`,
         ],
   );
   return told.length === 0 ? [] : [`Step tests: ${told.join('; ')}. Tuned on the larger gain.`];
 }
+
+/** What two published two-point methods make of a test beside least squares. */
+const twoPoints = (t: Tested): string =>
+  [
+    { by: 'Smith', p: t.smith },
+    { by: 'Sundaresan and Krishnaswamy', p: t.sundaresanKrishnaswamy },
+  ]
+    .map(({ by, p }) => (p === null ? '' : `; ${by} ${minutes(p.lag)}, ${minutes(p.delay)}`))
+    .join('');

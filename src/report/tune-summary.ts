@@ -76,6 +76,7 @@ export function tuneSummary(r: TuneResult, origin: Origin): object {
         realisable: a.realisable,
         analyser_assumed: a.assumed,
         proof: proofOf(a.proof),
+        proof_with_lead_lag: proofOf(a.shaped),
       })),
       back_off: b && {
         limit_kg_per_m3: b.limit,

@@ -37,6 +37,12 @@ export class Ownership {
       });
     });
     for (const l of this.#loops) {
+      const other = this.#loops.find((o) => o !== l && o.move.quantity === l.move.over);
+      if (other)
+        this.#problems.push({
+          path: ['loops', l.name, 'move'],
+          message: `the flow ${show(l.move.over)} that the ratio is over is itself moved by ${other.name}`,
+        });
       const inner = this.#loops.find((o) => l.move.kind === 'set point' && o.name === l.move.quantity);
       if (inner?.move.kind === 'set point')
         this.#problems.push({

@@ -9,7 +9,7 @@ import { tuneSummary } from '../../src/report/tune-summary.ts';
 import { Refusal } from '../../src/scenario/refusal.ts';
 import { steadyState } from '../../src/solve/steady.ts';
 import { run } from '../../src/study/run.ts';
-import { type Tuned, tune } from '../../src/study/tune/tune.ts';
+import { checkAction, type Tuned, tune } from '../../src/study/tune/tune.ts';
 import { scenario } from '../support/plants.ts';
 
 const usual = { sensitivity: 1.6, range: 0.3 };
@@ -159,6 +159,13 @@ describe('tune refuses', () => {
     expect(() => tune(changed({ action: 'reverse' }), usual)).toThrow(
       /controller\.action: wrong action: the gain of the plant is -0\.508/,
     );
+  });
+  it('a gain that changes its sign between one hour and rest, and prints both', () => {
+    const point = { restGain: 0.2, hourGain: -0.4 };
+    expect(() => checkAction(scenario('saltbush-loop'), 0, point)).toThrow(
+      /one hour after a step the gain is -0\.400, at rest \+0\.200/,
+    );
+    expect(() => checkAction(scenario('saltbush-loop'), 0, { restGain: null, hourGain: -0.4 })).not.toThrow();
   });
   it('where there is no loop, or none of that name', () => {
     expect(() => tune(scenario('saltbush-copper'), usual)).toThrow(/no loop to tune/);

@@ -115,6 +115,7 @@ function isAwake(l: Loop, s: Scenario): boolean {
     l.controller.auto ||
     l.modes.length > 0 ||
     l.output.length > 0 ||
+    l.outOfService.length > 0 ||
     (l.move.over !== null && s.upsets.some((u) => u.quantity === l.move.over)) ||
     (s.loops ?? []).some((o) => o.move.kind === 'set point' && o.move.quantity === l.name)
   );

@@ -22,7 +22,9 @@ export interface Ahead {
   readonly realisable: boolean;
   readonly analyser: AnalyserSpec;
   readonly assumed: boolean;
+  /** With the static gain alone, and with the lead-lag. */
   readonly proof: Proof;
+  readonly shaped: Proof;
 }
 
 /** Where no analyser is stated for it: one every half hour, ten minutes late, without noise. */
@@ -72,8 +74,15 @@ export function ahead(g: Ground, point: Point, number: number, path: string, bes
     lag: 0,
     form: 'add',
   };
-  const run = trial(g, (s) => ({ ...set(best)(s), feedforward: made }));
-  const manual = trial(g, set(null));
+  const base = volumeMoved(trial(g, set(null)).trace);
+  const proved = (name: string, feedforward: FeedforwardSpec): Proof =>
+    proof(
+      name,
+      best,
+      trial(g, (s) => ({ ...set(best)(s), feedforward })),
+      base,
+      null,
+    );
   return {
     from: path,
     gain,
@@ -83,6 +92,7 @@ export function ahead(g: Ground, point: Point, number: number, path: string, bes
     realisable: late <= 0,
     analyser,
     assumed: stated === null,
-    proof: proof(`${best.name} + feedforward`, best, run, volumeMoved(manual.trace), null),
+    proof: proved(`${best.name} + static feedforward`, made),
+    shaped: proved(`${best.name} + lead-lag feedforward`, { ...made, lead, lag }),
   };
 }

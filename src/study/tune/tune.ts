@@ -194,8 +194,13 @@ function chosen(proofs: readonly Proof[], most: number): Proof & { candidate: Ca
   return (robust.length > 0 ? robust : able)[0];
 }
 
-/** An action that drives the measurement the wrong way, or a plant that answers one way first and another in the end. */
-function checkAction(s: Scenario, loop: number, point: Point): void {
+/**
+ * Refuses an action that drives the measurement the wrong way, and a plant that answers one way first and another in the
+ * end.
+ *
+ * @throws Refusal
+ */
+export function checkAction(s: Scenario, loop: number, point: Pick<Point, 'restGain' | 'hourGain'>): void {
   const l = (s.loops ?? [])[loop];
   const { restGain, hourGain } = point;
   const say = (g: number): string => `${g > 0 ? '+' : ''}${g.toPrecision(3)}`;
