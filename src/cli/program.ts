@@ -134,6 +134,30 @@ export async function main(argv: readonly string[]): Promise<number> {
       const { rehearse } = await import('./verbs/rehearse.ts');
       code = await rehearse(file, o, quiet(o));
     });
+  verb(
+    'tune',
+    'settings for a control loop, with margins, proved on the plant',
+    'upsettle tune scenarios/saltbush-loop.yaml',
+  )
+    .option('--out <dir>', 'folder for the results (default: out/<scenario>/tune)')
+    .option('--no-pictures', 'write no PNG pictures')
+    .addOption(scale())
+    .option('--loop <name>', 'the loop to tune (default: the first one)')
+    .addOption(
+      new Option('--ms <number>', 'largest sensitivity of the own optimum')
+        .argParser(within(1.1, 3))
+        .default(1.6),
+    )
+    .addOption(
+      new Option('--range <number>', 'half the width of the operating map, as a share')
+        .argParser(within(0.01, 0.9))
+        .default(0.3),
+    )
+    .option('--test <file>', 'a step test on the real plant (CSV: time, output, measurement)')
+    .action(async (file: string, o) => {
+      const { tune } = await import('./verbs/tune.ts');
+      code = await tune(file, o, quiet(o));
+    });
   if (argv.length <= 2) {
     process.stdout.write(greeting());
     return exits.done;
@@ -157,6 +181,14 @@ function tolerance(text: string): number {
   throw new InvalidArgumentError('Expected a number from 1e-12 to 1e-2.');
 }
 
+const within =
+  (least: number, most: number) =>
+  (text: string): number => {
+    const value = Number(text);
+    if (text.trim() !== '' && value >= least && value <= most) return value;
+    throw new InvalidArgumentError(`Expected a number from ${least} to ${most}.`);
+  };
+
 const whole =
   (least: number, most: number) =>
   (text: string): number => {
@@ -179,6 +211,7 @@ const greeting =
   upsettle run scenarios/saltbush-copper.yaml      start-up and upsets, with pictures
   upsettle commission scenarios/saltbush-startup.yaml   when the start-up comes good
   upsettle rehearse scenarios/saltbush-rehearsal.yaml   an upset before it happens
+  upsettle tune scenarios/saltbush-loop.yaml       settings for its control loop
 
 upsettle --help lists all options.
 `;

@@ -3,6 +3,7 @@ import { idleTrains, streamFlows, thinMixers, trainFacts } from '../plant/facts.
 import { endWords, settingLines } from './circuit-words.ts';
 import { commissioningLines } from './commissioning-lines.ts';
 import { clock, columns, figure, withUnit } from './figures.ts';
+import { loopLines } from './loop-words.ts';
 import { startWords } from './screen.ts';
 
 /** `check`: the plant as understood. */
@@ -18,6 +19,7 @@ export function checkScreen(plant: Plant): string[] {
   });
   // One change in words can move several quantities.
   lines.push(...new Set(upsets));
+  if (s.loops && s.loops.length > 0) lines.push('', 'Loops', ...s.loops.flatMap(loopLines));
   const thin = thinMixers(plant).map(
     (q) =>
       `  ${q.stage}: the continuous phase, ${q.continuity}, is ${figure(100 * q.share)} % of the mixer: beyond the usual limits it may invert`,

@@ -71,6 +71,8 @@ export function answerLines(r: CommissionResult): string[] {
   const next = [...new Set(others.map(modeWords))];
   if (next.length > 0) lines.push(`Next: ${next.join('; ')}.`);
   if (r.begun.length > 0) lines.push(`Begins with the start: ${r.begun.join('; ')}.`);
+  if ((r.plant.scenario.loops ?? []).length > 0)
+    lines.push('Loops are left in manual, at the flows as stated: a start-up is followed without them.');
   if (r.leftOut.length > 0)
     lines.push(
       `Left out, because it comes later: ${r.leftOut.slice(0, 3).join('; ')}${r.leftOut.length > 3 ? ' …' : ''}.`,

@@ -4,7 +4,7 @@ import type { Kept } from '../study/rehearse/scan.ts';
 import { shortCaution } from './cautions.ts';
 import { clock, columns, figure, shown, withUnit } from './figures.ts';
 import { clockTime, hourOf, limitWords, movesWords, since, sizeWords, upsetWords } from './rehearse-words.ts';
-import { startWords } from './screen.ts';
+import { manualLines, startWords } from './screen.ts';
 
 /** Answers, events and islands told on the screen; all of them stand in summary.json. */
 const MOST_ROWS = 10;
@@ -43,6 +43,7 @@ function warnings(r: RehearseResult): string[] {
     lines.push(
       `NOTE  the plant is not at rest as the upset begins: ${moving.path} still moves ${figure(100 * moving.perHour, 2)} %/h.`,
     );
+  lines.push(...manualLines(r.ground.scenario));
   if (!startStated && first > 0) lines.push('The run starts steady, since the scenario states no start.');
   for (const c of r.clamped)
     lines.push(`NOTE  ${c.quantity} would fall below 0 after ${clock(c.time)} of the run: held at 0.`);

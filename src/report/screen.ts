@@ -5,6 +5,7 @@ import type { RunResult, SteadyResult } from '../study/result.ts';
 import type { TrainFigures } from '../study/train-figures.ts';
 import { shortCaution } from './cautions.ts';
 import { clock, columns, figure, shown, withUnit } from './figures.ts';
+import { reportLines, restLines } from './loop-words.ts';
 
 /** First lines of `run`: limits first, then what the outlets came to, then what may be trusted. */
 export function runScreen(r: RunResult): string[] {
@@ -17,6 +18,7 @@ export function runScreen(r: RunResult): string[] {
       `note   ${c.quantity} would ${c.at > 0 ? 'exceed 100 %' : 'fall below 0'} after ${clock(c.time)}: held there`,
     );
   for (const l of r.limits) lines.push(...limitLines(l));
+  lines.push(...reportLines(s.loops ?? [], r.loops));
   if (r.events.length > 0) lines.push('Events:');
   // Start-up has many events; those at the end tell how the plant stands.
   const told = (e: { time: number; message: string }): string => `  ${clock(e.time)}  ${e.message}`;
@@ -42,6 +44,14 @@ export const startWords = ({ start, trains }: Plant['scenario']): string =>
       : trains.length === 0
         ? 'filled vessels'
         : start;
+
+/** Verbs that follow the plant alone say so. */
+export const manualLines = ({ loops = [] }: Plant['scenario']): string[] =>
+  loops.length === 0
+    ? []
+    : [
+        `In manual here, with its output as it stands: ${loops.map((l) => l.name).join(', ')}; 'run' runs ${loops.length > 1 ? 'them' : 'it'}.`,
+      ];
 
 const rejected = ({ work: w }: RunResult): number =>
   w.rejectedByError + w.rejectedByNegative + w.rejectedByNonFinite + w.rejectedBySingular;
@@ -118,6 +128,7 @@ export function steadyScreen(r: SteadyResult): string[] {
     return i < 0 ? '-' : figure(r.outputs[i] * shown(outputs[i].unit).factor, 4);
   };
   const lines = [`STEADY STATE  ${s.title}`];
+  lines.push(...restLines(s.loops ?? [], r.loops));
   for (const f of r.figures) lines.push(...figureLines(f));
   for (const q of r.usedUp.slice(0, 4))
     lines.push(

@@ -30,6 +30,7 @@ export function seriesColumns(plant: Plant): Column[] {
     ...passing,
     ...feeds,
     ...s.trains.map((t) => t.name),
+    ...(s.loops ?? []).map((l) => l.name),
   ];
   return [...new Set(order.flatMap(own))].map((output) => {
     const { path, unit } = outputs[output];

@@ -1,7 +1,9 @@
 import { commission } from './commission-schema.ts';
+import { loopsAtRestSchema, loopsOfRunSchema } from './loop-schema.ts';
 import { rehearse } from './rehearse-schema.ts';
 import { figures, head, list, number, object, orNull, plant, text, yes } from './schema-words.ts';
 import { SCHEMA } from './summary.ts';
+import { tune } from './tune-schema.ts';
 
 const trainFigures = object({
   train: text('name'),
@@ -105,6 +107,7 @@ const run = object({
   events: list(object({ time_s: number('when'), name: text('which'), message: text('in words') })),
   final: figures('every output at the end, key `path [unit]`'),
   figures: list(trainFigures),
+  loops: loopsOfRunSchema,
   plant,
   solver: object({
     integrator: text('method'),
@@ -124,6 +127,7 @@ const steady = object({
   used_up: list(
     object({ stage: text('train.stage'), species: text('that is taken up more than there is of it') }),
   ),
+  loops: loopsAtRestSchema,
   drifts: list(
     object({
       tank: text('name'),
@@ -145,5 +149,5 @@ const steady = object({
 export const summarySchema = {
   $schema: 'https://json-schema.org/draft/2020-12/schema',
   title: 'Upsettle summary.json',
-  oneOf: [run, steady, commission, rehearse],
+  oneOf: [run, steady, commission, rehearse, tune],
 } as const;

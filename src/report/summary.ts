@@ -2,6 +2,7 @@ import { explain } from '../solve/outcome.ts';
 import type { RunResult, SteadyResult } from '../study/result.ts';
 import type { TrainFigures } from '../study/train-figures.ts';
 import { cautions } from './cautions.ts';
+import { loopsAtRest, loopsOfRun } from './loop-summary.ts';
 import { plantFacts } from './plant-facts.ts';
 
 /** Raised when a key changes its meaning or goes away. */
@@ -56,6 +57,7 @@ export function runSummary(r: RunResult, origin: Origin): object {
     events: r.events.map((e) => ({ time_s: e.time, name: e.name, message: e.message })),
     final: Object.fromEntries(outputs.map((o, i) => [`${o.path} [${si(o.unit)}]`, last[i]])),
     figures: r.figures.map(figuresOf),
+    loops: loopsOfRun(r.loops),
     plant: plantFacts(r.plant),
     solver: {
       integrator: r.integrator,
@@ -77,6 +79,7 @@ export function steadySummary(r: SteadyResult, origin: Origin): object {
     complete: true,
     values: Object.fromEntries(outputs.map((o, i) => [`${o.path} [${si(o.unit)}]`, r.outputs[i]])),
     figures: r.figures.map(figuresOf),
+    loops: loopsAtRest(r.loops),
     drifts: r.drifts.map((d) => ({ tank: d.tank, gain_m3_per_s: d.rate, until_full_or_empty_s: d.until })),
     used_up: r.usedUp.map((q) => ({ stage: q.stage, species: q.species })),
     closure: { steady_boundary: r.imbalance },

@@ -9,6 +9,7 @@ import { checkNeeds } from './needs.ts';
 import type { Outline } from './outline.ts';
 import { noProperties, plainTank, plainTrain } from './plain.ts';
 import { readCommissioning } from './read-commissioning.ts';
+import { withLoops } from './read-loops.ts';
 import { readRehearsing } from './read-rehearsing.ts';
 import type { Problem } from './refusal.ts';
 import { Releases } from './releases.ts';
@@ -87,10 +88,11 @@ export function build(raw: RawScenario, outline: Outline, folder: string, proble
   checkNeeds(scenario, problems);
   checkSize(scenario, problems);
   const around = { outline, basis, folder, feeds: known, contents };
+  const made = withLoops(raw, scenario, around, problems);
   return {
-    ...scenario,
-    commissioning: readCommissioning(raw, scenario, around, problems),
-    rehearsing: readRehearsing(raw, scenario, around, problems),
+    ...made,
+    commissioning: readCommissioning(raw, made, around, problems),
+    rehearsing: readRehearsing(raw, made, around, problems),
   };
 }
 

@@ -62,6 +62,7 @@ const states = (path: string): Partial<Record<Target['what'], States>> => ({
   mixer: { stopped: { [path]: 0 }, running: { [path]: 1 } },
   pump: { tripped: { [path]: 0 }, running: { [path]: 1 } },
   continuity: { aqueous: { [path]: 0 }, organic: { [path]: 1 } },
+  mode: { manual: { [path]: 0 }, auto: { [path]: 1 } },
   stage: {
     bypassed: { [`${path}.aqueous bypass`]: 1, [`${path}.organic bypass`]: 1 },
     'aqueous bypassed': { [`${path}.aqueous bypass`]: 1 },
@@ -76,6 +77,7 @@ const called: Partial<Record<Target['what'], string>> = {
   pump: 'a pump is set to',
   continuity: 'the continuous phase is set to',
   stage: 'a stage is set to',
+  mode: 'a loop is put in',
 };
 
 class ChangeReader {
@@ -219,6 +221,7 @@ class ChangeReader {
     const { what } = this.#target;
     if (what === 'flow') return ['a flow by volume', 'a flow by mass'];
     if (what === 'speed') return ['a rate'];
+    if (what === 'output') return ['a plain number'];
     if (what === 'share') return ['a percentage'];
     if (what === 'removal') return this.#isShare() ? ['a percentage'] : ['a flow by mass'];
     return what === 'weir' ? ['a length'] : contentKinds;
@@ -234,7 +237,8 @@ class ChangeReader {
   #inside(q: Quantity, ...at: string[]): number {
     const { basis, path, contents } = this.#s;
     const { phase, component, what } = this.#target;
-    if (what === 'speed' || what === 'weir' || what === 'share' || what === 'removal') return q.value;
+    if (what === 'speed' || what === 'weir' || what === 'share' || what === 'removal' || what === 'output')
+      return q.value;
     const beside = contents.get(this.#raw.change.slice(0, this.#raw.change.lastIndexOf('.'))) ?? [];
     if (component === undefined)
       return carrierFlow(q, phase, beside, basis, [...path, ...at], this.#problems);

@@ -1,3 +1,4 @@
+import { loopTargets } from './loop-targets.ts';
 import { phases } from './network.ts';
 import {
   isObject,
@@ -25,6 +26,8 @@ export interface Target {
     | 'share'
     | 'purity'
     | 'removal'
+    | 'mode'
+    | 'output'
     | 'feed';
   readonly phase: Phase;
   readonly component?: string;
@@ -198,6 +201,7 @@ export function outline(raw: unknown): Outline {
       for (const [path, what] of stageTargets(`${t.name}.${j}`))
         changeable.set(path, { what, phase: 'aqueous' });
   }
+  for (const [path, target] of loopTargets(top.loops, limitable)) changeable.set(path, target);
   const stageKeys = entries(top.trains)
     .flatMap(([, t]) => Object.keys(t))
     .filter((k) => STAGE.test(k));

@@ -1,4 +1,5 @@
 import type { Commissioning } from './commissioning.ts';
+import type { Loop } from './loops.ts';
 import type { DropSizeName } from './plain.ts';
 import type { Rehearsing } from './rehearsing.ts';
 
@@ -303,4 +304,6 @@ export interface Scenario {
   readonly commissioning?: Commissioning;
   /** What is stated for the rehearsal of upsets. */
   readonly rehearsing?: Rehearsing;
+  /** Control loops; none where nothing is stated. */
+  readonly loops?: readonly Loop[];
 }

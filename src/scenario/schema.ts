@@ -22,6 +22,7 @@ import {
 } from './fields.ts';
 import { followSchema } from './follow.ts';
 import { FUNCTIONS } from './formula.ts';
+import { loopsSchema } from './loops.ts';
 import { isBuiltIn } from './names.ts';
 import { dropSizeNames } from './plain.ts';
 import { rehearsingKeys } from './rehearsing-schema.ts';
@@ -219,6 +220,7 @@ const upset = object({
   follow: followSchema.optional(),
   over: figure(['a time'], notNegative).optional(),
   for: duration.optional(),
+  put: text().optional().describe("'<loop> in manual', where a loop moves the quantity"),
 });
 
 const limit = object({
@@ -329,6 +331,7 @@ export function scenarioSchema({ solutes, species, stageKeys }: Keys) {
     limits: list(limit, 'a list of limits').optional(),
     ...commissioningKeys(upset, content, start),
     ...rehearsingKeys(upset),
+    loops: loopsSchema,
   });
 }
 

@@ -1,4 +1,6 @@
 import { crossing } from '../math/roots.ts';
+import type { Device } from './device.ts';
+import { DeviceClock } from './device-clock.ts';
 import { Inputs } from './inputs.ts';
 import type { Integrator, MakeIntegrator, Settings, Step } from './integrator.ts';
 import { Extrapolation } from './odex.ts';
@@ -43,6 +45,8 @@ export interface Run {
   readonly events: readonly Event[];
   readonly work: Work;
   readonly integrator: string;
+  /** Moments at which devices could move an input. */
+  readonly moves: number;
 }
 
 export interface Problem {
@@ -52,6 +56,8 @@ export interface Problem {
   readonly initial: F;
   /** Inputs that guards had set when the initial state was kept. */
   readonly modes?: ReadonlyMap<number, number>;
+  /** Sampled parts. They are used up by a run. */
+  readonly devices?: readonly Device[];
 }
 
 export interface Options extends Settings {
@@ -106,17 +112,20 @@ function* integration(
   const w = new Float64Array(system.inputs.length);
   const inputs = new Inputs(schedule, problem.modes);
   const guards = new GuardWatch(system, parameters, inputs);
+  const devices = new DeviceClock(problem.devices ?? [], system, parameters, inputs);
   const events: Event[] = [];
   const times = schedule.times;
   let t = times[0];
   let stop: Stop | null = null;
 
+  devices.begin(t, x);
   for (let segment = 0; segment + 1 < times.length && !stop; segment++) {
     inputs.segment = segment;
     const end = times[segment + 1];
     let paused = false;
     while (t < end && !stop) {
       if (!paused) {
+        devices.due(t, x);
         inputs.value(t, w);
         for (let g = guards.jumped(x, w); g >= 0 && !stop; g = guards.jumped(x, w)) {
           stop = happen(g, t);
@@ -127,10 +136,12 @@ function* integration(
         for (const o of watchers) o.begin?.(t, x, w);
       }
       let met = -1;
-      const outcome = integrator.advance({ from: t, to: end, inputs }, x, (step) => {
+      const to = devices.until(end);
+      const outcome = integrator.advance({ from: t, to, inputs }, x, (step) => {
         const hit = guards.crossed(step);
         met = hit.guard;
         const shown = met >= 0 ? shortened(step, hit.time) : step;
+        devices.step(shown);
         for (const o of watchers) o.step?.(shown, inputs);
         if (met >= 0) return hit.time;
         return step.pausable && due() ? step.t1 : Number.NaN;
@@ -143,7 +154,10 @@ function* integration(
         paused = met < 0;
         if (!paused) stop = happen(met, t);
         else if (yield) stop = { reason: 'interrupted', time: t };
-      } else t = end;
+      } else {
+        t = to;
+        paused = false;
+      }
       if (!stop && met >= 0) guards.settled(met);
     }
   }
@@ -156,6 +170,7 @@ function* integration(
     events,
     work: integrator.work,
     integrator: integrator.name,
+    moves: devices.moves,
   };
 
   function happen(guard: number, time: number): Stop | null {

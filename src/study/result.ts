@@ -3,6 +3,8 @@ import type { Plant } from '../plant/assemble.ts';
 import type { Event } from '../solve/integrate.ts';
 import type { Stop, Work } from '../solve/outcome.ts';
 import type { F } from '../solve/system.ts';
+import type { LoopReport } from './control/report.ts';
+import type { LoopAtRest } from './control/settle.ts';
 import type { Derived } from './derived.ts';
 import type { Diagram } from './diagram.ts';
 import type { LimitReport } from './limit-watch.ts';
@@ -45,6 +47,7 @@ export interface RunResult {
   readonly derived: readonly Derived[];
   /** At the end. */
   readonly figures: readonly TrainFigures[];
+  readonly loops: readonly LoopReport[];
 }
 
 export interface SteadyResult {
@@ -60,4 +63,5 @@ export interface SteadyResult {
   readonly usedUp: readonly { readonly stage: string; readonly species: string }[];
   /** Largest imbalance at the boundary less what drifting tanks gain, relative to what enters, by component. */
   readonly imbalance: number;
+  readonly loops: readonly LoopAtRest[];
 }

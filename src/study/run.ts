@@ -1,5 +1,5 @@
 import { closure } from '../plant/accounts.ts';
-import { assemble, type Plant } from '../plant/assemble.ts';
+import type { Plant } from '../plant/assemble.ts';
 import type { Scenario } from '../scenario/scenario.ts';
 import {
   integrate,
@@ -12,6 +12,9 @@ import {
 } from '../solve/integrate.ts';
 import { type Steady, steadyState } from '../solve/steady.ts';
 import type { F } from '../solve/system.ts';
+import { type ControlledPlant, controlled, devicesOf } from './control/joined.ts';
+import { loopReports } from './control/report.ts';
+import { type Settled, settle } from './control/settle.ts';
 import { derivedFigures } from './derived.ts';
 import { diagrams } from './diagram.ts';
 import { type LimitReport, LimitWatch } from './limit-watch.ts';
@@ -97,9 +100,10 @@ interface Prepared {
 
 function prepare(s: Scenario, settings: RunSettings): Prepared {
   const background = (s.rehearsing?.variations ?? []).map((v) => realised(v, s.horizon));
-  const plant = assemble({ ...s, upsets: [...s.upsets, ...background] });
+  const joined = controlled({ ...s, upsets: [...s.upsets, ...background] });
+  const { plant, initial, atRest } = begin(joined);
   const { schedule, courses, shades, clamped } = upsetSchedule(plant, s.upsets, s.horizon, background);
-  const initial = startState(plant);
+  const devices = devicesOf({ ...joined, plant }, atRest);
   const first = s.upsets.length > 0 ? Math.min(...s.upsets.map((u) => u.at)) : null;
   const before = first === null || first <= 0 ? null : Math.min(first, s.horizon);
   const recorder = new Recorder(plant, s.recordEvery, before === null ? [] : [before]);
@@ -111,7 +115,14 @@ function prepare(s: Scenario, settings: RunSettings): Prepared {
   if (progress) watchers.push({ step: (step) => progress(step.t1 / s.horizon) });
   watchers.push(...(settings.watchers ?? []));
   return {
-    problem: { system: plant.system, parameters: plant.parameters, schedule, initial, ...startModes(plant) },
+    problem: {
+      system: plant.system,
+      parameters: plant.parameters,
+      schedule,
+      initial,
+      devices,
+      ...startModes(plant),
+    },
     options: optionsOf(settings),
     watchers,
     finish(result) {
@@ -136,6 +147,7 @@ function prepare(s: Scenario, settings: RunSettings): Prepared {
         kept: keeper.kept,
         derived: derivedFigures(plant),
         figures: trainFigures(plant, recorder.records.rows[recorder.records.rows.length - 1]),
+        loops: loopReports(joined, devices, result),
       };
     },
   };
@@ -185,5 +197,30 @@ export function steadyOf(plant: Plant): Steady & { found: true } {
   if (steady.found) return steady;
   throw new Incomplete(
     `no steady state found: ${steady.reason}, least of all ${steady.place}; run the scenario from barren and look whether it settles`,
+  );
+}
+
+export interface Begun {
+  readonly plant: Plant;
+  readonly initial: F;
+  /** Whether the loops have come to rest before the run begins. */
+  readonly atRest: boolean;
+}
+
+/** The plant and its state at time zero; from a steady start the loops in automatic are at their set points. */
+export function begin(c: ControlledPlant): Begun {
+  if (c.loops.length === 0 || c.plant.scenario.start !== 'steady')
+    return { plant: c.plant, initial: startState(c.plant), atRest: false };
+  const { inputs, state } = rest(c);
+  return { plant: { ...c.plant, inputs }, initial: state, atRest: true };
+}
+
+/** @throws Incomplete naming the vessel that does not come to rest. */
+export function rest(c: ControlledPlant): Settled {
+  if (c.loops.length === 0) return { ...steadyOf(c.plant), inputs: c.plant.inputs, loops: [] };
+  const found = settle(c);
+  if (found.found) return found;
+  throw new Incomplete(
+    `no steady state found with the loops: ${found.reason}, least of all ${found.place}; look at the limits of their outputs`,
   );
 }

@@ -1,17 +1,19 @@
-import { assemble, type Plant } from '../plant/assemble.ts';
+import type { Plant } from '../plant/assemble.ts';
 import { NEARLY_EMPTY } from '../plant/book.ts';
 import type { Scenario } from '../scenario/scenario.ts';
 import type { F } from '../solve/system.ts';
+import { controlled } from './control/joined.ts';
 import { diagrams } from './diagram.ts';
 import { outputsAt } from './records.ts';
 import type { SteadyResult } from './result.ts';
-import { steadyOf } from './run.ts';
+import { rest } from './run.ts';
 import { trainFigures } from './train-figures.ts';
 
 /** Steady state for the inputs at time zero. @throws Incomplete where none is found. */
 export function steady(s: Scenario): SteadyResult {
-  const plant = assemble(s);
-  const found = steadyOf(plant);
+  const joined = controlled(s);
+  const found = rest(joined);
+  const plant = { ...joined.plant, inputs: found.inputs };
   const outputs = outputsAt(plant, found.state, plant.inputs);
   const change = new Float64Array(found.state.length);
   plant.system.rhs(found.state, plant.inputs, plant.parameters, change);
@@ -25,6 +27,7 @@ export function steady(s: Scenario): SteadyResult {
     diagrams: diagrams(plant, [{ label: 'steady state', time: 0, outputs }]),
     usedUp: usedUp(plant, outputs),
     imbalance: imbalance(plant, change),
+    loops: found.loops,
   };
 }
 

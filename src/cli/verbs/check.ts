@@ -1,5 +1,5 @@
-import { assemble } from '../../plant/assemble.ts';
 import { checkScreen } from '../../report/check-screen.ts';
+import { controlled } from '../../study/control/joined.ts';
 import { restoreState } from '../../study/saved.ts';
 import type { Console } from '../console.ts';
 import { exits } from '../exit.ts';
@@ -10,7 +10,7 @@ import { refusing } from '../refusing.ts';
 export function check(file: string, console: Console): number {
   const read = openScenario(file);
   const plant = refusing(read, () => {
-    const made = assemble(read.scenario);
+    const made = controlled(read.scenario).plant;
     if (typeof read.scenario.start === 'object') restoreState(made, read.scenario.start);
     return made;
   });

@@ -61,7 +61,7 @@ export const commissionPictures = (r: CommissionResult, scale = 1): AsyncGenerat
 export const rehearsePictures = (r: Rehearsed, scale = 1): AsyncGenerator<Drawn> =>
   all(rehearseTable, r, scale);
 
-async function* all<R>(table: readonly Picture<R>[], r: R, scale: number): AsyncGenerator<Drawn> {
+export async function* all<R>(table: readonly Picture<R>[], r: R, scale: number): AsyncGenerator<Drawn> {
   const used = new Map<string, number>();
   for (const p of table)
     for (const part of p.parts?.(r) ?? [undefined]) {

@@ -95,3 +95,11 @@ export function wrapped(text: string, most: number): string[] {
   }
   return lines;
 }
+
+/** Leaves lines without a name out of a legend: they continue others in a further field. */
+export function named<T extends NonNullable<ChartOptions['plugins']>>(plugins: T): T {
+  const labels = plugins.legend?.labels;
+  const all = labels?.generateLabels;
+  if (labels && all) labels.generateLabels = (chart) => all(chart).filter((q) => q.text !== '');
+  return plugins;
+}

@@ -1,0 +1,59 @@
+import { tuneScreen } from '../../report/tune-screen.ts';
+import { tuneSummary } from '../../report/tune-summary.ts';
+import { BadData } from '../../scenario/csv.ts';
+import { type ReadStepTest, readStepTest } from '../../scenario/step-test.ts';
+import { tune as chooseAndProve } from '../../study/tune/tune.ts';
+import type { Console } from '../console.ts';
+import { exits, Known } from '../exit.ts';
+import { makeFolder, openScenario, outputFolder, version, write, writeJson } from '../files.ts';
+import { refusing } from '../refusing.ts';
+
+export interface TuneOptions {
+  readonly out?: string;
+  readonly pictures: boolean;
+  readonly scale: string;
+  readonly loop?: string;
+  readonly ms: number;
+  readonly range: number;
+  readonly test?: string;
+}
+
+/** `upsettle tune FILE`: settings for a loop, with their margins, proved on the plant. */
+export async function tune(file: string, options: TuneOptions, console: Console): Promise<number> {
+  const began = performance.now();
+  const folder = outputFolder(file, 'tune', options.out);
+  const read = openScenario(file);
+  const result = refusing(read, () =>
+    chooseAndProve(read.scenario, {
+      ...(options.loop === undefined ? {} : { loop: options.loop }),
+      ...(options.test === undefined ? {} : { test: stepTest(options.test) }),
+      sensitivity: options.ms,
+      range: options.range,
+    }),
+  );
+  const seconds = (performance.now() - began) / 1e3;
+  makeFolder(folder);
+  writeJson(folder, 'summary.json', tuneSummary(result, { file, version: version(), seconds }));
+  const made = ['summary.json'];
+  console.say(tuneScreen(result));
+  if (options.pictures && result.kind === 'tuned') {
+    const { tunePictures } = await import('../../report/pictures/tune.ts');
+    for await (const picture of tunePictures(result, Number(options.scale))) {
+      console.progress(0, `drawing ${picture.name}`);
+      write(folder, picture.name, picture.png);
+      made.push(picture.name);
+    }
+    console.clear();
+  }
+  console.say(['', `Written to ${folder}: ${made.join(', ')}`]);
+  return exits.done;
+}
+
+function stepTest(file: string): ReadStepTest {
+  try {
+    return readStepTest(file);
+  } catch (e) {
+    if (e instanceof BadData) throw new Known(e.message, exits.refused);
+    throw e;
+  }
+}
