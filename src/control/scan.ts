@@ -12,6 +12,8 @@ export interface Segment {
 /** Looks ahead for the moment at which demand and output meet. */
 const LOOKS = 64;
 const BISECTIONS = 60;
+/** s: the shortest piece between two events of a scan. */
+const SHORTEST = 1e-3;
 /** While the set point ramps, the error is taken anew so many times between two samples. */
 const PARTS = 20;
 
@@ -42,7 +44,9 @@ export function follow(
   // Without a slew the output is where the demand is, as far as the limits let it.
   if (!Number.isFinite(up) && wish > now) now = out.clamp(wish);
   if (!Number.isFinite(down) && wish < now) now = out.clamp(wish);
-  const slack = 1e-12 * (high - low);
+  // Nearer than this they have met: what a slew does in a few of the shortest pieces, or it would chase the demand for ever.
+  const fastest = Math.max(...[up, down].map((v) => (Number.isFinite(v) ? v : 0)));
+  const slack = Math.max(1e-9 * (high - low), 5 * SHORTEST * fastest);
   const follows = Math.abs(wish - now) <= slack && slope <= up && -slope <= down;
   if (follows && !(wish >= high - slack && slope > 0) && !(wish <= low + slack && slope < 0)) {
     out.course(t, wish, slope);
@@ -85,7 +89,7 @@ function meeting(gap: (t: number) => number, from: number, to: number, side: 1 |
       if (side * gap(mid) >= 0) lo = mid;
       else hi = mid;
     }
-    return Math.max(hi, from + 1e-3);
+    return Math.max(hi, from + SHORTEST);
   }
   return to;
 }

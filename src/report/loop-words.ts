@@ -4,7 +4,7 @@ import type { LoopAtRest } from '../study/control/settle.ts';
 import { clock, figure, withUnit } from './figures.ts';
 
 /** `43 min`, or `4.5 min` where that says more. */
-export const minutes = (s: number): string => `${figure(s / 60, s < 600 ? 2 : s < 6000 ? 2 : 3)} min`;
+export const minutes = (s: number): string => (s < 1 ? '0 min' : `${figure(s / 60, s < 6000 ? 2 : 3)} min`);
 
 /** An output as people say it: a plain ratio, a flow, or a concentration. */
 export const outputText = (loop: Loop, u: number): string =>

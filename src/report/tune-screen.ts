@@ -76,7 +76,7 @@ function warnings(r: Tuned, loop: Loop): string[] {
     const ratio = Math.abs((along.most.gain as number) / (along.least.gain as number));
     if (ratio > 2)
       lines.push(
-        `WARNING gain falls from ${figure(Math.abs(along.most.gain as number))} (output ${outputText(loop, along.most.output)}) to ${figure(Math.abs(along.least.gain as number))} (output ${outputText(loop, along.least.output)}), ${figure(ratio, 2)} to 1.`,
+        `WARNING gain falls from ${gainText(loop, 1 / Math.abs(along.most.gain as number), true)} (output ${outputText(loop, along.most.output)}) to ${gainText(loop, 1 / Math.abs(along.least.gain as number), true)} (output ${outputText(loop, along.least.output)}), ${figure(ratio, 2)} to 1.`,
       );
   }
   const unstable = unsafe.filter((p) => p.margins && !p.margins.stable);
@@ -166,7 +166,7 @@ function answer(r: Tuned, loop: Loop): string[] {
   const lines: string[] = [];
   const helps = ahead.map(
     (a) =>
-      `feedforward from ${a.from}, ${gainText(loop, a.gain)} (${a.realisable ? 'the ideal can be had' : `the ideal would have to act ${minutes(a.late)} sooner`}; ${a.assumed ? 'analyser assumed' : 'analyser as stated'} every ${minutes(a.analyser.every)}, ${minutes(a.analyser.delay)} late): worst ${figure(a.proof.worst)} g/L, ${figure(a.proof.beyond, 2)} kg above; with lead ${minutes(a.lead)} and lag ${minutes(a.lag)} ${figure(a.shaped.worst)} g/L`,
+      `feedforward from ${a.from}, ${a.from.endsWith('.flow') ? flowGain(loop, a.gain) : gainText(loop, a.gain)} (${a.realisable ? 'the ideal can be had' : `the ideal would have to act ${minutes(a.late)} sooner`}; ${a.assumed ? 'analyser assumed' : 'analyser as stated'} every ${minutes(a.analyser.every)}, ${minutes(a.analyser.delay)} late): worst ${figure(a.proof.worst)} g/L, ${figure(a.proof.beyond, 2)} kg above; with lead ${minutes(a.lead)} and lag ${minutes(a.lag)} ${figure(a.shaped.worst)} g/L`,
   );
   if (b) {
     const sigma = `noise moves the outlet by ${figure(b.sigma, 2)} g/L (one sigma)`;
@@ -240,3 +240,9 @@ const twoPoints = (t: Tested): string =>
   ]
     .map(({ by, p }) => (p === null ? '' : `; ${by} ${minutes(p.lag)}, ${minutes(p.delay)}`))
     .join('');
+
+/** A feedforward gain on a flow: output per m³/h of it. */
+const flowGain = (loop: Loop, gain: number): string =>
+  loop.move.kind === 'flow'
+    ? `${figure(gain)} m^3/h per m^3/h`
+    : `${figure(gain / 3600)} ${loop.move.kind === 'ratio' ? 'ratio' : 'g/L'} per m^3/h`;

@@ -210,6 +210,21 @@ it('a ramp of the slew ends at the limit, however long the next result is in com
   expect(loop.history.travel).toBeCloseTo(0.2, 9);
 });
 
+it('on a scan with a slew the output catches up with the demand, and goes on with it', () => {
+  const plan = spec({
+    runs: 'scan',
+    settings: { gain: 0.5, integralTime: 60 },
+    analyser: { every: 10, delay: 6, noise: { absolute: 0.02 } },
+    move: { low: -0.4, high: 0.4, up: 0.01, down: 0.01 },
+  });
+  const load = [{ input: 1, times: [0, 30, 30, 300, 300], values: [0, 0, 0.3, 0.3, -0.2] }];
+  const { at, steps } = follow(firstOrder(1, 60), plan, [20, 299, 900], { load });
+  expect(steps).toBeLessThan(6000);
+  // The noise of 0.02 goes through the loop; without integral action 0.3 and 0.2 would be left.
+  expect(Math.abs(at[1][0])).toBeLessThan(0.1);
+  expect(Math.abs(at[2][1] - 0.2)).toBeLessThan(0.1);
+});
+
 describe('a loop in a run', () => {
   const plan = spec({ analyser: { every: 10, delay: 6, noise: { absolute: 0.1 }, dropout: 0.2 }, seed: 3 });
   const load = [{ input: 1, times: [0, 25, 25, 90], values: [0, 0, 1, 0.5] }];

@@ -62,7 +62,8 @@ export function ahead(g: Ground, point: Point, number: number, path: string, bes
   const stated = loop.feedforward?.from === path ? loop.feedforward : null;
   const analyser = stated?.analyser ?? ASSUMED;
   const late = point.fit.delay - (fd.delay - analyser.delay - analyser.every / 2);
-  const lag = Math.max(fd.lag, 1);
+  // Over these frequencies a lag far beyond the plant's own is not told from an integrator.
+  const lag = Math.min(Math.max(fd.lag, 1), MOST_LEAD * point.fit.lag);
   const lead = Math.min(point.fit.lag, MOST_LEAD * lag);
   const made: FeedforwardSpec = {
     measured,

@@ -63,8 +63,9 @@ export function prove(g: Ground, candidates: readonly Candidate[]): Proof[] {
   return proofs.sort((a, b) => rank(a) - rank(b) || a.beyond - b.beyond || a.iae - b.iae);
 }
 
-/** Without stability there is nothing to rank; references come after what may be used. */
-const rank = (p: Proof): number => (p.candidate === null ? 2 : p.candidate.margins.stable ? 0 : 3);
+/** Without stability there is nothing to rank; what gave up and references come after what may be used. */
+const rank = (p: Proof): number =>
+  p.candidate === null ? 2 : p.candidate.margins.stable && p.trial.complete ? 0 : 3;
 
 export function proof(
   name: string,

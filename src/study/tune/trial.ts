@@ -10,6 +10,9 @@ import { optionsOf } from '../run.ts';
 /** Relative tolerance of trials: their figures are read to three digits. */
 const TOLERANCE = 1e-4;
 
+/** Steps after which a trial is given up: a loop that drives the plant into what it cannot do has shown enough. */
+const MOST_STEPS = 30_000;
+
 /** Where trials begin, and what happens to them. */
 export interface Ground {
   readonly joined: ControlledPlant;
@@ -53,7 +56,7 @@ export function trial(g: Ground, change: (spec: LoopSpec) => LoopSpec): Trial {
   const limits = g.limits.map((l) => new LimitWatch(plant, l));
   const run = integrate(
     { system: plant.system, parameters: plant.parameters, schedule: g.schedule, initial: g.initial, devices },
-    optionsOf({ integrator: 'rodas5p', tolerance: TOLERANCE }),
+    { ...optionsOf({ integrator: 'rodas5p', tolerance: TOLERANCE }), maximumSteps: MOST_STEPS },
     [watch, ...limits],
   );
   const device = devices.find((d) => d.name === tuned.loop.name) as SampledLoop;
