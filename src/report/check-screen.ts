@@ -4,6 +4,7 @@ import { endWords, settingLines } from './circuit-words.ts';
 import { commissioningLines } from './commissioning-lines.ts';
 import { clock, columns, figure, withUnit } from './figures.ts';
 import { loopLines } from './loop-words.ts';
+import { rehearsingLines } from './rehearsing-lines.ts';
 import { startWords } from './screen.ts';
 
 /** `check`: the plant as understood. */
@@ -34,7 +35,7 @@ export function checkScreen(plant: Plant): string[] {
     const from = l.from > 0 ? `, from ${clock(l.from)} on` : '';
     lines.push(`  ${l.stream}.${l.quantity} ${l.side} ${withUnit(l.value, output?.unit ?? '')}${from}`);
   }
-  lines.push(...commissioningLines(s));
+  lines.push(...commissioningLines(s), ...rehearsingLines(s));
   lines.push(
     '',
     `${plant.system.places.length} states, ${s.horizon / s.recordEvery < 1e6 ? Math.floor(s.horizon / s.recordEvery) + 1 : '> 1e6'} records over ${clock(s.horizon)}, start ${startWords(s)}.`,

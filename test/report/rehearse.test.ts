@@ -5,6 +5,7 @@ import { answers } from '../../src/report/pictures/answers.ts';
 import { rehearsePictures, rehearseTable } from '../../src/report/pictures/index.ts';
 import { rehearseScreen } from '../../src/report/rehearse-screen.ts';
 import { rehearseSummary } from '../../src/report/rehearse-summary.ts';
+import { rehearsingLines } from '../../src/report/rehearsing-lines.ts';
 import { summarySchema } from '../../src/report/summary-schema.ts';
 import type { Scenario } from '../../src/scenario/scenario.ts';
 import { mapColumns, type StartSizeMap, startSizeMap } from '../../src/study/rehearse/map.ts';
@@ -180,4 +181,16 @@ describe('random plants', () => {
       { numRuns: 12, seed: 4 },
     );
   }, 120_000);
+});
+
+describe('check', () => {
+  it('shows analysers and answers as they were understood, and nothing where nothing is stated', () => {
+    const lines = rehearsingLines(scenario('saltbush-rehearsal')).join('\n');
+    expect(lines).toContain(
+      'AT-101 measures raffinate.copper: a grab every 10 min, known 6 min later, noise 2.00 % of reading, warns at 0.480 g/L',
+    );
+    expect(lines).toContain('more organic: organic tank.flow +15 %, 40 min after the upset begins');
+    expect(lines).toContain('when AT-101 above 0.48 g/L, then after 5 min, taken back 5 h after its start');
+    expect(rehearsingLines(scenario('ten'))).toEqual([]);
+  });
 });
