@@ -69,7 +69,7 @@ export interface RehearseResult {
 }
 
 /** Relative tolerance of scans; what decides is settled at that of the runs. */
-const SCAN = 1e-3;
+const SCAN = 3e-3;
 
 /**
  * Runs the upsets of a scenario against doing nothing and against each of its answers; looks for the latest start, the
