@@ -5,8 +5,8 @@ import { ensemble } from '../../study/commission/ensemble.ts';
 import { cores, onWorkers } from '../../study/commission/pool.ts';
 import { usual } from '../../study/run.ts';
 import type { Console } from '../console.ts';
-import { exits } from '../exit.ts';
-import { makeFolder, openScenario, outputFolder, version, write, writeJson } from '../files.ts';
+import { draw, ending } from '../drawing.ts';
+import { makeFolder, openScenario, outputFolder, version, writeJson } from '../files.ts';
 import { known, refusing } from '../refusing.ts';
 
 export interface CommissionOptions {
@@ -61,24 +61,16 @@ export async function commission(
   console.say(commissionScreen(result));
   if (options.pictures) {
     const { commissionPictures } = await import('../../report/pictures/index.ts');
-    for await (const picture of commissionPictures(result, Number(options.scale))) {
-      if (stop.signal.aborted) break;
-      console.progress(0, `drawing ${picture.name}`);
-      write(folder, picture.name, picture.png);
-      made.push(picture.name);
-    }
-    console.clear();
+    made.push(
+      ...(await draw(
+        commissionPictures(result, Number(options.scale)),
+        folder,
+        console,
+        () => stop.signal.aborted,
+      )),
+    );
   }
   process.off('SIGINT', onInterrupt);
   console.say(['', `Written to ${folder}: ${made.join(', ')}`]);
-  if (stop.signal.aborted) {
-    process.stderr.write(`interrupted; what was finished is in ${folder}\n`);
-    return exits.interrupted;
-  }
-  if (result.followed.stop.reason !== 'reached-end') {
-    const { explain } = await import('../../solve/outcome.ts');
-    process.stderr.write(`incomplete: ${explain(result.followed.stop)}\n`);
-    return exits.incomplete;
-  }
-  return exits.done;
+  return await ending(folder, stop.signal.aborted, result.followed.stop);
 }

@@ -7,8 +7,9 @@ import { type RehearseResult, rehearse as rehearseUpsets } from '../../study/reh
 import { usual } from '../../study/run.ts';
 import { cores, workersOf } from '../../study/workers.ts';
 import type { Console } from '../console.ts';
+import { draw, ending } from '../drawing.ts';
 import { exits, Known } from '../exit.ts';
-import { makeFolder, openScenario, outputFolder, version, write, writeJson } from '../files.ts';
+import { makeFolder, openScenario, outputFolder, version, writeJson } from '../files.ts';
 import { refusing } from '../refusing.ts';
 
 export interface RehearseOptions {
@@ -44,26 +45,18 @@ export async function rehearse(file: string, options: RehearseOptions, console: 
   console.say(rehearseScreen(result));
   if (options.pictures) {
     const { rehearsePictures } = await import('../../report/pictures/index.ts');
-    for await (const picture of rehearsePictures({ result, map }, Number(options.scale))) {
-      if (stop.signal.aborted) break;
-      console.progress(0, `drawing ${picture.name}`);
-      write(folder, picture.name, picture.png);
-      made.push(picture.name);
-    }
-    console.clear();
+    made.push(
+      ...(await draw(
+        rehearsePictures({ result, map }, Number(options.scale)),
+        folder,
+        console,
+        () => stop.signal.aborted,
+      )),
+    );
   }
   process.off('SIGINT', onInterrupt);
   console.say(['', `Written to ${folder}: ${made.join(', ')}`]);
-  if (stop.signal.aborted) {
-    process.stderr.write(`interrupted; what was finished is in ${folder}\n`);
-    return exits.interrupted;
-  }
-  if (result.stop.reason !== 'reached-end') {
-    const { explain } = await import('../../solve/outcome.ts');
-    process.stderr.write(`incomplete: ${explain(result.stop)}\n`);
-    return exits.incomplete;
-  }
-  return exits.done;
+  return await ending(folder, stop.signal.aborted, result.stop);
 }
 
 /** The map that was asked for; null where none was, or where it was interrupted. */

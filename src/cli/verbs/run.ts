@@ -4,8 +4,9 @@ import { runSummary } from '../../report/summary.ts';
 import { quantity } from '../../scenario/units.ts';
 import { type RunSettings, runInTurns } from '../../study/run.ts';
 import type { Console } from '../console.ts';
+import { draw, ending } from '../drawing.ts';
 import { exits, Known } from '../exit.ts';
-import { makeFolder, openScenario, outputFolder, stream, version, write, writeJson } from '../files.ts';
+import { makeFolder, openScenario, outputFolder, stream, version, writeJson } from '../files.ts';
 import { known } from '../refusing.ts';
 
 export interface RunOptions {
@@ -73,24 +74,11 @@ export async function run(file: string, options: RunOptions, console: Console): 
   console.say(runScreen(result));
   if (options.pictures) {
     const { runPictures } = await import('../../report/pictures/index.ts');
-    for await (const picture of runPictures(result, Number(options.scale))) {
-      if (interrupted) break;
-      console.progress(0, `drawing ${picture.name}`);
-      write(folder, picture.name, picture.png);
-      made.push(picture.name);
-    }
-    console.clear();
+    made.push(
+      ...(await draw(runPictures(result, Number(options.scale)), folder, console, () => interrupted)),
+    );
   }
   process.off('SIGINT', onInterrupt);
   console.say(['', `Written to ${folder}: ${made.join(', ')}`]);
-  if (interrupted) {
-    process.stderr.write(`interrupted; what was finished is in ${folder}\n`);
-    return exits.interrupted;
-  }
-  if (!result.complete) {
-    const { explain } = await import('../../solve/outcome.ts');
-    process.stderr.write(`incomplete: ${explain(result.stop)}\n`);
-    return exits.incomplete;
-  }
-  return exits.done;
+  return await ending(folder, interrupted, result.stop);
 }

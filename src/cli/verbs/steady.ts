@@ -2,8 +2,9 @@ import { steadyScreen } from '../../report/screen.ts';
 import { steadySummary } from '../../report/summary.ts';
 import { steady as findSteady } from '../../study/steady.ts';
 import type { Console } from '../console.ts';
+import { draw } from '../drawing.ts';
 import { exits } from '../exit.ts';
-import { makeFolder, openScenario, outputFolder, version, write, writeJson } from '../files.ts';
+import { makeFolder, openScenario, outputFolder, version, writeJson } from '../files.ts';
 import { refusing } from '../refusing.ts';
 
 export interface SteadyOptions {
@@ -24,10 +25,7 @@ export async function steady(file: string, options: SteadyOptions, console: Cons
   const made = ['summary.json'];
   if (options.pictures) {
     const { steadyPictures } = await import('../../report/pictures/index.ts');
-    for await (const picture of steadyPictures(result, Number(options.scale))) {
-      write(folder, picture.name, picture.png);
-      made.push(picture.name);
-    }
+    made.push(...(await draw(steadyPictures(result, Number(options.scale)), folder, console)));
   }
   console.say([...steadyScreen(result), '', `Written to ${folder}: ${made.join(', ')}`]);
   return exits.done;

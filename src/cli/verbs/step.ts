@@ -19,6 +19,7 @@ import { Exercise, scoreOf } from '../../study/rehearse/exercise.ts';
 import { rehearse } from '../../study/rehearse/rehearse.ts';
 import { usual } from '../../study/run.ts';
 import type { Console } from '../console.ts';
+import { draw } from '../drawing.ts';
 import { exits } from '../exit.ts';
 import { makeFolder, openScenario, outputFolder, version, write, writeJson } from '../files.ts';
 import { known, refusing } from '../refusing.ts';
@@ -69,10 +70,9 @@ export async function step(
   console.say(score ? scoreLines(result, score) : ['No move was made: nothing to score.']);
   if (options.pictures) {
     const { rehearsePictures } = await import('../../report/pictures/index.ts');
-    for await (const picture of rehearsePictures({ result, map: null }, Number(options.scale))) {
-      write(folder, picture.name, picture.png);
-      made.push(picture.name);
-    }
+    made.push(
+      ...(await draw(rehearsePictures({ result, map: null }, Number(options.scale)), folder, console)),
+    );
   }
   console.say([
     '',

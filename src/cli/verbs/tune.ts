@@ -4,8 +4,9 @@ import { BadData } from '../../scenario/csv.ts';
 import { type ReadStepTest, readStepTest } from '../../scenario/step-test.ts';
 import { tune as chooseAndProve } from '../../study/tune/tune.ts';
 import type { Console } from '../console.ts';
+import { draw } from '../drawing.ts';
 import { exits, Known } from '../exit.ts';
-import { makeFolder, openScenario, outputFolder, version, write, writeJson } from '../files.ts';
+import { makeFolder, openScenario, outputFolder, version, writeJson } from '../files.ts';
 import { refusing } from '../refusing.ts';
 
 export interface TuneOptions {
@@ -38,12 +39,7 @@ export async function tune(file: string, options: TuneOptions, console: Console)
   console.say(tuneScreen(result));
   if (options.pictures && result.kind === 'tuned') {
     const { tunePictures } = await import('../../report/pictures/tune.ts');
-    for await (const picture of tunePictures(result, Number(options.scale))) {
-      console.progress(0, `drawing ${picture.name}`);
-      write(folder, picture.name, picture.png);
-      made.push(picture.name);
-    }
-    console.clear();
+    made.push(...(await draw(tunePictures(result, Number(options.scale)), folder, console)));
   }
   console.say(['', `Written to ${folder}: ${made.join(', ')}`]);
   return exits.done;
