@@ -89,7 +89,7 @@ function config(r: CommissionResult, e: Ensemble): ChartConfiguration {
               `${short(r.plant.scenario.title, 60)}: ${e.runs} start-ups, Latin hypercube over ${e.inputs.length} inputs, seed ${e.seed}`,
             ],
           },
-          ticks: { stepSize: tickStep(end, 20, unit), maxRotation: 0 },
+          ticks: { stepSize: tickStep(end, 20, unit), maxRotation: 0, includeBounds: false },
         },
         y: {
           type: 'linear',
