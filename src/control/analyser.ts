@@ -35,6 +35,7 @@ export class Sampler {
   readonly #spec: AnalyserSpec;
   readonly #output: number;
   readonly #flow: number;
+  readonly #seed: number;
   readonly #chance: () => Chance;
   readonly #pending: Result[] = [];
   #taken = 0;
@@ -46,7 +47,19 @@ export class Sampler {
     this.#spec = spec;
     this.#output = output;
     this.#flow = flow;
+    this.#seed = seed;
     this.#chance = chances(seed);
+  }
+
+  /** The same, with what is under way, going on by itself: its next samples meet the same chance. */
+  copy(): Sampler {
+    const own = new Sampler(this.#spec, this.#output, this.#flow, this.#seed);
+    for (let k = 0; k < this.#taken; k++) own.#chance();
+    own.#pending.push(...this.#pending);
+    own.#taken = this.#taken;
+    own.#mass = this.#mass;
+    own.#volume = this.#volume;
+    return own;
   }
 
   nextSample(): number {

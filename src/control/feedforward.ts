@@ -15,9 +15,22 @@ export class Feedforward {
   #reference = 0;
   #since = 0;
 
-  constructor(spec: FeedforwardSpec) {
+  constructor(
+    spec: FeedforwardSpec,
+    sampler = new Sampler(spec.analyser, spec.measured, spec.weighedBy, spec.seed),
+  ) {
     this.#spec = spec;
-    this.sampler = new Sampler(spec.analyser, spec.measured, spec.weighedBy, spec.seed);
+    this.sampler = sampler;
+  }
+
+  /** The same, going on by itself. */
+  copy(): Feedforward {
+    const own = new Feedforward(this.#spec, this.sampler.copy());
+    own.#known = this.#known;
+    own.#shaped = this.#shaped;
+    own.#reference = this.#reference;
+    own.#since = this.#since;
+    return own;
   }
 
   begin(t: number, y: F): void {

@@ -2,6 +2,7 @@ import type { Device, Drive } from '../solve/device.ts';
 import type { F } from '../solve/system.ts';
 import { Sampler } from './analyser.ts';
 import { Feedforward } from './feedforward.ts';
+import { limitsAt } from './limits.ts';
 import { cornerAfter, slopeOf, valueAt } from './line.ts';
 import { OutputCourse } from './output-course.ts';
 import { type Beside, Pid } from './pid.ts';
@@ -29,10 +30,10 @@ export class SampledLoop implements Device {
   readonly name: string;
   readonly history: LoopHistory = { results: [], travel: 0, automatic: 0, atLimit: 0, slewing: 0 };
   readonly #s: LoopSpec;
-  readonly #sampler: Sampler;
-  readonly #pid: Pid;
-  readonly #ahead: Feedforward | null;
-  readonly #out: OutputCourse;
+  #sampler: Sampler;
+  #pid: Pid;
+  #ahead: Feedforward | null;
+  #out: OutputCourse;
   /** The loop whose set point this one moves. */
   readonly #inner: SampledLoop | null;
   readonly #atRest: boolean;
@@ -43,6 +44,9 @@ export class SampledLoop implements Device {
   #nextService = 0;
   #nextSetPoint = Infinity;
   #nextManual = Infinity;
+  #nextLimit = Infinity;
+  /** It goes on from where another one was. */
+  #resumed = false;
   /** While it runs on a scan: how output and integral go on until the next event. */
   #segment: Segment | null = null;
   #now = 0;
@@ -59,6 +63,42 @@ export class SampledLoop implements Device {
     this.#pid = new Pid(spec.settings);
     this.#ahead = spec.feedforward && new Feedforward(spec.feedforward);
     this.#out = new OutputCourse(spec.move);
+  }
+
+  /**
+   * A loop that goes on at `t` from where another one of the same name was; what is to happen to it from then on may
+   * differ.
+   */
+  static resumed(was: SampledLoop, spec: LoopSpec, inner: SampledLoop | null, t: number): SampledLoop {
+    const own = new SampledLoop(spec, inner);
+    own.#sampler = was.#sampler.copy();
+    own.#pid = was.#pid.copy();
+    own.#ahead = was.#ahead?.copy() ?? null;
+    own.#out = was.#out.copy();
+    own.#auto = was.#auto;
+    own.#pv = was.#pv;
+    own.#last = was.#last;
+    own.#segment = was.#segment;
+    own.#now = was.#now;
+    own.#given = was.#given;
+    own.#resumed = true;
+    // What is due at `t` itself has not been done yet.
+    const before = t - SAME * Math.abs(t);
+    const due = (list: readonly { readonly at: number }[]): number => {
+      const next = list.findIndex((q) => q.at >= before);
+      return next < 0 ? list.length : next;
+    };
+    own.#nextMode = due(spec.modes);
+    own.#nextService = due(spec.service);
+    own.#nextSetPoint = cornerAfter(spec.setPoint, before);
+    own.#nextManual = spec.manual ? cornerAfter(spec.manual, before) : Infinity;
+    own.#nextLimit = own.#limitAfter(before);
+    return own;
+  }
+
+  /** A copy as it is at `t`, with nothing left to happen but what it was told before. */
+  kept(t: number): SampledLoop {
+    return SampledLoop.resumed(this, this.#s, null, t);
   }
 
   get automatic(): boolean {
@@ -78,6 +118,10 @@ export class SampledLoop implements Device {
   }
 
   begin(t: number, y: F, w: F, drive: Drive): void {
+    if (this.#resumed) {
+      this.#goOn(t, drive);
+      return;
+    }
     const { inputs, auto, setPoint, manual } = this.#s;
     this.#now = t;
     this.#last = t;
@@ -92,12 +136,38 @@ export class SampledLoop implements Device {
       this.#nextSetPoint = cornerAfter(setPoint, t);
     }
     if (manual) this.#nextManual = cornerAfter(manual, t - 1e-9);
+    this.#nextLimit = this.#limitAfter(t);
+    this.#bound(t, w);
     this.#auto = auto;
     if (!auto) return;
     const sp = this.#setPoint(t, w, drive);
     if (this.#atRest) this.#pid.settle(this.#out.at(t), sp, this.#beside());
     else this.#pid.track(this.#out.at(t), sp, this.#beside());
     if (this.#s.runs === 'scan') this.#plan(t, sp);
+  }
+
+  /** Shows what it has driven so far. */
+  #goOn(t: number, drive: Drive): void {
+    const { inputs, setPoint, service } = this.#s;
+    drive(inputs.measurement, t, this.#pv, 0);
+    if (setPoint.times.length > 0) drive(inputs.setPoint, t, valueAt(setPoint, t), slopeOf(setPoint, t));
+    const { from, value, slope } = this.#given;
+    drive(inputs.output, t, value + slope * (t - from), slope);
+    if (this.#nextService > 0) drive(inputs.gate, t, service[this.#nextService - 1].on ? 1 : 0, 0);
+  }
+
+  #limitAfter(t: number): number {
+    const { limits } = this.#s;
+    return limits ? Math.min(cornerAfter(limits.low, t), cornerAfter(limits.high, t)) : Infinity;
+  }
+
+  /** Takes the limits as they are now; where the flow means nothing they stay. */
+  #bound(t: number, w: F): void {
+    const { inputs, move } = this.#s;
+    if (inputs.wild >= 0 && w[inputs.wild] < move.leastWild) return;
+    const { low, high } = limitsAt(this.#s, t, w);
+    this.#out.low = low;
+    this.#out.high = high;
   }
 
   nextRead(): number {
@@ -132,6 +202,7 @@ export class SampledLoop implements Device {
       modes[this.#nextMode]?.at ?? Infinity,
       service[this.#nextService]?.at ?? Infinity,
       this.#auto ? Infinity : this.#nextManual,
+      this.#nextLimit,
       this.#scanning() ? Math.min(this.#nextSetPoint, this.#segment?.until ?? Infinity) : Infinity,
     );
   }
@@ -146,6 +217,12 @@ export class SampledLoop implements Device {
     this.#account(t);
     this.#advance(t);
     this.#out.settle(t);
+    this.#bound(t, w);
+    if (this.#nextLimit <= t) {
+      this.#nextLimit = this.#limitAfter(t);
+      // An output beyond its new limit goes there, at its slew.
+      if (this.#out.clamp(this.#out.at(t)) !== this.#out.at(t)) this.#out.toward(t, this.#out.at(t));
+    }
     const moved = this.#switch(t, w, drive);
     if (this.#auto) this.#automatic(t, w, drive);
     else if (this.#nextManual <= t) this.#byHand(t);
@@ -285,7 +362,7 @@ export class SampledLoop implements Device {
     const demand = this.#pid.demand(sp, h, beside);
     const reached = this.#out.reach(t, demand, h);
     let actual = reached;
-    if (this.#s.inputs.overruling.some((i) => w[i] === 0)) actual = this.#s.move.low;
+    if (this.#s.inputs.overruling.some((i) => w[i] === 0)) actual = this.#out.low;
     else if (this.#inner?.output.bound(t)) actual = this.#inner.measurement;
     this.#pid.commit(sp, h, demand, actual, beside);
     this.#out.toward(t, demand);

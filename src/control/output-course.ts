@@ -12,9 +12,26 @@ export class OutputCourse {
   /** Where a ramp of the slew leads, and when it is there. */
   #goal: number | null = null;
   rampEnd = Infinity;
+  low: number;
+  high: number;
 
   constructor(move: MoveSpec) {
     this.#m = move;
+    this.low = move.low;
+    this.high = move.high;
+  }
+
+  /** The same course, going on by itself. */
+  copy(): OutputCourse {
+    const own = new OutputCourse(this.#m);
+    own.#from = this.#from;
+    own.#value = this.#value;
+    own.#slope = this.#slope;
+    own.#goal = this.#goal;
+    own.rampEnd = this.rampEnd;
+    own.low = this.low;
+    own.high = this.high;
+    return own;
   }
 
   set(t: number, value: number): void {
@@ -50,7 +67,7 @@ export class OutputCourse {
   }
 
   clamp(value: number): number {
-    return Math.min(this.#m.high, Math.max(this.#m.low, value));
+    return Math.min(this.high, Math.max(this.low, value));
   }
 
   /** What of a demand is reached `h` s later. */
@@ -78,16 +95,12 @@ export class OutputCourse {
   }
 
   bound(t: number): boolean {
-    const slack = AT_LIMIT * (this.#m.high - this.#m.low);
+    const slack = AT_LIMIT * (this.high - this.low);
     const now = this.at(t);
-    return now <= this.#m.low + slack || now >= this.#m.high - slack;
+    return now <= this.low + slack || now >= this.high - slack;
   }
 
   slewing(t: number): boolean {
     return this.#goal !== null && t < this.rampEnd;
-  }
-
-  get limits(): MoveSpec {
-    return this.#m;
   }
 }

@@ -22,6 +22,15 @@ export class Pid {
     this.#s = settings;
   }
 
+  /** The same, going on by itself. */
+  copy(): Pid {
+    const own = new Pid(this.#s);
+    own.integral = this.integral;
+    own.#filtered = this.#filtered;
+    own.#derivative = this.#derivative;
+    return own;
+  }
+
   /** As if the measurement had been `pv` for long. */
   begin(pv: number): void {
     this.#filtered = pv;

@@ -31,7 +31,8 @@ export function follow(
   beside: Beside,
 ): Segment {
   const { gain, integralTime: Ti } = s.settings;
-  const { low, high, up, down } = s.move;
+  const { up, down } = s.move;
+  const { low, high } = out;
   const horizon =
     t + (s.setPoint.times.length > 0 && ramping(s, t) ? s.analyser.every / PARTS : 4 * s.analyser.every);
   const start = pid.integral;

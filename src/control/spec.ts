@@ -18,6 +18,8 @@ export interface LoopSpec {
   /** While out of service its flow follows the schedule. */
   readonly service: readonly { readonly at: number; readonly on: boolean }[];
   readonly setPoint: Line;
+  /** Limits of the output over time, where somebody changes them. */
+  readonly limits: { readonly low: Line; readonly high: Line } | null;
   /** Output while in manual, where somebody changes it. */
   readonly manual: Line | null;
   readonly feedforward: FeedforwardSpec | null;
@@ -45,6 +47,9 @@ export interface MoveSpec {
   readonly down: number;
   /** The wild flow below which a ratio means nothing: the loop holds. */
   readonly leastWild: number;
+  /** Limits of the flow that a ratio sets; 0 and Infinity where there are none. */
+  readonly flowLow: number;
+  readonly flowHigh: number;
 }
 
 /** ISA standard form: u = Kc·[e_b + ∫e dt/Ti ∓ Td·dPV_f/dt]. */

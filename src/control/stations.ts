@@ -1,4 +1,4 @@
-import type { F, Named, Pattern, Place, System } from '../solve/system.ts';
+import type { F, Guard, Named, Pattern, Place, System } from '../solve/system.ts';
 import { PatternBuilder } from './pattern.ts';
 
 /**
@@ -8,6 +8,7 @@ import { PatternBuilder } from './pattern.ts';
  *
  * with u the output of the loop, A_w the wild flow (1 where the loop moves the flow itself), F_w the flow as the
  * schedule has it, and the gate g: 1 while the station is in service. A time constant of 0 passes the value on at once.
+ * In service u·A is held between the least and the most that the flow may be; a guard stands at either.
  */
 export interface Station {
   readonly name: string;
@@ -18,6 +19,9 @@ export interface Station {
   /** s */
   readonly lag: number;
   readonly filter: number;
+  /** Least and most of the flow, m³/s; 0 and Infinity where nothing is stated. */
+  readonly low: number;
+  readonly high: number;
   readonly output: Named;
 }
 
@@ -106,9 +110,12 @@ export function join(inner: System, stations: readonly Station[], shown: readonl
         equations.spread(cMap, cValues, dValues, x, w, cs, ds, C, D);
         for (const { row, column } of own) put(D, ds, row, column, 1);
       },
-      guards: inner.guards,
+      guards: [...inner.guards, ...equations.limits.map((q) => q.guard)],
       guard(x, w, p, g) {
         inner.guard(x, equations.within(x, w), p, g);
+        equations.limits.forEach((q, k) => {
+          g[inner.guards.length + k] = equations.beyond(q, x, w);
+        });
       },
       conserved: inner.conserved.map((q) => {
         const weights = new Float64Array(places.length);
@@ -121,6 +128,15 @@ export function join(inner: System, stations: readonly Station[], shown: readonl
 }
 
 type At = Joined['stations'][number];
+
+/** A limit of a station's flow, and the guard that says when it holds it. */
+interface FlowLimit {
+  readonly station: number;
+  readonly side: 'low' | 'high';
+  /** m³/s */
+  readonly value: number;
+  readonly guard: Guard;
+}
 
 /** Where an entry of an inner pattern goes: to an own slot, or along a station's chain. */
 interface Spread {
@@ -139,11 +155,27 @@ class Equations {
   readonly #a: F;
   readonly #b: F;
   readonly #map: Spread;
+  /** Limits of flows that are stated. */
+  readonly limits: readonly FlowLimit[];
 
   constructor(inner: System, stations: readonly Station[], at: readonly At[], places: number) {
     this.#inner = inner;
     this.#stations = stations;
     this.#at = at;
+    this.limits = stations.flatMap((s, station) =>
+      (['low', 'high'] as const).flatMap((side) => {
+        const value = s[side];
+        if (side === 'low' ? value === 0 : value === Infinity) return [];
+        const path = inner.inputs[s.flow].path;
+        const guard: Guard = {
+          name: `${path} ${side}`,
+          direction: 1,
+          message: `${path} is held at flow_${side} of ${s.name}`,
+          action: 'report',
+        };
+        return [{ station, side, value, guard }];
+      }),
+    );
     this.#w = new Float64Array(inner.inputs.length);
     this.#a = new Float64Array(inner.A.column.length);
     this.#b = new Float64Array(inner.B.column.length);
@@ -265,9 +297,18 @@ class Equations {
     return wildPlace >= 0 ? x[wildPlace] : w[wild];
   }
 
+  /** By how much of itself a flow would be beyond its limit; out of service it is not. */
+  beyond({ station, side, value }: FlowLimit, x: F, w: F): number {
+    const { output, gate } = this.#at[station];
+    if (w[gate] !== 1) return -1;
+    const own = w[output] * this.#wild(station, x, w);
+    return (side === 'low' ? value - own : own - value) / value;
+  }
+
   #demand(k: number, x: F, w: F): number {
     const g = w[this.#at[k].gate];
-    const own = w[this.#at[k].output] * this.#wild(k, x, w);
+    const { low, high } = this.#stations[k];
+    const own = Math.min(high, Math.max(low, w[this.#at[k].output] * this.#wild(k, x, w)));
     return g === 1 ? own : g * own + (1 - g) * w[this.#stations[k].flow];
   }
 
@@ -295,15 +336,19 @@ class Equations {
   ): void {
     const { flow, wild } = this.#stations[k];
     const { output, gate, wildPlace } = this.#at[k];
+    const { low, high } = this.#stations[k];
     const A = this.#wild(k, x, w);
     const g = w[gate];
+    const own = Math.min(high, Math.max(low, w[output] * A));
+    // Held at a limit, the flow follows neither the output nor the wild flow.
+    const free = own === w[output] * A ? g : 0;
     if (outW) {
       put(pw, outW, row, flow, factor * (1 - g));
-      put(pw, outW, row, output, factor * g * A);
-      put(pw, outW, row, gate, factor * (w[output] * A - w[flow]));
-      if (wild >= 0 && wildPlace < 0) put(pw, outW, row, wild, factor * g * w[output]);
+      put(pw, outW, row, output, factor * free * A);
+      put(pw, outW, row, gate, factor * (own - w[flow]));
+      if (wild >= 0 && wildPlace < 0) put(pw, outW, row, wild, factor * free * w[output]);
     }
-    if (outX && wildPlace >= 0) put(px, outX, row, wildPlace, factor * g * w[output]);
+    if (outX && wildPlace >= 0) put(px, outX, row, wildPlace, factor * free * w[output]);
   }
 }
 

@@ -1,3 +1,4 @@
+import { loopsAtRestSchema } from './loop-schema.ts';
 import { head, list, number, object, orNull, plant, type Schema, text, yes } from './schema-words.ts';
 import { SCHEMA } from './summary.ts';
 
@@ -67,6 +68,7 @@ export const commission = object({
       full_or_empty_at_s: number('from the start'),
     }),
   ),
+  loops_at_rest: loopsAtRestSchema,
   comes_good: list(
     object({
       quantity: text('path of the output'),

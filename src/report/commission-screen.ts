@@ -5,6 +5,7 @@ import type { StartResult } from '../study/commission/procedures.ts';
 import type { SlowMode } from '../study/commission/where.ts';
 import { shortCaution } from './cautions.ts';
 import { clock, columns, figure, shown, withUnit } from './figures.ts';
+import { restLines } from './loop-words.ts';
 import { startWords } from './screen.ts';
 
 const MOST_ROWS = 6;
@@ -62,8 +63,9 @@ export function answerLines(r: CommissionResult): string[] {
   const [slow] = r.modes;
   if (slow) {
     const front = r.tail !== null && slow.time > 0 && r.tail.seen > FRONT * slow.time;
+    const looped = 'state' in rest && rest.loops.some((q) => q.automatic);
     const seen = r.tail
-      ? ` Seen in the tail of ${r.tail.path}: ${clock(r.tail.seen)}${front ? ', more than any one mode takes: a front still travels along the stages' : ''}.`
+      ? ` Seen in the tail of ${r.tail.path}: ${clock(r.tail.seen)}${front ? (looped ? ', set by the loop: more than the plant with its loops held takes' : ', more than any one mode takes: a front still travels along the stages') : ''}.`
       : '';
     lines.push(`Slowest mode ${modeWords(slow)}.${seen}`);
   }
@@ -71,8 +73,7 @@ export function answerLines(r: CommissionResult): string[] {
   const next = [...new Set(others.map(modeWords))];
   if (next.length > 0) lines.push(`Next: ${next.join('; ')}.`);
   if (r.begun.length > 0) lines.push(`Begins with the start: ${r.begun.join('; ')}.`);
-  if ((r.plant.scenario.loops ?? []).length > 0)
-    lines.push('Loops are left in manual, at the flows as stated: a start-up is followed without them.');
+  lines.push(...loopLines(r));
   if (r.leftOut.length > 0)
     lines.push(
       `Left out, because it comes later: ${r.leftOut.slice(0, 3).join('; ')}${r.leftOut.length > 3 ? ' …' : ''}.`,
@@ -85,6 +86,18 @@ export function answerLines(r: CommissionResult): string[] {
     );
   }
   return lines;
+}
+
+/** How the loops stand at rest, and how they were followed. */
+function loopLines({ plant, followed: { rest } }: CommissionResult): string[] {
+  const loops = plant.scenario.loops ?? [];
+  if (loops.length === 0) return [];
+  const at = 'state' in rest ? rest.loops : [];
+  if (at.length === 0) return [`In manual: ${loops.map((l) => l.name).join(', ')}.`];
+  return [
+    ...restLines(loops, at).map((l) => `At rest ${l}`),
+    'Loops are followed with analysers that read without noise; the slowest modes are those of the plant with its loops held.',
+  ];
 }
 
 const whatIsJudged = (r: CommissionResult): string =>

@@ -4,6 +4,7 @@ import type { ComesGood } from '../study/commission/good.ts';
 import type { StartResult } from '../study/commission/procedures.ts';
 import type { Waiting } from '../study/commission/waiting.ts';
 import { cautions } from './cautions.ts';
+import { loopsAtRest } from './loop-summary.ts';
 import { plantFacts } from './plant-facts.ts';
 import { head, type Origin, SCHEMA, si } from './summary.ts';
 
@@ -43,6 +44,7 @@ export function commissionSummary(r: CommissionResult, origin: Origin): object {
       'state' in rest
         ? rest.drifts.map((d) => ({ tank: d.tank, gain_m3_per_s: d.rate, full_or_empty_at_s: d.until }))
         : [],
+    loops_at_rest: 'state' in rest ? loopsAtRest(rest.loops) : [],
     comes_good: r.quantities.map(goodOf),
     modes: r.modes.map((m) => ({
       time_constant_s: m.time,

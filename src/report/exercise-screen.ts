@@ -4,7 +4,8 @@ import { clock, columns, figure, shown, withUnit } from './figures.ts';
 
 export const exerciseHelp: readonly string[] = [
   '  organic tank.flow +10 %   a move: any quantity that an upset can change, with a change or to a value;',
-  "                            'over 10 min' ramps it, 'for 2 h' takes it back",
+  "                            'over 10 min' ramps it, 'for 2 h' takes it back; 'put AIC-101 in manual'",
+  '                            after it takes a flow out of the hands of the loop that moves it',
   '  wait 20 min, or 20 min    let the plant run so long at once',
   '  pause, go, speed 120      stop and start the clock; seconds of the plant in one of yours',
   '  show, help, end           all figures; these lines; finish and score (the rest is run without a move)',

@@ -56,18 +56,28 @@ export function loopLines(l: Loop): string[] {
   return [
     `  ${l.name} keeps ${m.of} at ${withUnit(l.keepAt, 'kg/m^3')}${c.auto ? '' : ' once put in automatic; now in MANUAL'}`,
     `    measures a ${a.takes} every ${clock(a.every)}, first at ${clock(a.first)}, known ${clock(a.delay)} later${noise}${dropout}`,
-    `    moves ${target} between ${outputText(l, move.low)} and ${outputText(l, move.high)}${slew}${lags.length > 0 ? `; ${lags.join(', ')}` : ''}`,
+    `    moves ${target} between ${outputText(l, move.low)} and ${outputText(l, move.high)}${flowLimits(move)}${slew}${lags.length > 0 ? `; ${lags.join(', ')}` : ''}`,
     `    ${pid} ${c.scan === null ? 'on each result' : `every ${clock(c.scan)}`}, ${c.action}: ${rises}; gain ${gainText(l, c.gain)}, integral time ${minutes(c.integralTime)}${c.derivativeTime > 0 ? `, derivative time ${minutes(c.derivativeTime)}` : ''}${c.filter > 0 ? `, filter ${minutes(c.filter)}` : ''}${c.setPointWeight === 1 ? '' : `, set-point weight ${figure(c.setPointWeight)}`}`,
     ...(f
       ? [
           `    feedforward from ${f.from}, every ${clock(f.analyser.every)}, ${clock(f.analyser.delay)} late: ${f.form === 'multiply' ? 'output in proportion to it' : gainText(l, f.gain)}${f.lead + f.lag > 0 ? `, lead ${minutes(f.lead)}, lag ${minutes(f.lag)}` : ''}`,
         ]
       : []),
-    ...[...l.modes, ...l.outOfService.map((q) => ({ at: q.from, words: q.words }))].map(
-      (q) => `    ${clock(q.at)}: ${q.words}`,
-    ),
-    ...[...l.setPoint, ...l.output].map((q) => `    ${clock(q.at)}: ${q.words}`),
+    ...l.changes.map((q) => {
+      const aside = q.quantity === move.quantity ? `, ${l.name} out of it meanwhile` : '';
+      const back = q.lasts === null ? '' : `, for ${clock(q.lasts)}`;
+      return `    ${clock(q.at)}: ${q.words}${back}${aside}`;
+    }),
   ];
+}
+
+/** Limits of the flow that a ratio sets, where they are stated. */
+function flowLimits({ flowLow, flowHigh }: Loop['move']): string {
+  const said = [
+    ...(flowLow > 0 ? [`at least ${withUnit(flowLow, 'm^3/s')}`] : []),
+    ...(flowHigh < Infinity ? [`at most ${withUnit(flowHigh, 'm^3/s')}`] : []),
+  ];
+  return said.length > 0 ? `, the flow ${said.join(' and ')}` : '';
 }
 
 /** Loops at a steady state. */

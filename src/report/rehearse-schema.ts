@@ -1,3 +1,4 @@
+import { loopFiguresSchema } from './loop-schema.ts';
 import { head, list, number, object, orNull, plant, type Schema, text, yes } from './schema-words.ts';
 import { SCHEMA } from './summary.ts';
 
@@ -46,6 +47,7 @@ const figures: Record<string, Schema> = {
   ),
   tanks: list(object({ tank: text('name'), least_m3: number('held'), most_m3: number('held') })),
   events,
+  loops: loopFiguresSchema,
 };
 
 /** What `rehearse` writes. */

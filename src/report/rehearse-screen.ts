@@ -3,8 +3,9 @@ import type { AnswerResult, RehearseResult } from '../study/rehearse/rehearse.ts
 import type { Kept } from '../study/rehearse/scan.ts';
 import { shortCaution } from './cautions.ts';
 import { clock, columns, figure, shown, withUnit } from './figures.ts';
+import { outputText } from './loop-words.ts';
 import { clockTime, hourOf, limitWords, movesWords, since, sizeWords, upsetWords } from './rehearse-words.ts';
-import { manualLines, startWords } from './screen.ts';
+import { startWords } from './screen.ts';
 
 /** Answers, events and islands told on the screen; all of them stand in summary.json. */
 const MOST_ROWS = 10;
@@ -43,12 +44,26 @@ function warnings(r: RehearseResult): string[] {
     lines.push(
       `NOTE  the plant is not at rest as the upset begins: ${moving.path} still moves ${figure(100 * moving.perHour, 2)} %/h.`,
     );
-  lines.push(...manualLines(r.ground.scenario));
+  lines.push(...loopLines(r));
   if (!startStated && first > 0) lines.push('The run starts steady, since the scenario states no start.');
   for (const c of r.clamped)
     lines.push(`NOTE  ${c.quantity} would fall below 0 after ${clock(c.time)} of the run: held at 0.`);
   if (r.stop.reason !== 'reached-end') lines.push('INCOMPLETE  the run with nothing done came to no end.');
   return lines;
+}
+
+/** How the loops stand, and what they did while nobody else did anything. */
+function loopLines(r: RehearseResult): string[] {
+  return r.nothing.loops.map((q, i) => {
+    const { loop } = r.ground.joined.loops[i];
+    if (q.automatic === 0) return `${q.name} in manual.`;
+    const bound = [
+      ...(q.atLimit > 0 ? [`at a limit for ${clock(q.atLimit)}`] : []),
+      ...(q.slewing > 0 ? [`on its slew for ${clock(q.slewing)}`] : []),
+    ];
+    const manual = q.span - q.automatic > 1 ? ` for ${clock(q.automatic)}` : '';
+    return `${q.name} in automatic${manual}, keeps ${loop.measure.of} at ${withUnit(loop.keepAt, 'kg/m^3')}; with nothing else done its output travels ${outputText(loop, q.travel)}${bound.length > 0 ? `, ${bound.join(', ')}` : ''}.`;
+  });
 }
 
 /** A limit that was broken, from the break to the return. */

@@ -4,6 +4,7 @@ import type { StartSizeMap } from '../study/rehearse/map.ts';
 import type { AnswerResult, RehearseResult } from '../study/rehearse/rehearse.ts';
 import type { Kept } from '../study/rehearse/scan.ts';
 import { cautions } from './cautions.ts';
+import { loopFigures } from './loop-summary.ts';
 import { plantFacts } from './plant-facts.ts';
 import { changeWords, upsetWords } from './rehearse-words.ts';
 import { head, type Origin, SCHEMA, si } from './summary.ts';
@@ -100,6 +101,7 @@ const figuresOf = (r: RehearseResult, f: RunFigures): object => ({
   })),
   tanks: f.tanks.map((t) => ({ tank: t.tank, least_m3: t.least, most_m3: t.most })),
   events: f.events.map((e) => ({ time_s: e.time, name: e.name, message: e.message })),
+  loops: f.loops.map(loopFigures),
 });
 
 const answerOf = (r: RehearseResult, a: AnswerResult, i: number): object => ({

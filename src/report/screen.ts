@@ -45,14 +45,6 @@ export const startWords = ({ start, trains }: Plant['scenario']): string =>
         ? 'filled vessels'
         : start;
 
-/** Verbs that follow the plant alone say so. */
-export const manualLines = ({ loops = [] }: Plant['scenario']): string[] =>
-  loops.length === 0
-    ? []
-    : [
-        `In manual here, with its output as it stands: ${loops.map((l) => l.name).join(', ')}; 'run' runs ${loops.length > 1 ? 'them' : 'it'}.`,
-      ];
-
 const rejected = ({ work: w }: RunResult): number =>
   w.rejectedByError + w.rejectedByNegative + w.rejectedByNonFinite + w.rejectedBySingular;
 

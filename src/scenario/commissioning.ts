@@ -1,3 +1,4 @@
+import { withChanges } from './loop-changes.ts';
 import type { Change, Initial, Scenario } from './scenario.ts';
 
 /** What a scenario says for its commissioning, beyond the plant itself; SI. */
@@ -60,7 +61,7 @@ export interface Compare {
 
 /** The scenario as a procedure starts it; its upsets are the moves. */
 export function withProcedure(s: Scenario, p: Procedure): Scenario {
-  return {
+  const own: Scenario = {
     ...s,
     start: p.start ?? s.start,
     tanks: s.tanks.map((t, i) => {
@@ -71,6 +72,6 @@ export function withProcedure(s: Scenario, p: Procedure): Scenario {
       const own = p.trains.find((q) => q.train === i);
       return own ? { ...t, initial: { ...t.initial, ...own.initial } } : t;
     }),
-    upsets: p.moves,
   };
+  return withChanges(own, p.moves);
 }

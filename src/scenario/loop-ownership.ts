@@ -1,29 +1,23 @@
 import type { Loop } from './loops.ts';
 import type { Problem } from './refusal.ts';
 import type { Path, Scenario } from './scenario.ts';
-import type { RawScenario } from './schema.ts';
 import { show } from './show.ts';
 
-/** Who moves what: every quantity has one owner at a time. */
+/** Who moves what: every quantity has one owner. */
 export class Ownership {
-  readonly #raw: RawScenario;
   readonly #s: Scenario;
   readonly #loops: readonly Loop[];
   readonly #problems: Problem[];
 
-  constructor(raw: RawScenario, s: Scenario, loops: readonly Loop[], problems: Problem[]) {
-    this.#raw = raw;
+  constructor(s: Scenario, loops: readonly Loop[], problems: Problem[]) {
     this.#s = s;
     this.#loops = loops;
     this.#problems = problems;
   }
 
-  loops(): Loop[] {
+  check(): void {
     this.#twice();
     this.#names();
-    const out = this.#loops.map((): Loop['outOfService'][number][] => []);
-    for (const [i, u] of (this.#raw.upsets ?? []).entries()) this.#upset(u, i, out);
-    return this.#loops.map((l, k) => ({ ...l, outOfService: out[k] }));
   }
 
   #twice(): void {
@@ -49,11 +43,6 @@ export class Ownership {
           path: ['loops', l.name, 'move'],
           message: `${inner.name} itself moves a set point; a cascade has two loops`,
         });
-      if (inner && inner.setPoint.length > 0)
-        this.#problems.push({
-          path: ['loops', l.name, 'move'],
-          message: `the set point of ${inner.name} is moved by this loop, and by upsets`,
-        });
     }
   }
 
@@ -75,47 +64,63 @@ export class Ownership {
         });
     }
   }
+}
 
-  #upset(
-    u: NonNullable<RawScenario['upsets']>[number],
-    i: number,
-    out: Loop['outOfService'][number][][],
-  ): void {
-    const owner = this.#loops.findIndex((l) => l.move.kind !== 'set point' && l.move.quantity === u.change);
-    const at: Path = ['upsets', i];
-    const put = u.put === undefined ? null : /^(.+?)\s+in\s+manual$/.exec(u.put.trim())?.[1];
-    if (owner < 0) {
-      if (put !== null)
-        this.#problems.push({
-          path: [...at, 'put'],
-          message: `no loop moves ${show(u.change)}; put is for changes of what a loop moves`,
-        });
-      return;
-    }
-    const loop = this.#loops[owner];
-    if (put === undefined || (put !== null && put !== loop.name)) {
-      this.#problems.push({
-        path: [...at, 'put'],
-        message: `expected '${loop.name} in manual', got ${show(u.put)}`,
-      });
-      return;
-    }
-    if (put === null && loop.controller.auto) {
-      this.#problems.push({
-        path: [...at, 'change'],
-        message: `${show(u.change)} is moved by ${loop.name} in automatic; write put: ${loop.name} in manual, or change ${show(`${loop.name}.set point`)}`,
-      });
-      this.#problems.push({
-        path: ['loops', loop.name, 'move'],
-        message: `moves ${show(u.change)}, which an upset changes as well`,
-      });
-      return;
-    }
-    const lasts = u.for?.value;
-    out[owner].push({
-      from: u.at.value,
-      to: lasts === undefined ? null : u.at.value + lasts + (u.over?.value ?? 0),
-      words: put === null ? `${loop.name} out of service` : `${loop.name} in manual`,
-    });
+/** A change as it is written. */
+interface Written {
+  readonly change: string;
+  readonly put?: string | undefined;
+  readonly over?: { readonly value: number } | undefined;
+  readonly follow?: object | undefined;
+}
+
+/**
+ * Judges a change, of an upset or of an operator, by what loops own: what a loop in automatic moves is changed through the
+ * loop, or the loop is put in manual beside it. Complains in place.
+ */
+export function checkOwner(u: Written, at: Path, loops: readonly Loop[], problems: Problem[]): void {
+  const complain = (message: string, ...key: string[]): void => {
+    problems.push({ path: [...at, ...key], message });
+  };
+  const owner = loops.find((l) => l.move.kind !== 'set point' && l.move.quantity === u.change);
+  const put = u.put === undefined ? null : /^(.+?)\s+in\s+manual$/.exec(u.put.trim())?.[1];
+  if (owner === undefined) {
+    if (put !== null)
+      complain(
+        loops.length === 0
+          ? 'there is no loop to be put anywhere'
+          : `no loop moves ${show(u.change)}; put is for changes of what a loop moves`,
+        'put',
+      );
+    checkOwn(u, loops, complain);
+    return;
   }
+  if (put === undefined || (put !== null && put !== owner.name)) {
+    complain(`expected '${owner.name} in manual', got ${show(u.put)}`, 'put');
+    return;
+  }
+  if (put !== null || !owner.controller.auto) return;
+  complain(
+    `${show(u.change)} is moved by ${owner.name} in automatic; write put: ${owner.name} in manual, or change ${show(`${owner.name}.set point`)}, its low or its high`,
+    'change',
+  );
+  problems.push({
+    path: ['loops', owner.name, 'move'],
+    message: `moves ${show(u.change)}, which ${at[0] === 'upsets' ? 'an upset' : `${String(at[0]).replace(/s$/, '')} ${show(at[1])}`} changes as well`,
+  });
+}
+
+/** A change about a loop itself. */
+function checkOwn(
+  u: Written,
+  loops: readonly Loop[],
+  complain: (message: string, ...key: string[]) => void,
+): void {
+  const led = loops.find((l) => u.change === `${l.name}.set point`);
+  const leader = led && loops.find((l) => l.move.kind === 'set point' && l.move.quantity === led.name);
+  if (leader) complain(`the set point of ${led.name} is moved by ${leader.name}`, 'change');
+  const limit = loops.some((l) => u.change === `${l.name}.low` || u.change === `${l.name}.high`);
+  for (const key of ['over', 'follow'] as const)
+    if (limit && u[key] !== undefined)
+      complain('a limit of an output changes at once: state to or by, and no ramp', key);
 }

@@ -1,7 +1,7 @@
 import type { Target } from './outline.ts';
 import { isObject } from './outline-circuit.ts';
 
-/** What upsets may change about the loops of a file: set point, mode, and the output while in manual. */
+/** What may be changed about the loops of a file: set point, mode, limits, and the output while in manual. */
 export function loopTargets(loops: unknown, limitable: ReadonlyMap<string, Target>): [string, Target][] {
   if (!isObject(loops)) return [];
   return Object.entries(loops).flatMap(([name, loop]): [string, Target][] => {
@@ -18,6 +18,7 @@ export function loopTargets(loops: unknown, limitable: ReadonlyMap<string, Targe
       [`${name}.mode`, { what: 'mode', phase: 'aqueous' }],
       ...(measured ? [[`${name}.set point`, measured] as [string, Target]] : []),
       ...output,
+      ...output.flatMap(([, t]) => ['low', 'high'].map((bound): [string, Target] => [`${name}.${bound}`, t])),
     ];
   });
 }

@@ -25,16 +25,8 @@ export interface Loop {
   readonly keepAt: number;
   readonly controller: Controller;
   readonly feedforward: FeedforwardOf | null;
-  /** What the scenario changes about the loop itself. */
-  readonly setPoint: readonly Change[];
-  readonly output: readonly Change[];
-  readonly modes: readonly { readonly at: number; readonly auto: boolean; readonly words: string }[];
-  /** While an upset changes the flow itself, the loop is in manual and its station out of service. */
-  readonly outOfService: readonly {
-    readonly from: number;
-    readonly to: number | null;
-    readonly words: string;
-  }[];
+  /** What the scenario changes about the loop itself, and about the flow that it moves. */
+  readonly changes: readonly Change[];
 }
 
 export interface Measure {
@@ -54,6 +46,9 @@ export interface Move {
   /** Dimensionless, m³/s or kg/m³, by kind. */
   readonly low: number;
   readonly high: number;
+  /** Of the flow that a ratio sets, m³/s: the least keeps its pump turning when the wild flow fails. */
+  readonly flowLow: number;
+  readonly flowHigh: number;
   /** Per s; Infinity: none stated. */
   readonly slewUp: number;
   readonly slewDown: number;
@@ -107,6 +102,8 @@ export const loopsSchema = record(
       set_point: text().optional().describe('of another loop'),
       low: limit.optional(),
       high: limit.optional(),
+      flow_low: limit.optional().describe('least flow that a ratio sets, without wild flow too'),
+      flow_high: limit.optional().describe('most flow that a ratio sets'),
       slew: slew.optional(),
       flow_lag: time.optional(),
       flow_filter: time.optional().describe('of the measured flow that the ratio multiplies'),

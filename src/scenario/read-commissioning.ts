@@ -5,6 +5,7 @@ import { readCompare } from './compare.ts';
 import { type Basis, content } from './content.ts';
 import type { Figure } from './fields.ts';
 import { jointsOf } from './joints.ts';
+import { checkOwner } from './loop-ownership.ts';
 import { hint } from './nearest.ts';
 import { checkNeeds } from './needs.ts';
 import { network } from './network.ts';
@@ -188,6 +189,7 @@ class ProcedureReader {
   #move(m: NonNullable<RawProcedure['moves']>[number], i: number): Procedure['moves'][number][] {
     const { outline, basis, contents, feeds, folder } = this.#around;
     const path = ['procedures', this.#name, 'moves', i];
+    checkOwner(m, path, this.#s.loops ?? [], this.#problems);
     // A procedure may last as long as it needs: the horizon follows it.
     const horizon = { kind: 'a time', value: Number.POSITIVE_INFINITY, text: '' } as const;
     const at: Figure = m.at ?? { kind: 'a time', value: 0, text: '0 h' };

@@ -1,11 +1,12 @@
 import { readAnalyser } from './analyser.ts';
 import { type Basis, carrierFlow, concentration, contentKinds } from './content.ts';
-import { Ownership } from './loop-ownership.ts';
+import { isLoopChange, loopsUnder } from './loop-changes.ts';
+import { checkOwner, Ownership } from './loop-ownership.ts';
 import type { Loop, Move, RawLoop } from './loops.ts';
 import { hint } from './nearest.ts';
 import type { Outline, Target } from './outline.ts';
 import type { Problem } from './refusal.ts';
-import type { Change, Path, Scenario } from './scenario.ts';
+import type { Path, Scenario } from './scenario.ts';
 import type { RawScenario } from './schema.ts';
 import { show } from './show.ts';
 import { type Kind, quantity } from './units.ts';
@@ -37,27 +38,23 @@ export function withLoops(
         problems.push({ path: ['upsets', i, 'put'], message: 'there is no loop to be put anywhere' });
     return s;
   }
-  const read = entries.flatMap(([name, l]) => new LoopReader(name, l, s, around, problems).read() ?? []);
-  const loops = new Ownership(raw, s, read, problems).loops();
-  const own = (c: Change): boolean =>
-    entries.some(
-      ([name]) =>
-        /^\.(set point|mode|output)$/.test(c.quantity.slice(name.length)) && c.quantity.startsWith(name),
-    );
-  return { ...s, upsets: s.upsets.filter((c) => !own(c)), loops };
+  const read = entries.flatMap(([name, l]) => new LoopReader(name, l, around, problems).read() ?? []);
+  const loops = loopsUnder(read, s.upsets);
+  new Ownership(s, loops, problems).check();
+  for (const [i, u] of (raw.upsets ?? []).entries()) checkOwner(u, ['upsets', i], loops, problems);
+  const names = entries.map(([name]) => ({ name }));
+  return { ...s, upsets: s.upsets.filter((c) => !isLoopChange(names, c)), loops };
 }
 
 class LoopReader {
   readonly #name: string;
   readonly #raw: RawLoop;
-  readonly #s: Scenario;
   readonly #around: LoopSurroundings;
   readonly #problems: Problem[];
 
-  constructor(name: string, raw: RawLoop, s: Scenario, around: LoopSurroundings, problems: Problem[]) {
+  constructor(name: string, raw: RawLoop, around: LoopSurroundings, problems: Problem[]) {
     this.#name = name;
     this.#raw = raw;
-    this.#s = s;
     this.#around = around;
     this.#problems = problems;
   }
@@ -105,20 +102,8 @@ class LoopReader {
         auto: (c.mode ?? 'auto') === 'auto',
       },
       feedforward: this.#feedforward(move.kind),
-      setPoint: this.#changes('set point'),
-      output: this.#changes('output'),
-      modes: this.#changes('mode').flatMap((q) => {
-        const auto = 'to' in q.how && q.how.to === 1;
-        const back =
-          q.lasts === null ? [] : [{ at: q.at + q.lasts, auto: !auto, words: `${this.#name} back` }];
-        return [{ at: q.at, auto, words: q.words }, ...back];
-      }),
-      outOfService: [],
+      changes: [],
     };
-  }
-
-  #changes(what: string): Change[] {
-    return this.#s.upsets.filter((c) => c.quantity === `${this.#name}.${what}`);
   }
 
   /** A concentration in a stream, or null with a complaint. */
@@ -199,6 +184,7 @@ class LoopReader {
     if (kind === 'set point')
       for (const k of ['flow_lag', 'flow_filter'] as const)
         if (move[k]) this.#complain('belongs to the loop that moves the flow', 'move', k);
+    const [flowLow, flowHigh] = this.#flowLimits(kind);
     const up = typeof move.slew === 'object' ? move.slew.up : move.slew;
     const down = typeof move.slew === 'object' ? move.slew.down : move.slew;
     return {
@@ -207,11 +193,37 @@ class LoopReader {
       over: kind === 'ratio' ? parts[1] : null,
       low,
       high,
+      flowLow,
+      flowHigh,
       slewUp: this.#slew(up, kind, inner),
       slewDown: this.#slew(down, kind, inner),
       flowLag: move.flow_lag?.value ?? 0,
       flowFilter: move.flow_filter?.value ?? 0,
     };
+  }
+
+  /** Least and most of the flow that a ratio sets. */
+  #flowLimits(kind: Move['kind']): readonly [number, number] {
+    const { move } = this.#raw;
+    const stated = (key: 'flow_low' | 'flow_high', without: number): number => {
+      const text = move[key];
+      if (text === undefined) return without;
+      if (kind !== 'ratio') {
+        const instead = kind === 'flow' ? 'low and high are limits of the flow already' : 'it moves no flow';
+        this.#complain(`belongs to a ratio; ${instead}`, 'move', key);
+        return without;
+      }
+      const value = this.#figure(text, 'flow', null, 'move', key);
+      if (value < 0) this.#complain(`must not be negative, got ${show(text)}`, 'move', key);
+      return value;
+    };
+    const [low, high] = [stated('flow_low', 0), stated('flow_high', Infinity)];
+    if (low >= high)
+      this.#complain(
+        `flow_low ${show(move.flow_low)} is not below flow_high ${show(move.flow_high)}`,
+        'move',
+      );
+    return [low, high];
   }
 
   #innerTarget(name: string): (Target & { component: string }) | null {
@@ -228,9 +240,9 @@ class LoopReader {
   #flow(path: string, key: string): boolean {
     const { outline } = this.#around;
     const t = outline.changeable.get(path);
-    if (t?.what === 'flow' && !path.endsWith('.output')) return true;
+    if (t?.what === 'flow' && path.endsWith('.flow')) return true;
     if (!outline.whole || !outline.named) return false;
-    const flows = [...outline.changeable].filter(([k, q]) => q.what === 'flow' && !k.endsWith('.output'));
+    const flows = [...outline.changeable].filter(([k, q]) => q.what === 'flow' && k.endsWith('.flow'));
     const known = flows.map(([k]) => k);
     const message = outline.limitable.has(path)
       ? `${show(path)} is a result; a loop moves the flow of a feed or a tank: ${known.join(', ')}`

@@ -3,6 +3,8 @@ import { readChange } from './changes.ts';
 import { removalShares } from './circuit.ts';
 import { concentration, contentKinds } from './content.ts';
 import type { Figure } from './fields.ts';
+import { statedChanges } from './loop-changes.ts';
+import { checkOwner } from './loop-ownership.ts';
 import { type Frame, readBegin, readClock, readEnd, readWhen } from './moment.ts';
 import { hint } from './nearest.ts';
 import { checkNeeds } from './needs.ts';
@@ -31,7 +33,7 @@ export function readRehearsing(
   const instruments = Object.entries(raw.analysers ?? {}).flatMap(
     ([name, q]) => instrumentOf(name, q, around, problems) ?? [],
   );
-  const upsets = new Set(s.upsets.map((u) => `${u.at} ${u.words}`)).size;
+  const upsets = new Set(statedChanges(s).map((u) => `${u.at} ${u.words}`)).size;
   const frame: Frame = {
     upsets,
     instruments,
@@ -198,6 +200,7 @@ class AnswerReader {
     const horizon = { kind: 'a time', value: Number.POSITIVE_INFINITY, text: '' } as const;
     const shares = removalShares(this.#s.tanks, this.#s.solutes);
     const path = ['answers', name, 'moves', i];
+    checkOwner(m, path, this.#s.loops ?? [], problems);
     const setting = { path, outline, basis, contents, shares, feeds, horizon, folder };
     return readChange({ ...m, at }, setting, problems);
   }

@@ -12,6 +12,7 @@ export interface TypedMove {
   readonly by?: string;
   readonly over?: string;
   readonly for?: string;
+  readonly put?: string;
 }
 
 /** Paths that moves may change, of a scenario that is sound. */
@@ -19,7 +20,8 @@ export const changeablePaths = (text: string): string[] => [
   ...outline(parseDocument(text.normalize('NFC')).toJS()).changeable.keys(),
 ];
 
-const FORM = "expected a move such as 'organic tank.flow +10 %', with 'over 10 min' or 'for 2 h' after it";
+const FORM =
+  "expected a move such as 'organic tank.flow +10 %', with 'over 10 min', 'for 2 h' or 'put AIC-101 in manual' after it";
 
 /**
  * A line such as `organic tank.flow +10 % over 10 min for 2 h`, `leach liquor.flow to 380 m^3/h` or
@@ -39,13 +41,17 @@ export function typedMove(
     return { wrong: `unknown quantity ${show(name)}${hint(name, changeable)}; ${FORM}` };
   }
   const [said, ...times] = ` ${text.slice(change.length)}`
-    .split(/\s+(?=(?:over|for)\s)/)
+    .split(/\s+(?=(?:over|for|put)\s)/)
     .map((p) => p.trim());
   if (said === '') return { wrong: `what is to become of ${change}? ${FORM}` };
   const after = (key: string): string | undefined =>
     times.find((p) => p.startsWith(`${key} `))?.slice(key.length + 1);
-  const [over, lasts] = [after('over'), after('for')];
-  const rest = { ...(over ? { over } : {}), ...(lasts ? { for: lasts } : {}) };
+  const [over, lasts, put] = [after('over'), after('for'), after('put')];
+  const rest = {
+    ...(over ? { over } : {}),
+    ...(lasts ? { for: lasts } : {}),
+    ...(put ? { put } : {}),
+  };
   if (/^[+−-]/.test(said)) return { time, change, by: said.replace(/^([+−-])\s+/, '$1'), ...rest };
   return { time, change, to: said.replace(/^to /, ''), ...rest };
 }

@@ -1,5 +1,6 @@
 import type { Plant } from '../plant/assemble.ts';
 import { mostOf, track } from '../plant/course.ts';
+import { isLoopChange } from '../scenario/loop-changes.ts';
 import type { Change } from '../scenario/scenario.ts';
 import { makeSchedule, type Track } from '../solve/schedule.ts';
 import type { Schedule } from '../solve/system.ts';
@@ -37,7 +38,7 @@ export function upsetSchedule(
   horizon: number,
   background: readonly Change[] = [],
 ): Upsets {
-  const changes = [...background, ...stated];
+  const changes = [...background, ...stated].filter((c) => !isLoopChange(plant.scenario.loops, c));
   const clamped: { quantity: string; time: number; at: number }[] = [];
   const quantities = [...new Set(changes.map((c) => c.quantity))];
   const tracks = quantities.map((quantity): Track => {

@@ -58,6 +58,7 @@ export const spec = (plan: Plan = {}): LoopSpec => ({
   modes: [],
   service: [],
   setPoint: { times: [0], values: [0] },
+  limits: null,
   manual: null,
   feedforward: null,
   inputs: { output: 0, gate: 4, measurement: 2, setPoint: 3, flow: -1, wild: -1, overruling: [] },
@@ -82,7 +83,16 @@ export const spec = (plan: Plan = {}): LoopSpec => ({
     setPointWeight: 1,
     ...plan.settings,
   },
-  move: { low: -1e6, high: 1e6, up: Infinity, down: Infinity, leastWild: 0, ...plan.move },
+  move: {
+    low: -1e6,
+    high: 1e6,
+    up: Infinity,
+    down: Infinity,
+    leastWild: 0,
+    flowLow: 0,
+    flowHigh: Infinity,
+    ...plan.move,
+  },
 });
 
 export interface Followed {

@@ -140,10 +140,11 @@ describe('a loop in automatic', () => {
   it('gives way to an upset that puts it in manual, and goes on afterwards without a bump', () => {
     const r = run(plant(loop(), up('at: 2 h, change: lean.flow, by: +20 %, for: 3 h, put: AIC-1 in manual')));
     const flow = column(r, 'lean.flow');
-    expect(flow[24]).toBeCloseTo((1.2 * 430) / 3600, 9);
+    // A fifth more than what the loop had come to.
+    expect(flow[24]).toBeCloseTo(1.2 * flow[0], 9);
     expect(r.loops[0].automaticAtEnd).toBe(true);
     // Back in service it goes on from the flow as it is then.
-    expect(column(r, 'AIC-1.output')[30]).toBeCloseTo(430 / 420, 12);
+    expect(column(r, 'AIC-1.output')[30]).toBeCloseTo(column(r, 'AIC-1.output')[0], 9);
     expect(last(column(r, 'raffinate.copper'))).toBeGreaterThan(0.3);
   });
 

@@ -14,6 +14,8 @@ const MOST_ANSWERS = 5;
 const MOST_LIMITS = 2;
 const MOST_INPUTS = 3;
 const MOST_LEVELS = 3;
+/** Flows set by loops, out of the panels for inputs. */
+const MOST_MOVED = 2;
 const NOTHING = 'nothing done';
 
 /** The limited quantities in every run over the one in which nothing is done, and what was changed below. */
@@ -21,7 +23,12 @@ export const answers: Picture<Rehearsed> = {
   name: () => 'answers.png',
   config({ result: r }) {
     const limited = [...new Set(r.nothing.limits.map((l) => l.path))].slice(0, MOST_LIMITS);
-    const panels = [...limited.map((path) => limitPanel(r, path)), ...inputPanels(r)];
+    const moved = [...new Set(r.shown.moved.map((l) => l.path))].slice(0, MOST_MOVED);
+    const panels = [
+      ...limited.map((path) => limitPanel(r, path)),
+      ...moved.map((path) => panel(r, path, r.shown.moved, 1)),
+      ...inputPanels(r).slice(0, MOST_INPUTS - moved.length),
+    ];
     return sheet(r, 'every answer over the upset', verdicts(r), panels, panels[0].lines.length);
   },
 };

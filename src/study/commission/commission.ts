@@ -1,6 +1,7 @@
 import type { Plant } from '../../plant/assemble.ts';
+import { statedChanges, withChanges } from '../../scenario/loop-changes.ts';
 import { PLAIN_START } from '../../scenario/read-commissioning.ts';
-import type { Scenario } from '../../scenario/scenario.ts';
+import type { Change, Scenario } from '../../scenario/scenario.ts';
 import type { Watcher } from '../../solve/integrate.ts';
 import type { RunResult } from '../result.ts';
 import { type RunSettings, run } from '../run.ts';
@@ -11,6 +12,7 @@ import { allCome, type ComesGood, comesGood, judged, type OnSpec, onSpec, outlet
 import { Keeper } from './kept.ts';
 import { movesEnd } from './moves.ts';
 import { followProcedure, measure, rankStarts, type StartResult, startResult } from './procedures.ts';
+import { withoutNoise } from './quiet.ts';
 import { slowest } from './rest.ts';
 import { type SamplePlan, samplePlan } from './sampling.ts';
 import { goodTimes } from './waiting.ts';
@@ -73,8 +75,9 @@ const ROOM = 1.35;
  */
 export function commission(scenario: Scenario, settings: RunSettings): StartUp {
   const { commissioning } = scenario;
-  const moves = scenario.upsets.filter((u) => u.at === 0);
-  const s: Scenario = { ...scenario, upsets: moves };
+  const stated = statedChanges(scenario);
+  const moves = stated.filter((u) => u.at === 0);
+  const s = withChanges(withoutNoise(scenario), moves);
   const compare = commissioning?.compare ?? null;
   const lastSample = Math.max(0, ...(compare?.columns.flatMap((c) => c.times) ?? []));
   const how = {
@@ -154,7 +157,7 @@ export function commission(scenario: Scenario, settings: RunSettings): StartUp {
     plain,
     comparison: compare ? compareWith(plant, compare, keeper.kept) : null,
     begun: words(moves),
-    leftOut: words(scenario.upsets.filter((u) => u.at > 0)),
+    leftOut: words(stated.filter((u) => u.at > 0)),
     extended: followed.settled && (lastGood ?? 0) > s.horizon,
     proper: s,
     fan: followed.settled ? fanOf(quantities, s.solutes, span) : null,
@@ -171,7 +174,7 @@ function fanOf(list: readonly ComesGood[], solutes: readonly string[], span: num
 }
 
 /** One upset can stand for changes of several inputs. */
-const words = (list: Scenario['upsets']): string[] => [...new Set(list.map((u) => u.words))];
+const words = (list: readonly Change[]): string[] => [...new Set(list.map((u) => u.words))];
 
 /** What comes good last of what people sample, and how its deviation was seen to fall. */
 function tail(list: readonly ComesGood[]): CommissionResult['tail'] {

@@ -1,10 +1,13 @@
-import { assemble, type Plant } from '../../plant/assemble.ts';
+import type { SampledLoop } from '../../control/loop.ts';
+import type { Plant } from '../../plant/assemble.ts';
 import type { Scenario } from '../../scenario/scenario.ts';
 import { type Event, integrate, type Watcher } from '../../solve/integrate.ts';
 import type { Stop } from '../../solve/outcome.ts';
 import type { F } from '../../solve/system.ts';
+import { type ControlledPlant, controlled, devicesOf, resumedDevices } from '../control/joined.ts';
+import { restUnderLoops } from '../control/rest.ts';
 import { outputsAt } from '../records.ts';
-import { optionsOf, type RunSettings, startModes, startState } from '../run.ts';
+import { begin, optionsOf, type RunSettings, startModes } from '../run.ts';
 import { ApproachWatch, changeOf, limitLine, PERCENTS, watchedLine } from './approach.ts';
 import { inputsAfter, movesEnd, movesSchedule } from './moves.ts';
 import { type NoRest, type Rest, repels, restFrom, slowest } from './rest.ts';
@@ -65,8 +68,9 @@ const SAME = 2e-3;
  * @throws Incomplete where a steady start was asked for and none was found; Refusal as `assemble`.
  */
 export function follow(s: Scenario, settings: FollowSettings): Followed {
-  const plant = assemble(s);
-  const initial = startState(plant);
+  const made = controlled(s);
+  const { plant, initial, atRest } = begin(made);
+  const joined: ControlledPlant = { ...made, plant };
   const modes = startModes(plant).modes ?? new Map<number, number>();
   const quantities = watched(plant).filter(
     (q) => !settings.outletsOnly || q.kind === 'outlet' || q.kind === 'tank',
@@ -74,11 +78,11 @@ export function follow(s: Scenario, settings: FollowSettings): Followed {
   const after = movesEnd(s.upsets);
   const from = inputsAfter(plant, s.upsets);
   for (const [i, v] of modes) from[i] = v;
-  let rest = restFrom(plant, initial, from, 0, settings.modes);
+  let rest = restUnder(joined, inTheEnd(joined), from, initial, Math.max(0, after), settings.modes);
   // Beyond the last corner of the moves: at the corner itself the inputs are still those before it.
   const asked = Math.max(settings.atLeast ?? s.horizon, after > 0 ? after + 1 : 0);
   for (let attempt = 1; ; attempt++) {
-    const made = new Attempt(plant, quantities, rest, initial, modes, settings);
+    const made = new Attempt(joined, atRest, quantities, rest, initial, modes, settings);
     // Nearer to rest each time: what it goes for is then the clearer.
     const next = made.run(asked * 2 ** (attempt - 1), after, attempt < ATTEMPTS);
     if (next === null) return { ...made.result(), asked: s.horizon };
@@ -86,7 +90,31 @@ export function follow(s: Scenario, settings: FollowSettings): Followed {
   }
 }
 
+/** A loop as it will stand when all that it is told has been done. */
+type Standing = Pick<SampledLoop, 'name' | 'automatic'>;
+
+/** Modes that the loops are told last; as they start where they are told none. */
+const inTheEnd = (c: ControlledPlant): Standing[] =>
+  c.loops.map(({ spec }) => ({ name: spec.name, automatic: spec.modes.at(-1)?.auto ?? spec.auto }));
+
+/** The rest that belongs to a state, loops in automatic at their set points or where a limit of theirs keeps them. */
+function restUnder(
+  c: ControlledPlant,
+  loops: readonly Standing[],
+  w: F,
+  x: F,
+  time: number,
+  modes: number,
+): Rest | NoRest {
+  const led = restUnderLoops(c, loops, { inputs: w, state: x, time });
+  if (led === null) return { reason: 'the loops come to no rest' };
+  const rest = restFrom(c.plant, x, led.inputs, time, modes);
+  return 'state' in rest ? { ...rest, loops: led.loops } : rest;
+}
+
 class Attempt {
+  readonly #joined: ControlledPlant;
+  #devices: readonly SampledLoop[];
   readonly #plant: Plant;
   readonly #quantities: readonly Watched[];
   #rest: Rest | NoRest;
@@ -106,13 +134,17 @@ class Attempt {
   #steps = 0;
 
   constructor(
-    plant: Plant,
+    joined: ControlledPlant,
+    atRest: boolean,
     quantities: readonly Watched[],
     rest: Rest | NoRest,
     initial: F,
     modes: ReadonlyMap<number, number>,
     settings: FollowSettings,
   ) {
+    const { plant } = joined;
+    this.#joined = joined;
+    this.#devices = devicesOf(joined, atRest);
     this.#plant = plant;
     this.#quantities = quantities;
     this.#rest = rest;
@@ -188,19 +220,21 @@ class Attempt {
         schedule: movesSchedule(this.#plant, scenario.upsets, this.#time, to),
         initial: this.#x,
         modes: this.#modes,
+        devices: this.#devices,
       },
       optionsOf(this.#settings),
       [this.#approach, keep, ...this.#others],
     );
     this.#x = run.state;
     this.#time = run.time;
+    this.#devices = resumedDevices(this.#joined, this.#devices, run.time);
     this.#stop = run.stop;
     this.#steps += run.work.steps;
     this.#events.push(...run.events);
   }
 
   #restNow(modes: number): Rest | NoRest {
-    return restFrom(this.#plant, this.#x, this.#w, this.#time, modes);
+    return restUnder(this.#joined, this.#devices, this.#w, this.#x, this.#time, modes);
   }
 
   /** Whether something keeps happening again and again, such as a pump that runs its tank dry. */

@@ -1,5 +1,6 @@
 import type { Plant } from '../../plant/assemble.ts';
 import { mostOf, track } from '../../plant/course.ts';
+import { isLoopChange } from '../../scenario/loop-changes.ts';
 import type { Change } from '../../scenario/scenario.ts';
 import { makeSchedule, type Track } from '../../solve/schedule.ts';
 import type { F, Schedule } from '../../solve/system.ts';
@@ -17,10 +18,11 @@ export function movesEnd(moves: readonly Change[]): number {
 
 /** The inputs of a plant under moves, from one time to another. */
 export function movesSchedule(plant: Plant, moves: readonly Change[], from: number, to: number): Schedule {
-  const quantities = [...new Set(moves.map((c) => c.quantity))];
+  const plain = moves.filter((c) => !isLoopChange(plant.scenario.loops, c));
+  const quantities = [...new Set(plain.map((c) => c.quantity))];
   const tracks = quantities.map((quantity): Track => {
     const input = plant.system.inputs.findIndex((i) => i.path === quantity);
-    const own = moves.filter((c) => c.quantity === quantity);
+    const own = plain.filter((c) => c.quantity === quantity);
     const line = track(plant.inputs[input], own, to, mostOf(plant.system.inputs[input]));
     return { input, times: line.times, values: line.values };
   });

@@ -2,6 +2,7 @@ import type { Plant } from '../../plant/assemble.ts';
 import { type Mode, slowModes } from '../../solve/modes.ts';
 import { steadyState } from '../../solve/steady.ts';
 import type { F } from '../../solve/system.ts';
+import type { LoopAtRest } from '../control/settle.ts';
 import { outputsAt } from '../records.ts';
 import { drifts } from '../steady.ts';
 
@@ -22,6 +23,8 @@ export interface Rest {
   /** Slowest first. */
   readonly modes: readonly Mode[];
   readonly drifts: readonly Drift[];
+  /** How the loops stand there; none where no loop is in automatic. */
+  readonly loops: readonly LoopAtRest[];
 }
 
 /** Why there is none, in words. */
@@ -49,6 +52,7 @@ export function restFrom(plant: Plant, x: F, w: F, time: number, modes: number):
     outputs: outputsAt(plant, state, w),
     modes: modes > 0 ? slowModes(system, state, w, parameters, modes) : [],
     drifts: drifts(plant, state, change).map((d) => ({ ...d, until: time + Math.max(0, d.until) })),
+    loops: [],
   };
 }
 

@@ -4,8 +4,9 @@ import type { FeedforwardSpec, LoopSpec } from '../../control/spec.ts';
 import { type Joined, join, type Shown, type Station } from '../../control/stations.ts';
 import { type AssembleOptions, assemble, type Plant } from '../../plant/assemble.ts';
 import { track } from '../../plant/course.ts';
+import { changesOf, loopsUnder, modesOf, outOfService, statedChanges } from '../../scenario/loop-changes.ts';
 import type { Loop } from '../../scenario/loops.ts';
-import type { Scenario } from '../../scenario/scenario.ts';
+import type { Change, Scenario } from '../../scenario/scenario.ts';
 import type { F } from '../../solve/system.ts';
 
 /** A plant with its loops: the System has stations and shown values joined to it, and devices can be made for a run. */
@@ -30,15 +31,25 @@ export interface JoinedLoop {
 /** Share of the wild flow at the start below which a ratio means nothing. */
 const NO_FLOW = 1e-3;
 
+export interface ControlOptions extends AssembleOptions {
+  /** Changes that some run may make besides those of the scenario, about loops and about what they move. */
+  readonly possible?: readonly Change[];
+}
+
 /** Scenario → plant with its loops. Without loops it is the plant itself. @throws Refusal as `assemble` does. */
-export function controlled(s: Scenario, options: AssembleOptions = {}): ControlledPlant {
+export function controlled(s: Scenario, options: ControlOptions = {}): ControlledPlant {
   const loops = s.loops ?? [];
   if (loops.length === 0) return { plant: assemble(s, options), loops: [] };
-  const awake = loops.map((l) => isAwake(l, s));
+  const awake = loopsUnder(loops, [...statedChanges(s), ...(options.possible ?? [])]).map((l) =>
+    isAwake(l, s, options.possible ?? []),
+  );
   const moved = loops.flatMap((l, i) => (awake[i] && l.move.kind !== 'set point' ? [l.move.quantity] : []));
   const inner = assemble(s, {
     ...options,
-    moving: new Set([...(options.moving ?? s.upsets.map((u) => u.quantity)), ...moved]),
+    moving: new Set([
+      ...(options.moving ?? [...s.upsets, ...(options.possible ?? [])].map((u) => u.quantity)),
+      ...moved,
+    ]),
   });
   const input = (path: string): number => inner.system.inputs.findIndex((q) => q.path === path);
   const value = (path: string): number => inner.inputs[input(path)];
@@ -53,6 +64,8 @@ export function controlled(s: Scenario, options: AssembleOptions = {}): Controll
             wild: l.move.over === null ? -1 : input(l.move.over),
             lag: l.move.flowLag,
             filter: l.move.flowFilter,
+            low: l.move.flowLow,
+            high: l.move.flowHigh,
             output: outputNamed(l, stated[i]),
           },
         ]
@@ -100,23 +113,53 @@ export function controlled(s: Scenario, options: AssembleOptions = {}): Controll
 }
 
 /** Devices for one run, in the order in which they act at one moment: an outer loop before the one it leads. */
-export function devicesOf(c: ControlledPlant, atRest: boolean): SampledLoop[] {
-  const made: SampledLoop[] = [];
-  const inners = c.loops.filter((l) => l.inner < 0).map((l) => new SampledLoop(l.spec, null, atRest));
+export const devicesOf = (c: ControlledPlant, atRest: boolean): SampledLoop[] =>
+  inOrder(c, (spec, inner) => new SampledLoop(spec, inner, atRest));
+
+/** Devices for a run that goes on at `t` [s] from where others were. */
+export const resumedDevices = (c: ControlledPlant, were: readonly SampledLoop[], t: number): SampledLoop[] =>
+  inOrder(c, (spec, inner) => {
+    const was = were.find((d) => d.name === spec.name) as SampledLoop;
+    return SampledLoop.resumed(was, spec, inner, t);
+  });
+
+function inOrder(
+  c: ControlledPlant,
+  make: (spec: LoopSpec, inner: SampledLoop | null) => SampledLoop,
+): SampledLoop[] {
+  const inners = c.loops.filter((l) => l.inner < 0).map((l) => make(l.spec, null));
   const byName = new Map(inners.map((d) => [d.name, d]));
-  for (const l of c.loops)
-    if (l.inner >= 0) made.push(new SampledLoop(l.spec, byName.get(c.loops[l.inner].loop.name), atRest));
-  return [...made, ...inners];
+  const outers = c.loops.flatMap((l) =>
+    l.inner < 0 ? [] : [make(l.spec, byName.get(c.loops[l.inner].loop.name) ?? null)],
+  );
+  return [...outers, ...inners];
+}
+
+/** The same plant with its loops told other things; `possible` of `controlled` must have held them. */
+export function retold(c: ControlledPlant, changes: readonly Change[]): ControlledPlant {
+  if (c.loops.length === 0) return c;
+  const loops = loopsUnder(
+    c.loops.map((l) => l.loop),
+    changes,
+  );
+  return {
+    ...c,
+    loops: c.loops.map((l, i) => {
+      const isInner = l.spec.setPoint.times.length === 0;
+      const spec = { ...l.spec, ...told(loops[i], c.plant, isInner, l.spec.inputs) };
+      return { ...l, loop: loops[i], spec };
+    }),
+  };
 }
 
 /** In manual, with nothing that it would have to follow, a loop leaves the plant as it is. */
-function isAwake(l: Loop, s: Scenario): boolean {
+function isAwake(l: Loop, s: Scenario, possible: readonly Change[]): boolean {
   return (
     l.controller.auto ||
-    l.modes.length > 0 ||
-    l.output.length > 0 ||
-    l.outOfService.length > 0 ||
-    (l.move.over !== null && s.upsets.some((u) => u.quantity === l.move.over)) ||
+    changesOf(l, 'mode').length > 0 ||
+    changesOf(l, 'output').length > 0 ||
+    outOfService(l).length > 0 ||
+    (l.move.over !== null && [...s.upsets, ...possible].some((u) => u.quantity === l.move.over)) ||
     (s.loops ?? []).some((o) => o.move.kind === 'set point' && o.move.quantity === l.name)
   );
 }
@@ -169,7 +212,6 @@ function specOf(l: Loop, plant: Plant, isInner: boolean, inputs: LoopSpec['input
   const { outputs } = plant.system;
   const at = (path: string): number => outputs.findIndex((o) => o.path === path);
   const flowOf = (path: string): number => at(`${path.slice(0, path.lastIndexOf('.'))}.flow`);
-  const { horizon } = plant.scenario;
   const { controller: c, feedforward: f } = l;
   const wild = inputs.wild < 0 ? 0 : plant.inputs[inputs.wild];
   const ahead: FeedforwardSpec | null = f && {
@@ -194,6 +236,8 @@ function specOf(l: Loop, plant: Plant, isInner: boolean, inputs: LoopSpec['input
       up: l.move.slewUp,
       down: l.move.slewDown,
       leastWild: NO_FLOW * wild,
+      flowLow: l.move.flowLow,
+      flowHigh: l.move.flowHigh,
     },
     settings: {
       sense: c.action === 'direct' ? 1 : -1,
@@ -204,30 +248,50 @@ function specOf(l: Loop, plant: Plant, isInner: boolean, inputs: LoopSpec['input
       setPointWeight: c.setPointWeight,
     },
     runs: c.scan === null ? 'on each result' : 'scan',
+    ...told(l, plant, isInner, inputs),
     auto: c.auto,
-    modes: modesOf(l),
-    service: l.outOfService
-      .flatMap((q) => [{ at: q.from, on: false }, ...(q.to === null ? [] : [{ at: q.to, on: true }])])
-      .sort((a, b) => a.at - b.at),
-    setPoint: isInner ? { times: [], values: [] } : line(l.keepAt, l.setPoint, horizon),
-    manual: l.output.length === 0 ? null : line(plant.inputs[inputs.output], l.output, horizon),
     feedforward: ahead,
     inputs,
   };
 }
 
-function line(initial: number, changes: Loop['setPoint'], horizon: number): Line {
+/** What a loop is told over the time of a run. */
+function told(
+  l: Loop,
+  plant: Plant,
+  isInner: boolean,
+  inputs: LoopSpec['inputs'],
+): Pick<LoopSpec, 'modes' | 'service' | 'setPoint' | 'limits' | 'manual'> {
+  const { horizon } = plant.scenario;
+  const [low, high, output] = (['low', 'high', 'output'] as const).map((what) => changesOf(l, what));
+  return {
+    modes: modeChanges(l),
+    service: outOfService(l)
+      .flatMap((q) => [{ at: q.from, on: false }, ...(q.to === null ? [] : [{ at: q.to, on: true }])])
+      .sort((a, b) => a.at - b.at),
+    setPoint: isInner ? { times: [], values: [] } : line(l.keepAt, changesOf(l, 'set point'), horizon),
+    limits:
+      low.length + high.length === 0
+        ? null
+        : { low: line(l.move.low, low, horizon), high: line(l.move.high, high, horizon) },
+    manual: output.length === 0 ? null : line(plant.inputs[inputs.output], output, horizon),
+  };
+}
+
+function line(initial: number, changes: readonly Change[], horizon: number): Line {
   if (changes.length === 0) return { times: [0], values: [initial] };
-  const { times, values } = track(initial, changes, horizon);
+  // A procedure goes on for as long as it needs.
+  const end = Math.max(horizon, ...changes.map((c) => c.at + (c.lasts ?? 0) + c.over + 1));
+  const { times, values } = track(initial, changes, end);
   return { times, values };
 }
 
 /** Modes as the scenario sets them; what puts a loop in manual for a while gives back the mode that it had. */
-function modesOf(l: Loop): LoopSpec['modes'] {
-  const said = l.modes.map((m) => ({ at: m.at, auto: m.auto }));
+function modeChanges(l: Loop): LoopSpec['modes'] {
+  const said = modesOf(l).map((m) => ({ at: m.at, auto: m.auto }));
   const before = (t: number): boolean =>
     said.filter((m) => m.at < t).sort((a, b) => b.at - a.at)[0]?.auto ?? l.controller.auto;
-  const taken = l.outOfService.flatMap((q) => [
+  const taken = outOfService(l).flatMap((q) => [
     { at: q.from, auto: false },
     ...(q.to === null || !before(q.from) ? [] : [{ at: q.to, auto: true }]),
   ]);

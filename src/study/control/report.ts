@@ -15,7 +15,13 @@ export interface LoopReport extends LoopHistory {
   readonly moves: number;
 }
 
-export function loopReports(c: ControlledPlant, devices: readonly SampledLoop[], run: Run): LoopReport[] {
+/** `from`: s at which the run began. */
+export function loopReports(
+  c: ControlledPlant,
+  devices: readonly SampledLoop[],
+  run: Run,
+  from = 0,
+): LoopReport[] {
   return c.loops.map(({ loop }) => {
     const d = devices.find((q) => q.name === loop.name) as SampledLoop;
     d.finish(run.time);
@@ -25,7 +31,7 @@ export function loopReports(c: ControlledPlant, devices: readonly SampledLoop[],
       automaticAtEnd: d.automatic,
       outputAtEnd: d.output.at(run.time),
       measurementAtEnd: d.measurement,
-      span: run.time,
+      span: run.time - from,
       moves: run.moves,
     };
   });

@@ -1,3 +1,5 @@
+import { limitsAt } from '../../control/limits.ts';
+import { valueAt } from '../../control/line.ts';
 import { crossing } from '../../math/roots.ts';
 import { type Steady, steadyState } from '../../solve/steady.ts';
 import type { F } from '../../solve/system.ts';
@@ -33,15 +35,34 @@ const DIGITS = 1e-11;
 /** A measurement this near to its set point, relative to it, is there. */
 const THERE = 1e-10;
 
+/** Where the search begins, and how the loops stand; as the scenario starts them by default. */
+export interface SettleFrom {
+  readonly inputs: F;
+  readonly state: F;
+  readonly automatic: (loop: string) => boolean;
+  /** s at which set points and limits count. */
+  readonly time: number;
+}
+
+const asStarted = (c: ControlledPlant): SettleFrom => ({
+  inputs: c.plant.inputs,
+  state: c.plant.barren,
+  automatic: (name) => c.loops.some((l) => l.loop.name === name && l.loop.controller.auto),
+  time: 0,
+});
+
 /**
  * The steady state with every loop in automatic at its set point, its output the unknown; where no output between the
  * limits does that, at the limit to which its action drives it. An outer loop is led to its set point by the output of
  * the loop that it leads, whose own set point follows.
  */
-export function settle(c: ControlledPlant): SettleResult {
+export function settle(c: ControlledPlant, from: SettleFrom = asStarted(c)): SettleResult {
   const { plant } = c;
-  const w = Float64Array.from(plant.inputs);
-  let state = Float64Array.from(plant.barren);
+  const w = Float64Array.from(from.inputs);
+  let state = Float64Array.from(from.state);
+  const automatic = (l: JoinedLoop): boolean => from.automatic(l.loop.name);
+  const keepsAt = ({ spec, loop }: JoinedLoop): number =>
+    spec.setPoint.times.length === 0 ? loop.keepAt : valueAt(spec.setPoint, from.time);
   let iterations = 0;
   let failed: (Steady & { found: false }) | null = null;
   let residual = 0;
@@ -60,34 +81,31 @@ export function settle(c: ControlledPlant): SettleResult {
   const binds = new Map<JoinedLoop, 'low' | 'high'>();
   const led = new Map<JoinedLoop, Asked>();
   if (!rest() && failed) return failed;
-  const active = c.loops.filter((l) => l.loop.controller.auto && l.inner < 0);
-  const leaders = active.map((l) => leaderOf(c, l));
+  const active = c.loops.filter((l) => automatic(l) && l.inner < 0);
+  const leaders = active.map((l) => leaderOf(c, l, automatic));
   for (let sweep = 0; sweep < SWEEPS; sweep++) {
     let moved = false;
     for (const [k, l] of active.entries()) {
       const judge = leaders[k] ?? l;
-      const gap = (): number => measured(judge) - judge.loop.keepAt;
+      const keep = keepsAt(judge);
+      const gap = (): number => measured(judge) - keep;
       if (
         sweep > 0 &&
-        (binds.has(l) || led.has(judge) || Math.abs(gap()) <= THERE * judge.loop.keepAt) &&
+        (binds.has(l) || led.has(judge) || Math.abs(gap()) <= THERE * keep) &&
         active.length === 1
       )
         break;
-      if (
-        sweep > 0 &&
-        !binds.has(l) &&
-        !led.has(judge) &&
-        Math.abs(gap()) <= THERE * Math.max(judge.loop.keepAt, 1e-9)
-      )
+      if (sweep > 0 && !binds.has(l) && !led.has(judge) && Math.abs(gap()) <= THERE * Math.max(keep, 1e-9))
         continue;
       const before = w[l.spec.inputs.output];
-      let bound = reachSetPoint(l, senseOf(l, judge), gap, w, rest);
+      const limits = limitsAt(l.spec, from.time, w);
+      let bound = reachSetPoint(l, limits, senseOf(l, judge), gap, w, rest);
       const asked = judge === l ? null : outOfReach(judge, measured(l));
       if (asked && bound !== 'failed') {
         // The outer loop may not ask for that: at its limit it leads the inner one there.
         led.set(judge, asked);
         const own = l.spec.settings.sense;
-        bound = reachSetPoint(l, own, () => measured(l) - asked.value, w, rest);
+        bound = reachSetPoint(l, limits, own, () => measured(l) - asked.value, w, rest);
       }
       if (bound === null) binds.delete(l);
       else if (bound !== 'failed') binds.set(l, bound);
@@ -98,10 +116,16 @@ export function settle(c: ControlledPlant): SettleResult {
     if (!moved) break;
   }
   const y = outputsOf(plant, state, w);
+  for (const l of active) {
+    // The schedule's flow, from which changes of it count, is the flow that the loop has come to.
+    const { flow, wild, output } = l.spec.inputs;
+    const { flowLow, flowHigh } = l.spec.move;
+    if (flow >= 0) w[flow] = Math.min(flowHigh, Math.max(flowLow, w[output] * (wild < 0 ? 1 : w[wild])));
+  }
   for (const l of c.loops) {
     w[l.spec.inputs.measurement] = y[l.spec.measured];
     // What an outer loop asks of the loop that it leads is what that one has come to.
-    if (l.inner >= 0 && l.loop.controller.auto) {
+    if (l.inner >= 0 && automatic(l)) {
       const led = c.loops[l.inner];
       w[led.spec.inputs.setPoint] = Math.min(
         l.loop.move.high,
@@ -121,7 +145,7 @@ export function settle(c: ControlledPlant): SettleResult {
       setPoint: w[l.spec.inputs.setPoint],
       output: w[l.spec.inputs.output],
       binds: led.get(l)?.at ?? binds.get(l.inner >= 0 ? c.loops[l.inner] : l) ?? null,
-      automatic: l.loop.controller.auto,
+      automatic: automatic(l),
     })),
   };
 }
@@ -138,9 +162,13 @@ function outOfReach({ loop: { move } }: JoinedLoop, measurement: number): Asked 
 }
 
 /** The loop in automatic that moves the set point of this one. */
-function leaderOf(c: ControlledPlant, l: JoinedLoop): JoinedLoop | null {
+function leaderOf(
+  c: ControlledPlant,
+  l: JoinedLoop,
+  automatic: (l: JoinedLoop) => boolean,
+): JoinedLoop | null {
   const index = c.loops.indexOf(l);
-  return c.loops.find((o) => o.inner === index && o.loop.controller.auto) ?? null;
+  return c.loops.find((o) => o.inner === index && automatic(o)) ?? null;
 }
 
 /** Which way the output goes when the judged measurement is too high. */
@@ -149,13 +177,13 @@ const senseOf = (l: JoinedLoop, judge: JoinedLoop): number =>
 
 function reachSetPoint(
   l: JoinedLoop,
+  { low, high }: { readonly low: number; readonly high: number },
   sense: number,
   gap: () => number,
   w: F,
   rest: () => boolean,
 ): 'low' | 'high' | 'failed' | null {
   const { output } = l.spec.inputs;
-  const { low, high } = l.loop.move;
   let broken = false;
   const at = (u: number): number => {
     w[output] = u;

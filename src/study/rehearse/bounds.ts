@@ -167,7 +167,7 @@ export function scaled(c: Change, f: number, plant: Plant): Change {
   const { how } = c;
   if ('by' in how) return { ...c, how: { ...how, by: how.by * f } };
   const input = plant.system.inputs.findIndex((i) => i.path === c.quantity);
-  if (plant.system.inputs[input].unit === '') return c;
+  if (input < 0 || plant.system.inputs[input].unit === '') return c;
   const base = plant.inputs[input];
   const from = (v: number): number => base + f * (v - base);
   if ('to' in how) return { ...c, how: { to: from(how.to) } };

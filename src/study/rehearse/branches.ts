@@ -2,7 +2,7 @@ import type { Change } from '../../scenario/scenario.ts';
 import type { Event } from '../../solve/integrate.ts';
 import { type LimitReport, LimitWatch } from '../limit-watch.ts';
 import { Courses } from './course.ts';
-import { type Ground, integrateFrom, type Standing } from './ground.ts';
+import { devicesUnder, type Ground, integrateFrom, type Standing } from './ground.ts';
 import { type How, Standings, tried, type Verdict } from './judge.ts';
 import { spread } from './scan.ts';
 import { WorstWatch } from './worst.ts';
@@ -32,14 +32,16 @@ export class Branches {
   constructor(g: Ground, changes: readonly Change[], care: Care, also: readonly number[] = []) {
     this.#g = g;
     this.#care = care;
-    const kept = new Standings([...spread(g.before.time, g.horizon, KEPT).slice(1, -1), ...also]);
     const limits = g.scenario.limits.map((l) => new LimitWatch(g.plant, l));
     const all = [...g.background, ...changes];
+    const devices = devicesUnder(g, g.before, all);
+    const kept = new Standings([...spread(g.before.time, g.horizon, KEPT).slice(1, -1), ...also], devices);
     const limited = g.scenario.limits.map((l) =>
       g.plant.system.outputs.findIndex((o) => o.path === `${l.stream}.${l.quantity}`),
     );
     const courses = new Courses(g.plant, [...new Set(limited)]);
-    const run = integrateFrom(g.plant, g.before, all, g.horizon, care.sure, [kept, courses, ...limits]);
+    const watchers = [kept, courses, ...limits];
+    const run = integrateFrom(g, g.before, all, g.horizon, care.sure, watchers, devices);
     this.#whole = { courses, reports: limits.map((l) => l.report()) };
     this.#standings = [g.before, ...[...kept.kept.values()].sort((a, b) => a.time - b.time)];
     this.breaks = Math.min(
@@ -75,7 +77,7 @@ export class Branches {
     const l = g.scenario.limits[limit];
     const watch = new WorstWatch(g.plant, l);
     const all = [...g.background, ...changes];
-    integrateFrom(g.plant, from, all, g.horizon, this.#care.quick, [watch]);
+    integrateFrom(g, from, all, g.horizon, this.#care.quick, [watch]);
     const { worst, outside } = watch;
     const earlier = this.#until(from.time, limit);
     const sign = l.side === 'below' ? 1 : -1;

@@ -1,8 +1,18 @@
 import type { Change, Scenario } from '../../scenario/scenario.ts';
+import type { Watcher } from '../../solve/integrate.ts';
+import { movedFlows } from '../control/moved.ts';
 import { outputsAt } from '../records.ts';
 import { usual } from '../run.ts';
 import type { RunFigures } from './figures.ts';
-import { type Ground, ground, integrateFrom, type Standing } from './ground.ts';
+import {
+  devicesUnder,
+  type Ground,
+  ground,
+  inputsAt,
+  integrateFrom,
+  keptDevices,
+  type Standing,
+} from './ground.ts';
 import { plan } from './plan.ts';
 import type { RehearseResult } from './rehearse.ts';
 
@@ -59,22 +69,22 @@ export class Exercise {
     const end = Math.min(to, this.ground.horizon);
     if (!(end > this.time)) return;
     let modes = this.#now.modes;
-    const run = integrateFrom(this.ground.plant, this.#now, this.#changes, end, usual, [
-      {
-        end(_, __, ___, inputs) {
-          modes = new Map(inputs.modes);
-        },
+    const keep: Watcher = {
+      end(_, __, ___, inputs) {
+        modes = new Map(inputs.modes);
       },
-    ]);
+    };
+    const devices = devicesUnder(this.ground, this.#now, this.#changes);
+    const run = integrateFrom(this.ground, this.#now, this.#changes, end, usual, [keep], devices);
     this.#events.push(...run.events.map((e) => ({ time: e.time, message: e.message })));
-    this.#now = { time: run.time, state: run.state, modes };
+    this.#now = { time: run.time, state: run.state, modes, ...keptDevices(devices, run.time) };
   }
 
   /** Limited quantities first, then the solutes of the other outlets, then what tanks hold. */
   view(): View {
     const { plant, first } = this.ground;
     const { outputs } = plant.system;
-    const y = outputsAt(plant, this.#now.state, this.#inputs());
+    const y = outputsAt(plant, this.#now.state, inputsAt(this.ground, this.#now, this.#changes));
     const s = plant.scenario;
     const limited = s.limits.map((l) => ({
       path: `${l.stream}.${l.quantity}`,
@@ -83,6 +93,10 @@ export class Exercise {
     const others = [
       ...plant.network.outlets.flatMap((o) => s.solutes.map((n) => `${o.name}.${n}`)),
       ...s.tanks.flatMap((t) => [`${t.name}.volume`, ...s.solutes.map((n) => `${t.name}.${n}`)]),
+      ...movedFlows(plant, this.ground.joined.loops).map((q) => outputs[q.output].path),
+      ...(s.loops ?? []).flatMap((l) =>
+        ['measurement', 'set point', 'output'].map((what) => `${l.name}.${what}`),
+      ),
     ].filter((path) => !limited.some((l) => l.path === path));
     const events = this.#events;
     this.#events = [];
@@ -95,21 +109,6 @@ export class Exercise {
       }),
       events,
     };
-  }
-
-  #inputs(): Float64Array {
-    let w: Float64Array = new Float64Array(0);
-    // A moment's run shows the inputs in force, with what guards have set.
-    const to = Math.min(this.ground.horizon, this.time + 1e-3);
-    const from = to > this.time ? this.#now : { ...this.#now, time: this.time - 1e-3 };
-    integrateFrom(this.ground.plant, from, this.#changes, Math.max(to, from.time + 1e-3), usual, [
-      {
-        end(_, __, now) {
-          w = Float64Array.from(now);
-        },
-      },
-    ]);
-    return w;
   }
 }
 

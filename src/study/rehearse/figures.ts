@@ -1,8 +1,11 @@
 import { track } from '../../plant/course.ts';
-import type { Change, Limit } from '../../scenario/scenario.ts';
+import { isLoopChange } from '../../scenario/loop-changes.ts';
+import type { Limit } from '../../scenario/scenario.ts';
 import type { Event } from '../../solve/integrate.ts';
 import { inputsAfter } from '../commission/moves.ts';
 import { restFrom } from '../commission/rest.ts';
+import { movedFlows } from '../control/moved.ts';
+import type { LoopReport } from '../control/report.ts';
 import type { Spell } from '../limit-watch.ts';
 import type { Courses } from './course.ts';
 import type { Ground, Upset } from './ground.ts';
@@ -48,16 +51,18 @@ export interface RunFigures {
   readonly cost: number | null;
   readonly tanks: readonly { readonly tank: string; readonly least: number; readonly most: number }[];
   readonly events: readonly Event[];
+  /** What the loops did from just before the first upset on. */
+  readonly loops: readonly LoopReport[];
 }
 
 /** Share of the largest departure within which a quantity has recovered. */
 const RECOVERED = 0.02;
 
 /** Figures of a run against the one without the upset and the one in which nothing is done. */
-export function runFigures(g: Ground, run: Judged, quiet: Judged, nothing: readonly Change[]): RunFigures {
+export function runFigures(g: Ground, run: Judged, quiet: Judged, nothing: Judged): RunFigures {
   const limits = run.limits.map((_, i) => limitFigures(g, i, run, quiet));
   const sum = (pick: (l: LimitFigures) => number): number => limits.reduce((s, l) => s + pick(l), 0);
-  const extraSolvent = pumped(g, run.changes) - pumped(g, nothing);
+  const extraSolvent = pumped(g, run) - pumped(g, nothing);
   const outputs = g.plant.system.outputs;
   return {
     limits,
@@ -71,6 +76,7 @@ export function runFigures(g: Ground, run: Judged, quiet: Judged, nothing: reado
       return run.courses.outputs.includes(output) ? [{ tank: t.name, ...run.courses.extremes(output) }] : [];
     }),
     events: run.events.filter((e) => e.time >= Math.min(g.first, g.before.time)),
+    loops: run.loops,
   };
 }
 
@@ -126,11 +132,13 @@ function recovery(
   const [before, after] = [g.background, [...g.background, ...run.changes]].map((c) =>
     inputsAfter(g.plant, c),
   );
-  const goesElsewhere = before.some((v, i) => Math.abs(v - after[i]) > 1e-9 * Math.abs(v));
+  const goesElsewhere =
+    before.some((v, i) => Math.abs(v - after[i]) > 1e-9 * Math.abs(v)) ||
+    run.changes.some((c) => c.lasts === null && isLoopChange(g.scenario.loops, c));
   let reference = (t: number): number => quiet.courses.value(output, t);
   if (goesElsewhere) {
-    const rest = restFrom(g.plant, run.state, run.inputs, g.horizon, 0);
-    if (!('state' in rest)) return { recovered: null, goesElsewhere };
+    const rest = run.ends && restFrom(g.plant, run.state, run.ends, g.horizon, 0);
+    if (rest === null || !('state' in rest)) return { recovered: null, goesElsewhere };
     const final = rest.outputs[output];
     reference = () => final;
   }
@@ -163,11 +171,17 @@ function lastOutside(
   return b;
 }
 
-/** m³ of organic that feeds and tanks pump over the run, by the exact course of their flows. */
-function pumped(g: Ground, changes: readonly Change[]): number {
+/** m³ of organic that feeds and tanks pump more than at first over the run, by the exact course of their flows. */
+function pumped(g: Ground, { changes, courses }: Judged): number {
   const { scenario: s, plant } = g;
+  const moved = new Map(movedFlows(plant, g.joined.loops).map((q) => [q.quantity, q.output]));
   const organic = [...s.feeds, ...s.tanks].filter((q) => q.phase === 'organic').map((q) => `${q.name}.flow`);
   return organic.reduce((sum, quantity) => {
+    const output = moved.get(quantity);
+    if (output !== undefined && courses.outputs.includes(output)) {
+      const span = courses.to - courses.from;
+      return sum + (courses.mean(output, courses.from, courses.to) - g.calm[output]) * span;
+    }
     const own = [...g.background, ...changes].filter((c) => c.quantity === quantity);
     const input = plant.system.inputs.findIndex((i) => i.path === quantity);
     if (own.length === 0 || input < 0) return sum;

@@ -1,12 +1,16 @@
+import type { SampledLoop } from '../../control/loop.ts';
 import type { Plant } from '../../plant/assemble.ts';
 import type { Change } from '../../scenario/scenario.ts';
 import type { Event, Watcher } from '../../solve/integrate.ts';
 import type { Stop } from '../../solve/outcome.ts';
 import type { F } from '../../solve/system.ts';
+import { retold } from '../control/joined.ts';
+import { type LoopReport, loopReports } from '../control/report.ts';
+import { restUnderLoops } from '../control/rest.ts';
 import { type LimitReport, LimitWatch } from '../limit-watch.ts';
 import type { RunSettings } from '../run.ts';
 import { Courses } from './course.ts';
-import { type Ground, integrateFrom, type Standing } from './ground.ts';
+import { devicesUnder, type Ground, integrateFrom, keptDevices, type Standing } from './ground.ts';
 import { WorstWatch } from './worst.ts';
 
 export type How = Pick<RunSettings, 'integrator' | 'tolerance'>;
@@ -21,6 +25,10 @@ export interface Judged {
   readonly state: F;
   /** Inputs at the end. */
   readonly inputs: F;
+  /** What the loops did from just before the first upset on. */
+  readonly loops: readonly LoopReport[];
+  /** Where the loops would drive the inputs after the end; null: to no rest. */
+  readonly ends: F | null;
   readonly steps: number;
 }
 
@@ -40,7 +48,13 @@ export function judge(
     },
   };
   const all = [...g.background, ...changes];
-  const run = integrateFrom(g.plant, g.before, all, g.horizon, settings, [...limits, courses, keep]);
+  const devices = devicesUnder(g, g.before, all);
+  const run = integrateFrom(g, g.before, all, g.horizon, settings, [...limits, courses, keep], devices);
+  const endsAt = restUnderLoops(retold(g.joined, all), devices, {
+    inputs,
+    state: run.state,
+    time: run.time,
+  });
   return {
     changes,
     limits: limits.map((l) => l.report()),
@@ -49,6 +63,8 @@ export function judge(
     stop: run.stop,
     state: run.state,
     inputs,
+    loops: loopReports(g.joined, devices, run, g.before.time),
+    ends: endsAt?.inputs ?? null,
     steps: run.work.steps,
   };
 }
@@ -133,7 +149,7 @@ export function tried(
   const excess = new Excess(g.plant, depth === 'first' ? 0 : Number.POSITIVE_INFINITY);
   const limits = depth === 'peaks' ? g.scenario.limits.map((l) => new WorstWatch(g.plant, l)) : [];
   try {
-    const run = integrateFrom(g.plant, from, all, g.horizon, settings, [excess, ...limits]);
+    const run = integrateFrom(g, from, all, g.horizon, settings, [excess, ...limits]);
     const peaks = limits.map((w, i) => {
       const limit = g.scenario.limits[i];
       return ((limit.side === 'below' ? 1 : -1) * (w.worst - limit.value)) / limit.value;
@@ -150,16 +166,30 @@ export function tried(
   }
 }
 
-/** Keeps standings of a run at chosen times. */
+/**
+ * Keeps standings of a run at chosen times; with loops at the end of the step that covers a time, up to which they have
+ * read and before anything that is due then.
+ */
 export class Standings implements Watcher {
   readonly kept = new Map<number, Standing>();
   readonly #times: number[];
+  readonly #devices: readonly SampledLoop[];
 
-  constructor(times: readonly number[]) {
+  constructor(times: readonly number[], devices: readonly SampledLoop[]) {
     this.#times = [...new Set(times)].sort((a, b) => a - b);
+    this.#devices = devices;
   }
 
   step: NonNullable<Watcher['step']> = (step, inputs) => {
+    if (this.#devices.length > 0) {
+      // A step that a guard cut short ends before the guard has acted: no place to go on from.
+      if (!(this.#times[0] <= step.t1) || !step.pausable) return;
+      while (this.#times[0] <= step.t1) this.#times.shift();
+      const state = Float64Array.from(step.x1);
+      const modes = new Map(inputs.modes);
+      this.kept.set(step.t1, { time: step.t1, state, modes, ...keptDevices(this.#devices, step.t1) });
+      return;
+    }
     while (this.#times.length > 0 && this.#times[0] <= step.t1) {
       const t = this.#times.shift() as number;
       const state = new Float64Array(step.x1.length);

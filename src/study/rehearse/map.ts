@@ -39,7 +39,8 @@ export interface MapSettings {
 /** One piece of work: all sizes at some starts. Plain data, so that it can be sent. */
 export interface MapBatch {
   readonly scenario: Scenario;
-  readonly before: Standing;
+  /** Null where there are loops, which cannot be sent: the run up to there is made anew. */
+  readonly before: Standing | null;
   readonly answer: string;
   readonly chief: number;
   readonly starts: readonly number[];
@@ -81,7 +82,7 @@ export async function startSizeMap(
   const batches = pieces.map(
     (own): MapBatch => ({
       scenario,
-      before: g.before,
+      before: g.joined.loops.length > 0 ? null : g.before,
       answer,
       chief,
       starts: own,
@@ -147,8 +148,8 @@ class Columns {
     const how = { integrator: batch.integrator, tolerance: TOLERANCE };
     this.#batch = batch;
     this.#care = { sure: how, quick: how };
-    this.#g = ground(batch.scenario, how, { known: batch.before });
-    const outputs = followedOutputs(this.#g.plant);
+    this.#g = ground(batch.scenario, how, batch.before === null ? {} : { known: batch.before });
+    const outputs = followedOutputs(this.#g);
     this.#trigger = makeTrigger(this.#g, judge(this.#g, this.#g.changes, how, outputs), how, outputs);
     this.#nothing = new Branches(this.#g, this.#g.changes, this.#care);
   }

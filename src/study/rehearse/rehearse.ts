@@ -1,9 +1,11 @@
 import type { Plant } from '../../plant/assemble.ts';
+import { statedChanges } from '../../scenario/loop-changes.ts';
 import { Refusal } from '../../scenario/refusal.ts';
 import type { Answer } from '../../scenario/rehearsing.ts';
 import type { Change, Scenario } from '../../scenario/scenario.ts';
 import type { Event } from '../../solve/integrate.ts';
 import type { Stop } from '../../solve/outcome.ts';
+import { movedFlows } from '../control/moved.ts';
 import { type RunSettings, usual } from '../run.ts';
 import { type Shade, upsetSchedule } from '../upsets.ts';
 import { type Bounds, bounds, longest, type Triggers, type Unaided, unaided } from './bounds.ts';
@@ -84,7 +86,9 @@ export function rehearse(
   progress: (share: number) => void = () => {},
 ): RehearseResult {
   const missing = [
-    ...(scenario.upsets.length === 0 ? [{ path: ['upsets'], message: 'a rehearsal needs an upset' }] : []),
+    ...(statedChanges(scenario).length === 0
+      ? [{ path: ['upsets'], message: 'a rehearsal needs an upset' }]
+      : []),
     ...(scenario.limits.length === 0
       ? [{ path: ['limits'], message: 'a rehearsal needs a limit to be kept' }]
       : []),
@@ -95,10 +99,10 @@ export function rehearse(
   const care: Care = { sure, quick: { integrator, tolerance: Math.max(SCAN, tolerance) } };
   const g = ground(scenario, sure);
   const { plant } = g;
-  const outputs = followedOutputs(plant);
+  const outputs = followedOutputs(g);
   const quiet = judge(g, [], sure, outputs);
   const nothing = judge(g, g.changes, sure, outputs);
-  const figures = runFigures(g, nothing, quiet, g.changes);
+  const figures = runFigures(g, nothing, quiet, nothing);
   const branches = new Branches(g, g.changes, care);
   const trigger = makeTrigger(g, nothing, sure, outputs);
   const triggers = { sure: trigger, quick: makeTrigger(g, nothing, care.quick, outputs) };
@@ -109,7 +113,7 @@ export function rehearse(
     const run = judge(g, [...g.changes, ...made.moves], sure, outputs);
     runs.push(run);
     progress((i + 0.3) / (list.length + 1));
-    const result = answerResult(g, answer, made, run, quiet, figures, branches, triggers, care);
+    const result = answerResult(g, answer, made, run, { quiet, nothing }, figures, branches, triggers, care);
     progress((i + 1) / (list.length + 1));
     return result;
   });
@@ -142,8 +146,9 @@ export function rehearse(
 }
 
 /** Outputs that figures, readings and pictures need: what limits are on, what is measured, volumes and levels. */
-export function followedOutputs(plant: Plant): number[] {
+export function followedOutputs({ plant, joined }: Pick<Ground, 'plant' | 'joined'>): number[] {
   const { scenario: s, system } = plant;
+  const moved = movedFlows(plant, joined.loops).map((q) => q.output);
   const wanted = new Set([
     ...s.limits.map((l) => `${l.stream}.${l.quantity}`),
     ...(s.rehearsing?.instruments ?? []).map((q) => q.quantity),
@@ -153,7 +158,9 @@ export function followedOutputs(plant: Plant): number[] {
     ...s.tanks.map((t) => `${t.name}.volume`),
   ]);
   const level = /\.settler\.(interface|band)$/;
-  return system.outputs.flatMap((o, i) => (wanted.has(o.path) || level.test(o.path) ? [i] : []));
+  return system.outputs.flatMap((o, i) =>
+    wanted.has(o.path) || level.test(o.path) || moved.includes(i) ? [i] : [],
+  );
 }
 
 /** Conditions are looked up in the run with all that was done before; such runs are made once. */
@@ -178,13 +185,13 @@ function answerResult(
   answer: Answer,
   made: Plan,
   run: Judged,
-  quiet: Judged,
+  others: { readonly quiet: Judged; readonly nothing: Judged },
   nothing: RunFigures,
   branches: Branches,
   triggers: Triggers,
   care: Care,
 ): AnswerResult {
-  const figures = runFigures(g, run, quiet, g.changes);
+  const figures = runFigures(g, run, others.quiet, others.nothing);
   const begun = made.starts[0];
   const earliest = Math.max(0, Math.min(g.first, begun ?? g.first));
   // Where nothing breaks a limit, no answer can come too late.

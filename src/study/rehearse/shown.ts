@@ -1,3 +1,4 @@
+import { movedFlows } from '../control/moved.ts';
 import type { Course as InputCourse } from '../upsets.ts';
 import { upsetSchedule } from '../upsets.ts';
 import type { Ground } from './ground.ts';
@@ -17,6 +18,8 @@ export interface Shown {
   readonly times: readonly number[];
   readonly limited: readonly ShownLine[];
   readonly levels: readonly ShownLine[];
+  /** Flows that loops set, where they move. */
+  readonly moved: readonly ShownLine[];
   /** Inputs as upsets and the moves of each answer change them. */
   readonly inputs: readonly { readonly answer: string | null; readonly courses: readonly InputCourse[] }[];
 }
@@ -47,6 +50,16 @@ export function shownCourses(
     values: times.map((t) => run.courses.value(output, t)),
   });
   const levels = nothing.courses.outputs.filter((o) => /\.(volume|interface|band)$/.test(outputs[o].path));
+  const moved = movedFlows(g.plant, g.joined.loops);
+  const lines = (list: readonly number[]): ShownLine[] =>
+    list
+      .filter((o) =>
+        runs.some(({ run }) => {
+          const { least, most } = run.courses.extremes(o);
+          return most - least > AT_REST * outputs[o].scale;
+        }),
+      )
+      .flatMap((o) => runs.map(({ name, run }) => line(name, run, o)));
   return {
     times,
     limited: runs.flatMap(({ name, run }) =>
@@ -58,17 +71,13 @@ export function shownCourses(
         ),
       ),
     ),
-    levels: levels
-      .filter((o) =>
-        runs.some(({ run }) => {
-          const { least, most } = run.courses.extremes(o);
-          return most - least > AT_REST * outputs[o].scale;
-        }),
-      )
-      .flatMap((o) => runs.map(({ name, run }) => line(name, run, o))),
+    levels: lines(levels),
+    moved: lines(moved.map((q) => q.output)),
     inputs: runs.map(({ name, run }) => ({
       answer: name,
-      courses: upsetSchedule(g.plant, [...g.background, ...run.changes], g.horizon).courses,
+      courses: upsetSchedule(g.plant, [...g.background, ...run.changes], g.horizon).courses.filter(
+        (c) => !moved.some((q) => q.quantity === c.quantity),
+      ),
     })),
   };
 }

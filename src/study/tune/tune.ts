@@ -1,6 +1,7 @@
 import { type Forms, forms } from '../../control/forms.ts';
 import type { StepTest } from '../../control/identify.ts';
 import type { Fopdt } from '../../control/rules.ts';
+import { changesOf } from '../../scenario/loop-changes.ts';
 import { Refusal } from '../../scenario/refusal.ts';
 import type { Change, Scenario } from '../../scenario/scenario.ts';
 import { makeSchedule } from '../../solve/schedule.ts';
@@ -94,7 +95,7 @@ export function tune(scenario: Scenario, settings: TuneSettings): TuneResult {
     start: 'steady',
     loops: all.map((l, i) =>
       i === loop
-        ? { ...l, controller: { ...l.controller, auto: true }, modes: [], outOfService: [], output: [] }
+        ? { ...l, controller: { ...l.controller, auto: true }, changes: changesOf(l, 'set point') }
         : l,
     ),
   };

@@ -97,7 +97,7 @@ limits: [{keep: raffinate.copper, below: 2 g/L}]
     const output = outputOf(s(first), 'raffinate.copper');
     const courses = [`${first}, ${second}`, first, second].map((u) => {
       const g = ground(s(u), usual);
-      return judge(g, g.changes, usual, followedOutputs(g.plant)).courses;
+      return judge(g, g.changes, usual, followedOutputs(g)).courses;
     });
     const calm = courses[0].value(output, 0);
     for (let t = 2.1; t <= 10; t += 0.37) {

@@ -55,7 +55,7 @@ limits: [{keep: outlet.salt, below: 5.5 g/L}]
     };
     const g = ground(made, usual);
     const how = { ...usual, tolerance: 1e-9 };
-    const { courses } = judge(g, g.changes, how, followedOutputs(g.plant));
+    const { courses } = judge(g, g.changes, how, followedOutputs(g));
     const output = g.plant.system.outputs.findIndex((o) => o.path === 'raffinate.copper');
     // Fourier's coefficients over the last two periods; straight lines between n corners pass sinc²(π/n) of a sine.
     const steps = 4000;
