@@ -79,7 +79,8 @@ export class SampledLoop implements Device {
     own.#pv = was.#pv;
     own.#last = was.#last;
     own.#segment = was.#segment;
-    own.#now = was.#now;
+    // What it did before is in the history of the other one.
+    own.#now = t;
     own.#given = was.#given;
     own.#resumed = true;
     // What is due at `t` itself has not been done yet.

@@ -103,6 +103,21 @@ const found: Schema = object({
       }),
     ),
   }),
+  responses: object({
+    rad_per_s: list(number('frequency')),
+    list: list(
+      object({
+        from: text('input: what a loop moves, a wild flow, or what an upset changes'),
+        from_unit: text('SI'),
+        to: text('what a loop measures'),
+        to_unit: text('SI'),
+        gain_at_rest: orNull(number('null: something only integrates')),
+        gain_after_one_hour: number('of a step'),
+        magnitude: list(number('by frequency, all loops held')),
+        angle_rad: list(number('by frequency')),
+      }),
+    ),
+  }),
   feedforward: list(
     object({
       from: text('disturbance'),

@@ -6,7 +6,7 @@ import type { Tested } from '../study/tune/step-test.ts';
 import type { TuneResult } from '../study/tune/tune.ts';
 import { cautions } from './cautions.ts';
 import { loopsAtRest } from './loop-summary.ts';
-import { head, type Origin, SCHEMA } from './summary.ts';
+import { head, type Origin, SCHEMA, si } from './summary.ts';
 import { verdict } from './tune-screen.ts';
 
 /** JSON has no infinity: what has no bound is null. */
@@ -66,6 +66,19 @@ export function tuneSummary(r: TuneResult, origin: Origin): object {
         sign_changes: map.signChanges.length,
         unsafe: map.unsafe.length,
         points: map.points.map(pointOf),
+      },
+      responses: {
+        rad_per_s: r.responses.omegas,
+        list: r.responses.list.map((q) => ({
+          from: q.from,
+          from_unit: si(q.fromUnit),
+          to: q.to,
+          to_unit: si(q.toUnit),
+          gain_at_rest: q.restGain,
+          gain_after_one_hour: q.hourGain,
+          magnitude: q.magnitudes,
+          angle_rad: q.angles,
+        })),
       },
       feedforward: r.ahead.map((a) => ({
         from: a.from,

@@ -82,4 +82,32 @@ describe('FOPDT with PI, Ti = T, K·θ = 0.5, sampled fast: the continuous loop'
       expect(Math.abs(at[k][0] - y)).toBeLessThan(0.012);
     });
   });
+
+  it('overshoots by 4.052 % at 4.740 θ, with IE 2 θ and IAE 2.16869 θ, as the interval goes to nothing', () => {
+    const end = 24;
+    const figures = (every: number): readonly number[] => {
+      const plan = loopSpec({
+        runs: 'scan',
+        settings: { gain: 0.5 * T, integralTime: T },
+        analyser: { every, first: every, delay: 1 },
+        setPoint: { times: [0, 1e-6, 1e-6], values: [0, 0, 1] },
+      });
+      const step = 0.01;
+      const times = Array.from({ length: end / step }, (_, k) => (k + 1) * step);
+      const y = follow(firstOrder(1, T), plan, times, { end }).at.map((q) => q[0]);
+      const top = y.indexOf(Math.max(...y));
+      // The vertex of the parabola through the highest point and its neighbours.
+      const [a, b, c] = [y[top - 1], y[top], y[top + 1]];
+      const shift = (a - c) / (2 * (a - 2 * b + c));
+      // What is measured comes θ later: until then the error is 1.
+      const sum = (f: (e: number) => number): number =>
+        1 + step * (f(1) / 2 + y.reduce((s, v) => s + f(1 - v), 0) - f(1 - y[y.length - 1]) / 2);
+      return [b - ((a - c) * shift) / 4 - 1, times[top] + shift * step + 1, sum((e) => e), sum(Math.abs)];
+    };
+    const [coarse, fine] = [figures(0.04), figures(0.02)];
+    const limit = fine.map((v, k) => 2 * v - coarse[k]);
+    [0.04052, 4.74, 2, 2.16869].forEach((v, k) => {
+      expect(Math.abs(limit[k] - v)).toBeLessThan([1e-4, 0.02, 1e-3, 1e-3][k]);
+    });
+  });
 });

@@ -149,6 +149,12 @@ describe('PI on the held value', () => {
     [0.128751, 0.219334, 0.220325, 0.163513, 0.017906].forEach((y, k) => {
       expect(Math.abs(at[k][0] - y)).toBeLessThan(2e-4);
     });
+    const moved = { ...plan, setPoint: { times: [0, 1e-6, 1e-6], values: [0, 0, 1] } };
+    const times = Array.from({ length: 400 }, (_, k) => 0.5 * (k + 1));
+    const y = follow(firstOrder(1, 60), moved, times).at.map((q) => q[0]);
+    const top = y.indexOf(Math.max(...y));
+    expect(Math.abs(y[top] - 1.07907)).toBeLessThan(3e-4);
+    expect(Math.abs(times[top] - 87.63)).toBeLessThan(0.6);
   });
 });
 

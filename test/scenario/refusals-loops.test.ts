@@ -118,3 +118,63 @@ describe('a loop', () => {
     ],
   ]);
 });
+
+describe('what a loop owns', () => {
+  const answers = (move: string): string =>
+    `${looped}answers: {one: {start: after upset, moves: [{${move}}]}}\n`;
+  const procedure = (move: string): string => `${looped}procedures: {one: {moves: [{${move}}]}}\n`;
+
+  it('may be changed through the loop, or with the loop in manual', () => {
+    for (const make of [answers, procedure]) {
+      expect(answer(make('change: AIC-1.set point, to: 0.4 g/L'))).toEqual([]);
+      expect(answer(make('change: AIC-1.high, by: +10 %'))).toEqual([]);
+      expect(answer(make('change: lean.flow, by: +10 %, put: AIC-1 in manual'))).toEqual([]);
+    }
+  });
+  refuses([
+    [
+      'by an answer that says nothing of the loop',
+      answers('change: lean.flow, by: +10 %'),
+      ['24:11 loops.AIC-1.move', "answer 'one' changes as well"],
+      ['27:54 answers.one.moves.0.change', 'put: AIC-1 in manual', "'AIC-1.set point'"],
+    ],
+    [
+      'by a procedure that says nothing of the loop',
+      procedure('change: lean.flow, by: +10 %'),
+      ['24:11 loops.AIC-1.move', "procedure 'one' changes as well"],
+      ['27:37 procedures.one.moves.0.change', 'put: AIC-1 in manual'],
+    ],
+    [
+      'by another loop put in manual',
+      answers('change: lean.flow, by: +10 %, put: AIC-2 in manual'),
+      ['27:81 answers.one.moves.0.put', "expected 'AIC-1 in manual'"],
+    ],
+    [
+      'put beside what no loop moves',
+      answers('change: liquor.flow, by: +10 %, put: AIC-1 in manual'),
+      ['27:83 answers.one.moves.0.put', 'no loop moves'],
+    ],
+    [
+      'a limit changed by a ramp',
+      answers('change: AIC-1.high, to: 1.8, over: 10 min'),
+      ['27:81 answers.one.moves.0.over', 'at once'],
+    ],
+    [
+      'limits of its flow the wrong way round',
+      instead('flow_lag: 20 s', 'flow_low: 500 m^3/h, flow_high: 300 m^3/h'),
+      ['24:11 loops.AIC-1.move', 'is not below flow_high'],
+    ],
+    [
+      'limits of its flow beside a flow',
+      instead(
+        'ratio: lean.flow / liquor.flow, low: 0.7, high: 1.5, slew: 0.01 per min',
+        'flow: lean.flow, low: 100 m^3/h, high: 500 m^3/h',
+        'flow_lag: 20 s',
+        'flow_high: 300 m^3/h',
+        'gain: 0.4 per g/L',
+        'gain: 80 m^3/h per g/L',
+      ),
+      ['24:73 loops.AIC-1.move.flow_high', 'belongs to a ratio'],
+    ],
+  ]);
+});

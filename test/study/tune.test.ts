@@ -115,6 +115,43 @@ describe('tune on the copper circuit', () => {
     expect(a.proof.worst).toBeLessThan(r.best.worst);
   });
 
+  it('maps throughput and grade together, and a point of it is what the plant has there', () => {
+    const { points, throughput, grade } = r.map;
+    expect(points).toHaveLength(45);
+    const p = points.find((q) => q.throughput < 1 && q.grade > 1 && q.output > 1) as (typeof points)[number];
+    const { plant, loops } = r.joined;
+    const { spec } = loops[0];
+    const at = (output: number): number => {
+      const w = Float64Array.from(plant.inputs);
+      w[plant.system.inputs.findIndex((q) => q.path === throughput)] *= 0.7;
+      w[plant.system.inputs.findIndex((q) => q.path === grade)] *= 1.3;
+      w[spec.inputs.output] = output;
+      const found = steadyState(plant.system, w, plant.parameters, plant.barren);
+      if (!found.found) return Number.NaN;
+      const y = new Float64Array(plant.system.outputs.length);
+      plant.system.output(found.state, w, plant.parameters, y);
+      return y[spec.measured];
+    };
+    expect(at(p.output)).toBeCloseTo(p.measurement, 8);
+    const gain = (at(p.output + 1e-3) - at(p.output - 1e-3)) / 2e-3;
+    expect(Math.abs((p.gain as number) / gain - 1)).toBeLessThan(1e-3);
+  });
+
+  it('gives the response from every move and upset to the measurement: at rest the gains of two steady states', () => {
+    const { omegas, list } = r.responses;
+    expect(list.map((q) => q.from)).toEqual(['AIC-101.output', 'leach liquor.flow', 'leach liquor.copper']);
+    for (const q of list) {
+      expect(q.to).toBe('raffinate.copper');
+      // A period of a week is nearly rest, where |G| is the gain and the angle 0 or half a turn.
+      expect(Math.abs(q.magnitudes[0] / Math.abs(q.restGain as number) - 1)).toBeLessThan(0.01);
+      expect(Math.abs(Math.cos(q.angles[0]) - Math.sign(q.restGain as number))).toBeLessThan(0.01);
+      expect(q.magnitudes[omegas.length - 1]).toBeLessThan(0.02 * q.magnitudes[0]);
+    }
+    // The move's own response is the one that the settings were chosen by.
+    const own = r.point.response(omegas[12])[0];
+    expect(Math.hypot(own.re, own.im)).toBeCloseTo(list[0].magnitudes[12], 9);
+  });
+
   it('writes what its schema says', () => {
     const ajv = new Ajv2020({ strict: false });
     const valid = ajv.compile(summarySchema);

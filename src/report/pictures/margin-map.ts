@@ -11,7 +11,7 @@ const CLASSES = [
   { label: 'up to 2: lively', colour: '#F0E442', text: '#111111', is: (m: MapPoint) => ms(m) <= 2 },
   { label: 'beyond 2: not safe', colour: '#E69F00', text: '#111111', is: (m: MapPoint) => ms(m) < Infinity },
   { label: 'unstable', colour: '#7a1020', text: '#ffffff', is: (m: MapPoint) => m.margins !== null },
-  { label: 'no steady state', colour: '#cccccc', text: '#111111', is: () => true },
+  { label: 'no steady state, or flow at its limit', colour: '#cccccc', text: '#111111', is: () => true },
 ] as const;
 
 const ms = ({ margins: m }: MapPoint): number => (m?.stable ? m.sensitivity : Infinity);
@@ -23,15 +23,16 @@ function config(r: Tuned): ChartConfiguration {
   const { loop } = r.joined.loops[r.loop];
   const { points, throughput, grade } = r.map;
   const flow = loop.move.kind === 'flow' ? 3600 : 1;
-  const rowOf = (p: MapPoint): string =>
-    p.throughput !== 1
-      ? `throughput ${figure(100 * p.throughput)} %`
-      : p.grade !== 1
-        ? `grade ${figure(100 * p.grade)} %`
-        : 'as stated';
+  const rowOf = (p: MapPoint): string => {
+    const parts = [
+      ...(p.throughput === 1 ? [] : [`throughput ${figure(100 * p.throughput)} %`]),
+      ...(p.grade === 1 ? [] : [`grade ${figure(100 * p.grade)} %`]),
+    ];
+    return parts.length === 0 ? 'as stated' : parts.join(', ');
+  };
   const order = (q: string): number => {
     const p = points.find((o) => rowOf(o) === q) as MapPoint;
-    return p.grade !== 1 ? p.grade - 10 : p.throughput !== 1 ? p.throughput + 10 : 0;
+    return 10 * p.throughput + p.grade;
   };
   const rows = [...new Set(points.map(rowOf))].sort((a, b) => order(a) - order(b));
   const columns = [...new Set(points.map((p) => p.output))]

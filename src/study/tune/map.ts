@@ -1,3 +1,4 @@
+import { limitsAt } from '../../control/limits.ts';
 import type { Margins } from '../../control/margins.ts';
 import { type Settings, simc } from '../../control/rules.ts';
 import { steadyState } from '../../solve/steady.ts';
@@ -13,7 +14,7 @@ export interface MapPoint {
   readonly throughput: number;
   readonly grade: number;
   readonly measurement: number;
-  /** Null: no steady state there. */
+  /** Null: no steady state there, or its flow is at a limit. */
   readonly gain: number | null;
   readonly lag: number;
   readonly delay: number;
@@ -39,8 +40,8 @@ export const UNSAFE = 2;
 const LOOKS = 60;
 
 /**
- * Gain, lag, delay and margins over the output of the loop (five values), throughput and grade (three each, one at a
- * time), each point a steady state with the output held there and its exact linearisation.
+ * Gain, lag, delay and margins over the output of the loop (five values), throughput and grade (three each, in all
+ * combinations), each point a steady state with the output held there and its exact linearisation.
  */
 export function operatingMap(
   c: ControlledPlant,
@@ -56,11 +57,8 @@ export function operatingMap(
   const grade = gradeOf(c, loop, throughput);
   const base = plant.inputs[spec.inputs.output];
   const outputs = [...new Set(STEPS.map((s) => Math.min(high, Math.max(low, base * (1 + range * s)))))];
-  const cases = [
-    { throughput: 1, grade: 1 },
-    ...(grade < 0 ? [] : [-1, 1].map((s) => ({ throughput: 1, grade: 1 + range * s }))),
-    ...(throughput < 0 ? [] : [-1, 1].map((s) => ({ throughput: 1 + range * s, grade: 1 }))),
-  ];
+  const shares = (input: number): number[] => (input < 0 ? [1] : [1, 1 - range, 1 + range]);
+  const cases = shares(throughput).flatMap((t) => shares(grade).map((g) => ({ throughput: t, grade: g })));
   const points = cases.flatMap((q): MapPoint[] => {
     let from = start;
     return outputs.map((output): MapPoint => {
@@ -78,8 +76,10 @@ export function operatingMap(
         margins: null,
         local: null,
       };
+      // Where the flow is held at a limit of its own the output moves nothing.
+      const limits = limitsAt(spec, 0, w);
       const rest = steadyState(plant.system, w, plant.parameters, from);
-      if (!rest.found) return none;
+      if (!rest.found || output < limits.low || output > limits.high) return none;
       from = Float64Array.from(rest.state);
       const y = new Float64Array(plant.system.outputs.length);
       plant.system.output(rest.state, w, plant.parameters, y);

@@ -17,6 +17,7 @@ import { gradeOf, type OperatingMap, operatingMap, throughputOf } from './map.ts
 import { type Optimum, optimum } from './optimum.ts';
 import { type Point, pointAt } from './point.ts';
 import { type Proof, prove, set, stepTrial } from './prove.ts';
+import { type Responses, responses } from './responses.ts';
 import { stepTests, type Tested, tested } from './step-test.ts';
 import type { Ground, Trial } from './trial.ts';
 
@@ -48,6 +49,7 @@ export interface Tuned {
   readonly best: Proof & { readonly candidate: Candidate };
   readonly forms: Forms;
   readonly bestStep: Trial | null;
+  readonly responses: Responses;
   readonly map: OperatingMap;
   readonly ahead: readonly Ahead[];
   readonly backOff: BackOff | null;
@@ -153,6 +155,7 @@ export function tune(scenario: Scenario, settings: TuneSettings): TuneResult {
     best,
     forms: forms(best.candidate.settings, spans),
     bestStep: spec.setPoint.times.length === 0 ? null : stepTrial(ground, set(best.candidate)),
+    responses: responses(joined, settled.state, settled.inputs, numbers),
     map: operatingMap(joined, loop, best.candidate.settings, settings.range, settled.state),
     ahead: disturbed.flatMap((q, k) => ahead(ground, point, k, q, best.candidate) ?? []),
     backOff: backOff(ground, best.candidate, calm),
