@@ -1,15 +1,15 @@
 import {
   accessSync,
+  closeSync,
   constants,
-  createWriteStream,
   existsSync,
   mkdirSync,
+  openSync,
   readFileSync,
   statSync,
   writeFileSync,
 } from 'node:fs';
 import { basename, dirname, extname, join, resolve } from 'node:path';
-import { finished } from 'node:stream/promises';
 import { type ReadScenario, readScenario, ScenarioError } from '../scenario/read.ts';
 import { exits, Known } from './exit.ts';
 
@@ -93,23 +93,43 @@ export function write(folder: string, name: string, content: string | Buffer): v
   }
 }
 
-/** Opens a file for streaming, hands it to `fill`, and waits until all is on disk. */
-export async function stream(
-  folder: string,
-  name: string,
-  fill: (to: ReturnType<typeof createWriteStream>) => Promise<void>,
-): Promise<void> {
-  const path = join(folder, name);
-  const to = createWriteStream(path);
-  const done = finished(to);
-  try {
-    await Promise.race([fill(to).then(() => to.end()), done]);
-    await done;
-  } catch (e) {
-    throw new Known(
-      `cannot write ${path} (${(e as NodeJS.ErrnoException).code ?? (e as Error).message})`,
-      exits.usage,
-    );
+/** Characters gathered before they are written. */
+const CHUNK = 1 << 17;
+
+/** A file that is written as its lines come. */
+export class GrowingFile {
+  readonly #path: string;
+  readonly #file: number;
+  #text = '';
+
+  /** @throws Known where it cannot be made. */
+  constructor(folder: string, name: string) {
+    this.#path = resolve(folder, name);
+    this.#file = this.#tried(() => openSync(this.#path, 'w'));
+  }
+
+  /** @throws Known where the disk does not take it. */
+  add(text: string): void {
+    this.#text += text;
+    if (this.#text.length >= CHUNK) this.#flush();
+  }
+
+  close(): void {
+    this.#flush();
+    closeSync(this.#file);
+  }
+
+  #flush(): void {
+    this.#tried(() => writeFileSync(this.#file, this.#text));
+    this.#text = '';
+  }
+
+  #tried<T>(act: () => T): T {
+    try {
+      return act();
+    } catch (e) {
+      throw new Known(`cannot write ${this.#path} (${(e as NodeJS.ErrnoException).code})`, exits.usage);
+    }
   }
 }
 

@@ -22,7 +22,7 @@ export function fopdtStep({ gain, lag, delay }: Fopdt, step: number, t: number):
 /** Least squares over the whole test; for each lag and delay the best gain is linear and solved for. */
 export function leastSquares(test: StepTest): Fitted | null {
   const { times, values, step } = test;
-  const largest = Math.max(...values.map(Math.abs));
+  const largest = values.reduce((m, v) => Math.max(m, Math.abs(v)), 0);
   if (!(largest > 0) || times.length < 4 || step === 0) return null;
   const span = times[times.length - 1];
   const gainOf = (lag: number, delay: number): { gain: number; error: number } => {

@@ -51,8 +51,12 @@ export function suitable(s: Scenario, net: Network, plans: readonly TrainDesign[
 /** Least and most of an input, its design value and the schedule taken together. */
 function extremes(s: Scenario, quantity: string, design: number): { least: number; most: number } {
   const own = s.upsets.filter((u) => u.quantity === quantity);
-  const values = [design, ...track(design, own, s.horizon).values];
-  return { least: Math.min(...values), most: Math.max(...values) };
+  let [least, most] = [design, design];
+  for (const v of track(design, own, s.horizon).values) {
+    if (v < least) least = v;
+    if (v > most) most = v;
+  }
+  return { least, most };
 }
 
 /** The largest concentration of a solute that any aqueous feed brings; of any other source where none has it. */

@@ -307,12 +307,13 @@ function unaidedLines(r: RehearseResult): string[] {
 function frequencyLines(r: RehearseResult): string[] {
   const f = r.frequency;
   if (f === null) return [];
+  const held = r.nothing.loops.some((q) => q.automatic > 0) ? ', loops held' : '';
   const reach =
     f.swing === 0
       ? ''
       : f.reaches === null
-        ? '; swings as large as the upset reach the limit at no period (linear)'
-        : `; swings as large as the upset reach the limit where they take longer than ${clock(f.reaches)} (linear)`;
+        ? `; swings as large as the upset reach the limit at no period (linear${held})`
+        : `; swings as large as the upset reach the limit where they take longer than ${clock(f.reaches)} (linear${held})`;
   return [
     `Swings of ${f.input}: of a lasting change ${figure((f.lasting * shown(f.outputUnit).factor) / shown(f.inputUnit).factor)} ${shown(f.outputUnit).unit} per ${shown(f.inputUnit).unit} gets through, half of that at a period of ${f.half === null ? 'more than 10 d' : clock(f.half)}${reach}.`,
   ];

@@ -1,6 +1,6 @@
-import type { WriteStream } from 'node:fs';
 import type { Plant } from '../plant/assemble.ts';
-import type { RunResult } from '../study/result.ts';
+import type { F } from '../solve/system.ts';
+import type { Derived } from '../study/derived.ts';
 import { shown } from './figures.ts';
 
 export interface Column {
@@ -42,25 +42,27 @@ export function seriesColumns(plant: Plant): Column[] {
 /** RFC 4180: a cell with a comma, a quote or a line break is quoted. */
 const cell = (text: string): string => (/[",\r\n]/.test(text) ? `"${text.replaceAll('"', '""')}"` : text);
 
-/** Rows written at a time: bounded memory whatever the length. */
-const CHUNK = 500;
+/** Lines of `series.csv`, each with its line break, in full double precision. */
+export interface SeriesLines {
+  readonly header: string;
+  /** One record: its time [s] and all outputs, in the System's order and units. */
+  line(time: number, row: F): string;
+}
 
-/** Writes the records as CSV in full double precision, in chunks. Waits where the disk is slower. */
-export async function writeSeries(result: RunResult, to: WriteStream): Promise<void> {
-  const list = seriesColumns(result.plant);
-  const { times, rows } = result.records;
-  const { derived } = result;
-  const headers = ['time [h]', ...list.map((c) => c.header), ...derived.map(derivedHeader)];
-  let text = `${headers.map(cell).join(',')}\r\n`;
-  for (let k = 0; k < times.length; k++) {
-    text += times[k] / 3600;
-    const row = rows[k];
-    for (const c of list) text += `,${c.factor === 1 ? row[c.output] : row[c.output] * c.factor}`;
-    for (const d of derived) text += `,${d.value(row) * shown(d.unit).factor}`;
-    text += '\r\n';
-    if (k % CHUNK === CHUNK - 1 || k === times.length - 1) {
-      if (!to.write(text)) await new Promise<void>((resolve) => to.once('drain', () => resolve()));
-      text = '';
-    }
-  }
+/** How the records of a plant are written as CSV. */
+export function seriesLines(plant: Plant, derived: readonly Derived[]): SeriesLines {
+  const columns = seriesColumns(plant);
+  const headers = ['time [h]', ...columns.map((c) => c.header), ...derived.map(derivedHeader)];
+  const factors = derived.map((d) => shown(d.unit).factor);
+  return {
+    header: `${headers.map(cell).join(',')}\r\n`,
+    line(time, row) {
+      let text = `${time / 3600}`;
+      for (const c of columns) text += `,${c.factor === 1 ? row[c.output] : row[c.output] * c.factor}`;
+      derived.forEach((d, i) => {
+        text += `,${d.value(row) * factors[i]}`;
+      });
+      return `${text}\r\n`;
+    },
+  };
 }

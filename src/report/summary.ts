@@ -28,7 +28,7 @@ export function runSummary(r: RunResult, origin: Origin): object {
     stop: { reason: r.stop.reason, time_s: r.stop.time, message: explain(r.stop) },
     horizon_s: s.horizon,
     record_every_s: s.recordEvery,
-    records: r.records.times.length,
+    records: r.records.made,
     closure: Object.fromEntries(r.closures.map((c) => [c.name, c.closure])),
     balances: r.closures.map((c) => ({
       of: c.name,

@@ -103,7 +103,7 @@ export function straightened(
   times: readonly number[],
   values: readonly number[],
 ): { times: number[]; values: number[] } {
-  const within = COLLINEAR * Math.max(...values.map(Math.abs));
+  const within = COLLINEAR * values.reduce((m, v) => Math.max(m, Math.abs(v)), 0);
   const keep = [0];
   let anchor = 0;
   let [least, most] = [-Infinity, Infinity];

@@ -28,7 +28,7 @@ export function readStepTest(file: string): ReadStepTest {
   const output = numbers(t, 1).map((v) => v * factor);
   const content = headerUnit(t, 2, 'a concentration').factor;
   const measured = numbers(t, 2).map((v) => v * content);
-  const size = Math.max(...output.map((v) => Math.abs(v - output[0])));
+  const size = output.reduce((m, v) => Math.max(m, Math.abs(v - output[0])), 0);
   const at = output.findIndex((v) => Math.abs(v - output[0]) > 0.5 * size);
   if (at < 1 || !(size > STEADY * Math.abs(output[0])))
     throw new BadData(`${t.file}:${t.rows[0].line}: the output does not step, from a first row before it`);

@@ -15,10 +15,10 @@ import type { F } from '../solve/system.ts';
 import { type ControlledPlant, controlled, devicesOf } from './control/joined.ts';
 import { loopReports } from './control/report.ts';
 import { type Settled, settle } from './control/settle.ts';
-import { derivedFigures } from './derived.ts';
+import { type Derived, derivedFigures } from './derived.ts';
 import { diagrams } from './diagram.ts';
 import { type LimitReport, LimitWatch } from './limit-watch.ts';
-import { Recorder } from './records.ts';
+import { Recorder, type Rows } from './records.ts';
 import type { RunResult, Snapshot } from './result.ts';
 import { restoreModes, restoreState, saveState } from './saved.ts';
 import { trainFigures } from './train-figures.ts';
@@ -33,6 +33,8 @@ export interface RunSettings {
   readonly progress?: (share: number) => void;
   /** s at which the state is kept besides the end; null: at the end. */
   readonly keepAt?: number;
+  /** Takes each record as it comes; it is made when the run is about to begin. */
+  readonly rows?: (plant: Plant, derived: readonly Derived[]) => Rows;
   /** Others that follow the run. */
   readonly watchers?: readonly Watcher[];
 }
@@ -106,7 +108,9 @@ function prepare(s: Scenario, settings: RunSettings): Prepared {
   const devices = devicesOf({ ...joined, plant }, atRest);
   const first = s.upsets.length > 0 ? Math.min(...s.upsets.map((u) => u.at)) : null;
   const before = first === null || first <= 0 ? null : Math.min(first, s.horizon);
-  const recorder = new Recorder(plant, s.recordEvery, before === null ? [] : [before]);
+  const derived = derivedFigures(plant);
+  const moments = before === null ? [] : [before];
+  const recorder = new Recorder(plant, s.recordEvery, moments, settings.rows?.(plant, derived) ?? null);
   const limits = s.limits.map((l) => new LimitWatch(plant, l));
   const watchers: Watcher[] = [recorder, ...limits];
   const keeper = new StateKeeper(plant, settings.keepAt ?? s.horizon);
@@ -145,7 +149,7 @@ function prepare(s: Scenario, settings: RunSettings): Prepared {
         integrator: result.integrator,
         tolerance: settings.tolerance,
         kept: keeper.kept,
-        derived: derivedFigures(plant),
+        derived,
         figures: trainFigures(plant, recorder.records.rows[recorder.records.rows.length - 1]),
         loops: loopReports(joined, devices, result),
       };

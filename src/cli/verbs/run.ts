@@ -1,12 +1,12 @@
 import { runScreen } from '../../report/screen.ts';
-import { writeSeries } from '../../report/series.ts';
+import { seriesLines } from '../../report/series.ts';
 import { runSummary } from '../../report/summary.ts';
 import { quantity } from '../../scenario/units.ts';
 import { type RunSettings, runInTurns } from '../../study/run.ts';
 import type { Console } from '../console.ts';
 import { draw, ending } from '../drawing.ts';
 import { exits, Known } from '../exit.ts';
-import { makeFolder, openScenario, outputFolder, stream, version, writeJson } from '../files.ts';
+import { GrowingFile, makeFolder, openScenario, outputFolder, version, writeJson } from '../files.ts';
 import { known } from '../refusing.ts';
 
 export interface RunOptions {
@@ -54,6 +54,13 @@ export async function run(file: string, options: RunOptions, console: Console): 
     integrator: options.integrator,
     tolerance: options.tolerance,
     progress: (share) => console.progress(share, 'running'),
+    rows: (plant, derived) => {
+      makeFolder(folder);
+      const lines = seriesLines(plant, derived);
+      const file = new GrowingFile(folder, 'series.csv');
+      file.add(lines.header);
+      return { row: (t, y) => file.add(lines.line(t, y)), end: () => file.close() };
+    },
     ...keepAt(options, read.scenario.horizon),
   };
   const result = await runInTurns(read.scenario, settings, { due, interrupted: () => interrupted }).catch(
@@ -63,8 +70,6 @@ export async function run(file: string, options: RunOptions, console: Console): 
   );
   console.clear();
   const seconds = (performance.now() - began) / 1e3;
-  makeFolder(folder);
-  await stream(folder, 'series.csv', (to) => writeSeries(result, to));
   writeJson(folder, 'summary.json', runSummary(result, { file, version: version(), seconds }));
   const made = ['series.csv', 'summary.json'];
   if (options.saveState !== undefined && result.kept) {

@@ -134,7 +134,12 @@ function changedPanels(r: RunResult): Panel[] {
     .map((c) => {
       const { unit, factor } = shown(c.unit);
       const data = c.times.map((x, k) => ({ x, y: c.values[k] * factor }));
-      return { label: c.quantity, data, unit, largest: Math.max(...data.map((p) => p.y)) };
+      return {
+        label: c.quantity,
+        data,
+        unit,
+        largest: data.reduce((m, p) => Math.max(m, p.y), Number.NEGATIVE_INFINITY),
+      };
     });
   const first = lines[0];
   if (!first) return [];

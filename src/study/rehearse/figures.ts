@@ -154,7 +154,8 @@ function lastOutside(
 ): number | null {
   const times = [...courses.looks().filter((t) => t >= g.first), courses.to];
   // The departure is measured from the run without the upset, whatever the end is.
-  const peak = Math.max(...times.map((t) => Math.abs(courses.value(output, t) - quiet.value(output, t))));
+  const departure = (t: number): number => Math.abs(courses.value(output, t) - quiet.value(output, t));
+  const peak = times.reduce((m, t) => Math.max(m, departure(t)), 0);
   const scale = g.plant.system.outputs[output].scale;
   if (!(peak > 1e-6 * scale)) return g.first;
   const out = (t: number): boolean => Math.abs(courses.value(output, t) - reference(t)) > RECOVERED * peak;
