@@ -28,11 +28,14 @@ export function track(
   const times = [...new Set([0, ...corners.filter((t) => t > 0 && t < horizon), horizon])].sort(
     (a, b) => a - b,
   );
+  // Only what has begun and is not yet over has a weight: an upset an hour for a year is no sum over the year.
+  let inForce: Change[] = [];
+  let begun = 0;
   const value = (t: number, side: -1 | 1): number => {
     let base = initial;
     let relative = 1;
     let absolute = 0;
-    for (const c of list) {
+    for (const c of inForce) {
       const weight = share(c, t, side);
       if ('by' in c.how) {
         if (c.how.relative) relative += weight * c.how.by;
@@ -47,6 +50,8 @@ export function track(
     line.values.push(v);
   };
   for (const t of times) {
+    for (; begun < list.length && list[begun].at <= t; begun++) inForce.push(list[begun]);
+    inForce = inForce.filter((c) => c.lasts === null || c.at + c.lasts + c.over >= t);
     const [left, right] = [value(t, -1), value(t, 1)];
     if (t > 0 && left !== right) push(t, left);
     push(t, right);
