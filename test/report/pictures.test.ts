@@ -1,5 +1,6 @@
 import { beforeAll, describe, expect, it } from 'vitest';
 import { runPictures, runTable, steadyPictures } from '../../src/report/pictures/index.ts';
+import { loopSignals } from '../../src/report/pictures/loop.ts';
 import { operating } from '../../src/report/pictures/operating.ts';
 import { outlets } from '../../src/report/pictures/outlets.ts';
 import type { RunResult } from '../../src/study/result.ts';
@@ -52,6 +53,27 @@ describe('pictures', () => {
     for (const axis of Object.values(scales)) expect(axis.title.text.join(' ')).toMatch(/\[(h|g\/L|m³\/h)\]/);
   });
 
+  it('draw the signals of each loop: measurement, set point, output between its limits, the flow that it sets', () => {
+    const looped = run(scenario('saltbush-loop'));
+    const parts = loopSignals.parts?.(looped) ?? [];
+    expect(parts.map((p) => loopSignals.name(looped, p))).toEqual(['loop-aic-101.png']);
+    const config = loopSignals.config(looped, parts[0]);
+    expect(config.data.datasets.map((d) => d.label)).toEqual([
+      'raffinate.copper',
+      'as measured',
+      'set point',
+      'AIC-101 output',
+      'lean organic.flow',
+    ]);
+    const end = (k: number): number => (config.data.datasets[k].data.at(-1) as { y: number }).y;
+    // Without lag left, the flow is the ratio times the liquor: 420 m³/h.
+    expect(end(4) / end(3)).toBeCloseTo(420, 3);
+    expect(end(1)).toBe(looped.loops[0].measurementAtEnd);
+    const notes = JSON.stringify(config.options?.plugins);
+    for (const words of ['low 0.700', 'high 1.50', 'limit < 0.450 g/L']) expect(notes).toContain(words);
+    expect(loopSignals.parts?.(result)).toEqual([]);
+  });
+
   it('draw the very figures that the run found', () => {
     const config = outlets.config(result);
     const line = config.data.datasets.find((d) => d.label === 'raffinate.copper');
@@ -73,6 +95,6 @@ describe('pictures', () => {
       expect(gap).toBeLessThan(0.12);
     }
     expect(operating.parts?.(result)).toHaveLength(2);
-    expect(runTable).toHaveLength(5);
+    expect(runTable).toHaveLength(6);
   });
 });

@@ -7,6 +7,7 @@ import { comparison } from './comparison.ts';
 import { fan } from './fan.ts';
 import { frequency } from './frequency.ts';
 import { levels } from './levels.ts';
+import { loopSignals } from './loop.ts';
 import { stageTimeMap } from './map.ts';
 import { operating } from './operating.ts';
 import { outlets } from './outlets.ts';
@@ -17,7 +18,14 @@ import { type Rehearsed, startSize } from './start-size.ts';
 import { timeline } from './timeline.ts';
 
 /** Pictures of `run`, in the order in which they are drawn. */
-export const runTable: readonly Picture<RunResult>[] = [outlets, levels, profiles, stageTimeMap, operating];
+export const runTable: readonly Picture<RunResult>[] = [
+  outlets,
+  loopSignals,
+  levels,
+  profiles,
+  stageTimeMap,
+  operating,
+];
 /** Pictures of `steady`. */
 export const steadyTable: readonly Picture<SteadyResult>[] = [operating];
 
