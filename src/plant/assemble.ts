@@ -1,4 +1,4 @@
-import { type Execution, generated } from '../math/kernel.ts';
+import type { Execution } from '../math/kernel.ts';
 import { jointsOf } from '../scenario/joints.ts';
 import { type Network, network, type Origin, type Stream } from '../scenario/network.ts';
 import type { Phase, Scenario, Tank, Train } from '../scenario/scenario.ts';
@@ -40,6 +40,7 @@ export interface Plant {
 export interface AssembleOptions {
   /** Paths of the inputs that can change in a run; what never changes need not be a state. */
   readonly moving?: ReadonlySet<string>;
+  /** Group by group, as the oracle does; as machine code where nothing is said. */
   readonly execution?: Execution;
 }
 
@@ -62,7 +63,7 @@ export function assemble(s: Scenario, options: AssembleOptions = {}): Plant {
   return {
     scenario: s,
     network: net,
-    system: book.ledger.build(options.execution ?? generated),
+    system: book.ledger.build(options.execution ?? null),
     parameters: Float64Array.from(book.ledger.parameterValues),
     inputs: Float64Array.from(book.inputValues),
     barren: Float64Array.from(book.initial),

@@ -2,14 +2,17 @@ import { createHash } from 'node:crypto';
 import type { Execution } from '../math/kernel.ts';
 import type { F, System } from '../solve/system.ts';
 import { Derivative, SignalChain } from './derivative.ts';
-import { type Group, group, signalActivity, signalLevel } from './groups.ts';
+import { group, signalActivity, signalLevel } from './groups.ts';
 import type { Ledger, Ref } from './ledger.ts';
+import { listed } from './listed.ts';
+import { type Formulas, machineOf } from './machine.ts';
 
 /**
  * Ledger → System. All values stand on one board, [x | w | p | z]; a call copies its arguments there, lets the
- * signals settle, and runs the groups. One slot past the end of dx takes what leaves for nowhere.
+ * signals settle, and runs the groups: as one piece of machine code for the whole plant or, where an `execution` is
+ * given, group by group. One slot past the end of dx takes what leaves for nowhere.
  */
-export function compile(ledger: Ledger, execution: Execution): System {
+export function compile(ledger: Ledger, execution: Execution | null): System {
   const nx = ledger.places.length;
   const nw = ledger.inputs.length;
   const np = ledger.parameters.length;
@@ -56,25 +59,38 @@ export function compile(ledger: Ledger, execution: Execution): System {
   const C = new Derivative(outputs, ledger.outputs.length, 'x', chainX);
   const D = new Derivative(outputs, ledger.outputs.length, 'w', chainW);
 
-  const board = new Float64Array(start.z + ledger.signalCount);
-  const change = new Float64Array(nx + 1);
-  const changeOfPlaces = change.subarray(0, nx);
   // Signals that no state enters change only when an input or a parameter does: between corners, hardly ever.
-  const still = signals.filter((g) => g.activity.every((a) => !a.x));
-  const moving = signals.filter((g) => g.activity.some((a) => a.x));
+  const formulas: Formulas = {
+    board: start.z + ledger.signalCount,
+    places: nx,
+    still: signals.filter((g) => g.activity.every((a) => !a.x)),
+    moving: signals.filter((g) => g.activity.some((a) => a.x)),
+    fluxes,
+    outputs,
+    guards,
+    outputCount: ledger.outputs.length,
+    guardCount: ledger.guards.length,
+    derivatives: { A, B, C, D },
+  };
+  const texts = entryTexts(ledger);
+  const machine = execution === null ? machineOf(formulas, structure(ledger, texts)) : listed(formulas);
+  const { board } = machine;
   board.fill(Number.NaN);
+  // Parameters are constant in a run: one and the same array holds the same numbers.
+  let known: F | null = null;
   const settle = (x: F, w: F, p: F): void => {
     board.set(x, 0);
-    if (!(equals(board, start.w, w) && equals(board, start.p, p))) {
+    if (p !== known || !equals(board, start.w, w)) {
       board.set(w, start.w);
       board.set(p, start.p);
-      runAll(still, board, board);
+      known = p;
+      machine.run('still');
     }
-    runAll(moving, board, board);
+    machine.run('moving');
   };
 
   return {
-    topology: hash(ledger),
+    topology: hash(ledger, texts),
     places: ledger.places,
     inputs: ledger.inputs,
     parameters: ledger.parameters,
@@ -92,30 +108,35 @@ export function compile(ledger: Ledger, execution: Execution): System {
     D: D.pattern,
     rhs(x, w, p, dx) {
       settle(x, w, p);
-      change.fill(0);
-      runAll(fluxes, board, change);
-      dx.set(changeOfPlaces);
+      machine.run('fluxes');
+      dx.set(machine.change);
     },
     jacobian(x, w, p, values) {
       settle(x, w, p);
-      A.evaluate(board, values);
+      machine.run('A');
+      values.set(machine.derivatives.A);
     },
     byInput(x, w, p, values) {
       settle(x, w, p);
-      B.evaluate(board, values);
+      machine.run('B');
+      values.set(machine.derivatives.B);
     },
     output(x, w, p, y) {
       settle(x, w, p);
-      runAll(outputs, board, y);
+      machine.run('outputs');
+      y.set(machine.outputs);
     },
     byOutput(x, w, p, c, d) {
       settle(x, w, p);
-      C.evaluate(board, c);
-      D.evaluate(board, d);
+      machine.run('C');
+      c.set(machine.derivatives.C);
+      machine.run('D');
+      d.set(machine.derivatives.D);
     },
     guard(x, w, p, g) {
       settle(x, w, p);
-      runAll(guards, board, g);
+      machine.run('guards');
+      g.set(machine.guards);
     },
   };
 }
@@ -125,24 +146,39 @@ function equals(board: F, from: number, values: F): boolean {
   return true;
 }
 
-function runAll(groups: readonly Group[], board: F, target: F): void {
-  for (let i = 0; i < groups.length; i++) {
-    const g = groups[i];
-    g.run(g.entries.length, g.references, board, target);
-  }
-}
+const entriesOf = (ledger: Ledger) => [
+  ledger.signals,
+  ledger.fluxes,
+  ledger.outputEntries,
+  ledger.guardEntries,
+];
+
+/** By list: what each entry reads and writes. */
+const entryTexts = (ledger: Ledger): string[][] =>
+  entriesOf(ledger).map((list) => list.map((e) => `(${e.args.map((r) => r.space + r.index)})>${e.targets}`));
 
 /** Structure only: which places, inputs, parameters and outputs there are, and which fluxes join them. */
-function hash(ledger: Ledger): string {
-  const entry = (e: { kernel: { name: string }; args: readonly Ref[]; targets: readonly number[] }): string =>
-    `${e.kernel.name}(${e.args.map((r) => r.space + r.index)})>${e.targets}`;
+function hash(ledger: Ledger, texts: readonly (readonly string[])[]): string {
   const text = [
     ...[ledger.places, ledger.inputs, ledger.parameters, ledger.outputs].map((l) =>
       l.map((q) => q.path).join('|'),
     ),
-    ...[ledger.signals, ledger.fluxes, ledger.outputEntries, ledger.guardEntries].map((l) =>
-      l.map(entry).join('|'),
-    ),
+    ...entriesOf(ledger).map((list, k) => list.map((e, i) => e.kernel.name + texts[k][i]).join('|')),
   ].join('\n');
-  return createHash('sha256').update(text).digest('hex').slice(0, 16);
+  return digest(text);
 }
+
+/** All that the code of a plant depends on: formulas by their identity, and what they read and write. */
+function structure(ledger: Ledger, texts: readonly (readonly string[])[]): string {
+  const sizes = [ledger.places, ledger.inputs, ledger.parameters, ledger.outputs, ledger.guards];
+  return digest(
+    [
+      sizes.map((l) => l.length).join(),
+      ...entriesOf(ledger).map((list, k) =>
+        list.map((e, i) => e.kernel.outputs.map((o) => o.id) + texts[k][i]).join('|'),
+      ),
+    ].join('\n'),
+  );
+}
+
+const digest = (text: string): string => createHash('sha256').update(text).digest('hex').slice(0, 16);

@@ -10,6 +10,24 @@ interface Term {
   readonly sign: 1 | -1;
 }
 
+/** destination += sign · partial of a pair · chain factor. */
+export interface Product {
+  /** Which of the pairs of its group. */
+  readonly pair: number;
+  readonly to: number;
+  /** Slot of the chain; 0 is the constant 1. */
+  readonly chain: number;
+  readonly sign: 1 | -1;
+}
+
+/** One instance of a group, and all products that its partials enter. */
+export interface Share {
+  readonly group: Group;
+  /** Number of the entry in its group. */
+  readonly entry: number;
+  readonly products: readonly Product[];
+}
+
 /**
  * Exact sparse derivative of a set of groups with respect to the states ('x') or the inputs ('w').
  *
@@ -23,8 +41,9 @@ export class Derivative {
   readonly #groups: readonly Group[];
   readonly #which: 'x' | 'w';
   readonly #partials: readonly F[];
-  readonly #plus: Products;
-  readonly #minus: Products;
+  readonly #products: Products;
+  /** The same as instances in their order, for generated code. */
+  readonly shares: readonly Share[];
 
   constructor(groups: readonly Group[], rows: number, which: 'x' | 'w', chain: SignalChain) {
     this.#groups = groups.filter((g) => g.pairs[which].length > 0);
@@ -37,13 +56,20 @@ export class Derivative {
     for (const t of terms) for (const c of chain.columnsOf(t.arg)) columns[t.row].add(c.column);
     this.pattern = patternOf(columns);
     const slot = slotFinder(this.pattern);
-    const plus = new Products(buffers.all, chain.values);
-    const minus = new Products(buffers.all, chain.values);
+    const products = new Products(buffers.all, chain.values);
+    const shares = new Shares(this.#groups, which, buffers.starts);
     for (const t of terms)
-      for (const c of chain.columnsOf(t.arg))
-        (t.sign > 0 ? plus : minus).push(slot(t.row, c.column), t.partial, c.slot);
-    this.#plus = plus.close();
-    this.#minus = minus.close();
+      for (const c of chain.columnsOf(t.arg)) {
+        const to = slot(t.row, c.column);
+        products.push(to, t.partial, c.slot, t.sign);
+        shares.push(t.partial, to, c.slot, t.sign);
+      }
+    this.#products = products.close();
+    this.shares = shares.list;
+  }
+
+  get chain(): SignalChain {
+    return this.#chain;
   }
 
   /** `board` must hold current values, signals included; the chain must have been evaluated on it. */
@@ -54,8 +80,7 @@ export class Derivative {
       g.derive[this.#which](g.entries.length, g.references, board, this.#partials[i]);
     }
     values.fill(0);
-    this.#plus.addTo(values);
-    this.#minus.subtractFrom(values);
+    this.#products.addTo(values);
   }
 }
 
@@ -67,6 +92,7 @@ export class SignalChain {
   readonly #groups: readonly Group[];
   readonly #partials: readonly F[];
   readonly #products: Products;
+  readonly shares: readonly Share[];
 
   constructor(groups: readonly Group[], signals: number, which: 'x' | 'w') {
     this.#direct = which;
@@ -92,8 +118,13 @@ export class SignalChain {
     });
     this.values = new Float64Array(slots);
     const products = new Products(buffers.all, this.values);
-    for (const p of pending) products.push(...p);
+    const shares = new Shares(this.#groups, which, buffers.starts);
+    for (const [to, partial, from] of pending) {
+      products.push(to, partial, from, 1);
+      shares.push(partial, to, from, 1);
+    }
     this.#products = products.close();
+    this.shares = shares.list;
   }
 
   columnsOf(r: Ref): readonly { readonly column: number; readonly slot: number }[] {
@@ -116,7 +147,7 @@ export class SignalChain {
   }
 }
 
-/** A list of destination += partial × chain factor. */
+/** A list of destination += sign · partial · chain factor. */
 class Products {
   readonly #partials: F;
   readonly #chain: F;
@@ -128,8 +159,8 @@ class Products {
     this.#chain = chain;
   }
 
-  push(dest: number, partial: number, chain: number): void {
-    this.#list.push(dest, partial, chain);
+  push(dest: number, partial: number, chain: number, sign: 1 | -1): void {
+    this.#list.push(dest, partial, chain, sign);
   }
 
   close(): this {
@@ -142,14 +173,39 @@ class Products {
     const list = this.#flat;
     const p = this.#partials;
     const c = this.#chain;
-    for (let k = 0; k < list.length; k += 3) values[list[k]] += p[list[k + 1]] * c[list[k + 2]];
+    for (let k = 0; k < list.length; k += 4)
+      values[list[k]] += list[k + 3] * (p[list[k + 1]] * c[list[k + 2]]);
+  }
+}
+
+/** Gathers products by the instance whose partial they take. */
+class Shares {
+  readonly list: (Share & { readonly products: Product[] })[] = [];
+  readonly #pairs: readonly number[];
+  readonly #starts: readonly number[];
+  /** Where the shares of each group begin in the list. */
+  readonly #first: number[] = [];
+  #group = 0;
+
+  constructor(groups: readonly Group[], which: 'x' | 'w', starts: readonly number[]) {
+    this.#pairs = groups.map((g) => g.pairs[which].length);
+    this.#starts = starts;
+    for (const group of groups) {
+      this.#first.push(this.list.length);
+      group.entries.forEach((_, entry) => {
+        this.list.push({ group, entry, products: [] });
+      });
+    }
   }
 
-  subtractFrom(values: F): void {
-    const list = this.#flat;
-    const p = this.#partials;
-    const c = this.#chain;
-    for (let k = 0; k < list.length; k += 3) values[list[k]] -= p[list[k + 1]] * c[list[k + 2]];
+  /** Partials come in rising order. */
+  push(partial: number, to: number, chain: number, sign: 1 | -1): void {
+    while (this.#group + 1 < this.#starts.length && partial >= this.#starts[this.#group + 1])
+      this.#group += 1;
+    const inside = partial - this.#starts[this.#group];
+    const pairs = this.#pairs[this.#group];
+    const entry = Math.floor(inside / pairs);
+    this.list[this.#first[this.#group] + entry].products.push({ pair: inside % pairs, to, chain, sign });
   }
 }
 

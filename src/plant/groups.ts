@@ -53,7 +53,7 @@ export function signalLevel(ledger: Ledger): number[] {
 export function group(
   entries: readonly Entry[],
   effect: Effect,
-  execution: Execution,
+  execution: Execution | null,
   signals: readonly Activity[],
   layout: Layout,
   levelOf: (e: Entry) => number = () => 0,
@@ -78,7 +78,7 @@ const code = (a: Activity): string => `${a.x ? 'x' : '-'}${a.w ? 'w' : '-'}`;
 function makeGroup(
   entries: readonly Entry[],
   effect: Effect,
-  execution: Execution,
+  execution: Execution | null,
   signals: readonly Activity[],
   layout: Layout,
 ): Group {
@@ -91,7 +91,7 @@ function makeGroup(
   const references = Int32Array.from(
     entries.flatMap((e) => [...e.args.map(layout.address), ...e.targets.map(layout.target)]),
   );
-  const compiled = once(k, execution, effect, pairs);
+  const compiled = execution === null ? apart : once(k, execution, effect, pairs);
   return { kernel: k, entries, activity, references, pairs, ...compiled };
 }
 
@@ -99,6 +99,12 @@ interface Compiled {
   readonly run: Run;
   readonly derive: { readonly x: Derive; readonly w: Derive };
 }
+
+/** Groups that are carried out by the code of the whole plant have none of their own. */
+const none: Run = () => {
+  throw new Error('this group is part of a machine');
+};
+const apart: Compiled = { run: none, derive: { x: none, w: none } };
 
 const cache = new WeakMap<Kernel, Map<string, Compiled>>();
 

@@ -1,4 +1,4 @@
-import { type Execution, generated, type Kernel } from '../math/kernel.ts';
+import type { Execution, Kernel } from '../math/kernel.ts';
 import type { Guard, Named, Place, SteadyRow, System } from '../solve/system.ts';
 import { compile } from './compile.ts';
 
@@ -88,7 +88,7 @@ export class Ledger {
     this.conserved.push({ name, places });
   }
 
-  build(execution: Execution = generated): System {
+  build(execution: Execution | null = null): System {
     return compile(this, execution);
   }
 }
