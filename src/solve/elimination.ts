@@ -1,5 +1,9 @@
 import { type EliminationPlan, eliminationPlan } from './elimination-plan.ts';
+import type { Factors } from './linear.ts';
 import type { F, Pattern } from './system.ts';
+
+/** Nothing that is measured is as small as that; it keeps the error of an empty row at zero. */
+export const TINY = 1e-300;
 
 /**
  * LU factors of W = shift·I − A without pivoting, on a pattern that never changes.
@@ -8,15 +12,23 @@ import type { F, Pattern } from './system.ts';
  * 1/pivot of its column, U that of its row. Blocks below the diagonal blocks are kept as they are and only enter
  * the solves.
  */
-export class Elimination {
+export class Elimination implements Factors {
+  readonly b: F;
+  readonly r: F;
+  readonly #pattern: Pattern;
   readonly #plan: EliminationPlan;
+  #a: F = new Float64Array(0);
+  #shift = 0;
   /** Values of the forward list, of the backward list, and pivots. */
   readonly #values: F;
   /** Reciprocal pivots by place. */
   readonly #reciprocal: F;
 
   constructor(pattern: Pattern) {
+    this.#pattern = pattern;
     this.#plan = eliminationPlan(pattern);
+    this.b = new Float64Array(this.#plan.size);
+    this.r = new Float64Array(this.#plan.size);
     this.#values = new Float64Array(this.#plan.row.length + this.#plan.size);
     this.#reciprocal = new Float64Array(this.#plan.size);
   }
@@ -32,6 +44,8 @@ export class Elimination {
 
   /** Factors shift·I − A, A given by its values on the pattern. A vanishing pivot leaves non-finite factors. */
   factor(values: F, shift: number): void {
+    this.#a = values;
+    this.#shift = shift;
     const v = this.#values;
     const d = this.#reciprocal;
     const { load, program: p } = this.#plan;
@@ -75,5 +89,25 @@ export class Elimination {
       }
       for (; b < backwardEnd; b++) x[row[b]] -= v[b] * x[column[b]];
     }
+  }
+
+  measure(x: F): number {
+    const { rowStart, column } = this.#pattern;
+    const values = this.#a;
+    let worst = 0;
+    for (let i = 0; i < x.length; i++) {
+      const own = this.#shift * x[i];
+      let r = this.b[i] - own;
+      let size = Math.abs(this.b[i]) + Math.abs(own);
+      for (let k = rowStart[i]; k < rowStart[i + 1]; k++) {
+        const term = values[k] * x[column[k]];
+        r += term;
+        size += Math.abs(term);
+      }
+      this.r[i] = r;
+      // Math.max keeps a NaN, whatever the later rows say.
+      worst = Math.max(worst, Math.abs(r) / (size + TINY));
+    }
+    return worst;
   }
 }

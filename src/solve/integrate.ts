@@ -118,60 +118,64 @@ function* integration(
   let t = times[0];
   let stop: Stop | null = null;
 
-  devices.begin(t, x);
-  for (let segment = 0; segment + 1 < times.length && !stop; segment++) {
-    inputs.segment = segment;
-    const end = times[segment + 1];
-    let paused = false;
-    while (t < end && !stop) {
-      if (!paused) {
-        devices.due(t, x);
-        inputs.value(t, w);
-        for (let g = guards.jumped(x, w); g >= 0 && !stop; g = guards.jumped(x, w)) {
-          stop = happen(g, t);
+  try {
+    devices.begin(t, x);
+    for (let segment = 0; segment + 1 < times.length && !stop; segment++) {
+      inputs.segment = segment;
+      const end = times[segment + 1];
+      let paused = false;
+      while (t < end && !stop) {
+        if (!paused) {
+          devices.due(t, x);
           inputs.value(t, w);
+          for (let g = guards.jumped(x, w); g >= 0 && !stop; g = guards.jumped(x, w)) {
+            stop = happen(g, t);
+            inputs.value(t, w);
+          }
+          if (stop) break;
+          integrator.work.restarts += 1;
+          for (const o of watchers) o.begin?.(t, x, w);
         }
-        if (stop) break;
-        integrator.work.restarts += 1;
-        for (const o of watchers) o.begin?.(t, x, w);
+        let met = -1;
+        const to = devices.until(end);
+        const outcome = integrator.advance({ from: t, to, inputs }, x, (step) => {
+          const hit = guards.crossed(step);
+          met = hit.guard;
+          const shown = met >= 0 ? shortened(step, hit.time) : step;
+          devices.step(shown);
+          for (const o of watchers) o.step?.(shown, inputs);
+          if (met >= 0) return hit.time;
+          return step.pausable && due() ? step.t1 : Number.NaN;
+        });
+        if (outcome.ended === 'failed') {
+          stop = outcome.stop;
+          t = outcome.stop.time;
+        } else if (outcome.ended === 'asked') {
+          t = outcome.time;
+          paused = met < 0;
+          if (!paused) stop = happen(met, t);
+          else if (yield) stop = { reason: 'interrupted', time: t };
+        } else {
+          t = to;
+          paused = false;
+        }
+        if (!stop && met >= 0) guards.settled(met);
       }
-      let met = -1;
-      const to = devices.until(end);
-      const outcome = integrator.advance({ from: t, to, inputs }, x, (step) => {
-        const hit = guards.crossed(step);
-        met = hit.guard;
-        const shown = met >= 0 ? shortened(step, hit.time) : step;
-        devices.step(shown);
-        for (const o of watchers) o.step?.(shown, inputs);
-        if (met >= 0) return hit.time;
-        return step.pausable && due() ? step.t1 : Number.NaN;
-      });
-      if (outcome.ended === 'failed') {
-        stop = outcome.stop;
-        t = outcome.stop.time;
-      } else if (outcome.ended === 'asked') {
-        t = outcome.time;
-        paused = met < 0;
-        if (!paused) stop = happen(met, t);
-        else if (yield) stop = { reason: 'interrupted', time: t };
-      } else {
-        t = to;
-        paused = false;
-      }
-      if (!stop && met >= 0) guards.settled(met);
     }
+    inputs.value(t, w);
+    for (const o of watchers) o.end?.(t, x, w, inputs);
+    return {
+      stop: stop ?? { reason: 'reached-end', time: t },
+      time: t,
+      state: x,
+      events,
+      work: integrator.work,
+      integrator: integrator.name,
+      moves: devices.moves,
+    };
+  } finally {
+    integrator.close?.();
   }
-  inputs.value(t, w);
-  for (const o of watchers) o.end?.(t, x, w, inputs);
-  return {
-    stop: stop ?? { reason: 'reached-end', time: t },
-    time: t,
-    state: x,
-    events,
-    work: integrator.work,
-    integrator: integrator.name,
-    moves: devices.moves,
-  };
 
   function happen(guard: number, time: number): Stop | null {
     const g: Guard = system.guards[guard];

@@ -38,6 +38,8 @@ export type StretchEnd =
 export interface Integrator {
   readonly name: string;
   readonly work: Work;
+  /** Gives back what the run has borrowed; nothing may be asked of it, nor of a step, afterwards. */
+  close?(): void;
   /** Advances `x` in place over the stretch. */
   advance(stretch: Stretch, x: F, onStep: OnStep): StretchEnd;
 }

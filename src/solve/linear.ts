@@ -2,6 +2,22 @@ import { Elimination } from './elimination.ts';
 import { PivotedElimination } from './pivoting.ts';
 import type { F, Pattern } from './system.ts';
 
+/** An elimination in a fixed order. */
+export interface Factors {
+  readonly size: number;
+  /** Multiply-adds of one factorisation. */
+  readonly work: number;
+  /** The right-hand side as it was, set by who solves; what `measure` has left of it. */
+  readonly b: F;
+  readonly r: F;
+  /** Factors shift·I − A, A given by its values on the pattern. */
+  factor(values: F, shift: number): void;
+  /** Solves in place: `x` holds b on entry. */
+  solve(x: F): void;
+  /** Leaves b − W·x in r; returns the largest row-wise backward error, NaN where anything is no number. */
+  measure(x: F): number;
+}
+
 /** Row-wise backward error above which a solution is not taken as it is. A closure of 1e-9 needs some margin. */
 const TRUSTED_ERROR = 1e-12;
 
@@ -22,21 +38,19 @@ export interface LinearWork {
 export class LinearSolver {
   readonly work: LinearWork = { factorisations: 0, solves: 0, refinements: 0, pivotings: 0 };
   readonly #pattern: Pattern;
-  readonly #fast: Elimination;
+  readonly #fast: Factors;
   #safe: PivotedElimination | null = null;
   #mode: 'fast' | 'refined' | 'pivoted' = 'fast';
   #fresh = true;
   #values: F = new Float64Array(0);
   #shift = 0;
   readonly #b: F;
-  readonly #r: F;
   #worst = 0;
 
-  constructor(pattern: Pattern) {
+  constructor(pattern: Pattern, factors: Factors = new Elimination(pattern)) {
     this.#pattern = pattern;
-    this.#fast = new Elimination(pattern);
-    this.#b = new Float64Array(this.#fast.size);
-    this.#r = new Float64Array(this.#fast.size);
+    this.#fast = factors;
+    this.#b = factors.b;
   }
 
   /** Multiply-adds of one factorisation. */
@@ -93,28 +107,12 @@ export class LinearSolver {
   #refine(x: F): void {
     this.work.refinements += 1;
     this.#measure(x);
-    this.#fast.solve(this.#r);
-    for (let i = 0; i < x.length; i++) x[i] += this.#r[i];
+    const { r } = this.#fast;
+    this.#fast.solve(r);
+    for (let i = 0; i < x.length; i++) x[i] += r[i];
   }
 
-  /** Leaves b − W·x in #r and the largest row-wise backward error in #worst. */
   #measure(x: F): void {
-    const { rowStart, column } = this.#pattern;
-    const values = this.#values;
-    let worst = 0;
-    for (let i = 0; i < x.length; i++) {
-      const own = this.#shift * x[i];
-      let r = this.#b[i] - own;
-      let size = Math.abs(this.#b[i]) + Math.abs(own);
-      for (let k = rowStart[i]; k < rowStart[i + 1]; k++) {
-        const term = values[k] * x[column[k]];
-        r += term;
-        size += Math.abs(term);
-      }
-      this.#r[i] = r;
-      // Math.max keeps a NaN, whatever the later rows say.
-      if (size !== 0) worst = Math.max(worst, Math.abs(r) / size);
-    }
-    this.#worst = worst;
+    this.#worst = this.#fast.measure(x);
   }
 }

@@ -2,9 +2,9 @@ import type { Inputs } from './inputs.ts';
 import type { Integrator, OnStep, Settings, Step, Stretch, StretchEnd } from './integrator.ts';
 import { LinearSolver } from './linear.ts';
 import { noWork, type Stop, type Work } from './outcome.ts';
-import { type Combine, combinations, type DenseForm, denseForm } from './stage-sums.ts';
 import type { F, System } from './system.ts';
 import type { Tableau } from './tableau.ts';
+import { release, type StepBench, type Workbench, workbench } from './workbench.ts';
 
 /** A new step aims a little below the tolerance, so that few are rejected. */
 const SAFETY = 0.9;
@@ -27,26 +27,16 @@ export class Rosenbrock implements Integrator {
   readonly #table: Tableau;
   readonly #settings: Settings;
   readonly #linear: LinearSolver;
-  readonly #jacobian: F;
   readonly #byInput: F;
-  readonly #combine: readonly Combine[];
-  readonly #absolute: F;
-  /** 1 where a place takes part in the error norm; boundary totals have no feedback and do not. */
-  readonly #judged: Uint8Array;
-  readonly #floor: F;
-  readonly #u: F;
-  readonly #x1: F;
-  readonly #trial: F;
-  readonly #dx: F;
+  readonly #work: Workbench;
+  readonly #bench: StepBench;
   readonly #ft: F;
   readonly #w: F;
   readonly #dw: F;
-  readonly #one: F;
   #moving = false;
   /** The step that the error would allow, kept over corners: a step cut short by a corner says nothing. */
   #natural: number;
   #error = 0;
-  #worst = 0;
 
   constructor(system: System, p: F, settings: Settings, table: Tableau) {
     const n = system.places.length;
@@ -55,21 +45,19 @@ export class Rosenbrock implements Integrator {
     this.#p = p;
     this.#table = table;
     this.#settings = settings;
-    this.#linear = new LinearSolver(system.A);
-    this.#jacobian = new Float64Array(system.A.column.length);
+    this.#work = workbench(system.A, table);
+    this.#linear = new LinearSolver(system.A, this.#work);
+    const bench = this.#work.steps as StepBench;
+    this.#bench = bench;
     this.#byInput = new Float64Array(system.B.column.length);
-    this.#combine = combinations(table);
-    this.#absolute = Float64Array.from(system.places, (q) => settings.tolerance.relative * q.scale);
-    this.#judged = Uint8Array.from(system.places, (q) => (q.kind === 'total' ? 0 : 1));
-    this.#floor = Float64Array.from(system.places, (q, i) =>
-      q.floor === null ? -Infinity : q.floor - BELOW_FLOOR * this.#absolute[i],
-    );
-    this.#u = new Float64Array(n * table.alpha.length);
-    this.#x1 = new Float64Array(n);
-    this.#trial = new Float64Array(n);
-    this.#dx = new Float64Array(n);
+    const { relative } = settings.tolerance;
+    system.places.forEach((q, i) => {
+      const absolute = relative * q.scale;
+      // Boundary totals have no feedback and take no part in the error norm.
+      bench.absolute[i] = q.kind === 'total' ? Infinity : absolute;
+      bench.floor[i] = q.floor === null ? -Infinity : q.floor - BELOW_FLOOR * absolute;
+    });
     this.#ft = new Float64Array(n);
-    this.#one = new Float64Array(n);
     this.#w = new Float64Array(system.inputs.length);
     this.#dw = new Float64Array(system.inputs.length);
     this.#natural = settings.firstStep;
@@ -81,7 +69,7 @@ export class Rosenbrock implements Integrator {
     const exponent = -1 / table.order;
     inputs.slope(this.#dw);
     this.#moving = this.#dw.some((v) => v !== 0);
-    const dense = new DenseStep(x, this.#x1, this.#u, table);
+    const dense = new DenseStep(x, this.#bench, table);
     let t = from;
     let grow = GROW;
     while (t < to) {
@@ -92,7 +80,7 @@ export class Rosenbrock implements Integrator {
         const left = to - t;
         const cut = this.#natural >= left * (1 - 1e-12);
         const h = cut ? left : Math.min(this.#natural, left > 2 * this.#natural ? left : left / 2);
-        const verdict = this.#attempt(t, h, x, inputs);
+        const verdict = this.#attempt(t, h, inputs);
         if (verdict === 'accepted') {
           const factor = Math.min(grow, Math.max(SHRINK, SAFETY * this.#error ** exponent));
           // A step that a corner cut short may only raise the natural step, never lower it.
@@ -102,8 +90,8 @@ export class Rosenbrock implements Integrator {
           dense.open(t, cut ? to : t + h);
           const end = onStep(dense);
           t = dense.t1;
-          if (end < t) dense.at(end, this.#trial);
-          x.set(end < t ? this.#trial : this.#x1);
+          if (end < t) dense.at(end, this.#bench.trial);
+          x.set(end < t ? this.#bench.trial : this.#bench.x1);
           if (!(end < t) && t < to && this.#stuck(t, to - from))
             return failed(this.#tooSmall(t, x, inputs, 'error'));
           if (end <= t) return { ended: 'asked', time: end };
@@ -125,13 +113,17 @@ export class Rosenbrock implements Integrator {
     return { ended: 'at-end' };
   }
 
+  close(): void {
+    release(this.#system.A, this.#table, this.#work);
+  }
+
   #stuck(t: number, span: number): boolean {
     return this.#natural < SMALLEST * Math.max(Math.abs(t), SMALLEST * span);
   }
 
   #tooSmall(time: number, x: F, inputs: Inputs, verdict: Exclude<Verdict, 'accepted'>): Stop {
     const lost = this.#lost(time, x, inputs);
-    const place = this.#system.places[lost < 0 ? this.#worst : lost].path;
+    const place = this.#system.places[lost < 0 ? this.#worst(verdict) : lost].path;
     if (verdict === 'not-finite' || lost >= 0) return { reason: 'not-finite', time, place };
     const cause = {
       error: 'no step is small enough for the tolerance',
@@ -141,19 +133,35 @@ export class Rosenbrock implements Integrator {
     return { reason: 'step-too-small', time, place, cause };
   }
 
+  /** The place that is to blame for the verdict on the last attempt: its error, or how far it lies below its floor. */
+  #worst(verdict: Exclude<Verdict, 'accepted'>): number {
+    const { x, x1, absolute, floor } = this.#bench;
+    const stage = this.#work.x;
+    const { relative } = this.#settings.tolerance;
+    const blame = (i: number): number =>
+      verdict === 'negative'
+        ? floor[i] - x1[i]
+        : Math.abs(stage[i]) / (absolute[i] + relative * Math.max(Math.abs(x[i]), Math.abs(x1[i])));
+    let at = 0;
+    for (let i = 1; i < x1.length; i++) if (!(blame(i) <= blame(at))) at = i;
+    return at;
+  }
+
   /**
    * The place whose balance or slopes have no finite value, or −1. The solution cannot tell, one place that is no
    * number spoils all that are eliminated with it: so the stages of the last attempt are gone through again.
    */
   #lost(t: number, x: F, inputs: Inputs): number {
+    const bench = this.#bench;
+    bench.x.set(x);
     inputs.value(t, this.#w);
-    for (const stage of this.#combine) {
-      stage.state(x.length, x, this.#u, this.#trial);
-      this.#system.rhs(this.#trial, this.#w, this.#p, this.#dx);
-      const lost = this.#dx.findIndex((v) => !Number.isFinite(v));
+    for (let i = 0; i < this.#table.alpha.length; i++) {
+      bench.state(i);
+      this.#system.rhs(bench.trial, this.#w, this.#p, bench.dx);
+      const lost = bench.dx.findIndex((v) => !Number.isFinite(v));
       if (lost >= 0) return lost;
-      if (stage !== this.#combine[0]) continue;
-      const steep = this.#jacobian.findIndex((v) => !Number.isFinite(v));
+      if (i > 0) continue;
+      const steep = this.#work.a.findIndex((v) => !Number.isFinite(v));
       if (steep >= 0) return this.#system.A.rowStart.findIndex((start) => start > steep) - 1;
     }
     return -1;
@@ -162,7 +170,8 @@ export class Rosenbrock implements Integrator {
   /** Jacobian and f_t at (t, x): they serve every attempt from this point. */
   #prepare(t: number, x: F, inputs: Inputs): void {
     inputs.value(t, this.#w);
-    this.#system.jacobian(x, this.#w, this.#p, this.#jacobian);
+    this.#bench.x.set(x);
+    this.#system.jacobian(x, this.#w, this.#p, this.#work.a);
     this.work.jacobians += 1;
     if (!this.#moving) return;
     this.#system.byInput(x, this.#w, this.#p, this.#byInput);
@@ -174,61 +183,31 @@ export class Rosenbrock implements Integrator {
     }
   }
 
-  #attempt(t: number, h: number, x: F, inputs: Inputs): Verdict {
+  #attempt(t: number, h: number, inputs: Inputs): Verdict {
     const table = this.#table;
-    const n = x.length;
     const stages = table.alpha.length;
-    const trial = this.#trial;
-    const dx = this.#dx;
-    const ft = this.#ft;
-    const u = this.#u;
-    const one = this.#one;
-    this.#linear.factor(this.#jacobian, 1 / (h * table.gamma));
+    const bench = this.#bench;
+    const stage = this.#work.x;
+    const { trial, dx } = bench;
+    this.#linear.factor(this.#work.a, 1 / (h * table.gamma));
     for (let i = 0; i < stages; i++) {
-      this.#combine[i].state(n, x, u, trial);
+      bench.state(i);
       if (this.#moving) inputs.value(t + table.alpha[i] * h, this.#w);
       this.#system.rhs(trial, this.#w, this.#p, dx);
-      this.#combine[i].slope(n, dx, u, one, 1 / h);
+      bench.slope(i, 1 / h);
       if (this.#moving && table.d[i] !== 0) {
         const hd = h * table.d[i];
-        for (let k = 0; k < n; k++) one[k] += hd * ft[k];
+        const ft = this.#ft;
+        for (let k = 0; k < ft.length; k++) stage[k] += hd * ft[k];
       }
-      if (!this.#linear.solve(one)) return this.#count(i + 1, 'singular');
-      u.set(one, i * n);
+      if (!this.#linear.solve(stage)) return this.#count(i + 1, 'singular');
+      bench.keep(i);
     }
-    const x1 = this.#x1;
-    const absolute = this.#absolute;
-    const relative = this.#settings.tolerance.relative;
-    let worst = 0;
-    let below = -1;
-    let at = 0;
-    for (let k = 0; k < n; k++) {
-      const v = trial[k] + one[k];
-      x1[k] = v;
-      if (v < this.#floor[k]) below = k;
-      if (!this.#judged[k]) {
-        if (Number.isFinite(v)) continue;
-        worst = Number.NaN;
-        at = k;
-        break;
-      }
-      const e = Math.abs(one[k]) / (absolute[k] + relative * Math.max(Math.abs(x[k]), Math.abs(v)));
-      if (!(e <= worst)) {
-        worst = e;
-        at = k;
-        if (!(e < Infinity)) break;
-      }
-    }
-    this.#worst = at;
     // An error of exactly zero (nothing moves) must not give an infinite next step.
-    this.#error = Math.max(worst, 1e-10);
-    if (!Number.isFinite(worst)) return this.#count(stages, 'not-finite');
-    if (worst > 1) return this.#count(stages, 'error');
-    if (below >= 0) {
-      this.#worst = below;
-      return this.#count(stages, 'negative');
-    }
-    return this.#count(stages, 'accepted');
+    this.#error = Math.max(bench.finish(this.#settings.tolerance.relative), 1e-10);
+    if (!Number.isFinite(this.#error)) return this.#count(stages, 'not-finite');
+    if (this.#error > 1) return this.#count(stages, 'error');
+    return this.#count(stages, bench.below > 0 ? 'negative' : 'accepted');
   }
 
   #count(stages: number, verdict: Verdict): Verdict {
@@ -254,19 +233,15 @@ class DenseStep implements Step {
   readonly x1: F;
   readonly pausable = true;
   readonly #x0: F;
-  readonly #u: F;
-  readonly #k: F;
+  readonly #bench: StepBench;
   readonly #terms: number;
-  readonly #form: DenseForm;
   #formed = false;
 
-  constructor(x0: F, x1: F, u: F, table: Tableau) {
+  constructor(x0: F, bench: StepBench, table: Tableau) {
     this.#x0 = x0;
-    this.x1 = x1;
-    this.#u = u;
+    this.x1 = bench.x1;
+    this.#bench = bench;
     this.#terms = table.dense.length;
-    this.#k = new Float64Array(3 * x1.length);
-    this.#form = denseForm(table);
   }
 
   open(t0: number, t1: number): void {
@@ -276,19 +251,19 @@ class DenseStep implements Step {
   }
 
   at(t: number, x: F): void {
-    const n = this.x1.length;
-    const k = this.#k;
+    const { k, length: m } = this.#bench;
     if (!this.#formed) {
-      this.#form(n, this.#u, k);
+      this.#bench.dense();
       this.#formed = true;
     }
     const s = (t - this.t0) / (this.t1 - this.t0);
     const r = 1 - s;
     const x0 = this.#x0;
     const x1 = this.x1;
+    const n = x1.length;
     if (this.#terms === 3)
       for (let i = 0; i < n; i++)
-        x[i] = x0[i] * r + s * (x1[i] + r * (k[i] + s * (k[n + i] + s * k[2 * n + i])));
-    else for (let i = 0; i < n; i++) x[i] = x0[i] * r + s * (x1[i] + r * (k[i] + s * k[n + i]));
+        x[i] = x0[i] * r + s * (x1[i] + r * (k[i] + s * (k[m + i] + s * k[2 * m + i])));
+    else for (let i = 0; i < n; i++) x[i] = x0[i] * r + s * (x1[i] + r * (k[i] + s * k[m + i]));
   }
 }

@@ -98,6 +98,11 @@ export class Code {
     return this;
   }
 
+  absolute(): this {
+    this.#bytes.push(0x99);
+    return this;
+  }
+
   root(): this {
     this.#bytes.push(0x9f);
     return this;
