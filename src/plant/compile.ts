@@ -97,6 +97,7 @@ export function compile(ledger: Ledger, execution: Execution | null): System {
     outputs: ledger.outputs,
     guards: ledger.guards,
     steady: ledger.steady,
+    ...(machine.native ? { native: machine.native } : {}),
     conserved: ledger.conserved.map(({ name, places }) => {
       const weights = new Float64Array(nx);
       for (const i of places) weights[i] = 1;

@@ -2,9 +2,9 @@ import { type Expr, topological } from '../math/expression.ts';
 import { partialsOf } from '../math/kernel.ts';
 import { type Address, functionsFor, type Instance } from '../math/machine/affine.ts';
 import { accumulate, Calls, evaluate } from '../math/machine/kernels.ts';
-import { BASE, Code, encodeModule, type FunctionCode } from '../math/machine/module.ts';
+import { BASE, Code, encodeModule } from '../math/machine/module.ts';
 import { type Region, region } from '../math/machine/store.ts';
-import type { F } from '../solve/system.ts';
+import type { F, Native } from '../solve/system.ts';
 import type { Derivative, Share, SignalChain } from './derivative.ts';
 import type { Group } from './groups.ts';
 
@@ -37,6 +37,8 @@ export interface Machine {
   readonly derivatives: Readonly<Record<DerivativeName, F>>;
   /** Signals that no state enters; signals; dx/dt; outputs; guards; each of the derivatives. */
   run(part: Part): void;
+  /** For who works in the same memory; the oracle has none. */
+  readonly native?: Native;
 }
 
 export type Part = 'still' | 'moving' | 'fluxes' | 'outputs' | 'guards' | DerivativeName;
@@ -98,7 +100,14 @@ export function machineOf(f: Formulas, structure: string): Machine {
   const parts = Object.fromEntries(
     [...made.parts].map(([part, names]) => [part, names.map((n) => functions[n])]),
   ) as Record<Part, ((base: number) => void)[]>;
-  return { ...views(f, at, own), run: runner(parts, own.base) };
+  const native: Native = {
+    memory: own.memory,
+    base: own.base,
+    x: 8 * at.board,
+    change: 8 * at.change,
+    functions: [...parts.moving, ...parts.fluxes],
+  };
+  return { ...views(f, at, own), run: runner(parts, own.base), native };
 }
 
 const runner =
@@ -122,14 +131,14 @@ function views(f: Formulas, at: Places, own: Region): Omit<Machine, 'run'> {
 
 function compiled(f: Formulas, at: Places): Compiled {
   const calls = new Calls();
-  const functions: FunctionCode[] = [];
+  const functions: Code[] = [];
   const names = new Map<Part, string[]>();
   const add = (part: Part, list: readonly Code[]): void => {
     const own = names.get(part) ?? [];
     names.set(part, own);
     for (const code of list) {
       own.push(`${part}${own.length}`);
-      functions.push({ code });
+      functions.push(code);
     }
   };
   add('still', writeGroups(f.still, at.board, at.board, calls));

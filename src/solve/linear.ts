@@ -53,6 +53,11 @@ export class LinearSolver {
     this.#b = factors.b;
   }
 
+  /** Whether the factors at hand have been measured and are used as they are. */
+  get trusted(): boolean {
+    return this.#mode === 'fast' && !this.#fresh;
+  }
+
   /** Multiply-adds of one factorisation. */
   get multiplications(): number {
     return this.#fast.work;

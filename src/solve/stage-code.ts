@@ -21,6 +21,9 @@ export interface StepPlaces {
   readonly relative: number;
   readonly error: number;
   readonly below: number;
+  /** A point of dense output, and where in the step it lies. */
+  readonly point: number;
+  readonly share: number;
 }
 
 const PAIR = 16;
@@ -169,6 +172,74 @@ export function finishCode(p: StepPlaces): Code {
       .store(8 * to);
   }
   return code;
+}
+
+/** Where the dx/dt of a System stands, and how many functions work it out; numbers of functions in the module. */
+export interface FusedCalls {
+  readonly rhs: readonly number[];
+  readonly state: (stage: number) => number;
+  readonly slope: (stage: number) => number;
+  readonly keep: (stage: number) => number;
+  readonly solve: readonly number[];
+  readonly finish: number;
+  /** Bytes beyond the base of the System. */
+  readonly x: number;
+  readonly change: number;
+}
+
+/**
+ * All stages but the first, and the end of the step, in one go; inputs do not move, and the factors are to be trusted.
+ * The second address given is the base of the System.
+ */
+export function restCode(t: Tableau, n: number, p: StepPlaces, calls: FusedCalls): Code {
+  const code = new Code(0, 0, 2);
+  const system = 1;
+  const copied = (to: readonly [base: number, offset: number], from: readonly [number, number]): void => {
+    for (const [base, offset] of [to, from]) code.get(base).integerConstant(offset).addIntegers();
+    code.integerConstant(8 * n).copy();
+  };
+  for (let i = 1; i < t.alpha.length; i++) {
+    code.get(BASE).call(calls.state(i));
+    copied([system, calls.x], [BASE, 8 * p.trial]);
+    for (const f of calls.rhs) code.get(system).call(f);
+    copied([BASE, 8 * p.dx], [system, calls.change]);
+    code.get(BASE).call(calls.slope(i));
+    for (const f of calls.solve) code.get(BASE).call(f);
+    code.get(BASE).call(calls.keep(i));
+  }
+  return code.get(BASE).call(calls.finish);
+}
+
+/** A point of dense output: x₀(1 − s) + s(x₁ + (1 − s)(k₁ + s(k₂ + …))), s in `share`. */
+export function pointCode(t: Tableau, p: StepPlaces): Code {
+  const [s, r] = [0, 1];
+  return pass(
+    2,
+    p,
+    (c) => {
+      c.get(BASE)
+        .load(8 * p.share)
+        .splat()
+        .set(c.pair(s));
+      c.constant(1).splat().get(c.pair(s)).binaryPair('sub').set(c.pair(r));
+    },
+    (c, pointer) => {
+      const vector = (from: number): Code => c.get(pointer).loadPair(8 * from);
+      c.get(pointer);
+      vector(p.x).get(c.pair(r)).binaryPair('mul').get(c.pair(s));
+      vector(p.x1).get(c.pair(r));
+      t.dense.forEach((_, m) => {
+        vector(p.k + m * p.length);
+        if (m + 1 < t.dense.length) c.get(c.pair(s));
+      });
+      for (let m = 1; m < t.dense.length; m++) c.binaryPair('mul').binaryPair('add');
+      c.binaryPair('mul')
+        .binaryPair('add')
+        .binaryPair('mul')
+        .binaryPair('add')
+        .storePair(8 * p.point);
+    },
+  );
 }
 
 /** Terms of dense output: kₘ = Σⱼ dense[m][j]·uⱼ. */

@@ -70,6 +70,17 @@ export interface System {
   /** Each `weights · x` is constant in a run, whatever the inputs do. */
   readonly conserved: readonly { readonly name: string; readonly weights: F }[];
   readonly steady: readonly SteadyRow[];
+  readonly native?: Native;
+}
+
+/** dx/dt as machine code, for who works in the same memory: inputs and parameters as the last call of `rhs` left them. */
+export interface Native {
+  readonly memory: WebAssembly.Memory;
+  /** Addresses in bytes: what the functions are called with, and beyond it where x and dx/dt stand. */
+  readonly base: number;
+  readonly x: number;
+  readonly change: number;
+  readonly functions: readonly ((base: number) => void)[];
 }
 
 /** Inputs over time: piecewise linear between its times, right limits at them. */

@@ -1,10 +1,19 @@
-import { type Code, encodeModule } from '../math/machine/module.ts';
-import { region } from '../math/machine/store.ts';
+import { type Code, encodeModule, type Imported } from '../math/machine/module.ts';
+import { type Region, region } from '../math/machine/store.ts';
 import { type EliminationPlaces, factorCode, measureCode, solveCode } from './elimination-code.ts';
 import { type EliminationPlan, eliminationPlan } from './elimination-plan.ts';
 import type { Factors } from './linear.ts';
-import { denseCode, finishCode, keepCode, type StepPlaces, slopeCode, stateCode } from './stage-code.ts';
-import type { F, Pattern } from './system.ts';
+import {
+  denseCode,
+  finishCode,
+  keepCode,
+  pointCode,
+  restCode,
+  type StepPlaces,
+  slopeCode,
+  stateCode,
+} from './stage-code.ts';
+import type { F, Native, Pattern, System } from './system.ts';
 import type { Tableau } from './tableau.ts';
 
 /** The elimination on one pattern as code, with its arrays: nothing is copied where its own are used. */
@@ -12,8 +21,7 @@ export interface Workbench extends Factors {
   /** Values of A; right-hand side and solution. */
   readonly a: F;
   readonly x: F;
-  /** Steps of a one-step method on the same region; null where none was asked for. */
-  readonly steps: StepBench | null;
+  readonly steps: StepBench;
 }
 
 /** The vectors of a step and what is done with them; the stage vector is `x` of the elimination. */
@@ -24,56 +32,79 @@ export interface StepBench {
   readonly dx: F;
   readonly absolute: F;
   readonly floor: F;
-  /** Terms of dense output, one after the other, each of `length`. */
-  readonly k: F;
-  readonly length: number;
+  /** A point of dense output. */
+  readonly point: F;
   /** trial = x + Σ aⱼuⱼ. */
   state(stage: number): void;
   /** The stage vector = dx + (1/h)·Σ cⱼuⱼ. */
   slope(stage: number, perStep: number): void;
   /** Keeps the stage vector as uᵢ. */
   keep(stage: number): void;
-  /** x₁ = trial + the stage vector. Returns the largest scaled error; `below` says how far the lowest place lies below its floor. */
-  finish(relative: number): number;
-  readonly below: number;
+  /** x₁ = trial + the stage vector, and the errors. */
+  finish(relative: number): void;
+  /** All stages but the first and `finish` in one go; null where the System is no machine code in the same memory. */
+  readonly rest: ((perStep: number, relative: number) => void) | null;
+  /** The largest scaled error, and how far the lowest place lies below its floor. */
+  readonly error: F;
+  readonly below: F;
+  /** Terms of dense output, before the first point of a step. */
   dense(): void;
+  /** Puts the solution at a share of the step into `point`. */
+  at(share: number): void;
 }
 
 interface Compiled {
   readonly module: WebAssembly.Module;
   readonly plan: EliminationPlan;
-  readonly places: EliminationPlaces & { readonly step: StepPlaces | null; readonly end: number };
+  readonly elimination: EliminationPlaces;
+  readonly step: StepPlaces;
+  /** Numbers in the region. */
+  readonly end: number;
   readonly nonzeros: number;
   readonly names: ReadonlyMap<string, readonly string[]>;
-  /** Benches that nobody works at. */
-  readonly free: Workbench[];
+  /** How many functions of the System it calls; 0: none. */
+  readonly fused: number;
 }
 
-const known = new WeakMap<Pattern, Map<Tableau | null, Compiled>>();
-/** Free benches that are kept of one kind. */
-const MOST_FREE = 4;
+const known = new WeakMap<Pattern, Map<string, Compiled>>();
+/** Benches that nobody works at, by System and method; so many at most. */
+const free = new WeakMap<System, Map<Tableau, Workbench[]>>();
+const MOST_FREE = 2;
 
-function compiledFor(pattern: Pattern, table: Tableau | null): Compiled {
-  const own = known.get(pattern) ?? new Map<Tableau | null, Compiled>();
-  known.set(pattern, own);
-  const made = own.get(table) ?? compile(pattern, table);
-  own.set(table, made);
-  return made;
-}
-
-/** A bench for one run; its arrays hold whatever the run before left. */
-export function workbench(pattern: Pattern, table: Tableau | null): Workbench {
-  const made = compiledFor(pattern, table);
-  return made.free.pop() ?? open(made, table);
+/** A bench for one run of a System; its arrays hold whatever the run before left. */
+export function workbench(system: System, table: Tableau): Workbench {
+  return free.get(system)?.get(table)?.pop() ?? open(system, table);
 }
 
 /** Gives a bench back for the next run. */
-export function release(pattern: Pattern, table: Tableau | null, bench: Workbench): void {
-  const { free } = compiledFor(pattern, table);
-  if (free.length < MOST_FREE) free.push(bench);
+export function release(system: System, table: Tableau, bench: Workbench): void {
+  const own = free.get(system) ?? new Map<Tableau, Workbench[]>();
+  free.set(system, own);
+  const list = own.get(table) ?? [];
+  own.set(table, list);
+  if (list.length < MOST_FREE) list.push(bench);
 }
 
-function compile(pattern: Pattern, table: Tableau | null): Compiled {
+function open({ A, native }: System, table: Tableau): Workbench {
+  const places = placesOf(A, table);
+  const own = region(places.end);
+  const shared = native && native.memory === own.memory ? native : null;
+  const made = compiledFor(A, table, shared, places);
+  return instance(made, own, table, shared);
+}
+
+function compiledFor(A: Pattern, table: Tableau, native: Native | null, places: Places): Compiled {
+  const own = known.get(A) ?? new Map<string, Compiled>();
+  known.set(A, own);
+  const key = `${table.name} ${native ? [native.x, native.change, native.functions.length] : ''}`;
+  const made = own.get(key) ?? compile(A, table, native, places);
+  own.set(key, made);
+  return made;
+}
+
+type Places = Pick<Compiled, 'plan' | 'elimination' | 'step' | 'end'>;
+
+function placesOf(pattern: Pattern, table: Tableau): Places {
   const plan = eliminationPlan(pattern);
   const n = plan.size;
   const length = 2 * Math.ceil(n / 2);
@@ -95,7 +126,7 @@ function compile(pattern: Pattern, table: Tableau | null): Compiled {
     shift: scalar(),
     worst: scalar(),
   };
-  const step: StepPlaces | null = table && {
+  const step: StepPlaces = {
     length,
     stage: elimination.x,
     x: one(),
@@ -106,69 +137,86 @@ function compile(pattern: Pattern, table: Tableau | null): Compiled {
     floor: one(),
     u: take(length * table.alpha.length),
     k: take(length * table.dense.length),
+    point: one(),
+    share: scalar(),
     perStep: scalar(),
     relative: scalar(),
     error: scalar(),
     below: scalar(),
   };
-  const parts = new Map<string, readonly Code[]>([
-    ['factor', factorCode(plan, elimination)],
-    ['solve', solveCode(plan, elimination)],
-    ['measure', measureCode(pattern, elimination)],
-  ]);
-  if (table && step) {
-    table.alpha.forEach((_, i) => {
-      parts.set(`state${i}`, [stateCode(table, i, step)]);
-      parts.set(`slope${i}`, [slopeCode(table, i, step)]);
-      parts.set(`keep${i}`, [keepCode(i, step)]);
-    });
-    parts.set('finish', [finishCode(step)]);
-    parts.set(
-      'dense',
-      table.dense.map((_, m) => denseCode(table, m, step)),
-    );
-  }
-  const exported = new Map<string, number>();
-  const names = new Map([...parts].map(([part, list]) => [part, list.map((_, i) => `${part}.${i}`)]));
-  [...names.values()].flat().forEach((name, i) => {
-    exported.set(name, i);
-  });
-  const functions = [...parts.values()].flat().map((code) => ({ code }));
-  const module = new WebAssembly.Module(encodeModule([], functions, exported));
-  return {
-    module,
-    plan,
-    places: { ...elimination, step, end },
-    names,
-    nonzeros: pattern.column.length,
-    free: [],
-  };
+  return { plan, elimination, step, end };
 }
 
-function open({ module, plan, places, names, nonzeros }: Compiled, table: Tableau | null): Workbench {
-  const own = region(places.end);
-  const { exports } = new WebAssembly.Instance(module, { m: { memory: own.memory } });
+function compile(pattern: Pattern, table: Tableau, native: Native | null, places: Places): Compiled {
+  const { plan, elimination, step } = places;
+  const calls = native?.functions.length ?? 0;
+  const imports = Array.from({ length: calls }, (_, i): Imported => ({ name: `rhs${i}`, arity: 'address' }));
+  const functions: Code[] = [];
+  const names = new Map<string, string[]>();
+  const exported = new Map<string, number>();
+  const add = (part: string, ...list: Code[]): number[] => {
+    const own = list.map((_, i) => `${part}.${i}`);
+    names.set(part, own);
+    return list.map((code, i) => {
+      const index = imports.length + functions.push(code) - 1;
+      exported.set(own[i], index);
+      return index;
+    });
+  };
+  add('factor', ...factorCode(plan, elimination));
+  const solve = add('solve', ...solveCode(plan, elimination));
+  add('measure', ...measureCode(pattern, elimination));
+  const stages = table.alpha.map((_, i) => i);
+  const [state, slope, keep] = [
+    stages.map((i) => add(`state${i}`, stateCode(table, i, step))[0]),
+    stages.map((i) => add(`slope${i}`, slopeCode(table, i, step))[0]),
+    stages.map((i) => add(`keep${i}`, keepCode(i, step))[0]),
+  ];
+  const [finish] = add('finish', finishCode(step));
+  add('dense', ...table.dense.map((_, m) => denseCode(table, m, step)));
+  add('point', pointCode(table, step));
+  if (native)
+    add(
+      'rest',
+      restCode(table, plan.size, step, {
+        rhs: native.functions.map((_, i) => i),
+        state: (i) => state[i],
+        slope: (i) => slope[i],
+        keep: (i) => keep[i],
+        solve,
+        finish,
+        x: native.x,
+        change: native.change,
+      }),
+    );
+  const module = new WebAssembly.Module(encodeModule(imports, functions, exported));
+  return { ...places, module, names, nonzeros: pattern.column.length, fused: calls };
+}
+
+function instance(made: Compiled, own: Region, table: Tableau, native: Native | null): Workbench {
+  const rhs = Object.fromEntries((native?.functions ?? []).map((f, i) => [`rhs${i}`, f]));
+  const { exports } = new WebAssembly.Instance(made.module, { m: { memory: own.memory }, f: rhs });
   const { base } = own;
   const part = (name: string): (() => void) => {
-    const list = (names.get(name) ?? []).map((n) => exports[n] as (base: number) => void);
+    const list = (made.names.get(name) ?? []).map((n) => exports[n] as (base: number) => void);
     if (list.length === 1) return () => list[0](base);
     return () => {
       for (let i = 0; i < list.length; i++) list[i](base);
     };
   };
-  const n = plan.size;
-  const cell = (at: number): F => own.view(at, 1);
-  const [shift, worst] = [cell(places.shift), cell(places.worst)];
+  const { elimination: e, plan } = made;
+  const [shift, worst] = [own.view(e.shift, 1), own.view(e.worst, 1)];
   const [factor, solve, measure] = [part('factor'), part('solve'), part('measure')];
-  const a = own.view(places.a, nonzeros);
-  const x = own.view(places.x, n);
+  const a = own.view(e.a, made.nonzeros);
+  const x = own.view(e.x, plan.size);
+  const rest = exports['rest.0'] as ((base: number, system: number) => void) | undefined;
   return {
-    size: n,
+    size: plan.size,
     work: plan.work,
     a,
     x,
-    b: own.view(places.b, n),
-    r: own.view(places.r, n),
+    b: own.view(e.b, plan.size),
+    r: own.view(e.r, plan.size),
     factor(values, by) {
       if (values !== a) a.set(values);
       shift[0] = by;
@@ -184,25 +232,23 @@ function open({ module, plan, places, names, nonzeros }: Compiled, table: Tablea
       measure();
       return worst[0];
     },
-    steps: table && places.step && stepBench(places.step, table, own.view, part, n),
+    steps: stepBench(made, own, table, part, native && rest ? () => rest(base, native.base) : null),
   };
 }
 
 function stepBench(
-  p: StepPlaces,
+  { step: p, plan: { size: n } }: Compiled,
+  { view }: Region,
   table: Tableau,
-  view: (from: number, count: number) => F,
   part: (name: string) => () => void,
-  n: number,
+  rest: (() => void) | null,
 ): StepBench {
   const stages = table.alpha.map((_, i) => i);
   const [states, slopes, keeps] = ['state', 'slope', 'keep'].map((what) =>
     stages.map((i) => part(`${what}${i}`)),
   );
-  const [finish, dense] = [part('finish'), part('dense')];
-  const [perStep, relative, error, below] = [p.perStep, p.relative, p.error, p.below].map((at) =>
-    view(at, 1),
-  );
+  const [finish, point] = [part('finish'), part('point')];
+  const [perStep, relative, share] = [p.perStep, p.relative, p.share].map((at) => view(at, 1));
   // What pads the vectors is never judged.
   view(p.absolute, p.length).fill(Infinity);
   view(p.floor, p.length).fill(-Infinity);
@@ -213,8 +259,9 @@ function stepBench(
     dx: view(p.dx, n),
     absolute: view(p.absolute, n),
     floor: view(p.floor, n),
-    k: view(p.k, p.length * table.dense.length),
-    length: p.length,
+    point: view(p.point, n),
+    error: view(p.error, 1),
+    below: view(p.below, 1),
     state: (i) => states[i](),
     slope(i, q) {
       perStep[0] = q;
@@ -224,11 +271,18 @@ function stepBench(
     finish(by) {
       relative[0] = by;
       finish();
-      return error[0];
     },
-    get below() {
-      return below[0];
+    rest:
+      rest &&
+      ((q, by) => {
+        perStep[0] = q;
+        relative[0] = by;
+        rest();
+      }),
+    dense: part('dense'),
+    at(s) {
+      share[0] = s;
+      point();
     },
-    dense,
   };
 }

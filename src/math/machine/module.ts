@@ -19,11 +19,14 @@ export class Code {
   readonly integers: number;
   #numbers = 0;
   readonly pairs: number;
+  /** Addresses that the function is given, BASE included. */
+  readonly given: number;
 
-  /** `integers`: addresses besides BASE; `pairs`: locals that hold two numbers. */
-  constructor(integers: number, pairs = 0) {
+  /** `integers`: addresses besides the given ones; `pairs`: locals that hold two numbers. */
+  constructor(integers: number, pairs = 0, given = 1) {
     this.integers = integers;
     this.pairs = pairs;
+    this.given = given;
   }
 
   get length(): number {
@@ -46,9 +49,9 @@ export class Code {
   }
 
   /** The k-th integer, or number; pairs come before numbers so that these may grow. */
-  integer = (k: number): number => 1 + k;
-  pair = (k: number): number => 1 + this.integers + k;
-  number = (k: number): number => 1 + this.integers + this.pairs + k;
+  integer = (k: number): number => this.given + k;
+  pair = (k: number): number => this.given + this.integers + k;
+  number = (k: number): number => this.given + this.integers + this.pairs + k;
 
   get(local: number): this {
     return this.#op(0x20, local);
@@ -204,20 +207,10 @@ export class Code {
   }
 }
 
-/** A function of the module: base address and `arguments` numbers in; one number out where it `returns`. */
-export interface FunctionCode {
-  readonly code: Code;
-  readonly returns?: boolean;
-  /** Addresses in bytes beside the base. */
-  readonly addresses?: number;
-  /** Numbers beside the base. */
-  readonly numbers?: number;
-}
-
-/** An imported function of one or more numbers. */
+/** An imported function: of numbers, with a number as its result, or of one address and no result. */
 export interface Imported {
   readonly name: string;
-  readonly arity: number;
+  readonly arity: number | 'address';
 }
 
 /**
@@ -226,7 +219,7 @@ export interface Imported {
  */
 export function encodeModule(
   imports: readonly Imported[],
-  functions: readonly FunctionCode[],
+  functions: readonly Code[],
   exports: ReadonlyMap<string, number>,
 ): Uint8Array<ArrayBuffer> {
   const types: string[] = [];
@@ -235,13 +228,10 @@ export function encodeModule(
     const at = types.indexOf(key);
     return at >= 0 ? at : types.push(key) - 1;
   };
-  const importTypes = imports.map((f) => typeOf(new Array(f.arity).fill(F64), [F64]));
-  const functionTypes = functions.map((f) =>
-    typeOf(
-      [I32, ...new Array(f.addresses ?? 0).fill(I32), ...new Array(f.numbers ?? 0).fill(F64)],
-      f.returns ? [F64] : [],
-    ),
+  const importTypes = imports.map((f) =>
+    f.arity === 'address' ? typeOf([I32], []) : typeOf(new Array(f.arity).fill(F64), [F64]),
   );
+  const functionTypes = functions.map((code) => typeOf(new Array(code.given).fill(I32), []));
   const bytes = [0x00, 0x61, 0x73, 0x6d, 0x01, 0x00, 0x00, 0x00];
   section(
     bytes,
@@ -268,7 +258,7 @@ export function encodeModule(
   section(
     bytes,
     10,
-    functions.map((f) => f.code.encoded()),
+    functions.map((code) => code.encoded()),
   );
   return Uint8Array.from(bytes);
 }
