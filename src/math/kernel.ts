@@ -50,8 +50,17 @@ export function dependencies(k: Kernel, active: (arg: number) => boolean): Pair[
   );
 }
 
-export const partialsOf = (k: Kernel, pairs: readonly Pair[]): Expr[] =>
-  pairs.map((p) => differentiate(k.outputs[p.output], p.arg));
+const partials = new WeakMap<Kernel, Map<string, readonly Expr[]>>();
+
+/** Derivatives of a kernel, worked out once a process. */
+export function partialsOf(k: Kernel, pairs: readonly Pair[]): readonly Expr[] {
+  const own = partials.get(k) ?? new Map<string, readonly Expr[]>();
+  partials.set(k, own);
+  const key = pairs.map((p) => `${p.output}/${p.arg}`).join();
+  const made = own.get(key) ?? pairs.map((p) => differentiate(k.outputs[p.output], p.arg));
+  own.set(key, made);
+  return made;
+}
 
 /** How a kernel is carried out: as generated code (fast), or node by node (the oracle, and the fallback). */
 export interface Execution {

@@ -4,23 +4,15 @@ import type { Formulas, Machine } from './machine.ts';
 
 /** The formulas of a plant carried out group by group from lists of references: the oracle of the generated code. */
 export function listed(f: Formulas): Machine {
-  const { derivatives: d } = f;
   const board = new Float64Array(f.board);
   const change = new Float64Array(f.places + 1);
   const outputs = new Float64Array(f.outputCount);
   const guards = new Float64Array(f.guardCount);
-  const values = {
-    A: new Float64Array(d.A.pattern.column.length),
-    B: new Float64Array(d.B.pattern.column.length),
-    C: new Float64Array(d.C.pattern.column.length),
-    D: new Float64Array(d.D.pattern.column.length),
-  };
   return {
     board,
     change: change.subarray(0, f.places),
     outputs,
     guards,
-    derivatives: values,
     run(part) {
       switch (part) {
         case 'still':
@@ -34,10 +26,9 @@ export function listed(f: Formulas): Machine {
           return runAll(f.outputs, board, outputs);
         case 'guards':
           return runAll(f.guards, board, guards);
-        default:
-          return d[part].evaluate(board, values[part]);
       }
     },
+    derive: (name, values) => f.derivative(name).evaluate(board, values),
   };
 }
 

@@ -121,50 +121,47 @@ function eliminate(code: Code, counts: readonly number[], address: (k: number) =
   });
 }
 
-/** Solves with the factors, in place. */
+/** Solves with the factors, in place: forward, then each row scaled by its pivot and cleared of what is known by then. */
 export function solveCode(plan: EliminationPlan, at: EliminationPlaces): Code[] {
   const { row, column, order, blocks, backward } = plan;
   const list: Operation[] = [];
-  const rows = (from: number, to: number): number => {
-    for (let f = from; f < to; ) {
-      const target = row[f];
-      const places = [bytes(at.x + target)];
-      let count = 0;
-      for (; f < to && row[f] === target; f++, count++) places.push(bytes(at.v + f), bytes(at.x + column[f]));
-      const terms = count;
-      list.push({
-        shape: `row ${terms}`,
-        at: places,
-        write(code, address) {
-          code.get(address(0).local);
-          load(code, address(0));
-          for (let q = 0; q < terms; q++) {
-            load(code, address(1 + 2 * q));
-            load(code, address(2 + 2 * q))
-              .binary('mul')
-              .binary('sub');
-          }
-          code.store(address(0).offset);
-        },
-      });
-    }
-    return to;
+  const terms = (from: number, target: number): number => {
+    let f = from;
+    while (f < row.length && row[f] === target) f += 1;
+    return f;
+  };
+  const push = (target: number, from: number, to: number, scaled: boolean): void => {
+    const places = [bytes(at.x + target), ...(scaled ? [bytes(at.d + target)] : [])];
+    for (let f = from; f < to; f++) places.push(bytes(at.v + f), bytes(at.x + column[f]));
+    list.push({
+      shape: `${scaled ? 'scaled' : 'row'} ${to - from}`,
+      at: places,
+      write(code, address) {
+        code.get(address(0).local);
+        load(code, address(0));
+        let k = 1;
+        if (scaled) load(code, address(k++)).binary('mul');
+        for (let q = from; q < to; q++) {
+          load(code, address(k++));
+          load(code, address(k++)).binary('mul').binary('sub');
+        }
+        code.store(address(0).offset);
+      },
+    });
   };
   let f = 0;
   let b = backward;
   for (let q = 0; q < blocks.length; q += 4) {
-    f = rows(f, blocks[q]);
-    for (let i = blocks[q + 1]; i < blocks[q + 2]; i++)
-      list.push({
-        shape: 'scale',
-        at: [bytes(at.x + order[i]), bytes(at.d + order[i])],
-        write(code, address) {
-          code.get(address(0).local);
-          load(code, address(0));
-          load(code, address(1)).binary('mul').store(address(0).offset);
-        },
-      });
-    b = rows(b, blocks[q + 3]);
+    while (f < blocks[q]) {
+      const end = Math.min(blocks[q], terms(f, row[f]));
+      push(row[f], f, end, false);
+      f = end;
+    }
+    for (let i = blocks[q + 2] - 1; i >= blocks[q + 1]; i--) {
+      const end = Math.min(blocks[q + 3], terms(b, order[i]));
+      push(order[i], b, end, true);
+      b = end;
+    }
   }
   return written(list);
 }

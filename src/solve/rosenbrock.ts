@@ -27,7 +27,7 @@ export class Rosenbrock implements Integrator {
   readonly #table: Tableau;
   readonly #settings: Settings;
   readonly #linear: LinearSolver;
-  readonly #byInput: F;
+  #byInput: F | null = null;
   readonly #work: Workbench;
   readonly #bench: StepBench;
   readonly #ft: F;
@@ -49,7 +49,6 @@ export class Rosenbrock implements Integrator {
     this.#linear = new LinearSolver(system.A, this.#work);
     const bench = this.#work.steps;
     this.#bench = bench;
-    this.#byInput = new Float64Array(system.B.column.length);
     const { relative } = settings.tolerance;
     system.places.forEach((q, i) => {
       const absolute = relative * q.scale;
@@ -174,11 +173,13 @@ export class Rosenbrock implements Integrator {
     this.#system.jacobian(x, this.#w, this.#p, this.#work.a);
     this.work.jacobians += 1;
     if (!this.#moving) return;
-    this.#system.byInput(x, this.#w, this.#p, this.#byInput);
     const { rowStart, column } = this.#system.B;
+    this.#byInput ??= new Float64Array(column.length);
+    const values = this.#byInput;
+    this.#system.byInput(x, this.#w, this.#p, values);
     for (let i = 0; i < this.#ft.length; i++) {
       let s = 0;
-      for (let k = rowStart[i]; k < rowStart[i + 1]; k++) s += this.#byInput[k] * this.#dw[column[k]];
+      for (let k = rowStart[i]; k < rowStart[i + 1]; k++) s += values[k] * this.#dw[column[k]];
       this.#ft[i] = s;
     }
   }

@@ -70,7 +70,7 @@ export interface System {
   /** Each `weights · x` is constant in a run, whatever the inputs do. */
   readonly conserved: readonly { readonly name: string; readonly weights: F }[];
   readonly steady: readonly SteadyRow[];
-  readonly native?: Native;
+  readonly native?: Native | undefined;
 }
 
 /** dx/dt as machine code, for who works in the same memory: inputs and parameters as the last call of `rhs` left them. */

@@ -23,6 +23,8 @@ export interface Records {
 /** Figures that are kept of a run at most: of more records every second one goes, again and again. */
 const MOST_FIGURES = 4e6;
 const LEAST_ROWS = 2000;
+/** Rows that share one array. */
+const BLOCK = 128;
 
 /** Outputs of a System at a state. */
 export function outputsAt(plant: Plant, x: F, w: F): F {
@@ -51,6 +53,8 @@ export class Recorder implements Watcher {
   readonly #x: F;
   readonly #w: F;
   #next = 0;
+  #block: F = new Float64Array(0);
+  #used = 0;
 
   constructor(plant: Plant, every: number, moments: readonly number[] = [], sink: Rows | null = null) {
     this.#system = plant.system;
@@ -104,8 +108,19 @@ export class Recorder implements Watcher {
     this.#rows.push(y);
   }
 
+  /** An array of its own for each row would cost more than what stands in it. */
+  #fresh(): F {
+    const n = this.#system.outputs.length;
+    if (this.#used + n > this.#block.length) {
+      this.#block = new Float64Array(n * BLOCK);
+      this.#used = 0;
+    }
+    this.#used += n;
+    return this.#block.subarray(this.#used - n, this.#used);
+  }
+
   #row(x: F): F {
-    const y = new Float64Array(this.#system.outputs.length);
+    const y = this.#fresh();
     this.#system.output(x, this.#w, this.#p, y);
     return y;
   }

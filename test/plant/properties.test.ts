@@ -50,4 +50,4 @@ test('whatever the plant and its upsets: the run ends, balances close, nothing i
   // Among them tanks ran empty, were refilled and overflowed, isotherms were left, mixers inverted, settlers flooded.
   for (const [what, count] of happened) expect(count, what).toBeGreaterThan(1);
   expect([...laws].sort()).toEqual(['exchange', 'formula', 'freundlich', 'langmuir', 'ratio', 'table']);
-});
+}, 240_000);

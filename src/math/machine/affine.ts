@@ -13,46 +13,66 @@ export interface Address {
   readonly offset: number;
 }
 
-/** Instances that follow each other with one and the same distance in every address. */
+/** A block of instances that repeats, every address moving on by one and the same distance each time. */
 export interface Run<I extends Instance> {
-  readonly first: I;
+  readonly block: readonly I[];
   readonly count: number;
-  /** Bytes from one instance to the next, by address. */
-  readonly steps: readonly number[];
+  /** Bytes from one block to the next, by instance and address. */
+  readonly steps: readonly (readonly number[])[];
 }
 
-/** Runs shorter than this are written out. */
+/** Blocks that repeat less often than this are written out. */
 const WORTH_A_LOOP = 3;
+/** Instances in a block at most: what one stage of a train has of one kind. */
+const LONGEST_BLOCK = 40;
 
 /** Instances in their order as runs, each as long as it goes: in a train of equal stages few, however long it is. */
 export function runsOf<I extends Instance>(list: readonly I[]): Run<I>[] {
   const runs: Run<I>[] = [];
   for (let i = 0; i < list.length; ) {
-    const first = list[i];
-    const next = list[i + 1];
-    let count = 1;
-    let steps: number[] = [];
-    if (next !== undefined && next.shape === first.shape) {
-      steps = next.at.map((a, k) => a - first.at[k]);
-      count = 2;
-      while (i + count < list.length && follows(list[i + count - 1], list[i + count], steps)) count += 1;
-    }
-    if (count >= WORTH_A_LOOP && steps.some((s) => s !== 0)) {
-      runs.push({ first, count, steps });
-      i += count;
-    } else {
-      runs.push({ first, count: 1, steps: first.at.map(() => 0) });
-      i += 1;
-    }
+    const [period, count] = repetition(list, i);
+    const block = list.slice(i, i + period);
+    const steps = block.map(({ at }, j) =>
+      count === 1 ? at.map(() => 0) : at.map((a, k) => list[i + j + period].at[k] - a),
+    );
+    runs.push({ block, count, steps });
+    i += period * count;
   }
   return runs;
 }
 
-function follows(a: Instance, b: Instance, steps: readonly number[]): boolean {
-  if (a.shape !== b.shape) return false;
-  for (let k = 0; k < steps.length; k++) if (b.at[k] - a.at[k] !== steps[k]) return false;
+/** The shortest block from `i` on that repeats over the longest stretch, and how often; one instance, once, where none does. */
+function repetition(list: readonly Instance[], i: number): [period: number, count: number] {
+  let best: [number, number] = [1, 1];
+  for (let period = 1; period <= LONGEST_BLOCK && i + WORTH_A_LOOP * period <= list.length; period++) {
+    // A block must repeat as a whole, so the shapes of its first instance tell most of the others apart.
+    if (list[i].shape !== list[i + period].shape || list[i].shape !== list[i + 2 * period].shape) continue;
+    let length = 2 * period;
+    while (i + length < list.length && goesOn(list, i + length, period)) length += 1;
+    const count = Math.floor(length / period);
+    if (count < WORTH_A_LOOP || !alike(list, i, period) || !moves(list, i, period)) continue;
+    if (count * period > best[0] * best[1]) best = [period, count];
+  }
+  return best;
+}
+
+/** Whether instance `n` is as far from the one a period before as that is from the one before it. */
+function goesOn(list: readonly Instance[], n: number, period: number): boolean {
+  const [a, b, c] = [list[n - 2 * period], list[n - period], list[n]];
+  if (b.shape !== c.shape || a.shape !== b.shape) return false;
+  for (let k = 0; k < c.at.length; k++) if (c.at[k] - b.at[k] !== b.at[k] - a.at[k]) return false;
   return true;
 }
+
+/** Whether the second block has the shapes of the first. */
+function alike(list: readonly Instance[], i: number, period: number): boolean {
+  for (let j = 0; j < period; j++) if (list[i + j].shape !== list[i + j + period].shape) return false;
+  return true;
+}
+
+/** A loop needs something that moves. */
+const moves = (list: readonly Instance[], i: number, period: number): boolean =>
+  list.slice(i, i + period).some(({ at }, j) => at.some((a, k) => list[i + j + period].at[k] !== a));
 
 /** Bytes of code in one function, about; smaller ones are compiled better and sooner. */
 const FUNCTION_SIZE = 12_000;
@@ -66,7 +86,7 @@ export function functionsFor<I extends Instance>(
   body: (code: Code, instance: I, address: (k: number) => Address) => void,
 ): Code[] {
   const runs = runsOf(list);
-  const distances = Math.max(0, ...runs.map((r) => new Set(r.steps.filter((s) => s !== 0)).size));
+  const distances = runs.reduce((most, r) => Math.max(most, distancesOf(r).length), 0);
   const made: Code[] = [];
   let code = new Code(distances);
   for (const run of runs) {
@@ -80,23 +100,33 @@ export function functionsFor<I extends Instance>(
   return made;
 }
 
+const distancesOf = ({ steps }: Pick<Run<Instance>, 'steps'>): number[] => {
+  const found: number[] = [];
+  for (const own of steps) for (const s of own) if (s !== 0 && !found.includes(s)) found.push(s);
+  return found;
+};
+
 function write<I extends Instance>(
   code: Code,
-  { first, count, steps }: Run<I>,
+  { block, count, steps }: Run<I>,
   body: (code: Code, instance: I, address: (k: number) => Address) => void,
 ): void {
-  const moving = [...new Set(steps.filter((s) => s !== 0))];
+  const moving = distancesOf({ steps });
   // A pointer that goes down starts high, so that no address lies below the base.
   const starts = moving.map((s) => (s < 0 ? -s * (count - 1) : 0));
   const locals = moving.map((_, j) => code.integer(j));
-  const address = (k: number): Address => {
-    const j = moving.indexOf(steps[k]);
-    return j < 0
-      ? { local: BASE, offset: first.at[k] }
-      : { local: locals[j], offset: first.at[k] - starts[j] };
+  const all = (): void => {
+    block.forEach((instance, n) => {
+      body(code, instance, (k) => {
+        const j = moving.indexOf(steps[n][k]);
+        return j < 0
+          ? { local: BASE, offset: instance.at[k] }
+          : { local: locals[j], offset: instance.at[k] - starts[j] };
+      });
+    });
   };
   if (count === 1) {
-    body(code, first, address);
+    all();
     return;
   }
   locals.forEach((local, j) => {
@@ -105,7 +135,7 @@ function write<I extends Instance>(
     code.set(local);
   });
   code.repeat(locals[0], moving[0], starts[0] + moving[0] * count, () => {
-    body(code, first, address);
+    all();
     for (let j = 1; j < moving.length; j++)
       code.get(locals[j]).integerConstant(moving[j]).addIntegers().set(locals[j]);
   });

@@ -27,6 +27,15 @@ export class Calls {
   }
 }
 
+const orders = new WeakMap<readonly Expr[], readonly Expr[]>();
+
+/** Nodes below the roots, each after what it needs; worked out once for one and the same list. */
+export function orderOf(roots: readonly Expr[]): readonly Expr[] {
+  const made = orders.get(roots) ?? topological(roots);
+  orders.set(roots, made);
+  return made;
+}
+
 /**
  * Writes code that leaves the values of `roots` in locals. Argument k of the expressions stands at `argument(k)`.
  *
@@ -38,7 +47,7 @@ export function evaluate(
   argument: (slot: number) => Address,
   calls: Calls,
 ): number[] {
-  const order = topological(roots);
+  const order = orderOf(roots);
   const local = new Map(order.map((e, i) => [e, code.number(i)]));
   code.needs(order.length);
   for (const e of order) {

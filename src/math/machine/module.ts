@@ -13,9 +13,78 @@ export type Binary = 'add' | 'sub' | 'mul' | 'div' | 'min' | 'max';
 const scalar: Record<Binary, number> = { add: 0xa0, sub: 0xa1, mul: 0xa2, div: 0xa3, min: 0xa4, max: 0xa5 };
 const vector: Record<Binary, number> = { add: 240, sub: 241, mul: 242, div: 243, min: 244, max: 245 };
 
+/** Bytes that are appended to. */
+class Bytes {
+  #data = new Uint8Array(256);
+  #length = 0;
+
+  get length(): number {
+    return this.#length;
+  }
+
+  byte(v: number): void {
+    if (this.#length === this.#data.length) this.#grow(1);
+    this.#data[this.#length++] = v;
+  }
+
+  all(bytes: Uint8Array): void {
+    if (this.#length + bytes.length > this.#data.length) this.#grow(bytes.length);
+    this.#data.set(bytes, this.#length);
+    this.#length += bytes.length;
+  }
+
+  /** LEB128 of a natural number, and of an integer. */
+  unsigned(value: number): void {
+    let v = value;
+    while (v >= 0x80) {
+      this.byte((v & 0x7f) | 0x80);
+      v >>>= 7;
+    }
+    this.byte(v);
+  }
+
+  signed(value: number): void {
+    let v = value;
+    for (;;) {
+      const low = v & 0x7f;
+      v >>= 7;
+      if ((v === 0 && (low & 0x40) === 0) || (v === -1 && (low & 0x40) !== 0)) {
+        this.byte(low);
+        return;
+      }
+      this.byte(low | 0x80);
+    }
+  }
+
+  text(s: string): void {
+    const bytes = new TextEncoder().encode(s);
+    this.unsigned(bytes.length);
+    this.all(bytes);
+  }
+
+  /** Another piece with its length before it. */
+  sized(piece: Bytes): void {
+    this.unsigned(piece.length);
+    this.all(piece.done());
+  }
+
+  done(): Uint8Array<ArrayBuffer> {
+    return this.#data.subarray(0, this.#length);
+  }
+
+  #grow(by: number): void {
+    const larger = new Uint8Array(Math.max(2 * this.#data.length, this.#length + by));
+    larger.set(this.#data);
+    this.#data = larger;
+  }
+}
+
+const number = new Float64Array(1);
+const ofNumber = new Uint8Array(number.buffer);
+
 /** The body of one function: instructions in stack order. Locals: BASE, integers, then numbers, then pairs of numbers. */
 export class Code {
-  readonly #bytes: number[] = [];
+  readonly #bytes = new Bytes();
   readonly integers: number;
   #numbers = 0;
   readonly pairs: number;
@@ -66,18 +135,20 @@ export class Code {
   }
 
   integerConstant(v: number): this {
-    this.#bytes.push(0x41);
-    signed(this.#bytes, v);
+    this.#bytes.byte(0x41);
+    this.#bytes.signed(v);
     return this;
   }
 
   addIntegers(): this {
-    this.#bytes.push(0x6a);
+    this.#bytes.byte(0x6a);
     return this;
   }
 
   constant(v: number): this {
-    this.#bytes.push(0x44, ...new Uint8Array(new Float64Array([v]).buffer));
+    this.#bytes.byte(0x44);
+    number[0] = v;
+    this.#bytes.all(ofNumber);
     return this;
   }
 
@@ -92,22 +163,22 @@ export class Code {
   }
 
   binary(op: Binary): this {
-    this.#bytes.push(scalar[op]);
+    this.#bytes.byte(scalar[op]);
     return this;
   }
 
   negate(): this {
-    this.#bytes.push(0x9a);
+    this.#bytes.byte(0x9a);
     return this;
   }
 
   absolute(): this {
-    this.#bytes.push(0x99);
+    this.#bytes.byte(0x99);
     return this;
   }
 
   root(): this {
-    this.#bytes.push(0x9f);
+    this.#bytes.byte(0x9f);
     return this;
   }
 
@@ -166,34 +237,32 @@ export class Code {
     return this.#raw(0xfc, 10, 0, 0);
   }
 
-  /** The function in the binary format, with its declarations of locals. */
-  encoded(): number[] {
-    const body: number[] = [];
+  /** The function in the binary format, with its declarations of locals, in front of which its length stands. */
+  encode(to: Bytes): void {
     const groups = [
       [this.integers, I32],
       [this.pairs, 0x7b],
       [this.#numbers, F64],
     ].filter(([count]) => count > 0);
-    unsigned(body, groups.length);
+    const head = new Bytes();
+    head.unsigned(groups.length);
     for (const [count, type] of groups) {
-      unsigned(body, count);
-      body.push(type);
+      head.unsigned(count);
+      head.byte(type);
     }
-    append(body, this.#bytes);
-    body.push(0x0b);
-    const sized: number[] = [];
-    unsigned(sized, body.length);
-    append(sized, body);
-    return sized;
+    to.unsigned(head.length + this.#bytes.length + 1);
+    to.all(head.done());
+    to.all(this.#bytes.done());
+    to.byte(0x0b);
   }
 
   #op(code: number, ...operands: number[]): this {
-    this.#bytes.push(code);
+    this.#bytes.byte(code);
     return this.#operands(...operands);
   }
 
   #operands(...operands: number[]): this {
-    for (const v of operands) unsigned(this.#bytes, v);
+    for (const v of operands) this.#bytes.unsigned(v);
     return this;
   }
 
@@ -202,7 +271,7 @@ export class Code {
   }
 
   #raw(...bytes: number[]): this {
-    this.#bytes.push(...bytes);
+    for (const v of bytes) this.#bytes.byte(v);
     return this;
   }
 }
@@ -232,77 +301,44 @@ export function encodeModule(
     f.arity === 'address' ? typeOf([I32], []) : typeOf(new Array(f.arity).fill(F64), [F64]),
   );
   const functionTypes = functions.map((code) => typeOf(new Array(code.given).fill(I32), []));
-  const bytes = [0x00, 0x61, 0x73, 0x6d, 0x01, 0x00, 0x00, 0x00];
-  section(
-    bytes,
-    1,
-    types.map((t) => {
-      const numbers = t.split(',').map(Number);
-      return [0x60, ...numbers];
-    }),
-  );
-  section(bytes, 2, [
-    [...text('m'), ...text('memory'), 0x02, 0x00, 0x01],
-    ...imports.map((f, i) => [...text('f'), ...text(f.name), 0x00, ...leb(importTypes[i])]),
-  ]);
-  section(
-    bytes,
-    3,
-    functionTypes.map((t) => leb(t)),
-  );
-  section(
-    bytes,
-    7,
-    [...exports].map(([name, index]) => [...text(name), 0x00, ...leb(index)]),
-  );
-  section(
-    bytes,
-    10,
-    functions.map((code) => code.encoded()),
-  );
-  return Uint8Array.from(bytes);
-}
-
-function section(bytes: number[], id: number, items: readonly (readonly number[])[]): void {
-  const body: number[] = [];
-  unsigned(body, items.length);
-  for (const q of items) append(body, q);
-  bytes.push(id);
-  unsigned(bytes, body.length);
-  append(bytes, body);
-}
-
-/** A spread of many arguments would overflow the stack. */
-function append(to: number[], from: readonly number[]): void {
-  for (let i = 0; i < from.length; i++) to.push(from[i]);
-}
-
-const text = (s: string): number[] => [...leb(s.length), ...new TextEncoder().encode(s)];
-
-const leb = (v: number): number[] => {
-  const bytes: number[] = [];
-  unsigned(bytes, v);
-  return bytes;
-};
-
-function unsigned(bytes: number[], value: number): void {
-  let v = value;
-  do {
-    const low = v & 0x7f;
-    v >>>= 7;
-    bytes.push(v === 0 ? low : low | 0x80);
-  } while (v !== 0);
-}
-
-function signed(bytes: number[], value: number): void {
-  let v = value;
-  for (;;) {
-    const low = v & 0x7f;
-    v >>= 7;
-    if ((v === 0 && (low & 0x40) === 0) || (v === -1 && (low & 0x40) !== 0)) {
-      bytes.push(low);
-      return;
+  const bytes = new Bytes();
+  bytes.all(Uint8Array.of(0x00, 0x61, 0x73, 0x6d, 0x01, 0x00, 0x00, 0x00));
+  const section = (id: number, count: number, write: (to: Bytes) => void): void => {
+    const body = new Bytes();
+    body.unsigned(count);
+    write(body);
+    bytes.byte(id);
+    bytes.sized(body);
+  };
+  section(1, types.length, (to) => {
+    for (const t of types) {
+      to.byte(0x60);
+      for (const v of t.split(',')) to.byte(Number(v));
     }
-    bytes.push(low | 0x80);
-  }
+  });
+  section(2, 1 + imports.length, (to) => {
+    to.text('m');
+    to.text('memory');
+    to.all(Uint8Array.of(0x02, 0x00, 0x01));
+    imports.forEach((f, i) => {
+      to.text('f');
+      to.text(f.name);
+      to.byte(0x00);
+      to.unsigned(importTypes[i]);
+    });
+  });
+  section(3, functions.length, (to) => {
+    for (const t of functionTypes) to.unsigned(t);
+  });
+  section(7, exports.size, (to) => {
+    for (const [name, index] of exports) {
+      to.text(name);
+      to.byte(0x00);
+      to.unsigned(index);
+    }
+  });
+  section(10, functions.length, (to) => {
+    for (const code of functions) code.encode(to);
+  });
+  return bytes.done();
 }
