@@ -66,6 +66,7 @@ export class DeviceClock {
 
   /** Readings inside a step. */
   step(step: Step): void {
+    if (this.#devices.length === 0) return;
     const at = (t: number): F => {
       step.at(t, this.#x);
       this.#look(t, this.#x);

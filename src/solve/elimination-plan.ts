@@ -21,10 +21,19 @@ export interface EliminationPlan {
 }
 
 const known = new WeakMap<Pattern, EliminationPlan>();
+/** Plans by what their patterns hold: equal patterns are made anew for every sample of an ensemble. */
+const byContent = new Map<string, EliminationPlan>();
+const MOST_KNOWN = 32;
 
 /** Order, fill and the list of all multiplications: worked out once for a pattern, shared by all runs on it. */
 export function eliminationPlan(pattern: Pattern): EliminationPlan {
-  const made = known.get(pattern) ?? makePlan(pattern);
+  const own = known.get(pattern);
+  if (own !== undefined) return own;
+  const content = `${pattern.rowStart.join()};${pattern.column.join()}`;
+  const made = byContent.get(content) ?? makePlan(pattern);
+  byContent.delete(content);
+  byContent.set(content, made);
+  if (byContent.size > MOST_KNOWN) byContent.delete(byContent.keys().next().value as string);
   known.set(pattern, made);
   return made;
 }

@@ -48,13 +48,17 @@ export class Inputs {
 
   value(t: number, w: F): void {
     this.#schedule.value(this.segment, t, w);
+    if (this.#driven.size > 0) this.#drivenAt(t, w);
+    if (this.#overrides.size > 0) for (const [i, v] of this.#overrides) w[i] = v;
+  }
+
+  #drivenAt(t: number, w: F): void {
     for (const [i, courses] of this.#driven) {
       let k = courses.length - 1;
       while (k > 0 && courses[k].from > t) k -= 1;
       const { from, value, slope } = courses[k];
       w[i] = slope === 0 ? value : value + slope * (t - from);
     }
-    for (const [i, v] of this.#overrides) w[i] = v;
   }
 
   slope(dw: F): void {

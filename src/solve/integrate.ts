@@ -203,6 +203,9 @@ function shortened(step: Step, end: number): Step {
   return { t0: step.t0, t1: end, x1, pausable: false, at: (t, x) => step.at(t, x) };
 }
 
+/** No guard. */
+const NONE = { guard: -1, time: Number.NaN } as const;
+
 /** Which side of zero each guard is on, and when it changes. */
 class GuardWatch {
   readonly #system: System;
@@ -243,10 +246,10 @@ class GuardWatch {
   }
 
   /** The first guard crossed inside an accepted step. Looked for at the end and at three points inside. */
-  crossed(step: Step): { guard: number; time: number } {
-    let found = { guard: -1, time: Number.NaN };
+  crossed(step: Step): { readonly guard: number; readonly time: number } {
     const n = this.#g.length;
-    if (n === 0) return found;
+    if (n === 0) return NONE;
+    let found: { readonly guard: number; readonly time: number } = NONE;
     const span = step.t1 - step.t0;
     let from = step.t0;
     for (const part of [0.25, 0.5, 0.75, 1]) {

@@ -27,6 +27,9 @@ const SPLIT = 1e-4;
 const REAL = 1e-8;
 /** Vectors of the first projection, and at most. */
 const FIRST = 24;
+/** The slowest mode alone says how long to wait: few digits do. */
+const FIRST_OF_ONE = 10;
+const CONVERGED_ONE = 1e-5;
 const MOST = 192;
 
 /**
@@ -39,7 +42,7 @@ const MOST = 192;
  * is. Each place is measured against its own contents, or kg and m³ would not compare.
  *
  * References: W. E. Arnoldi, Q. Appl. Math. 9, 17 (1951); Y. Saad, Numerical Methods for Large Eigenvalue Problems
- * (1992), ch. VI and VIII (from memory). Returns fewer than `count` where there are fewer, none where A cannot be solved with.
+ * (1992), ch. VI and VIII (from memory). One mode is found to five digits, several to nine. Returns fewer than `count` where there are fewer, none where A cannot be solved with.
  */
 export function slowModes(system: System, x: F, w: F, p: F, count: number): Mode[] {
   const rows = new SteadyRows(system);
@@ -64,12 +67,13 @@ export function slowModes(system: System, x: F, w: F, p: F, count: number): Mode
     for (let i = 0; i < n; i++) to[i] = counts[i] ? to[i] / size[i] : 0;
     return to.every(Number.isFinite);
   };
-  for (let m = Math.min(order, FIRST); ; m = Math.min(order, MOST, 2 * m)) {
+  const [first, close] = count === 1 ? [FIRST_OF_ONE, CONVERGED_ONE] : [FIRST, CONVERGED];
+  for (let m = Math.min(order, first); ; m = Math.min(order, MOST, 2 * m)) {
     const space = arnoldi(apply, counts, m);
     if (space === null) return [];
     const found = ritz(space, count);
     if (found === null) return [];
-    const converged = found.length === count && found.every((q) => q.residual <= CONVERGED);
+    const converged = found.length === count && found.every((q) => q.residual <= close);
     const done = converged || m === order || m >= MOST;
     if (!done) continue;
     return found

@@ -13,8 +13,6 @@ const SHRINK = 0.2;
 const GROW = 6;
 /** After a trial that was no number or negative the error says nothing about the step: cut it hard. */
 const CUT = 0.25;
-/** A trial state may lie below its floor by this many absolute tolerances. */
-const BELOW_FLOOR = 10;
 /** Smallest step, relative to the time reached, below which t + h loses its digits; and its like at the very start. */
 const SMALLEST = 1e-13;
 
@@ -49,13 +47,7 @@ export class Rosenbrock implements Integrator {
     this.#linear = new LinearSolver(system.A, this.#work);
     const bench = this.#work.steps;
     this.#bench = bench;
-    const { relative } = settings.tolerance;
-    system.places.forEach((q, i) => {
-      const absolute = relative * q.scale;
-      // Boundary totals have no feedback and take no part in the error norm.
-      bench.absolute[i] = q.kind === 'total' ? Infinity : absolute;
-      bench.floor[i] = q.floor === null ? -Infinity : q.floor - BELOW_FLOOR * absolute;
-    });
+    bench.tolerate(settings.tolerance.relative, system.places);
     this.#ft = new Float64Array(n);
     this.#w = new Float64Array(system.inputs.length);
     this.#dw = new Float64Array(system.inputs.length);

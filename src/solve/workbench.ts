@@ -13,7 +13,7 @@ import {
   slopeCode,
   stateCode,
 } from './stage-code.ts';
-import type { F, Native, Pattern, System } from './system.ts';
+import type { F, Native, Pattern, Place, System } from './system.ts';
 import type { Tableau } from './tableau.ts';
 
 /** The elimination on one pattern as code, with its arrays: nothing is copied where its own are used. */
@@ -32,6 +32,8 @@ export interface StepBench {
   readonly dx: F;
   readonly absolute: F;
   readonly floor: F;
+  /** Sets absolute tolerances and floors; what the run before has set is kept where it is the same. */
+  tolerate(relative: number, places: readonly Place[]): void;
   /** A point of dense output. */
   readonly point: F;
   /** trial = x + Σ aⱼuⱼ. */
@@ -67,6 +69,9 @@ interface Compiled {
 }
 
 const known = new WeakMap<Pattern, Map<string, Compiled>>();
+/** A trial state may lie below its floor by this many absolute tolerances. */
+const BELOW_FLOOR = 10;
+
 /** Benches that nobody works at, by System and method; so many at most. */
 const free = new WeakMap<System, Map<Tableau, Workbench[]>>();
 const MOST_FREE = 2;
@@ -252,13 +257,25 @@ function stepBench(
   // What pads the vectors is never judged.
   view(p.absolute, p.length).fill(Infinity);
   view(p.floor, p.length).fill(-Infinity);
+  const [absolute, floor] = [view(p.absolute, n), view(p.floor, n)];
+  let tolerated = Number.NaN;
   return {
     x: view(p.x, n),
     x1: view(p.x1, n),
     trial: view(p.trial, n),
     dx: view(p.dx, n),
-    absolute: view(p.absolute, n),
-    floor: view(p.floor, n),
+    absolute,
+    floor,
+    tolerate(by, places) {
+      if (by === tolerated) return;
+      tolerated = by;
+      places.forEach((q, i) => {
+        const own = by * q.scale;
+        // Boundary totals have no feedback and take no part in the error norm.
+        absolute[i] = q.kind === 'total' ? Infinity : own;
+        floor[i] = q.floor === null ? -Infinity : q.floor - BELOW_FLOOR * own;
+      });
+    },
     point: view(p.point, n),
     error: view(p.error, 1),
     below: view(p.below, 1),

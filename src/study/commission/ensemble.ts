@@ -50,6 +50,8 @@ export interface EnsembleSettings extends SampleSettings {
   readonly stop?: AbortSignal;
 }
 
+/** Relative tolerance of a sample: quantiles of times are told to three digits. */
+const TOLERANCE = 1e-5;
 /** Samples in one piece of work: few, so that progress is seen and the last worker is not waited for. */
 const BATCH = 5;
 
@@ -72,7 +74,7 @@ export async function ensemble(
     scenario,
     paths,
     factors: factors.slice(b * BATCH, (b + 1) * BATCH),
-    settings: { integrator, tolerance, shown, times },
+    settings: { integrator, tolerance: Math.max(tolerance, TOLERANCE), shown, times },
   }));
   const results = new Array<Sample | undefined>(runs);
   let count = 0;
