@@ -1,21 +1,22 @@
+import type { Drawn } from '../report/pictures/index.ts';
 import type { Stop } from '../solve/outcome.ts';
 import type { Console } from './console.ts';
 import { exits } from './exit.ts';
 import { write } from './files.ts';
 
-/** Draws pictures and writes them one by one until it is told to stop. Returns the names of the files. */
+/** Draws pictures and writes them one by one until it is told to stop. Returns what was drawn. */
 export async function draw(
-  pictures: AsyncIterable<{ readonly name: string; readonly png: Buffer }>,
+  pictures: AsyncIterable<Drawn>,
   folder: string,
   console: Console,
   stopped: () => boolean = () => false,
-): Promise<string[]> {
-  const made: string[] = [];
+): Promise<Drawn[]> {
+  const made: Drawn[] = [];
   for await (const picture of pictures) {
     if (stopped()) break;
     console.progress(0, `drawing ${picture.name}`);
     write(folder, picture.name, picture.png);
-    made.push(picture.name);
+    made.push(picture);
   }
   console.clear();
   return made;

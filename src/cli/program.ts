@@ -50,7 +50,7 @@ export async function main(argv: readonly string[]): Promise<number> {
     'upsettle run scenarios/ten.yaml --out results --no-pictures',
   )
     .option('--out <dir>', 'folder for the results (default: out/<scenario>/run)')
-    .option('--no-pictures', 'write no PNG pictures')
+    .option('--no-pictures', 'write neither PNG pictures nor report.html')
     .addOption(scale())
     .addOption(
       new Option('--integrator <name>', 'method of integration').choices(integrators).default('rodas5p'),
@@ -70,7 +70,7 @@ export async function main(argv: readonly string[]): Promise<number> {
     'upsettle steady scenarios/saltbush-copper.yaml',
   )
     .option('--out <dir>', 'folder for the results (default: out/<scenario>/steady)')
-    .option('--no-pictures', 'write no PNG pictures')
+    .option('--no-pictures', 'write neither PNG pictures nor report.html')
     .addOption(scale())
     .action(async (file: string, o) => {
       const { steady } = await import('./verbs/steady.ts');
@@ -82,7 +82,7 @@ export async function main(argv: readonly string[]): Promise<number> {
     'upsettle commission scenarios/saltbush-startup.yaml',
   )
     .option('--out <dir>', 'folder for the results (default: out/<scenario>/commission)')
-    .option('--no-pictures', 'write no PNG pictures')
+    .option('--no-pictures', 'write neither PNG pictures nor report.html')
     .addOption(scale())
     .addOption(
       new Option('--ensemble <runs>', 'start-ups over the uncertain inputs; 0: none')
@@ -105,7 +105,7 @@ export async function main(argv: readonly string[]): Promise<number> {
     'upsettle rehearse scenarios/saltbush-rehearsal.yaml --map "more organic"',
   )
     .option('--out <dir>', 'folder for the results (default: out/<scenario>/rehearse)')
-    .option('--no-pictures', 'write no PNG pictures')
+    .option('--no-pictures', 'write neither PNG pictures nor report.html')
     .addOption(scale())
     .option('--step', 'drive the plant through the upset yourself, and be scored')
     .addOption(
@@ -140,7 +140,7 @@ export async function main(argv: readonly string[]): Promise<number> {
     'upsettle tune scenarios/saltbush-loop.yaml',
   )
     .option('--out <dir>', 'folder for the results (default: out/<scenario>/tune)')
-    .option('--no-pictures', 'write no PNG pictures')
+    .option('--no-pictures', 'write neither PNG pictures nor report.html')
     .addOption(scale())
     .option('--loop <name>', 'the loop to tune (default: the first one)')
     .addOption(

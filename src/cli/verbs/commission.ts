@@ -7,6 +7,7 @@ import { usual } from '../../study/run.ts';
 import type { Console } from '../console.ts';
 import { draw, ending } from '../drawing.ts';
 import { makeFolder, openScenario, outputFolder, version, writeJson } from '../files.ts';
+import { writePage } from '../page.ts';
 import { known, refusing } from '../refusing.ts';
 
 export interface CommissionOptions {
@@ -56,18 +57,21 @@ export async function commission(
   const result: CommissionResult = { ...found, ensemble: spread };
   const seconds = (performance.now() - began) / 1e3;
   makeFolder(folder);
-  writeJson(folder, 'summary.json', commissionSummary(result, { file, version: version(), seconds }));
+  const summary = commissionSummary(result, { file, version: version(), seconds });
+  writeJson(folder, 'summary.json', summary);
   const made = ['summary.json'];
-  console.say(commissionScreen(result));
+  const lines = commissionScreen(result);
+  console.say(lines);
   if (options.pictures) {
     const { commissionPictures } = await import('../../report/pictures/index.ts');
+    const stopped = (): boolean => stop.signal.aborted;
+    const drawn = await draw(commissionPictures(result, Number(options.scale)), folder, console, stopped);
+    const { pageFrames } = await import('../../report/page/frames.ts');
+    const { framesOf } = await import('../../study/frames.ts');
+    const frames = pageFrames(result.plant, framesOf(result.plant, result.run.records));
+    const { scenario } = read;
     made.push(
-      ...(await draw(
-        commissionPictures(result, Number(options.scale)),
-        folder,
-        console,
-        () => stop.signal.aborted,
-      )),
+      ...(await writePage(folder, { verb: 'commission', file, scenario, lines, summary, frames }, drawn)),
     );
   }
   process.off('SIGINT', onInterrupt);

@@ -10,6 +10,7 @@ import type { Console } from '../console.ts';
 import { draw, ending } from '../drawing.ts';
 import { exits, Known } from '../exit.ts';
 import { makeFolder, openScenario, outputFolder, version, writeJson } from '../files.ts';
+import { writePage } from '../page.ts';
 import { refusing } from '../refusing.ts';
 
 export interface RehearseOptions {
@@ -40,19 +41,18 @@ export async function rehearse(file: string, options: RehearseOptions, console: 
   console.clear();
   const seconds = (performance.now() - began) / 1e3;
   makeFolder(folder);
-  writeJson(folder, 'summary.json', rehearseSummary(result, { file, version: version(), seconds }, map));
+  const summary = rehearseSummary(result, { file, version: version(), seconds }, map);
+  writeJson(folder, 'summary.json', summary);
   const made = ['summary.json'];
-  console.say(rehearseScreen(result));
+  const lines = rehearseScreen(result);
+  console.say(lines);
   if (options.pictures) {
     const { rehearsePictures } = await import('../../report/pictures/index.ts');
-    made.push(
-      ...(await draw(
-        rehearsePictures({ result, map }, Number(options.scale)),
-        folder,
-        console,
-        () => stop.signal.aborted,
-      )),
-    );
+    const stopped = (): boolean => stop.signal.aborted;
+    const pictures = rehearsePictures({ result, map }, Number(options.scale));
+    const drawn = await draw(pictures, folder, console, stopped);
+    const { scenario } = read;
+    made.push(...(await writePage(folder, { verb: 'rehearse', file, scenario, lines, summary }, drawn)));
   }
   process.off('SIGINT', onInterrupt);
   console.say(['', `Written to ${folder}: ${made.join(', ')}`]);

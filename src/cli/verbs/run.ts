@@ -7,6 +7,7 @@ import type { Console } from '../console.ts';
 import { draw, ending } from '../drawing.ts';
 import { exits, Known } from '../exit.ts';
 import { GrowingFile, makeFolder, openScenario, outputFolder, version, writeJson } from '../files.ts';
+import { writePage } from '../page.ts';
 import { known } from '../refusing.ts';
 
 export interface RunOptions {
@@ -70,18 +71,24 @@ export async function run(file: string, options: RunOptions, console: Console): 
   );
   console.clear();
   const seconds = (performance.now() - began) / 1e3;
-  writeJson(folder, 'summary.json', runSummary(result, { file, version: version(), seconds }));
+  const summary = runSummary(result, { file, version: version(), seconds });
+  writeJson(folder, 'summary.json', summary);
   const made = ['series.csv', 'summary.json'];
   if (options.saveState !== undefined && result.kept) {
     writeJson('.', options.saveState, result.kept);
     console.say([`State kept in ${options.saveState}; start another run from it with start: {saved: FILE}`]);
   }
-  console.say(runScreen(result));
+  const lines = runScreen(result);
+  console.say(lines);
   if (options.pictures) {
     const { runPictures } = await import('../../report/pictures/index.ts');
-    made.push(
-      ...(await draw(runPictures(result, Number(options.scale)), folder, console, () => interrupted)),
-    );
+    const stopped = (): boolean => interrupted;
+    const drawn = await draw(runPictures(result, Number(options.scale)), folder, console, stopped);
+    const { pageFrames } = await import('../../report/page/frames.ts');
+    const { framesOf } = await import('../../study/frames.ts');
+    const frames = pageFrames(result.plant, framesOf(result.plant, result.records));
+    const { scenario } = read;
+    made.push(...(await writePage(folder, { verb: 'run', file, scenario, lines, summary, frames }, drawn)));
   }
   process.off('SIGINT', onInterrupt);
   console.say(['', `Written to ${folder}: ${made.join(', ')}`]);

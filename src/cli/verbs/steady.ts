@@ -5,6 +5,7 @@ import type { Console } from '../console.ts';
 import { draw } from '../drawing.ts';
 import { exits } from '../exit.ts';
 import { makeFolder, openScenario, outputFolder, version, writeJson } from '../files.ts';
+import { writePage } from '../page.ts';
 import { refusing } from '../refusing.ts';
 
 export interface SteadyOptions {
@@ -21,12 +22,16 @@ export async function steady(file: string, options: SteadyOptions, console: Cons
   const result = refusing(read, () => findSteady(read.scenario));
   const seconds = (performance.now() - began) / 1e3;
   makeFolder(folder);
-  writeJson(folder, 'summary.json', steadySummary(result, { file, version: version(), seconds }));
+  const summary = steadySummary(result, { file, version: version(), seconds });
+  writeJson(folder, 'summary.json', summary);
+  const lines = steadyScreen(result);
   const made = ['summary.json'];
   if (options.pictures) {
     const { steadyPictures } = await import('../../report/pictures/index.ts');
-    made.push(...(await draw(steadyPictures(result, Number(options.scale)), folder, console)));
+    const drawn = await draw(steadyPictures(result, Number(options.scale)), folder, console);
+    const { scenario } = read;
+    made.push(...(await writePage(folder, { verb: 'steady', file, scenario, lines, summary }, drawn)));
   }
-  console.say([...steadyScreen(result), '', `Written to ${folder}: ${made.join(', ')}`]);
+  console.say([...lines, '', `Written to ${folder}: ${made.join(', ')}`]);
   return exits.done;
 }

@@ -70,9 +70,8 @@ export async function step(
   console.say(score ? scoreLines(result, score) : ['No move was made: nothing to score.']);
   if (options.pictures) {
     const { rehearsePictures } = await import('../../report/pictures/index.ts');
-    made.push(
-      ...(await draw(rehearsePictures({ result, map: null }, Number(options.scale)), folder, console)),
-    );
+    const drawn = await draw(rehearsePictures({ result, map: null }, Number(options.scale)), folder, console);
+    made.push(...drawn.map((d) => d.name));
   }
   console.say([
     '',

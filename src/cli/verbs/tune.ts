@@ -7,6 +7,7 @@ import type { Console } from '../console.ts';
 import { draw } from '../drawing.ts';
 import { exits, Known } from '../exit.ts';
 import { makeFolder, openScenario, outputFolder, version, writeJson } from '../files.ts';
+import { writePage } from '../page.ts';
 import { refusing } from '../refusing.ts';
 
 export interface TuneOptions {
@@ -34,12 +35,16 @@ export async function tune(file: string, options: TuneOptions, console: Console)
   );
   const seconds = (performance.now() - began) / 1e3;
   makeFolder(folder);
-  writeJson(folder, 'summary.json', tuneSummary(result, { file, version: version(), seconds }));
+  const summary = tuneSummary(result, { file, version: version(), seconds });
+  writeJson(folder, 'summary.json', summary);
   const made = ['summary.json'];
-  console.say(tuneScreen(result));
+  const lines = tuneScreen(result);
+  console.say(lines);
   if (options.pictures && result.kind === 'tuned') {
     const { tunePictures } = await import('../../report/pictures/tune.ts');
-    made.push(...(await draw(tunePictures(result, Number(options.scale)), folder, console)));
+    const drawn = await draw(tunePictures(result, Number(options.scale)), folder, console);
+    const { scenario } = read;
+    made.push(...(await writePage(folder, { verb: 'tune', file, scenario, lines, summary }, drawn)));
   }
   console.say(['', `Written to ${folder}: ${made.join(', ')}`]);
   return exits.done;

@@ -11,6 +11,7 @@ import { loopSignals } from './loop.ts';
 import { stageTimeMap } from './map.ts';
 import { operating } from './operating.ts';
 import { outlets } from './outlets.ts';
+import { type Sheet, sheetOf } from './panels.ts';
 import type { Picture } from './picture.ts';
 import { profiles } from './profiles.ts';
 import { ranked } from './ranked.ts';
@@ -57,6 +58,8 @@ export const rehearseTable: readonly Picture<Rehearsed>[] = [
 export interface Drawn {
   readonly name: string;
   readonly png: Buffer;
+  /** What it was made of, where it is a sheet of panels over time. */
+  readonly sheet?: Sheet | undefined;
 }
 
 export const runPictures = (r: RunResult, scale = 1): AsyncGenerator<Drawn> => all(runTable, r, scale);
@@ -77,9 +80,12 @@ export async function* all<R>(table: readonly Picture<R>[], r: R, scale: number)
       // Names that differ in marks alone would be one file.
       const times = (used.get(name) ?? 0) + 1;
       used.set(name, times);
+      const config = p.config(r, part);
+      const sheet = sheetOf(config);
       yield {
         name: times === 1 ? name : name.replace(/\.png$/, `-${times}.png`),
-        png: await draw(p.config(r, part), scale),
+        png: await draw(config, scale),
+        sheet,
       };
     }
 }

@@ -39,8 +39,19 @@ export interface Sheet {
   readonly shades: readonly Shade[];
 }
 
+const sheets = new WeakMap<ChartConfiguration, Sheet>();
+
+/** The sheet that a picture was made of; undefined where it is of another kind. */
+export const sheetOf = (config: ChartConfiguration): Sheet | undefined => sheets.get(config);
+
 /** Time diagrams over each other: lines, limits across their panel, upsets shaded and numbered through all. */
 export function panelSheet(sheet: Sheet): ChartConfiguration {
+  const config = chart(sheet);
+  sheets.set(config, sheet);
+  return config;
+}
+
+function chart(sheet: Sheet): ChartConfiguration {
   const unit = timeUnit(sheet.span);
   const end = sheet.span / unit.seconds;
   let style = 0;
