@@ -15,7 +15,7 @@ export function runScreen(r: RunResult): string[] {
   for (const q of r.shades) lines.push(`upset  ${q.words}, ${clock(q.from)} to ${clock(q.to)}`);
   for (const c of r.clamped)
     lines.push(
-      `note   ${c.quantity} would ${c.at > 0 ? 'exceed 100 %' : 'fall below 0'} after ${clock(c.time)}: held there`,
+      `note   ${c.quantity} would ${c.at > 0 ? 'exceed 100 %' : 'fall below 0'} after ${clock(c.time)}: held there; make the change smaller`,
     );
   for (const l of r.limits) lines.push(...limitLines(l));
   lines.push(...reportLines(s.loops ?? [], r.loops));
@@ -132,7 +132,7 @@ export function steadyScreen(r: SteadyResult): string[] {
   for (const f of r.figures) lines.push(...figureLines(f));
   for (const q of r.usedUp.slice(0, 4))
     lines.push(
-      `WARNING  ${q.species} in ${q.stage}.mixer is used up: more base is dosed or stripped than it can carry, and these figures are not to be trusted`,
+      `WARNING  ${q.species} in ${q.stage}.mixer is used up: more base is dosed or stripped than it can carry, and these figures are not to be trusted; dose less, or bring more of it`,
     );
   for (const d of r.drifts)
     lines.push(

@@ -59,7 +59,8 @@ export function readCompare(
       const own = cells(table, at).flatMap((v, i) =>
         v === null ? [] : [{ t: times[i] + begins, v: inside(v * factor) }],
       );
-      if (own.length === 0) throw new BadData(`${table.file}: the column ${show(column)} holds no sample`);
+      if (own.length === 0)
+        throw new BadData(`${table.file}: the column ${show(column)} holds no sample; name another`);
       return [{ quantity, times: own.map((q) => q.t), values: own.map((q) => q.v) }];
     } catch (e) {
       if (!(e instanceof BadData)) throw e;

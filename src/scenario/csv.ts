@@ -48,7 +48,8 @@ export function readTable(folder: string, file: string): Table {
     );
   const filled = lines.filter((r) => r.cells.some((c) => c.trim() !== ''));
   const header = filled[0]?.cells.map((c) => c.trim());
-  if (!header || filled.length < 2) throw new BadData(`${name}:1: no rows below the header`);
+  if (!header || filled.length < 2)
+    throw new BadData(`${name}:1: no rows below the header; put the data there`);
   for (const r of filled)
     if (r.cells.length !== header.length)
       throw new BadData(
@@ -61,9 +62,11 @@ function readText(folder: string, file: string, name: string): string {
   const path = isAbsolute(file) ? file : join(folder, file);
   try {
     const about = statSync(path);
-    if (!about.isFile()) throw new BadData(`${name} is not a file`);
+    if (!about.isFile()) throw new BadData(`${name} is not a file; name a CSV file`);
     if (about.size > LARGEST)
-      throw new BadData(`${name} has ${(about.size / 1e6).toFixed(0)} MB, more than ${LARGEST / 1e6}`);
+      throw new BadData(
+        `${name} has ${(about.size / 1e6).toFixed(0)} MB, more than ${LARGEST / 1e6}; leave out what is not needed`,
+      );
     return readFileSync(path, 'utf8').replace(/^\uFEFF/, '');
   } catch (e) {
     if (e instanceof BadData) throw e;
@@ -86,7 +89,7 @@ export function columnIndex(t: Table, name: string): number {
   const at = t.header.indexOf(name.trim());
   if (at < 0) throw new BadData(`${t.file}:1: no column ${show(name)}${hint(name, t.header)}`);
   if (t.header.lastIndexOf(name.trim()) > at)
-    throw new BadData(`${t.file}:1: two columns are called ${show(name)}`);
+    throw new BadData(`${t.file}:1: two columns are called ${show(name)}; rename one`);
   return at;
 }
 

@@ -41,7 +41,10 @@ export function readLimit(
     return complain('with several dissolved components state a limit in g/L or kg/kg', side);
   const from = raw.from?.value ?? 0;
   if (raw.from && from >= horizon.value)
-    return complain(`counts from ${raw.from.text}, but the run ends at ${horizon.text}`, 'from');
+    return complain(
+      `counts from ${raw.from.text}, but the run ends at ${horizon.text}; let it count earlier or lengthen the horizon`,
+      'from',
+    );
   const dot = raw.keep.indexOf('.');
   return {
     stream: raw.keep.slice(0, dot),

@@ -32,7 +32,7 @@ export class Ownership {
       if (first === i) return;
       const both = [this.#loops[first], l];
       both.forEach((one, k) => {
-        const message = `${show(l.move.quantity)} is moved by ${one.name} and by ${both[1 - k].name}; a move has one owner`;
+        const message = `${show(l.move.quantity)} is moved by ${one.name} and by ${both[1 - k].name}; a move has one owner; take one of them out`;
         this.#problems.push({ path: ['loops', one.name, 'move'], message });
       });
     });
@@ -41,18 +41,18 @@ export class Ownership {
       if (other)
         this.#problems.push({
           path: ['loops', l.name, 'move'],
-          message: `the flow ${show(l.move.over)} that the ratio is over is itself moved by ${other.name}`,
+          message: `the flow ${show(l.move.over)} that the ratio is over is itself moved by ${other.name}; take the ratio over a flow that no loop moves`,
         });
       const inner = this.#loops.find((o) => l.move.kind === 'set point' && o.name === l.move.quantity);
       if (inner?.move.kind === 'set point')
         this.#problems.push({
           path: ['loops', l.name, 'move'],
-          message: `${inner.name} itself moves a set point; a cascade has two loops`,
+          message: `${inner.name} itself moves a set point; a cascade has two loops; let it move a flow`,
         });
       if (inner && inner.setPoint.length > 0)
         this.#problems.push({
           path: ['loops', l.name, 'move'],
-          message: `the set point of ${inner.name} is moved by this loop, and by upsets`,
+          message: `the set point of ${inner.name} is moved by this loop, and by upsets; change the set point of this one instead`,
         });
     }
   }
@@ -88,7 +88,7 @@ export class Ownership {
       if (put !== null)
         this.#problems.push({
           path: [...at, 'put'],
-          message: `no loop moves ${show(u.change)}; put is for changes of what a loop moves`,
+          message: `no loop moves ${show(u.change)}; put is for changes of what a loop moves; take it out`,
         });
       return;
     }
@@ -107,7 +107,7 @@ export class Ownership {
       });
       this.#problems.push({
         path: ['loops', loop.name, 'move'],
-        message: `moves ${show(u.change)}, which an upset changes as well`,
+        message: `moves ${show(u.change)}, which an upset changes as well; see there`,
       });
       return;
     }
