@@ -149,7 +149,7 @@ describe('what is unusual is said with its figure, the usual range and what to d
         settler:
           'area: 20 m^2, aqueous_depth: 0.3 m, organic_depth: 0.3 m, band: {thickness: 20 cm, at: 1.5 m/h, exponent: 3}',
       },
-      /dispersion band 20\.0 cm, usual up to 15\.0 cm: look at thickness[^]*takes 66\.7 %, usual up to 50\.0 %: deepen/,
+      /dispersion band 20\.0 cm, usual up to 15\.0 cm: look at thickness[\s\S]*takes 66\.7 %, usual up to 50\.0 %: deepen/,
     ],
     [
       { mixer: 'volume: 4.5 m^3, stage_efficiency: 60 %' },
