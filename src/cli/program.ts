@@ -22,7 +22,6 @@ export async function main(argv: readonly string[]): Promise<number> {
     .version(version(), '-V, --version', 'print the version')
     .exitOverride()
     .showHelpAfterError('upsettle --help lists all commands and options')
-    .configureHelp({ showGlobalOptions: true })
     .option('--quiet', 'say nothing but errors')
     .addHelpText(
       'after',
@@ -88,7 +87,9 @@ export async function main(argv: readonly string[]): Promise<number> {
       new Option('--integrator <name>', 'method of integration').choices(integrators).default('rodas5p'),
     )
     .addOption(
-      new Option('--tolerance <number>', 'relative tolerance').argParser(tolerance).default(TOLERANCE),
+      new Option('--tolerance <number>', 'relative tolerance')
+        .argParser(tolerance)
+        .default(TOLERANCE, '1e-6'),
     )
     .option('--save-state <file>', 'keep the state at the end (or at --save-at) in a file')
     .addOption(new Option('--save-at <time>', "when to keep it, such as '12 h'"))

@@ -61,7 +61,9 @@ export function limitLines(l: LimitReport): string[] {
   const from = l.limit.from > 0 ? ` from ${clock(l.limit.from)} on` : '';
   const name = `${l.path} ${l.limit.side === 'below' ? '<' : '>'} ${withUnit(l.limit.value, l.unit)}${from}`;
   if (Number.isNaN(l.worst.value))
-    return [`NOT JUDGED ${name}: there was never enough to compare, or the time was not reached`];
+    return [
+      `NOT JUDGED ${name}: there was never enough to compare, or the time was not reached; lengthen the horizon, or let it count earlier`,
+    ];
   const negligible = Math.abs(l.worst.value) < 1e-6 * Math.abs(l.limit.value);
   const worst = `worst ${withUnit(negligible ? 0 : l.worst.value, l.unit)} at ${clock(l.worst.time)}`;
   if (l.spells.length === 0) return [`KEPT   ${name}: ${worst}`];

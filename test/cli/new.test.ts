@@ -116,6 +116,15 @@ describe('a new scenario', () => {
     expect([s.title, s.solutes, s.trains.length]).toEqual(['Our plant', ['metal'], 2]);
   });
 
+  it('takes answers that are pasted all at once', async () => {
+    const terminal = typed();
+    Object.assign(terminal.input, { isTTY: true });
+    Object.assign(terminal.output, { isTTY: true });
+    (terminal.input as PassThrough).end('parting\nPasted\nzinc, iron\n');
+    expect(await make('pasted.yaml', {}, terminal)).toBe(exits.done);
+    expect(fromText(readFileSync(at('pasted.yaml'), 'utf8')).solutes).toEqual(['zinc', 'iron']);
+  });
+
   it('an end of the answers writes nothing', async () => {
     const e = await refusal('left.yaml', {}, typed('single'));
     expect(e.code).toBe(exits.interrupted);

@@ -1,6 +1,6 @@
 import { existsSync, statSync, writeFileSync } from 'node:fs';
 import { dirname, join, resolve } from 'node:path';
-import { createInterface } from 'node:readline/promises';
+import { createInterface, type Interface } from 'node:readline';
 import type { Readable, Writable } from 'node:stream';
 import { editorSchemaName, modeline } from '../../scenario/editor.ts';
 import { hint } from '../../scenario/nearest.ts';
@@ -80,13 +80,11 @@ async function asked(options: NewOptions, { input, output }: Asking): Promise<An
     throw new Known(`which kind of plant? Write --kind and one of:\n${list()}`, exits.usage);
   if (!ask) return filled(kind as Starter, options.title, options.solutes);
   const lines = createInterface({ input, output });
-  const gone = new Promise<never>((_, reject) => {
-    lines.once('close', () => reject(new Known('\nnothing was written', exits.interrupted)));
-  });
-  // Once all is answered nobody waits for that any more.
-  gone.catch(() => undefined);
-  const question = async (text: string, usual: string): Promise<string> =>
-    (await Promise.race([lines.question(`${text} [${usual}]: `), gone])).trim() || usual;
+  const next = typedLines(lines);
+  const question = async (text: string, usual: string): Promise<string> => {
+    output.write(`${text} [${usual}]: `);
+    return (await next()).trim() || usual;
+  };
   try {
     output.write(`Kinds of plants:\n${list()}\n`);
     const starter = kindNamed(await question('Kind, by number or name', '1'));
@@ -97,6 +95,31 @@ async function asked(options: NewOptions, { input, output }: Asking): Promise<An
   } finally {
     lines.close();
   }
+}
+
+/** Lines one by one as they are asked for; what is typed ahead, or pasted, waits. */
+function typedLines(from: Interface): () => Promise<string> {
+  const ahead: string[] = [];
+  let ended = false;
+  let waiting: { resolve(line: string): void; reject(e: Known): void } | null = null;
+  const gone = (): Known => new Known('\nnothing was written', exits.interrupted);
+  from.on('line', (line) => {
+    if (waiting) waiting.resolve(line);
+    else ahead.push(line);
+    waiting = null;
+  });
+  from.once('close', () => {
+    ended = true;
+    waiting?.reject(gone());
+  });
+  return () => {
+    const line = ahead.shift();
+    if (line !== undefined) return Promise.resolve(line);
+    if (ended) return Promise.reject(gone());
+    return new Promise((resolve, reject) => {
+      waiting = { resolve, reject };
+    });
+  };
 }
 
 const usualTitle = (s: Starter): string => `My ${s.name} plant`;
