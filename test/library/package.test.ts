@@ -1,15 +1,11 @@
 import { execFileSync } from 'node:child_process';
 import { existsSync, readFileSync } from 'node:fs';
 import { dirname, join } from 'node:path';
-import { beforeAll, describe, expect, it } from 'vitest';
+import { describe, expect, it } from 'vitest';
 import { inRepo } from '../support/plants.ts';
 
 const about = JSON.parse(readFileSync(inRepo('package.json'), 'utf8'));
 const text = (path: string): string => readFileSync(inRepo(path), 'utf8');
-
-beforeAll(() => {
-  if (!existsSync(inRepo('dist/index.js'))) execFileSync(process.execPath, [inRepo('src/build/prepare.mjs')]);
-}, 60_000);
 
 /** Everything that a built file loads before its first line runs. */
 function loaded(file: string, seen = new Set<string>()): Set<string> {
