@@ -34,7 +34,10 @@ export function readCompare(
   const begins = raw.at?.value ?? 0;
   const early = times.findIndex((t) => t + begins < 0);
   if (early >= 0)
-    complain(`${table.file}:${table.rows[early].line}: lies before the start of the run`, 'file');
+    complain(
+      `${table.file}:${table.rows[early].line}: lies before the start of the run; leave it out, or state a later at`,
+      'file',
+    );
   const entries = Object.entries(raw.columns);
   if (entries.length === 0)
     complain("name at least one column, such as {raffinate.copper: 'Cu g/L'}", 'columns');

@@ -44,7 +44,7 @@ export function readTable(folder: string, file: string): Table {
   const quote = parsed.errors.find((e) => e.type === 'Quotes');
   if (quote)
     throw new BadData(
-      `${name}:${lines[quote.row ?? 0]?.line ?? next}: a quotation mark is not closed, or stands within a cell`,
+      `${name}:${lines[quote.row ?? 0]?.line ?? next}: a quotation mark is not closed, or stands within a cell; take it out or double it`,
     );
   const filled = lines.filter((r) => r.cells.some((c) => c.trim() !== ''));
   const header = filled[0]?.cells.map((c) => c.trim());
@@ -53,7 +53,7 @@ export function readTable(folder: string, file: string): Table {
   for (const r of filled)
     if (r.cells.length !== header.length)
       throw new BadData(
-        `${name}:${r.line}: expected ${header.length} cells as in the header, got ${r.cells.length}`,
+        `${name}:${r.line}: expected ${header.length} cells as in the header, got ${r.cells.length}; look for commas within figures`,
       );
   return { file: name, header, rows: filled.slice(1) };
 }
@@ -70,7 +70,7 @@ function readText(folder: string, file: string, name: string): string {
     return readFileSync(path, 'utf8').replace(/^\uFEFF/, '');
   } catch (e) {
     if (e instanceof BadData) throw e;
-    throw new BadData(`cannot read ${name} (looked for it beside the scenario)`);
+    throw new BadData(`cannot read ${name} (looked for it beside the scenario); look at its name and place`);
   }
 }
 
@@ -143,7 +143,7 @@ export function elapsed(t: Table, column: number): number[] {
   for (let i = 1; i < times.length; i++)
     if (!(times[i] > times[i - 1]))
       throw new BadData(
-        `${t.file}:${t.rows[i].line}: time must rise from row to row, got ${show(stamps[i])} after ${show(stamps[i - 1])}`,
+        `${t.file}:${t.rows[i].line}: time must rise from row to row, got ${show(stamps[i])} after ${show(stamps[i - 1])}; sort the rows`,
       );
   return times;
 }

@@ -32,7 +32,10 @@ export function readLimit(
     return complain(`expected one of below and above, got ${sides.length === 0 ? 'neither' : 'both'}`);
   const [side] = sides;
   if (under !== null && target.what !== under.what)
-    return complain(`a ratio is of two like quantities; ${show(one)} and ${show(other)} are not`, 'keep');
+    return complain(
+      `a ratio is of two like quantities; ${show(one)} and ${show(other)} are not; divide a concentration by one, or a flow by one`,
+      'keep',
+    );
   const q = quantity(raw[side], ...(under === null ? kindsOf(target) : RATIO));
   if ('wrong' in q) return complain(q.wrong, side);
   if (!(q.value > 0)) return complain(`must be greater than 0, got ${show(raw[side])}`, side);
