@@ -118,6 +118,9 @@ describe('questions about the command itself', () => {
     expect(help).toMatchObject({ code: exits.done, error: '' });
     for (const option of ['--out', '--no-pictures', '--scale', '--integrator', '--tolerance', '--quiet'])
       expect(help.out).toContain(option);
+    const schema = await upsettle('schema');
+    expect(schema).toMatchObject({ code: exits.done, error: '' });
+    expect(JSON.parse(schema.out)).toMatchObject({ title: 'Upsettle scenario', type: 'object' });
     const greeting = await upsettle();
     expect(greeting).toMatchObject({ code: exits.done, error: '' });
     for (const verb of ['new', 'check', 'run'])

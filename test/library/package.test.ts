@@ -98,6 +98,13 @@ describe('the package', () => {
     expect(pack.size).toBeLessThan(3e6);
   });
 
+  it('uses nothing that may not be passed on, and lists it', () => {
+    const out = execFileSync(process.execPath, [inRepo('src/build/licences.mjs')], { encoding: 'utf8' });
+    for (const name of Object.keys(about.dependencies).filter((n) => n !== 'canvas'))
+      expect(out).toMatch(new RegExp(`^${name.replace('/', '\\/')} +[\\d.]+ +used +\\S`, 'm'));
+    expect(out).toMatch(/all of those in use free to pass on\n$/);
+  });
+
   it('pins its versions, and every script and export is there', () => {
     for (const [name, version] of Object.entries<string>({ ...about.dependencies, ...about.devDependencies }))
       expect(version, name).toMatch(name === 'canvas' ? /^file:/ : /^\d+\.\d+\.\d+$/);
