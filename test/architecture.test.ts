@@ -12,6 +12,7 @@ const allowed: Record<string, { readonly any: readonly string[]; readonly types:
   control: { any: ['math'], types: ['solve'] },
   study: { any: ['math', 'scenario', 'plant', 'solve', 'control'], types: [] },
   report: { any: [], types: ['study', 'plant', 'scenario', 'solve', 'control'] },
+  library: { any: ['study', 'scenario', 'solve'], types: ['plant'] },
   cli: { any: ['study', 'report', 'scenario', 'plant', 'solve'], types: [] },
 };
 

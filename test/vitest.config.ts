@@ -6,6 +6,7 @@ export default defineConfig({
   test: {
     include: ['test/**/*.test.ts'],
     testTimeout: 60_000,
+    globalSetup: [fileURLToPath(new URL('./support/built.ts', import.meta.url))],
     reporters: ['default', fileURLToPath(new URL('./support/reporter.ts', import.meta.url))],
   },
 });

@@ -1,4 +1,4 @@
-// The command as one file and the parts that it loads when needed. Packages with binaries or fonts stay outside.
+// The command, the library, and the parts that they load when needed. Packages with binaries or fonts stay outside.
 import { fileURLToPath } from 'node:url';
 
 const dist = fileURLToPath(new URL('../../dist', import.meta.url));
@@ -7,6 +7,8 @@ export default [
   {
     input: {
       upsettle: fileURLToPath(new URL('../cli/upsettle.ts', import.meta.url)),
+      // What other programs import; it shares its parts with the command.
+      index: fileURLToPath(new URL('../library/index.ts', import.meta.url)),
       // Worker threads load a file of their own.
       'ensemble-worker': fileURLToPath(new URL('../study/commission/worker.ts', import.meta.url)),
       'map-worker': fileURLToPath(new URL('../study/rehearse/worker.ts', import.meta.url)),

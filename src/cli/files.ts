@@ -18,20 +18,24 @@ const LARGEST = 20e6;
 
 /** Reads and checks a scenario file. @throws Known with every complaint and its place. */
 export function openScenario(file: string): ReadScenario {
-  if (file === '') throw new Known('the name of the scenario file is empty', exits.usage);
+  if (file === '')
+    throw new Known('the name of the scenario file is empty; write it after the verb', exits.usage);
   let text: string;
   try {
     const about = statSync(file);
-    if (!about.isFile()) throw new Known(`${file}:1:1 is not a file`, exits.refused);
+    if (!about.isFile()) throw new Known(`${file}:1:1 is not a file; name a scenario file`, exits.refused);
     if (about.size > LARGEST)
-      throw new Known(`${file}:1:1 has ${Math.round(about.size / 1e6)} MB: not a scenario`, exits.refused);
+      throw new Known(
+        `${file}:1:1 has ${Math.round(about.size / 1e6)} MB, more than any scenario; name a scenario file`,
+        exits.refused,
+      );
     text = readFileSync(file, 'utf8');
   } catch (e) {
     if (e instanceof Known) throw e;
     const why =
       (e as NodeJS.ErrnoException).code === 'ENOENT'
-        ? 'there is no such file'
-        : `cannot be read (${(e as NodeJS.ErrnoException).code})`;
+        ? `there is no such file; upsettle new ${file} writes one to begin with`
+        : `cannot be read (${(e as NodeJS.ErrnoException).code}); look at its folder and permissions`;
     throw new Known(`${file}:1:1 ${why}`, exits.refused);
   }
   try {
@@ -53,11 +57,14 @@ export function outputFolder(file: string, verb: string, given: string | undefin
   let there = resolve(folder);
   while (!existsSync(there) && there !== dirname(there)) there = dirname(there);
   if (!statSync(there).isDirectory())
-    throw new Known(`cannot make the folder ${folder}: ${there} is a file`, exits.usage);
+    throw new Known(`cannot make the folder ${folder}: ${there} is a file; write another --out`, exits.usage);
   try {
     accessSync(there, constants.W_OK);
   } catch (e) {
-    throw new Known(`cannot write to ${there} (${(e as NodeJS.ErrnoException).code})`, exits.usage);
+    throw new Known(
+      `cannot write to ${there} (${(e as NodeJS.ErrnoException).code}); write another --out`,
+      exits.usage,
+    );
   }
   return folder;
 }
@@ -66,7 +73,10 @@ export function makeFolder(folder: string): void {
   try {
     makePath(resolve(folder));
   } catch (e) {
-    throw new Known(`cannot make the folder ${folder} (${(e as NodeJS.ErrnoException).code})`, exits.usage);
+    throw new Known(
+      `cannot make the folder ${folder} (${(e as NodeJS.ErrnoException).code}); write another --out`,
+      exits.usage,
+    );
   }
 }
 

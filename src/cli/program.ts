@@ -22,9 +22,11 @@ export async function main(argv: readonly string[]): Promise<number> {
     .version(version(), '-V, --version', 'print the version')
     .exitOverride()
     .showHelpAfterError('upsettle --help lists all commands and options')
-    .configureHelp({ showGlobalOptions: true })
     .option('--quiet', 'say nothing but errors')
-    .addHelpText('after', '\nExample:\n  upsettle run scenarios/saltbush-copper.yaml\n');
+    .addHelpText(
+      'after',
+      '\nExamples:\n  upsettle new my-plant.yaml --kind circuit\n  upsettle check my-plant.yaml\n  upsettle run my-plant.yaml\n',
+    );
   const console = (): ReturnType<typeof makeConsole> => makeConsole(program.opts().quiet === true);
   const verb = (name: string, what: string, example: string): Command =>
     program
@@ -36,10 +38,39 @@ export async function main(argv: readonly string[]): Promise<number> {
   const quiet = (o: { quiet?: boolean }): ReturnType<typeof makeConsole> =>
     o.quiet ? makeConsole(true) : console();
 
+  program
+    .command('new')
+    .description('write a commented scenario to begin with')
+    .argument('<file>', 'scenario file to write (YAML)')
+    .option(
+      '--kind <name>',
+      'kind of plant: single, circuit, parting, loop, vessels, beaker; asked on a terminal',
+    )
+    .option('--title <text>', 'its title')
+    .option('--solutes <names>', 'what transfers, such as copper, or zinc,iron for two')
+    .option('--editor', 'with the line and the schema file by which editors complete and check it')
+    .option('--replace', 'overwrite the file if it is there')
+    .option('--quiet', 'say nothing but errors')
+    .addHelpText(
+      'after',
+      '\nExample:\n  upsettle new my-plant.yaml --kind circuit --solutes copper --title "Our plant"\n',
+    )
+    .action(async (file: string, o) => {
+      const { makeNew } = await import('./verbs/new.ts');
+      code = await makeNew(file, o, quiet(o));
+    });
+  program
+    .command('schema')
+    .description('print the JSON Schema of a scenario, for editors')
+    .addHelpText('after', '\nExample:\n  upsettle schema > scenario.schema.json\n')
+    .action(async () => {
+      const { schema } = await import('./verbs/schema.ts');
+      code = schema();
+    });
   verb(
     'check',
     'check a scenario and print the plant as understood',
-    'upsettle check scenarios/ten.yaml',
+    'upsettle check scenarios/saltbush-copper.yaml',
   ).action(async (file: string, o) => {
     const { check } = await import('./verbs/check.ts');
     code = check(file, quiet(o));
@@ -56,7 +87,9 @@ export async function main(argv: readonly string[]): Promise<number> {
       new Option('--integrator <name>', 'method of integration').choices(integrators).default('rodas5p'),
     )
     .addOption(
-      new Option('--tolerance <number>', 'relative tolerance').argParser(tolerance).default(TOLERANCE),
+      new Option('--tolerance <number>', 'relative tolerance')
+        .argParser(tolerance)
+        .default(TOLERANCE, '1e-6'),
     )
     .option('--save-state <file>', 'keep the state at the end (or at --save-at) in a file')
     .addOption(new Option('--save-at <time>', "when to keep it, such as '12 h'"))
@@ -204,14 +237,13 @@ function grid(text: string): [number, number] {
 }
 
 const greeting =
-  (): string => `Upsettle ${version()}: what happens between steady states of a mixer-settler cascade.
+  (): string => `Upsettle ${version()}: what happens between the steady states of a mixer-settler cascade.
+It runs a plant from one file through start-up and upsets, and tunes its control loops.
 
-  upsettle check scenarios/saltbush-copper.yaml    the plant as understood
-  upsettle steady scenarios/saltbush-copper.yaml   where it comes to rest
-  upsettle run scenarios/saltbush-copper.yaml      start-up and upsets, with pictures
-  upsettle commission scenarios/saltbush-startup.yaml   when the start-up comes good
-  upsettle rehearse scenarios/saltbush-rehearsal.yaml   an upset before it happens
-  upsettle tune scenarios/saltbush-loop.yaml       settings for its control loop
+Begin with:
+  upsettle new my-plant.yaml      a commented file for a kind of plant of your choice
+  upsettle check my-plant.yaml    the plant as understood, and what is unusual about it
+  upsettle run my-plant.yaml      start-up and upsets, with pictures in out/my-plant/run
 
-upsettle --help lists all options.
+Then: steady, commission, rehearse, tune. upsettle --help lists all, upsettle run --help its options.
 `;

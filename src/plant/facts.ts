@@ -1,7 +1,8 @@
 import { usualInversion } from '../scenario/plain.ts';
-import type { Phase } from '../scenario/scenario.ts';
+import type { Phase, Stage } from '../scenario/scenario.ts';
 import type { Plant } from './assemble.ts';
-import { setFlows } from './design.ts';
+import { type StageDesign, setFlows } from './design.ts';
+import { otherPhase } from './flow.ts';
 
 /** What a train looks like at its design flows; SI. Ranges over its stages where they differ: [least, most]. */
 export interface TrainFacts {
@@ -13,6 +14,8 @@ export interface TrainFacts {
   readonly mixerResidence: readonly [number, number];
   /** Total flow, recycle included, per settler area, m³/(m²·s); null where no area is given. */
   readonly specificFlow: readonly [number, number] | null;
+  /** m of dispersion band at these flows; null where no stage has one. */
+  readonly band: readonly [number, number] | null;
   /** m³ of each phase in all mixers and settlers. */
   readonly held: { readonly aqueous: number; readonly organic: number };
 }
@@ -32,6 +35,7 @@ export function trainFacts(plant: Plant): TrainFacts[] {
     const both = stages.map((d) => d.set.aqueous + d.set.organic + d.recycled.aqueous + d.recycled.organic);
     const range = (list: number[]): [number, number] => [Math.min(...list), Math.max(...list)];
     const loads = t.stages.flatMap((q, j) => (q.settler.area === null ? [] : [both[j] / q.settler.area]));
+    const bands = t.stages.flatMap((q, j) => bandThickness(q, stages[j]) ?? []);
     const held = (phase: Phase): number =>
       t.stages.reduce((n, q, j) => n + stages[j].mixer[phase] + q.settler[phase], 0);
     return {
@@ -42,9 +46,16 @@ export function trainFacts(plant: Plant): TrainFacts[] {
       ratio: organic / aqueous,
       mixerResidence: range(t.stages.map((q, j) => q.mixer.volume / both[j])),
       specificFlow: loads.length === t.stages.length ? range(loads) : null,
+      band: bands.length > 0 ? range(bands) : null,
       held: { aqueous: held('aqueous'), organic: held('organic') },
     };
   });
+}
+
+/** m of the dispersion band of a stage at rest under the design flows; null without a band. */
+export function bandThickness({ mixer, settler: { band, area } }: Stage, d: StageDesign): number | null {
+  if (band === null || area === null) return null;
+  return d.band[otherPhase(mixer.continuity)] / (area * band.holdUp);
 }
 
 /** Flow of every stream as feeds and pumps set it, m³/s. */

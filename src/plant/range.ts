@@ -81,7 +81,7 @@ export function writeSpeciesGuards(
         direction: -1,
         message: `${species} in ${path}.mixer is used up: ${
           book.neutralised(k) ? 'more base is dosed or stripped' : 'the laws strip more'
-        } than it can carry, and what follows is not to be trusted`,
+        } than it can carry, and what follows is not to be trusted; look at the figures of ${species}`,
         action: 'report',
       },
       remains(bound.length / 2),

@@ -77,7 +77,7 @@ export function writeStageOutputs(book: Book, v: Vessel, r: Shown): void {
         {
           name: `${path}.settler ${phase} layer used up`,
           direction: -1,
-          message: `mixer and band of ${path} have taken up all ${phase} of its settler: full vessels have no answer to that, and what follows in this stage is not to be trusted`,
+          message: `mixer and band of ${path} have taken up all ${phase} of its settler: full vessels have no answer to that, and what follows in this stage is not to be trusted; state hydraulics: weirs`,
           fromStart: true,
           action: 'report',
         },

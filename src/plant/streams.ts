@@ -117,7 +117,7 @@ export class Streams {
       {
         name: `${names} take all`,
         direction: -1,
-        message: `${names} ${branches.length > 1 ? 'take' : 'takes'} all there is of the stream: nothing is left for the rest`,
+        message: `${names} ${branches.length > 1 ? 'take' : 'takes'} all there is of the stream: nothing is left for the rest; take less`,
         fromStart: true,
         action: 'report',
       },

@@ -88,13 +88,15 @@ function risingFormulas(
     ];
     const zero = f.value(0, at);
     if (!(Math.abs(zero) <= AT_ZERO * Math.abs(f.value(reach / 2, at))))
-      return complain(`an isotherm passes through 0, 0, but the formula gives ${show(zero)} g/L at c_a = 0`);
+      return complain(
+        `an isotherm passes through 0, 0, but the formula gives ${show(zero)} g/L at c_a = 0; take that off`,
+      );
     for (let k = 0; k <= POINTS; k++) {
       const ca = reach * (k / POINTS) ** 2;
       const slope = f.slope(ca, at);
       if (!(slope > 0 && slope < Infinity))
         return complain(
-          `an isotherm rises from 0 to ${show(reach)} g/L (twice the largest feed), but the slope of the formula is ${show(slope)} at c_a = ${show(ca)} g/L${ca === 0 && slope === Infinity ? '; a power below 1 is a Freundlich isotherm: use law: freundlich' : ''}`,
+          `an isotherm rises from 0 to ${show(reach)} g/L (twice the largest feed), but the slope of the formula is ${show(slope)} at c_a = ${show(ca)} g/L${ca === 0 && slope === Infinity ? '; a power below 1 is a Freundlich isotherm: use law: freundlich' : '; change the formula, or measure points and use law: table'}`,
         );
     }
     return [];
@@ -108,7 +110,7 @@ function sameExtractant(s: Scenario, owner: Path, equilibrium: Train['equilibriu
     if (law?.law !== 'exchange') return [];
     const { extractant } = equilibrium[first] as Exchange;
     if (law.extractant === extractant) return [];
-    const message = `'${s.solutes[first]}' and '${s.solutes[i]}' share one extractant, but ${show(extractant)} and ${show(law.extractant)} g/L are stated`;
+    const message = `'${s.solutes[first]}' and '${s.solutes[i]}' share one extractant, but ${show(extractant)} and ${show(law.extractant)} g/L are stated; state the same total`;
     return [{ path: [...owner, 'equilibrium', s.solutes[i], 'extractant'], message }];
   });
 }
@@ -125,7 +127,7 @@ function fittingBands(t: Train, plan: TrainDesign): Problem[] {
     const dispersed: Phase = mixer.continuity === 'organic' ? 'aqueous' : 'organic';
     const thick = band[dispersed] / (settler.area * settler.band.holdUp);
     const how = Number.isFinite(thick) ? `would be ${show(thick)} m thick` : 'would grow without end';
-    const message = `at the flows of time zero the band of stage ${j + 1} ${how}, over layers of ${show(settler.aqueous / settler.area)} m aqueous and ${show(settler.organic / settler.area)} m organic`;
+    const message = `at the flows of time zero the band of stage ${j + 1} ${how}, over layers of ${show(settler.aqueous / settler.area)} m aqueous and ${show(settler.organic / settler.area)} m organic; enlarge area or depth, or look at thickness, at and exponent`;
     return [{ path: ['trains', t.name, 'settler', 'band'], message }];
   }
   return [];
@@ -159,7 +161,7 @@ function roomySettlers(
       const most = Math.max(share(range[phase].most, least), share(range[phase].design, least));
       const more = mixer.volume * (most - share(range[phase].design, range[other].design));
       if (more <= settler[phase] * (1 - NEARLY_EMPTY)) continue;
-      const message = `the settler of stage ${j + 1} is too small: at ${show(3600 * least)} m^3/h of ${other} its mixer takes up ${show(more)} m^3 of ${phase} more, but the ${phase} layer holds only ${show(settler[phase])} m^3`;
+      const message = `the settler of stage ${j + 1} is too small: at ${show(3600 * least)} m^3/h of ${other} its mixer takes up ${show(more)} m^3 of ${phase} more, but the ${phase} layer holds only ${show(settler[phase])} m^3; enlarge it, or state hydraulics: weirs`;
       return [{ path: ['trains', t.name, 'settler'], message }];
     }
     return [];
@@ -190,7 +192,7 @@ function roomForWeirs(t: Train, plan: TrainDesign): Problem[] {
     if (crest.aqueous <= 0)
       return complain(
         'settler',
-        `the crest of the aqueous weir would be at ${show(crest.aqueous)} m; it must be above the floor`,
+        `the crest of the aqueous weir would be at ${show(crest.aqueous)} m; it must be above the floor; deepen the layers`,
       );
     const { length, area: plan_ } = mixer.overflow;
     const deep = mixer.volume / plan_;
@@ -247,7 +249,7 @@ function enoughToTake(s: Scenario, net: Network): Problem[] {
     const taken = branches.reduce((n, b) => n + ('share' in b.take ? b.take.share * whole : b.take.flow), 0);
     // A stream that is used up further upstream has its complaint there.
     if (taken < whole || whole <= 0) return [];
-    const message = `takes ${show(3600 * taken)} m^3/h${branches.length > 1 ? ' with the others' : ''} of a stream of ${show(3600 * whole)} m^3/h, which leaves nothing`;
+    const message = `takes ${show(3600 * taken)} m^3/h${branches.length > 1 ? ' with the others' : ''} of a stream of ${show(3600 * whole)} m^3/h, which leaves nothing; take less`;
     return [{ path: path(branches[branches.length - 1].name), message }];
   };
   return [

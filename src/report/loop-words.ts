@@ -89,7 +89,7 @@ export const restLines = (loops: readonly Loop[], at: readonly LoopAtRest[]): st
       return `${q.name} in manual, ${out}: ${l.measure.of} ${withUnit(q.measurement, 'kg/m^3')} (set point ${withUnit(q.setPoint, 'kg/m^3')})`;
     if (q.binds === null)
       return `${q.name} keeps ${l.measure.of} at ${withUnit(q.measurement, 'kg/m^3')}: ${out}`;
-    return `${q.name} CANNOT keep ${l.measure.of} at ${withUnit(q.setPoint, 'kg/m^3')}: the ${q.binds} limit binds, ${out}, ${withUnit(q.measurement, 'kg/m^3')} is reached`;
+    return `${q.name} CANNOT keep ${l.measure.of} at ${withUnit(q.setPoint, 'kg/m^3')}: the ${q.binds} limit binds, ${out}, ${withUnit(q.measurement, 'kg/m^3')} is reached; widen low and high, or move the set point`;
   });
 
 /** Loops over a run. */

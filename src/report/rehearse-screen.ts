@@ -42,12 +42,14 @@ function warnings(r: RehearseResult): string[] {
   const lines: string[] = [];
   if (moving.perHour > AT_REST)
     lines.push(
-      `NOTE  the plant is not at rest as the upset begins: ${moving.path} still moves ${figure(100 * moving.perHour, 2)} %/h.`,
+      `NOTE  the plant is not at rest as the upset begins: ${moving.path} still moves ${figure(100 * moving.perHour, 2)} %/h; let the upset begin later, or state start: steady.`,
     );
   lines.push(...loopLines(r));
   if (!startStated && first > 0) lines.push('The run starts steady, since the scenario states no start.');
   for (const c of r.clamped)
-    lines.push(`NOTE  ${c.quantity} would fall below 0 after ${clock(c.time)} of the run: held at 0.`);
+    lines.push(
+      `NOTE  ${c.quantity} would fall below 0 after ${clock(c.time)} of the run: held at 0; make the change smaller.`,
+    );
   if (r.stop.reason !== 'reached-end') lines.push('INCOMPLETE  the run with nothing done came to no end.');
   return lines;
 }

@@ -15,7 +15,7 @@ export function runScreen(r: RunResult): string[] {
   for (const q of r.shades) lines.push(`upset  ${q.words}, ${clock(q.from)} to ${clock(q.to)}`);
   for (const c of r.clamped)
     lines.push(
-      `note   ${c.quantity} would ${c.at > 0 ? 'exceed 100 %' : 'fall below 0'} after ${clock(c.time)}: held there`,
+      `note   ${c.quantity} would ${c.at > 0 ? 'exceed 100 %' : 'fall below 0'} after ${clock(c.time)}: held there; make the change smaller`,
     );
   for (const l of r.limits) lines.push(...limitLines(l));
   lines.push(...reportLines(s.loops ?? [], r.loops));
@@ -53,7 +53,9 @@ export function limitLines(l: LimitReport): string[] {
   const from = l.limit.from > 0 ? ` from ${clock(l.limit.from)} on` : '';
   const name = `${l.path} ${l.limit.side === 'below' ? '<' : '>'} ${withUnit(l.limit.value, l.unit)}${from}`;
   if (Number.isNaN(l.worst.value))
-    return [`NOT JUDGED ${name}: there was never enough to compare, or the time was not reached`];
+    return [
+      `NOT JUDGED ${name}: there was never enough to compare, or the time was not reached; lengthen the horizon, or let it count earlier`,
+    ];
   const negligible = Math.abs(l.worst.value) < 1e-6 * Math.abs(l.limit.value);
   const worst = `worst ${withUnit(negligible ? 0 : l.worst.value, l.unit)} at ${clock(l.worst.time)}`;
   if (l.spells.length === 0) return [`KEPT   ${name}: ${worst}`];
@@ -124,7 +126,7 @@ export function steadyScreen(r: SteadyResult): string[] {
   for (const f of r.figures) lines.push(...figureLines(f));
   for (const q of r.usedUp.slice(0, 4))
     lines.push(
-      `WARNING  ${q.species} in ${q.stage}.mixer is used up: more base is dosed or stripped than it can carry, and these figures are not to be trusted`,
+      `WARNING  ${q.species} in ${q.stage}.mixer is used up: more base is dosed or stripped than it can carry, and these figures are not to be trusted; dose less, or bring more of it`,
     );
   for (const d of r.drifts)
     lines.push(

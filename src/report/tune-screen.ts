@@ -70,13 +70,13 @@ function warnings(r: Tuned, loop: Loop): string[] {
     `output ${outputText(loop, p.output)}${p.throughput === 1 ? '' : `, throughput ${figure(100 * p.throughput)} %`}${p.grade === 1 ? '' : `, grade ${figure(100 * p.grade)} %`}`;
   if (signChanges.length > 0)
     lines.push(
-      `WARNING the gain CHANGES SIGN: at ${at(signChanges[0])} the loop drives the plant the wrong way.`,
+      `WARNING the gain CHANGES SIGN: at ${at(signChanges[0])} the loop drives the plant the wrong way; keep low and high of its output on one side of that.`,
     );
   if (along) {
     const ratio = Math.abs((along.most.gain as number) / (along.least.gain as number));
     if (ratio > 2)
       lines.push(
-        `WARNING gain falls from ${gainText(loop, 1 / Math.abs(along.most.gain as number), true)} (output ${outputText(loop, along.most.output)}) to ${gainText(loop, 1 / Math.abs(along.least.gain as number), true)} (output ${outputText(loop, along.least.output)}), ${figure(ratio, 2)} to 1.`,
+        `WARNING gain falls from ${gainText(loop, 1 / Math.abs(along.most.gain as number), true)} (output ${outputText(loop, along.most.output)}) to ${gainText(loop, 1 / Math.abs(along.least.gain as number), true)} (output ${outputText(loop, along.least.output)}), ${figure(ratio, 2)} to 1; see the schedule.`,
       );
   }
   const unstable = unsafe.filter((p) => p.margins && !p.margins.stable);
@@ -87,7 +87,7 @@ function warnings(r: Tuned, loop: Loop): string[] {
   const bound = r.best;
   if (bound.atLimit > 0.05 || bound.slewing > 0.05)
     lines.push(
-      `NOTE    margins assume neither limit nor slew; here the output is at a limit ${figure(100 * bound.atLimit, 2)} % of the time, on its slew ${figure(100 * bound.slewing, 2)} %.`,
+      `NOTE    margins assume neither limit nor slew; here the output is at a limit ${figure(100 * bound.atLimit, 2)} % of the time, on its slew ${figure(100 * bound.slewing, 2)} %; widen them if the plant allows it.`,
     );
   return lines;
 }

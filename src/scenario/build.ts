@@ -143,7 +143,7 @@ class Builder {
     if (held > volume)
       this.#problems.push({
         path: [...path, 'filled'],
-        message: `a tank cannot hold more than its volume of ${t.volume.text}, got ${show(filled.text)}`,
+        message: `a tank cannot hold more than its volume of ${t.volume.text}, got ${show(filled.text)}; fill it less or enlarge it`,
       });
     const flow =
       t.flow === undefined
@@ -282,7 +282,7 @@ class Builder {
         if (given[s] !== undefined)
           this.#problems.push({
             path: [...path, s],
-            message: `the species '${s}' stays in the aqueous; an organic has none`,
+            message: `the species '${s}' stays in the aqueous; an organic has none; take it out`,
             atKey: true,
           });
     return content(given, phase, this.basis, path, this.#problems);

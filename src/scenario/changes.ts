@@ -113,9 +113,15 @@ class ChangeReader {
     const lasts = this.#raw.for;
     const { horizon } = this.#s;
     if (at.value >= horizon.value)
-      this.complain(`begins at ${at.text}, but the run ends at ${horizon.text}`, 'at');
+      this.complain(
+        `begins at ${at.text}, but the run ends at ${horizon.text}; begin earlier or lengthen the horizon`,
+        'at',
+      );
     if (over && lasts && lasts.value < over.value)
-      this.complain(`lasts ${lasts.text}, less than its ramp over ${over.text}`, 'for');
+      this.complain(
+        `lasts ${lasts.text}, less than its ramp over ${over.text}; lengthen for or shorten over`,
+        'for',
+      );
   }
 
   /** A word for a state: all inputs that it stands for. */
@@ -152,7 +158,10 @@ class ChangeReader {
       return [];
     }
     if (other.phase !== this.#target.phase) {
-      this.complain(`'${other.name}' is ${other.phase}, but '${change}' is ${this.#target.phase}`, given);
+      this.complain(
+        `'${other.name}' is ${other.phase}, but '${change}' is ${this.#target.phase}; swap it to a feed of its own phase`,
+        given,
+      );
       return [];
     }
     const words = `${change} swapped to ${other.name}`;

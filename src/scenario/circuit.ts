@@ -45,7 +45,10 @@ export function splitsOf(raw: RawScenario, problems: Problem[]): Split[] {
     });
     const shares = branches.reduce((n, b) => n + ('share' in b.take ? b.take.share : 0), 0);
     if (shares >= 1)
-      problems.push({ path, message: `the shares come to ${percent(shares)} %, which leaves no rest` });
+      problems.push({
+        path,
+        message: `the shares come to ${percent(shares)} %, which leaves no rest; lower them`,
+      });
     return { stream, branches, rest: rests[0] ?? '' };
   });
 }
@@ -78,7 +81,7 @@ export function arrangementOf(
     if (t[key] !== undefined && !cross)
       problems.push({
         path: [...path, key],
-        message: `belongs to arrangement: cross-current, this one is ${kind}`,
+        message: `belongs to arrangement: cross-current, this one is ${kind}; take it out or state that`,
       });
   const backFlow = {
     aqueous: t.back_flow?.aqueous?.value ?? 0,
@@ -92,7 +95,7 @@ export function arrangementOf(
   if (t.back_flow !== undefined && cross)
     problems.push({
       path: [...path, 'back_flow'],
-      message: 'stages in cross-current have no neighbour to flow back to',
+      message: 'stages in cross-current have no neighbour to flow back to; take it out',
     });
   const arrangement: Arrangement =
     kind === 'cross-current'
@@ -107,8 +110,10 @@ function sharesOf(t: RawTrain, path: Path, problems: Problem[]): number[] {
   if (given === undefined) return Array.from({ length: t.stages }, () => 1 / t.stages);
   const sum = given.reduce((n, v) => n + v, 0);
   const complain = (message: string): number => problems.push({ path: [...path, 'shares'], message });
-  if (given.length !== t.stages) complain(`${given.length} shares for ${t.stages} stages`);
-  else if (Math.abs(sum - 1) > ROUNDING) complain(`the shares come to ${percent(sum)} %, not to 100 %`);
+  if (given.length !== t.stages)
+    complain(`${given.length} shares for ${t.stages} stages; state one for each`);
+  else if (Math.abs(sum - 1) > ROUNDING)
+    complain(`the shares come to ${percent(sum)} %, not to 100 %; mend them`);
   return given.map((v) => v / sum);
 }
 
@@ -131,12 +136,12 @@ export function removalsOf(
     if (t.removes?.[name] === undefined)
       problems.push({
         path: [...path, 'removes', name],
-        message: `is missing, but returns says what ${show(name)} gives back`,
+        message: `is missing, but returns says what ${show(name)} gives back; state it, or take that out of returns`,
       });
     if (t.phase === 'organic')
       problems.push({
         path: [...path, 'returns'],
-        message: 'species stay in the aqueous; an organic takes none',
+        message: 'species stay in the aqueous; an organic takes none; take it out',
       });
     for (const s of Object.keys(row))
       if (!species.includes(s)) unknown(['returns', name], s, 'species', species);
@@ -173,7 +178,7 @@ export function neutralisedBy(
   if (f.neutralises !== undefined && f.phase !== 'aqueous')
     problems.push({
       path: [...path, 'neutralises'],
-      message: 'species stay in the aqueous; only an aqueous feed meets them',
+      message: 'species stay in the aqueous; only an aqueous feed meets them; take it out',
     });
   for (const name of Object.keys(given))
     if (!species.includes(name))
@@ -185,7 +190,7 @@ export function neutralisedBy(
     else if (f[name as keyof typeof f] !== undefined)
       problems.push({
         path: [...path, 'neutralises', name],
-        message: `a feed brings ${show(name)} or uses it up, not both`,
+        message: `a feed brings ${show(name)} or uses it up, not both; state one of them`,
       });
   return species.map((s) => given[s]?.value ?? 0);
 }

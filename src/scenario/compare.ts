@@ -34,7 +34,10 @@ export function readCompare(
   const begins = raw.at?.value ?? 0;
   const early = times.findIndex((t) => t + begins < 0);
   if (early >= 0)
-    complain(`${table.file}:${table.rows[early].line}: lies before the start of the run`, 'file');
+    complain(
+      `${table.file}:${table.rows[early].line}: lies before the start of the run; leave it out, or state a later at`,
+      'file',
+    );
   const entries = Object.entries(raw.columns);
   if (entries.length === 0)
     complain("name at least one column, such as {raffinate.copper: 'Cu g/L'}", 'columns');
@@ -59,7 +62,8 @@ export function readCompare(
       const own = cells(table, at).flatMap((v, i) =>
         v === null ? [] : [{ t: times[i] + begins, v: inside(v * factor) }],
       );
-      if (own.length === 0) throw new BadData(`${table.file}: the column ${show(column)} holds no sample`);
+      if (own.length === 0)
+        throw new BadData(`${table.file}: the column ${show(column)} holds no sample; name another`);
       return [{ quantity, times: own.map((q) => q.t), values: own.map((q) => q.v) }];
     } catch (e) {
       if (!(e instanceof BadData)) throw e;

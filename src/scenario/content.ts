@@ -37,7 +37,11 @@ export function content(
   const quantities = basis.components.map((name) => given[name] as Quantity | undefined);
   const isFraction = (q: Quantity | undefined): q is Quantity => q?.kind === 'a mass fraction';
   const fractions = sum(quantities.filter(isFraction).map((q) => q.value));
-  if (fractions >= 1) problems.push({ path, message: 'the mass fractions leave no carrier' });
+  if (fractions >= 1)
+    problems.push({
+      path,
+      message: 'the mass fractions leave no carrier; together they must come to less than 100 %',
+    });
   const at = (k: number): Path => [...path, basis.components[k]];
   const stated = quantities.map((q, k) =>
     q === undefined || isFraction(q)
@@ -74,7 +78,8 @@ export function concentration(
     case 'a mass ratio':
       return q.value * density(q.kind, phase, basis, path, problems);
     case 'a mass fraction':
-      if (q.value >= 1) problems.push({ path, message: 'the mass fraction leaves no carrier' });
+      if (q.value >= 1)
+        problems.push({ path, message: 'the mass fraction leaves no carrier; it must be less than 100 %' });
       return ofWhole(q.value, 1 - q.value, rest, phase, basis, path, problems);
     default:
       return q.value;

@@ -44,15 +44,16 @@ export function readTable(folder: string, file: string): Table {
   const quote = parsed.errors.find((e) => e.type === 'Quotes');
   if (quote)
     throw new BadData(
-      `${name}:${lines[quote.row ?? 0]?.line ?? next}: a quotation mark is not closed, or stands within a cell`,
+      `${name}:${lines[quote.row ?? 0]?.line ?? next}: a quotation mark is not closed, or stands within a cell; take it out or double it`,
     );
   const filled = lines.filter((r) => r.cells.some((c) => c.trim() !== ''));
   const header = filled[0]?.cells.map((c) => c.trim());
-  if (!header || filled.length < 2) throw new BadData(`${name}:1: no rows below the header`);
+  if (!header || filled.length < 2)
+    throw new BadData(`${name}:1: no rows below the header; put the data there`);
   for (const r of filled)
     if (r.cells.length !== header.length)
       throw new BadData(
-        `${name}:${r.line}: expected ${header.length} cells as in the header, got ${r.cells.length}`,
+        `${name}:${r.line}: expected ${header.length} cells as in the header, got ${r.cells.length}; look for commas within figures`,
       );
   return { file: name, header, rows: filled.slice(1) };
 }
@@ -61,13 +62,15 @@ function readText(folder: string, file: string, name: string): string {
   const path = isAbsolute(file) ? file : join(folder, file);
   try {
     const about = statSync(path);
-    if (!about.isFile()) throw new BadData(`${name} is not a file`);
+    if (!about.isFile()) throw new BadData(`${name} is not a file; name a CSV file`);
     if (about.size > LARGEST)
-      throw new BadData(`${name} has ${(about.size / 1e6).toFixed(0)} MB, more than ${LARGEST / 1e6}`);
+      throw new BadData(
+        `${name} has ${(about.size / 1e6).toFixed(0)} MB, more than ${LARGEST / 1e6}; leave out what is not needed`,
+      );
     return readFileSync(path, 'utf8').replace(/^\uFEFF/, '');
   } catch (e) {
     if (e instanceof BadData) throw e;
-    throw new BadData(`cannot read ${name} (looked for it beside the scenario)`);
+    throw new BadData(`cannot read ${name} (looked for it beside the scenario); look at its name and place`);
   }
 }
 
@@ -86,7 +89,7 @@ export function columnIndex(t: Table, name: string): number {
   const at = t.header.indexOf(name.trim());
   if (at < 0) throw new BadData(`${t.file}:1: no column ${show(name)}${hint(name, t.header)}`);
   if (t.header.lastIndexOf(name.trim()) > at)
-    throw new BadData(`${t.file}:1: two columns are called ${show(name)}`);
+    throw new BadData(`${t.file}:1: two columns are called ${show(name)}; rename one`);
   return at;
 }
 
@@ -140,7 +143,7 @@ export function elapsed(t: Table, column: number): number[] {
   for (let i = 1; i < times.length; i++)
     if (!(times[i] > times[i - 1]))
       throw new BadData(
-        `${t.file}:${t.rows[i].line}: time must rise from row to row, got ${show(stamps[i])} after ${show(stamps[i - 1])}`,
+        `${t.file}:${t.rows[i].line}: time must rise from row to row, got ${show(stamps[i])} after ${show(stamps[i - 1])}; sort the rows`,
       );
   return times;
 }

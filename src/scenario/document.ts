@@ -27,11 +27,12 @@ export function parse(
     slips: [{ offset, path: [], message }],
     lines,
   });
-  if (text.length > LONGEST) return refuse(`the file has ${text.length} characters, more than ${LONGEST}`);
+  if (text.length > LONGEST)
+    return refuse(`the file has ${text.length} characters, more than ${LONGEST}; move data to CSV files`);
   const garbled = /[\0\uFFFD]/.exec(text);
   if (garbled) {
     for (const start of text.matchAll(/^/gm)) lines.addNewLine(start.index);
-    return refuse('the file is not text in UTF-8', garbled.index);
+    return refuse('the file is not text in UTF-8; save it as such', garbled.index);
   }
   let document: Document;
   try {
@@ -62,14 +63,16 @@ export function parse(
   } catch {
     // An anchor may have gone with a key that was complained about.
     if (slips.length > 0) return { slips, lines };
-    return refuse('the aliases (*name) of the file unfold to more than any plant needs');
+    return refuse(
+      'the aliases (*name) of the file unfold to more than any plant needs; write out what they stand for',
+    );
   }
   if (typeof raw !== 'object' || raw === null || Array.isArray(raw))
     return refuse(`expected settings by name (title: …), got ${show(raw)}`);
   return { document, lines, raw: raw as Record<string, unknown>, slips };
 }
 
-const TOO_DEEP = 'the file is nested too deeply';
+const TOO_DEEP = 'the file is nested too deeply; look for brackets that are not closed';
 
 function inOurWords(e: YAMLError): Slip {
   const of = (message: string): Slip => ({ offset: e.pos[0], path: [], message });
@@ -77,7 +80,7 @@ function inOurWords(e: YAMLError): Slip {
     case 'RESOURCE_EXHAUSTION':
       return of(TOO_DEEP);
     case 'MULTIPLE_DOCS':
-      return of('one plant a file: a second YAML document begins here');
+      return of('one plant a file: a second YAML document begins here; take it out');
     case 'TAB_AS_INDENT':
       return of('not YAML: indent with spaces, not with tabs');
     case 'BLOCK_AS_IMPLICIT_KEY':

@@ -25,7 +25,10 @@ export function figure(allowed: readonly Kind[], check?: (q: Quantity) => string
       context.addIssue({ code: 'custom', message });
       return z.NEVER;
     })
-    .describe(`${allowed[0]}, such as ${kinds[allowed[0]].example}`);
+    .meta({
+      description: `${allowed[0]}, such as ${kinds[allowed[0]].example}`,
+      kinds: allowed,
+    });
 }
 
 export const positive = (q: Quantity): string | null => (q.value > 0 ? null : 'must be greater than 0');

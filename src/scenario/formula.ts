@@ -36,7 +36,7 @@ export function parseFormula(text: unknown, names: readonly string[]): ParsedFor
   if (typeof text !== 'string' || text.trim() === '')
     return { wrong: `expected a formula such as '18*c_a/(1 + 0.9*c_a)', got ${show(text)}` };
   if (text.length > LONGEST)
-    return { wrong: `a formula may have ${LONGEST} characters, this has ${text.length}` };
+    return { wrong: `a formula may have ${LONGEST} characters, this has ${text.length}; shorten it` };
   const translator = new Translator(names);
   try {
     const formula = translator.translate(parseExpression(text) as Node);
@@ -44,7 +44,9 @@ export function parseFormula(text: unknown, names: readonly string[]): ParsedFor
   } catch (e) {
     if (e instanceof NotAllowed) return { wrong: e.message, unknown: e.unknown };
     const at = (e as { char?: number }).char;
-    return { wrong: `not a formula${at === undefined ? '' : ` (at character ${at})`}: ${show(text)}` };
+    return {
+      wrong: `not a formula${at === undefined ? '' : ` (at character ${at})`}: ${show(text)}; write one such as 18*c_a/(1 + 0.9*c_a)`,
+    };
   }
 }
 

@@ -32,7 +32,10 @@ export function readLimit(
     return complain(`expected one of below and above, got ${sides.length === 0 ? 'neither' : 'both'}`);
   const [side] = sides;
   if (under !== null && target.what !== under.what)
-    return complain(`a ratio is of two like quantities; ${show(one)} and ${show(other)} are not`, 'keep');
+    return complain(
+      `a ratio is of two like quantities; ${show(one)} and ${show(other)} are not; divide a concentration by one, or a flow by one`,
+      'keep',
+    );
   const q = quantity(raw[side], ...(under === null ? kindsOf(target) : RATIO));
   if ('wrong' in q) return complain(q.wrong, side);
   if (!(q.value > 0)) return complain(`must be greater than 0, got ${show(raw[side])}`, side);
@@ -41,7 +44,10 @@ export function readLimit(
     return complain('with several dissolved components state a limit in g/L or kg/kg', side);
   const from = raw.from?.value ?? 0;
   if (raw.from && from >= horizon.value)
-    return complain(`counts from ${raw.from.text}, but the run ends at ${horizon.text}`, 'from');
+    return complain(
+      `counts from ${raw.from.text}, but the run ends at ${horizon.text}; let it count earlier or lengthen the horizon`,
+      'from',
+    );
   const dot = raw.keep.indexOf('.');
   return {
     stream: raw.keep.slice(0, dot),

@@ -26,7 +26,7 @@ export class Ownership {
       if (first === i) return;
       const both = [this.#loops[first], l];
       both.forEach((one, k) => {
-        const message = `${show(l.move.quantity)} is moved by ${one.name} and by ${both[1 - k].name}; a move has one owner`;
+        const message = `${show(l.move.quantity)} is moved by ${one.name} and by ${both[1 - k].name}; a move has one owner; take one of them out`;
         this.#problems.push({ path: ['loops', one.name, 'move'], message });
       });
     });
@@ -35,13 +35,13 @@ export class Ownership {
       if (other)
         this.#problems.push({
           path: ['loops', l.name, 'move'],
-          message: `the flow ${show(l.move.over)} that the ratio is over is itself moved by ${other.name}`,
+          message: `the flow ${show(l.move.over)} that the ratio is over is itself moved by ${other.name}; take the ratio over a flow that no loop moves`,
         });
       const inner = this.#loops.find((o) => l.move.kind === 'set point' && o.name === l.move.quantity);
       if (inner?.move.kind === 'set point')
         this.#problems.push({
           path: ['loops', l.name, 'move'],
-          message: `${inner.name} itself moves a set point; a cascade has two loops`,
+          message: `${inner.name} itself moves a set point; a cascade has two loops; let it move a flow`,
         });
     }
   }
@@ -88,8 +88,8 @@ export function checkOwner(u: Written, at: Path, loops: readonly Loop[], problem
     if (put !== null)
       complain(
         loops.length === 0
-          ? 'there is no loop to be put anywhere'
-          : `no loop moves ${show(u.change)}; put is for changes of what a loop moves`,
+          ? 'there is no loop to be put anywhere; take it out'
+          : `no loop moves ${show(u.change)}; put is for changes of what a loop moves; take it out`,
         'put',
       );
     checkOwn(u, loops, complain);
@@ -106,7 +106,7 @@ export function checkOwner(u: Written, at: Path, loops: readonly Loop[], problem
   );
   problems.push({
     path: ['loops', owner.name, 'move'],
-    message: `moves ${show(u.change)}, which ${at[0] === 'upsets' ? 'an upset' : `${String(at[0]).replace(/s$/, '')} ${show(at[1])}`} changes as well`,
+    message: `moves ${show(u.change)}, which ${at[0] === 'upsets' ? 'an upset' : `${String(at[0]).replace(/s$/, '')} ${show(at[1])}`} changes as well; see there`,
   });
 }
 
@@ -118,7 +118,11 @@ function checkOwn(
 ): void {
   const led = loops.find((l) => u.change === `${l.name}.set point`);
   const leader = led && loops.find((l) => l.move.kind === 'set point' && l.move.quantity === led.name);
-  if (leader) complain(`the set point of ${led.name} is moved by ${leader.name}`, 'change');
+  if (leader)
+    complain(
+      `the set point of ${led.name} is moved by ${leader.name}; change the set point of that one instead`,
+      'change',
+    );
   const limit = loops.some((l) => u.change === `${l.name}.low` || u.change === `${l.name}.high`);
   for (const key of ['over', 'follow'] as const)
     if (limit && u[key] !== undefined)

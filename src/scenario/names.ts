@@ -36,7 +36,8 @@ function wrongName(name: string): string | null {
   if (name.trim() === '') return 'a name must not be empty';
   if (name.trim() !== name) return 'a name must not begin or end with a space';
   if (!/^[\p{L}\p{N}]/u.test(name)) return `a name must begin with a letter or a digit, got '${name}'`;
-  if (name.length > LONGEST) return `a name may have ${LONGEST} characters, this has ${name.length}`;
+  if (name.length > LONGEST)
+    return `a name may have ${LONGEST} characters, this has ${name.length}; shorten it`;
   return isBuiltIn(name) ? `'${name}' cannot be a name here; choose another one` : null;
 }
 
@@ -54,7 +55,7 @@ export function checkNames(plan: Outline, problems: Problem[]): void {
     const twice = components.findIndex((c) => c.name === name) !== i;
     const taken = TAKEN.includes(name) || /^stage \d+$/.test(name);
     const also = taken ? `'${name}' has another meaning in a scenario; choose another name` : null;
-    check(name, path, twice ? `'${name}' is named twice` : also);
+    check(name, path, twice ? `'${name}' is named twice; take one out` : also);
   });
 
   // A path begins with a name, so a tank or a train must not share one with a stream.

@@ -50,7 +50,7 @@ function weirNeeds(s: Scenario, t: Train, path: Path, problems: Problem[]): void
   if (density.aqueous !== null && density.organic !== null && density.organic >= density.aqueous)
     problems.push({
       path: ['densities', 'organic'],
-      message: 'the organic must be lighter than the aqueous',
+      message: 'the organic must be lighter than the aqueous; look at both densities',
     });
   const without = t.stages.findIndex((q) => q.settler.weirs === null);
   if (without >= 0)
@@ -66,7 +66,7 @@ function cellNeeds(s: Scenario, t: Train, path: Path, problems: Problem[]): void
   const refuse = (field: string, what: string): number =>
     problems.push({
       path: [...path, field],
-      message: `${what} needs settlers; this train has settler: none`,
+      message: `${what} needs settlers; this train has settler: none; take it out or state a settler`,
     });
   if (!cells) {
     const given = t.stages.findIndex((q) => q.mixer.organicShare !== null);
@@ -92,12 +92,12 @@ function upsetNeeds(s: Scenario, t: Train, problems: Problem[]): void {
     if (q.mixer.transfer.given !== 'impeller' && changes(`${stage}.mixer.speed`))
       problems.push({
         path: ['upsets'],
-        message: `'${stage}.mixer.speed' can only change where the mixer has an impeller`,
+        message: `'${stage}.mixer.speed' can only change where the mixer has an impeller; state one`,
       });
     if (t.hydraulics !== 'weirs' && changes(`${stage}.settler.aqueous_weir`))
       problems.push({
         path: ['upsets'],
-        message: `'${stage}.settler.aqueous_weir' can only change with hydraulics: weirs`,
+        message: `'${stage}.settler.aqueous_weir' can only change with hydraulics: weirs; state that for its train`,
       });
   });
 }

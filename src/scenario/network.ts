@@ -134,7 +134,7 @@ class Ends {
       const why = pumps ? ' (the flow of a loop is set by exactly one pump)' : '';
       this.problems.push({
         path: end.path,
-        message: `'${name}' has two makers: ${other.who} and ${end.who}${why}`,
+        message: `'${name}' has two makers: ${other.who} and ${end.who}${why}; rename one, or join them under blends`,
       });
     } else this.makers.set(name, end);
   }
@@ -144,7 +144,7 @@ class Ends {
     if (other)
       this.problems.push({
         path: end.path,
-        message: `'${name}' has two takers: ${other.who} and ${end.who}`,
+        message: `'${name}' has two takers: ${other.who} and ${end.who}; divide it under splits`,
       });
     else this.users.set(name, end);
   }
@@ -192,16 +192,22 @@ export function network(s: Joints): Network {
     const expected = u.phase ?? (u.user.kind === 'blend' ? blendPhase(s, u.user.index, phaseOf) : null);
     const phase = phaseOf.get(name);
     if (!m)
-      problems.push({ path: u.path, message: `nobody makes the stream '${name}'${hint(name, untaken)}` });
+      problems.push({
+        path: u.path,
+        message: `nobody makes the stream '${name}'${hint(name, untaken) || '; let a feed, a tank or an outlet of a train have this name'}`,
+      });
     else if (expected !== null && phase !== undefined && phase !== expected)
       problems.push({
         path: u.path,
-        message: `'${name}' is ${phase} (${m.who}), but ${u.who} takes it as ${expected}`,
+        message: `'${name}' is ${phase} (${m.who}), but ${u.who} takes it as ${expected}; look at both ends of it`,
       });
   }
   for (const [name, m] of makers)
     if (m.maker.kind === 'feed' && !users.has(name))
-      problems.push({ path: m.path, message: `nobody takes the feed '${name}'${hint(name, unmade)}` });
+      problems.push({
+        path: m.path,
+        message: `nobody takes the feed '${name}'${hint(name, unmade) || '; let a train, a tank or a blend take it, or take it out'}`,
+      });
   if (problems.length > 0) throw new Refusal(problems);
 
   const sides = (train: number, stage: number, phase: Phase): readonly string[] =>

@@ -140,7 +140,7 @@ class ProcedureReader {
       if (holds[key] !== undefined)
         this.#complain(
           ['initial', name, key],
-          'is for trains; a tank states its concentrations themselves',
+          'is for trains; a tank states its concentrations themselves; take it out',
           true,
         );
     const filled = holds.filled as Figure | undefined;
@@ -149,7 +149,7 @@ class ProcedureReader {
     if (held !== null && held > t.volume)
       this.#complain(
         ['initial', name, 'filled'],
-        `a tank cannot hold more than its volume, got ${show(filled?.text)}`,
+        `a tank cannot hold more than its volume, got ${show(filled?.text)}; fill it less`,
       );
     const { components } = this.#around.basis;
     const stated = components.some((c) => holds[c] !== undefined);
@@ -163,7 +163,7 @@ class ProcedureReader {
       if (holds[key] !== undefined)
         this.#complain(
           ['initial', name, key],
-          `is for tanks; a train states its aqueous and its organic`,
+          `is for tanks; a train states its aqueous and its organic; take it out`,
           true,
         );
     const initial: { -readonly [K in keyof Initial]?: Initial[K] } = {};
@@ -182,7 +182,11 @@ class ProcedureReader {
     if (phase === 'organic')
       for (const n of this.#s.species)
         if (given[n] !== undefined)
-          this.#complain([...at, n], `the species '${n}' stays in the aqueous; an organic has none`, true);
+          this.#complain(
+            [...at, n],
+            `the species '${n}' stays in the aqueous; an organic has none; take it out`,
+            true,
+          );
     return content(given, phase, this.#around.basis, ['procedures', this.#name, ...at], this.#problems);
   }
 

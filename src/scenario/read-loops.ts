@@ -35,7 +35,10 @@ export function withLoops(
   if (entries.length === 0) {
     for (const [i, u] of (raw.upsets ?? []).entries())
       if (u.put !== undefined)
-        problems.push({ path: ['upsets', i, 'put'], message: 'there is no loop to be put anywhere' });
+        problems.push({
+          path: ['upsets', i, 'put'],
+          message: 'there is no loop to be put anywhere; take it out',
+        });
     return s;
   }
   const read = entries.flatMap(([name, l]) => new LoopReader(name, l, around, problems).read() ?? []);
@@ -115,7 +118,7 @@ class LoopReader {
     const known = [...outline.limitable].filter(([, q]) => q.what === 'content').map(([k]) => k);
     return this.#complain(
       t
-        ? `a loop measures a concentration, ${show(of)} is none`
+        ? `a loop measures a concentration, ${show(of)} is none; name one such as raffinate.copper, by your names`
         : `unknown quantity ${show(of)}${hint(of, known)}`,
       ...at,
     );
@@ -170,7 +173,7 @@ class LoopReader {
     const known = flows.map((f) => this.#flow(f, key));
     if (known.includes(false) || (kind === 'set point' && inner === null)) return null;
     if (flows.length === 2 && flows[0] === flows[1])
-      return this.#complain('a flow over itself', 'move', 'ratio');
+      return this.#complain('a flow over itself; name two flows', 'move', 'ratio');
     for (const bound of ['low', 'high'] as const)
       if (move[bound] === undefined)
         this.#complain(
@@ -180,10 +183,14 @@ class LoopReader {
     const low = move.low === undefined ? Number.NaN : this.#figure(move.low, kind, inner, 'move', 'low');
     const high = move.high === undefined ? Number.NaN : this.#figure(move.high, kind, inner, 'move', 'high');
     if (low < 0) this.#complain(`must not be negative, got ${show(move.low)}`, 'move', 'low');
-    if (low >= high) this.#complain(`low ${show(move.low)} is not below high ${show(move.high)}`, 'move');
+    if (low >= high)
+      this.#complain(
+        `low ${show(move.low)} is not below high ${show(move.high)}; exchange them or widen the range`,
+        'move',
+      );
     if (kind === 'set point')
       for (const k of ['flow_lag', 'flow_filter'] as const)
-        if (move[k]) this.#complain('belongs to the loop that moves the flow', 'move', k);
+        if (move[k]) this.#complain('belongs to the loop that moves the flow; state it there', 'move', k);
     const [flowLow, flowHigh] = this.#flowLimits(kind);
     const up = typeof move.slew === 'object' ? move.slew.up : move.slew;
     const down = typeof move.slew === 'object' ? move.slew.down : move.slew;
@@ -340,7 +347,7 @@ class LoopReader {
       this.#complain("needs its gain, such as '0.3 per g/L', or form: multiply", 'feedforward');
     if (form === 'multiply' && f.gain !== undefined)
       this.#complain(
-        'multiplies the output by the change of what it measures; it has no gain',
+        'multiplies the output by the change of what it measures; it has no gain; take it out',
         'feedforward',
         'gain',
       );

@@ -42,7 +42,10 @@ export function readRehearsing(
   };
   const entries = Object.entries(raw.answers ?? {});
   if (entries.length > MOST_ANSWERS)
-    problems.push({ path: ['answers'], message: `has ${entries.length} answers, more than ${MOST_ANSWERS}` });
+    problems.push({
+      path: ['answers'],
+      message: `has ${entries.length} answers, more than ${MOST_ANSWERS}; take some out`,
+    });
   const reader = new AnswerReader(raw, s, around, frame, problems);
   const timeZero = raw.time_zero === undefined ? null : readClock(raw.time_zero);
   if (raw.time_zero !== undefined && timeZero === null)
@@ -96,7 +99,7 @@ function instrumentOf(
     return complain(
       target === undefined
         ? `unknown quantity ${show(raw.of)}${hint(raw.of, known)}`
-        : `an analyser measures a concentration; ${show(raw.of)} is none`,
+        : `an analyser measures a concentration; ${show(raw.of)} is none; write one such as raffinate.copper, by your names`,
       'of',
     );
   }
@@ -132,14 +135,20 @@ class AnswerReader {
   read(name: string, a: RawAnswer): Answer {
     const between = a.between?.value ?? 0;
     if (/[.,:#"]|->/.test(name)) this.#complain(name, [], "a name must not hold '. , : # ->'", true);
-    if (name === 'nothing') this.#complain(name, [], "'nothing' is what is done without an answer", true);
+    if (name === 'nothing')
+      this.#complain(name, [], "'nothing' is what is done without an answer; choose another name", true);
     if (a.sequence === undefined) {
-      if (a.between) this.#complain(name, ['between'], 'belongs to a sequence');
+      if (a.between) this.#complain(name, ['between'], 'belongs to a sequence; take it out');
       return { name, between, steps: [this.#step(name, a)] };
     }
     for (const key of ['start', 'when', 'ends', 'moves'] as const)
       if (a[key] !== undefined)
-        this.#complain(name, [key], 'a sequence takes it from the answers it is made of', true);
+        this.#complain(
+          name,
+          [key],
+          'a sequence takes it from the answers it is made of; take it out here',
+          true,
+        );
     if (a.sequence.length < 2)
       this.#complain(name, ['sequence'], 'expected the names of two or more answers');
     const known = Object.entries(this.#raw.answers ?? {});

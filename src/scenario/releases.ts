@@ -28,7 +28,7 @@ export class Releases {
         const message = `unknown species ${show(name)}${hint(name, this.#species)}`;
         problems.push({ path: at, message, atKey: true });
       } else if (row[k] !== null && row[k] !== value) {
-        const message = `another train states ${row[k]}, this one ${value}; what a solute releases is the same everywhere`;
+        const message = `another train states ${row[k]}, this one ${value}; what a solute releases is the same everywhere; state one value`;
         problems.push({ path: at, message });
       } else row[k] = value;
     }

@@ -1,5 +1,6 @@
 import { isAbsolute, join, relative } from 'node:path';
 import { isMap, isScalar, parseDocument, visit } from 'yaml';
+import { movedModeline } from './editor.ts';
 import { hint } from './nearest.ts';
 import { outline } from './outline.ts';
 import { show } from './show.ts';
@@ -96,5 +97,6 @@ export function withExercise(
         value.value = relative(folders.to, join(folders.from, value.value));
       },
     });
-  return document.toString({ lineWidth: 0 });
+  const written = document.toString({ lineWidth: 0 });
+  return folders === null ? written : movedModeline(written, folders.from, folders.to);
 }

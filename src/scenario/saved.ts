@@ -20,8 +20,8 @@ export function startOf(raw: RawScenario['start'], folder: string, problems: Pro
     const read = (e as NodeJS.ErrnoException).code === undefined;
     return complain(
       read
-        ? `${file} is not a kept state (not JSON)`
-        : `cannot read ${file} (looked for it beside the scenario)`,
+        ? `${file} is not a kept state (not JSON); name a file that run --save-state wrote`
+        : `cannot read ${file} (looked for it beside the scenario); look at its name and place`,
     );
   }
   const {
@@ -44,7 +44,8 @@ export function startOf(raw: RawScenario['start'], folder: string, problems: Pro
     modes !== null &&
     Object.values(modes).every((v) => v === 0 || v === 1) &&
     isVolumes(volumes, places.length);
-  if (!whole) return complain(`${file} is not a kept state of this program`);
+  if (!whole)
+    return complain(`${file} is not a kept state of this program; name a file that run --save-state wrote`);
   return {
     file,
     topology,

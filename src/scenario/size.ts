@@ -18,7 +18,10 @@ export function checkSize(s: Scenario, problems: Problem[]): void {
       `${records.toPrecision(3)} records are too many (at most ${MOST_RECORDS}); record less often or shorten the horizon`,
     );
   else if (places > MOST_PLACES)
-    complain('trains', `${places} concentrations are too many (at most ${MOST_PLACES})`);
+    complain(
+      'trains',
+      `${places} concentrations are too many (at most ${MOST_PLACES}); take fewer stages or tanks_in_series`,
+    );
   else if (records * places > MOST_VALUES)
     complain(
       'record_every',

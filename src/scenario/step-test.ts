@@ -31,7 +31,9 @@ export function readStepTest(file: string): ReadStepTest {
   const size = output.reduce((m, v) => Math.max(m, Math.abs(v - output[0])), 0);
   const at = output.findIndex((v) => Math.abs(v - output[0]) > 0.5 * size);
   if (at < 1 || !(size > STEADY * Math.abs(output[0])))
-    throw new BadData(`${t.file}:${t.rows[0].line}: the output does not step, from a first row before it`);
+    throw new BadData(
+      `${t.file}:${t.rows[0].line}: the output does not step; begin the file with rows before the step`,
+    );
   const mean = (list: readonly number[]): number => list.reduce((s, v) => s + v, 0) / list.length;
   const before = mean(measured.slice(0, at));
   const rest = output.slice(at);
@@ -39,7 +41,7 @@ export function readStepTest(file: string): ReadStepTest {
   const end = moved < 0 ? output.length : at + moved;
   if (end - at < 8)
     throw new BadData(
-      `${t.file}:${t.rows[at].line}: only ${end - at} rows after the step, before the output moves again`,
+      `${t.file}:${t.rows[at].line}: only ${end - at} rows after the step, before the output moves again; hold it longer, or take more samples`,
     );
   return {
     step: mean(output.slice(at, end)) - mean(output.slice(0, at)),

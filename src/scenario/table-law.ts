@@ -58,7 +58,7 @@ function listed(raw: RawTable, complain: Complain): Columns | null {
   if ('wrong' in q) return complain(`expected a unit of concentration such as g/L, got '${unit}'`, 'unit');
   if (aqueous.length !== organic.length)
     return complain(
-      `the columns differ in length: ${aqueous.length} aqueous, ${organic.length} organic`,
+      `the columns differ in length: ${aqueous.length} aqueous, ${organic.length} organic; give one organic for each aqueous`,
       'organic',
     );
   const column = (values: readonly number[]): Column => ({ kind: q.kind, factor: q.value, values });
@@ -70,7 +70,7 @@ function filed(raw: RawTable, file: string, folder: string, complain: Complain):
   if (typeof aqueous !== 'string' || typeof organic !== 'string')
     return complain('with a file, aqueous and organic name its columns');
   if (raw.unit !== undefined)
-    return complain('the columns of a file have their units in their headers', 'unit');
+    return complain('the columns of a file have their units in their headers; take it out', 'unit');
   const attempt = <T>(read: () => T, at: string): T | null => {
     try {
       return read();

@@ -100,9 +100,10 @@ function within(q: Quantity, text: unknown): Parsed {
   const size = Math.abs(q.value);
   const unit = kinds[q.kind].unit && ` ${kinds[q.kind].unit}`;
   const [most, inWords] = q.kind === 'a time' ? [CENTURY, '100 years'] : [MOST, `1e12${unit}`];
-  if (!(size <= most)) return { wrong: `${show(text)} is too large for a plant (more than ${inWords})` };
+  if (!(size <= most))
+    return { wrong: `${show(text)} is too large for a plant (more than ${inWords}); look at its unit` };
   if (size > 0 && size < LEAST)
-    return { wrong: `${show(text)} is too small for a plant (less than ${LEAST}${unit})` };
+    return { wrong: `${show(text)} is too small for a plant (less than ${LEAST}${unit}); look at its unit` };
   return q;
 }
 

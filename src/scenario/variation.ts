@@ -46,7 +46,10 @@ class VariationReader {
     if (!target) return null;
     const feed = this.#s.feeds.find((f) => f.name === change.slice(0, change.lastIndexOf('.')));
     if (!feed || (target.what !== 'flow' && target.what !== 'content'))
-      return this.#complain('change', `only flows and concentrations of feeds vary; ${show(change)} is none`);
+      return this.#complain(
+        'change',
+        `only flows and concentrations of feeds vary; ${show(change)} is none; name a feed's`,
+      );
     const k = this.#around.basis.components.indexOf(target.component ?? '');
     const base = k < 0 ? feed.flow : feed.content[k];
     const spread = this.#spread(deviation, base);
@@ -54,7 +57,10 @@ class VariationReader {
     const every = this.#raw.every?.value ?? correlation.value / PER_CORRELATION;
     const corners = Math.ceil(this.#s.horizon / every) + 1;
     if (corners > MOST_CORNERS)
-      return this.#complain('every', `makes ${corners} corners over the run, more than ${MOST_CORNERS}`);
+      return this.#complain(
+        'every',
+        `makes ${corners} corners over the run, more than ${MOST_CORNERS}; lengthen it or shorten the horizon`,
+      );
     return {
       quantity: change,
       base,

@@ -61,7 +61,7 @@ export function restoreState(plant: Plant, saved: SavedState): F {
       : [
           `${what} ${paths.slice(0, MOST_NAMED).join(', ')}${paths.length > MOST_NAMED ? ` and ${paths.length - MOST_NAMED} more` : ''}`,
         ];
-  const message = `the state in ${saved.file} is of another plant: ${[...list('it lacks', missing), ...list('it has in excess', extra)].join('; ')}`;
+  const message = `the state in ${saved.file} is of another plant: ${[...list('it lacks', missing), ...list('it has in excess', extra)].join('; ')}; keep one of this plant with run --save-state`;
   throw new Refusal([{ path: ['start', 'saved'], message }]);
 }
 

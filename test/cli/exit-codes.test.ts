@@ -1,4 +1,4 @@
-import { execFileSync, spawn, spawnSync } from 'node:child_process';
+import { spawn, spawnSync } from 'node:child_process';
 import { existsSync, mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
@@ -25,14 +25,13 @@ function upsettle(...args: readonly string[]): Answer {
 }
 
 beforeAll(() => {
-  execFileSync(process.execPath, [inRepo('src/build/prepare.mjs')]);
   writeFileSync(join(folder, 'sound.yaml'), sound);
   writeFileSync(
     join(folder, 'wrong.yaml'),
     sound.replace('0.2 m^3/s', '0.2 m^3/t').replace('at: 6 h', 'at: 60 h'),
   );
   writeFileSync(join(folder, 'data.csv'), 'a\n');
-}, 60_000);
+});
 afterAll(() => rmSync(folder, { recursive: true }));
 
 const files = (): string[] => readdirSync(folder).sort();
@@ -44,7 +43,9 @@ describe('the command', () => {
     expect({ code, out }).toEqual({ code: exits.refused, out: '' });
     expect(error.trimEnd().split('\n')).toEqual([
       expect.stringMatching(/^wrong\.yaml:\d+:\d+ feeds\.feed\.flow: expected a flow by volume/),
-      expect.stringMatching(/^wrong\.yaml:\d+:\d+ upsets\.0\.at: begins at 60 h, but the run ends at 24 h$/),
+      expect.stringMatching(
+        /^wrong\.yaml:\d+:\d+ upsets\.0\.at: begins at 60 h, but the run ends at 24 h; begin earlier or lengthen the horizon$/,
+      ),
     ]);
     expect(files()).toEqual(before);
   });
@@ -92,7 +93,7 @@ describe('the command', () => {
     expect({ code, out, error }).toEqual({
       code: exits.refused,
       out: '',
-      error: 'nope.yaml:1:1 there is no such file\n',
+      error: 'nope.yaml:1:1 there is no such file; upsettle new nope.yaml writes one to begin with\n',
     });
   });
 
@@ -100,7 +101,7 @@ describe('the command', () => {
     const before = files();
     const { code, out, error } = upsettle('run', 'sound.yaml', '--out', 'data.csv');
     expect({ code, out }).toEqual({ code: exits.usage, out: '' });
-    expect(error).toMatch(/^cannot make the folder data\.csv: .*data\.csv is a file\n$/);
+    expect(error).toMatch(/^cannot make the folder data\.csv: .*data\.csv is a file; write another --out\n$/);
     expect(files()).toEqual(before);
   });
 

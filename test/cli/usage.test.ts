@@ -95,6 +95,18 @@ describe('what is no scenario is exit 1', () => {
   });
 });
 
+describe('help', () => {
+  it('has an example for every verb', async () => {
+    const { out } = await upsettle('--help');
+    const verbs = [...out.matchAll(/^ {2}(\w+) (?:\[options\]|<file>)/gm)].map((m) => m[1]);
+    expect(verbs).toEqual(expect.arrayContaining(['new', 'check', 'run', 'steady', 'tune']));
+    for (const verb of [...verbs, 'schema'].filter((v) => v !== 'help')) {
+      const help = await upsettle(verb, '--help');
+      expect(help.out, verb).toMatch(new RegExp(`Examples?:\\n {2}upsettle ${verb}\\b`));
+    }
+  });
+});
+
 describe('questions about the command itself', () => {
   it('are answered on the screen', async () => {
     expect(await upsettle('--version')).toEqual({
@@ -106,9 +118,13 @@ describe('questions about the command itself', () => {
     expect(help).toMatchObject({ code: exits.done, error: '' });
     for (const option of ['--out', '--no-pictures', '--scale', '--integrator', '--tolerance', '--quiet'])
       expect(help.out).toContain(option);
+    const schema = await upsettle('schema');
+    expect(schema).toMatchObject({ code: exits.done, error: '' });
+    expect(JSON.parse(schema.out)).toMatchObject({ title: 'Upsettle scenario', type: 'object' });
     const greeting = await upsettle();
     expect(greeting).toMatchObject({ code: exits.done, error: '' });
-    for (const verb of ['check', 'steady', 'run', 'commission', 'rehearse'])
-      expect(greeting.out).toContain(`upsettle ${verb} scenarios/`);
+    for (const verb of ['new', 'check', 'run'])
+      expect(greeting.out).toContain(`  upsettle ${verb} my-plant.yaml `);
+    for (const verb of ['steady', 'commission', 'rehearse', 'tune']) expect(greeting.out).toContain(verb);
   });
 });

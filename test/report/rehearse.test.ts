@@ -178,7 +178,7 @@ describe('random plants', () => {
           if (!p.parts || p.parts({ result: r, map: null }).length > 0)
             expect(JSON.stringify(p.config({ result: r, map: null }).data)).not.toMatch(/undefined/);
       }),
-      { numRuns: 12, seed: 4 },
+      { numRuns: 12, seed: 4, endOnFailure: true },
     );
   }, 120_000);
 });

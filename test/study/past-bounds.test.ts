@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
-import { assemble } from '../../src/plant/assemble.ts';
 import { checkScreen } from '../../src/report/check-screen.ts';
 import type { Scenario } from '../../src/scenario/scenario.ts';
+import { check } from '../../src/study/check/check.ts';
 import type { RunResult } from '../../src/study/result.ts';
 import { run } from '../../src/study/run.ts';
 import { steady } from '../../src/study/steady.ts';
@@ -77,10 +77,10 @@ describe('what a mixer should not be', () => {
     );
     for (const e of twice.events) expect(e.time).toBeGreaterThan(HOUR);
     const still = open({}).replace('60 m^3/h', '120 m^3/h');
-    expect(checkScreen(assemble(fromText(still))).join('\n')).toMatch(
+    expect(checkScreen(check(fromText(still))).join('\n')).toMatch(
       /extraction\.1: the continuous phase, aqueous, is 20\.0 % of the mixer/,
     );
-    expect(checkScreen(assemble(fromText(open({})))).join('\n')).not.toMatch(/may invert/);
+    expect(checkScreen(check(fromText(open({})))).join('\n')).not.toMatch(/may invert/);
   });
 
   it('too slow to disperse is said, with the least speed of Skelland and Ramsay', () => {

@@ -30,7 +30,7 @@ function keepAt({ saveAt, saveState }: RunOptions, horizon: number): { keepAt?: 
   if (saveState === undefined) throw new Known('--save-at goes with --save-state', exits.usage);
   if ('wrong' in q) throw new Known(`--save-at: ${q.wrong}`, exits.usage);
   if (q.value < 0 || q.value > horizon)
-    throw new Known(`--save-at: the run ends at ${horizon / 3600} h`, exits.usage);
+    throw new Known(`--save-at: the run ends at ${horizon / 3600} h; choose a time before`, exits.usage);
   return { keepAt: q.value };
 }
 

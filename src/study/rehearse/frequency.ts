@@ -29,10 +29,12 @@ export interface FrequencyView {
 const POINTS = 61;
 const SHORTEST = 300;
 const LONGEST = 10 * 86400;
+/** Share of an output's scale that a swing as large as its input must move. */
+const NOTHING = 1e-9;
 /** A period at which a swing is as good as lasting: 3 years. */
 const LASTING = 1e8;
 
-/** For the first feed quantity that an upset changes, and the limit that matters; null where there is no such thing. */
+/** For the first feed quantity that an upset changes, and the limit that matters; null where there is no such thing, or the one does not hear of the other. */
 export function frequencyView(g: Ground, limit: number): FrequencyView | null {
   const { plant, scenario: s } = g;
   const { system, parameters } = plant;
@@ -57,6 +59,9 @@ export function frequencyView(g: Ground, limit: number): FrequencyView | null {
   const periods = Array.from({ length: POINTS }, (_, i) => SHORTEST * ratio ** (i / (POINTS - 1)));
   const points = periods.map(read);
   if (lasting === null || points.some((p) => p === null)) return null;
+  // A quantity that does not hear of the feed at all has digits for an answer.
+  const heard = NOTHING * system.outputs[output].scale;
+  if (!(lasting.ratio * system.inputs[input].scale > heard)) return null;
   const found = points as { ratio: number; angle: number }[];
   const base = plant.inputs[input];
   const { how } = change;

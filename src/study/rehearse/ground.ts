@@ -131,7 +131,9 @@ function runOn(
   };
   const run = integrateFrom(g, g.before, changes, to, settings, [keep], devices);
   if (run.stop.reason !== 'reached-end')
-    throw new Incomplete(`the run before the upset came to no end at ${run.time / 3600} h`);
+    throw new Incomplete(
+      `the run before the upset came to no end at ${run.time / 3600} h; run the scenario to see why`,
+    );
   return { time: to, state: run.state, modes, ...keptDevices(devices, to) };
 }
 

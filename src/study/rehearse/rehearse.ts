@@ -87,10 +87,21 @@ export function rehearse(
 ): RehearseResult {
   const missing = [
     ...(statedChanges(scenario).length === 0
-      ? [{ path: ['upsets'], message: 'a rehearsal needs an upset' }]
+      ? [
+          {
+            path: ['upsets'],
+            message: 'a rehearsal needs an upset; state one, such as {at: 1 h, change: feed.flow, by: +10 %}',
+          },
+        ]
       : []),
     ...(scenario.limits.length === 0
-      ? [{ path: ['limits'], message: 'a rehearsal needs a limit to be kept' }]
+      ? [
+          {
+            path: ['limits'],
+            message:
+              'a rehearsal needs a limit to be kept; state one, such as {keep: raffinate.copper, below: 0.6 g/L}',
+          },
+        ]
       : []),
   ];
   if (missing.length > 0) throw new Refusal(missing);

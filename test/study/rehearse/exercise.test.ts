@@ -137,12 +137,14 @@ describe('typed moves', () => {
   });
 
   it('stand in the scenario with its comments, and data files are found from the new folder', () => {
-    const text = '# mine\nupsets:\n  - {at: 1 h, change: a.b, follow: {file: plant.csv, column: "x"}}\n';
+    const text =
+      '# yaml-language-server: $schema=./scenario.schema.json\n# mine\nupsets:\n  - {at: 1 h, change: a.b, follow: {file: plant.csv, column: "x"}}\n';
     const made = withExercise(text, 'exercise', [{ time: 90, change: 'a.b', by: '+1 %' }], {
       from: '/plants/one',
       to: '/plants/out/x',
     });
     expect(made).toContain('# mine');
+    expect(made).toMatch(/^# yaml-language-server: \$schema=\.\.\/\.\.\/one\/scenario\.schema\.json\n/);
     expect(made).toContain('file: ../../one/plant.csv');
     expect(made).toMatch(
       /answers:\n {2}exercise:\n {4}start: 90 s\n {4}moves:\n {6}- change: a\.b\n {8}by: \+1 %/,
