@@ -169,6 +169,8 @@ export const settingNotes: Readonly<Record<string, Note>> = {
   'move.flow': ['a flow'],
   'move.low': ['least output'],
   'move.high': ['largest output'],
+  'move.flow_low': ['least flow that a ratio sets, without wild flow too', '0 m^3/h'],
+  'move.flow_high': ['most flow that a ratio sets; none where nothing is said'],
   'move.slew': ['fastest change of the output, or {up, down}'],
   'slew.up': ['fastest rise'],
   'slew.down': ['fastest fall'],

@@ -66,7 +66,10 @@ export class DeviceClock {
 
   /** Readings inside a step. */
   step(step: Step): void {
-    if (this.#devices.length === 0) return;
+    if (this.#devices.length > 0) this.#readings(step);
+  }
+
+  #readings(step: Step): void {
     const at = (t: number): F => {
       step.at(t, this.#x);
       this.#look(t, this.#x);

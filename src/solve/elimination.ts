@@ -15,6 +15,7 @@ export const TINY = 1e-300;
 export class Elimination implements Factors {
   readonly b: F;
   readonly r: F;
+  readonly worst: F = new Float64Array(1);
   readonly #pattern: Pattern;
   readonly #plan: EliminationPlan;
   #a: F = new Float64Array(0);
@@ -91,7 +92,7 @@ export class Elimination implements Factors {
     }
   }
 
-  measure(x: F): number {
+  measure(x: F): void {
     const { rowStart, column } = this.#pattern;
     const values = this.#a;
     let worst = 0;
@@ -108,6 +109,6 @@ export class Elimination implements Factors {
       // Math.max keeps a NaN, whatever the later rows say.
       worst = Math.max(worst, Math.abs(r) / (size + TINY));
     }
-    return worst;
+    this.worst[0] = worst;
   }
 }

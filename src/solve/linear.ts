@@ -14,8 +14,9 @@ export interface Factors {
   factor(values: F, shift: number): void;
   /** Solves in place: `x` holds b on entry. */
   solve(x: F): void;
-  /** Leaves b − W·x in r; returns the largest row-wise backward error, NaN where anything is no number. */
-  measure(x: F): number;
+  /** Leaves b − W·x in r, and the largest row-wise backward error in `worst`: NaN where anything is no number. */
+  measure(x: F): void;
+  readonly worst: F;
 }
 
 /** Row-wise backward error above which a solution is not taken as it is. A closure of 1e-9 needs some margin. */
@@ -45,7 +46,6 @@ export class LinearSolver {
   #values: F = new Float64Array(0);
   #shift = 0;
   readonly #b: F;
-  #worst = 0;
 
   constructor(pattern: Pattern, factors: Factors = new Elimination(pattern)) {
     this.#pattern = pattern;
@@ -90,13 +90,13 @@ export class LinearSolver {
       return true;
     }
     this.#fresh = false;
-    this.#measure(x);
-    if (this.#worst <= TRUSTED_ERROR) return true;
+    this.#fast.measure(x);
+    if (this.#fast.worst[0] <= TRUSTED_ERROR) return true;
     // With a right-hand side that is no number there is nothing to hold against the factors.
     if (!this.#b.every(Number.isFinite)) return true;
     this.#refine(x);
-    this.#measure(x);
-    if (this.#worst <= TRUSTED_ERROR) {
+    this.#fast.measure(x);
+    if (this.#fast.worst[0] <= TRUSTED_ERROR) {
       this.#mode = 'refined';
       return true;
     }
@@ -111,13 +111,9 @@ export class LinearSolver {
 
   #refine(x: F): void {
     this.work.refinements += 1;
-    this.#measure(x);
+    this.#fast.measure(x);
     const { r } = this.#fast;
     this.#fast.solve(r);
     for (let i = 0; i < x.length; i++) x[i] += r[i];
-  }
-
-  #measure(x: F): void {
-    this.#worst = this.#fast.measure(x);
   }
 }

@@ -13,6 +13,11 @@ const SHRINK = 0.2;
 const GROW = 6;
 /** After a trial that was no number or negative the error says nothing about the step: cut it hard. */
 const CUT = 0.25;
+/** Where the natural step and the error are kept. */
+const NATURAL = 0;
+const ERROR = 1;
+const AT = 2;
+const STEP = 3;
 /** Smallest step, relative to the time reached, below which t + h loses its digits; and its like at the very start. */
 const SMALLEST = 1e-13;
 
@@ -32,9 +37,11 @@ export class Rosenbrock implements Integrator {
   readonly #w: F;
   readonly #dw: F;
   #moving = false;
-  /** The step that the error would allow, kept over corners: a step cut short by a corner says nothing. */
-  #natural: number;
-  #error = 0;
+  /**
+   * The step that the error would allow, kept over corners (a step cut short by a corner says nothing), and the error of
+   * the last attempt. In an array: a field that is a number is a new object each time it is set.
+   */
+  readonly #kept: F;
 
   constructor(system: System, p: F, settings: Settings, table: Tableau) {
     const n = system.places.length;
@@ -51,7 +58,7 @@ export class Rosenbrock implements Integrator {
     this.#ft = new Float64Array(n);
     this.#w = new Float64Array(system.inputs.length);
     this.#dw = new Float64Array(system.inputs.length);
-    this.#natural = settings.firstStep;
+    this.#kept = Float64Array.of(settings.firstStep, 0, 0, 0);
   }
 
   advance({ from, to, inputs }: Stretch, x: F, onStep: OnStep): StretchEnd {
@@ -69,13 +76,17 @@ export class Rosenbrock implements Integrator {
       this.#prepare(t, x, inputs);
       for (;;) {
         const left = to - t;
-        const cut = this.#natural >= left * (1 - 1e-12);
-        const h = cut ? left : Math.min(this.#natural, left > 2 * this.#natural ? left : left / 2);
-        const verdict = this.#attempt(t, h, inputs);
+        const cut = this.#kept[NATURAL] >= left * (1 - 1e-12);
+        const h = cut
+          ? left
+          : Math.min(this.#kept[NATURAL], left > 2 * this.#kept[NATURAL] ? left : left / 2);
+        this.#kept[AT] = t;
+        this.#kept[STEP] = h;
+        const verdict = this.#attempt(inputs);
         if (verdict === 'accepted') {
-          const factor = Math.min(grow, Math.max(SHRINK, SAFETY * this.#error ** exponent));
+          const factor = Math.min(grow, Math.max(SHRINK, SAFETY * this.#kept[ERROR] ** exponent));
           // A step that a corner cut short may only raise the natural step, never lower it.
-          this.#natural = cut ? Math.max(this.#natural, h * factor) : h * factor;
+          this.#kept[NATURAL] = cut ? Math.max(this.#kept[NATURAL], h * factor) : h * factor;
           grow = GROW;
           work.steps += 1;
           dense.open(t, cut ? to : t + h);
@@ -91,12 +102,12 @@ export class Rosenbrock implements Integrator {
         grow = 1;
         if (verdict === 'error') {
           work.rejectedByError += 1;
-          this.#natural = h * Math.min(1, Math.max(SHRINK, SAFETY * this.#error ** exponent));
+          this.#kept[NATURAL] = h * Math.min(1, Math.max(SHRINK, SAFETY * this.#kept[ERROR] ** exponent));
         } else {
           if (verdict === 'negative') work.rejectedByNegative += 1;
           else if (verdict === 'not-finite') work.rejectedByNonFinite += 1;
           else work.rejectedBySingular += 1;
-          this.#natural = h * CUT;
+          this.#kept[NATURAL] = h * CUT;
         }
         if (this.#stuck(t, to - from)) return failed(this.#tooSmall(t, x, inputs, verdict));
       }
@@ -109,7 +120,7 @@ export class Rosenbrock implements Integrator {
   }
 
   #stuck(t: number, span: number): boolean {
-    return this.#natural < SMALLEST * Math.max(Math.abs(t), SMALLEST * span);
+    return this.#kept[NATURAL] < SMALLEST * Math.max(Math.abs(t), SMALLEST * span);
   }
 
   #tooSmall(time: number, x: F, inputs: Inputs, verdict: Exclude<Verdict, 'accepted'>): Stop {
@@ -176,21 +187,25 @@ export class Rosenbrock implements Integrator {
     }
   }
 
-  #attempt(t: number, h: number, inputs: Inputs): Verdict {
+  /** A step of the length, and from the time, that are kept. */
+  #attempt(inputs: Inputs): Verdict {
+    const t = this.#kept[AT];
+    const h = this.#kept[STEP];
     const table = this.#table;
     const stages = table.alpha.length;
     const bench = this.#bench;
     const stage = this.#work.x;
     const { trial, dx } = bench;
     this.#linear.factor(this.#work.a, 1 / (h * table.gamma));
-    const { relative } = this.#settings.tolerance;
+    bench.perStep[0] = 1 / h;
+    bench.relative[0] = this.#settings.tolerance.relative;
     const { rest } = bench;
     let done = 0;
     for (let i = 0; i < stages; i++) {
       bench.state(i);
       if (this.#moving) inputs.value(t + table.alpha[i] * h, this.#w);
       this.#system.rhs(trial, this.#w, this.#p, dx);
-      bench.slope(i, 1 / h);
+      bench.slope(i);
       if (this.#moving && table.d[i] !== 0) {
         const hd = h * table.d[i];
         const ft = this.#ft;
@@ -201,16 +216,16 @@ export class Rosenbrock implements Integrator {
       done += 1;
       // The first solution has been measured: the other stages need nobody to look at them.
       if (i === 0 && rest !== null && !this.#moving && this.#linear.trusted) {
-        rest(1 / h, relative);
+        rest();
         this.#linear.work.solves += stages - 1;
         break;
       }
     }
-    if (done === stages) bench.finish(relative);
+    if (done === stages) bench.finish();
     // An error of exactly zero (nothing moves) must not give an infinite next step.
-    this.#error = Math.max(bench.error[0], 1e-10);
-    if (!Number.isFinite(this.#error)) return this.#count(stages, 'not-finite');
-    if (this.#error > 1) return this.#count(stages, 'error');
+    this.#kept[ERROR] = Math.max(bench.error[0], 1e-10);
+    if (!Number.isFinite(this.#kept[ERROR])) return this.#count(stages, 'not-finite');
+    if (this.#kept[ERROR] > 1) return this.#count(stages, 'error');
     return this.#count(stages, bench.below[0] > 0 ? 'negative' : 'accepted');
   }
 
@@ -232,8 +247,7 @@ const failed = (stop: Stop): StretchEnd => ({ ended: 'failed', stop });
 
 /** The dense output of a step; its coefficients are formed when first asked for. */
 class DenseStep implements Step {
-  t0 = 0;
-  t1 = 0;
+  readonly #span = new Float64Array(2);
   readonly x1: F;
   readonly pausable = true;
   readonly #bench: StepBench;
@@ -244,9 +258,17 @@ class DenseStep implements Step {
     this.#bench = bench;
   }
 
+  get t0(): number {
+    return this.#span[0];
+  }
+
+  get t1(): number {
+    return this.#span[1];
+  }
+
   open(t0: number, t1: number): void {
-    this.t0 = t0;
-    this.t1 = t1;
+    this.#span[0] = t0;
+    this.#span[1] = t1;
     this.#formed = false;
   }
 

@@ -38,14 +38,17 @@ export interface StepBench {
   readonly point: F;
   /** trial = x + Σ aⱼuⱼ. */
   state(stage: number): void;
+  /** 1/h and the relative tolerance, for what follows: a number that is handed over is a new object each time. */
+  readonly perStep: F;
+  readonly relative: F;
   /** The stage vector = dx + (1/h)·Σ cⱼuⱼ. */
-  slope(stage: number, perStep: number): void;
+  slope(stage: number): void;
   /** Keeps the stage vector as uᵢ. */
   keep(stage: number): void;
   /** x₁ = trial + the stage vector, and the errors. */
-  finish(relative: number): void;
+  finish(): void;
   /** All stages but the first and `finish` in one go; null where the System is no machine code in the same memory. */
-  readonly rest: ((perStep: number, relative: number) => void) | null;
+  readonly rest: (() => void) | null;
   /** The largest scaled error, and how far the lowest place lies below its floor. */
   readonly error: F;
   readonly below: F;
@@ -235,8 +238,8 @@ function instance(made: Compiled, own: Region, table: Tableau, native: Native | 
     measure(v) {
       if (v !== x) x.set(v);
       measure();
-      return worst[0];
     },
+    worst,
     steps: stepBench(made, own, table, part, native && rest ? () => rest(base, native.base) : null),
   };
 }
@@ -252,7 +255,7 @@ function stepBench(
   const [states, slopes, keeps] = ['state', 'slope', 'keep'].map((what) =>
     stages.map((i) => part(`${what}${i}`)),
   );
-  const [finish, point] = [part('finish'), part('point')];
+  const point = part('point');
   const [perStep, relative, share] = [p.perStep, p.relative, p.share].map((at) => view(at, 1));
   // What pads the vectors is never judged.
   view(p.absolute, p.length).fill(Infinity);
@@ -280,22 +283,12 @@ function stepBench(
     error: view(p.error, 1),
     below: view(p.below, 1),
     state: (i) => states[i](),
-    slope(i, q) {
-      perStep[0] = q;
-      slopes[i]();
-    },
+    perStep,
+    relative,
+    slope: (i) => slopes[i](),
     keep: (i) => keeps[i](),
-    finish(by) {
-      relative[0] = by;
-      finish();
-    },
-    rest:
-      rest &&
-      ((q, by) => {
-        perStep[0] = q;
-        relative[0] = by;
-        rest();
-      }),
+    finish: part('finish'),
+    rest,
     dense: part('dense'),
     at(s) {
       share[0] = s;
