@@ -25,8 +25,8 @@ function theme() {
   const css = getComputedStyle(document.documentElement);
   const of = (name) => css.getPropertyValue(name).trim();
   return onPaper
-    ? { text: '#222222', grid: '#dddddd', back: '#ffffff' }
-    : { text: of('--text'), grid: of('--grid'), back: of('--back') };
+    ? { text: '#222222', grid: '#dddddd', back: '#ffffff', limit: '#B00020' }
+    : { text: of('--text'), grid: of('--grid'), back: of('--back'), limit: of('--limit') };
 }
 
 /** Black lines would vanish on a dark page. */
@@ -75,7 +75,7 @@ function panelChart(canvas, sheet, panel, hidden, range) {
       yMin: l.value,
       yMax: l.value,
       xMin: l.from,
-      borderColor: '#B00020',
+      borderColor: t.limit,
       borderWidth: 1.5,
       borderDash: [3, 3],
       label: {
@@ -83,7 +83,7 @@ function panelChart(canvas, sheet, panel, hidden, range) {
         content: l.label,
         position: 'end',
         backgroundColor: t.back,
-        color: '#B00020',
+        color: t.limit,
         padding: 2,
         font: { weight: 'bold' },
       },

@@ -53,6 +53,7 @@ export function page(c: PageContent, client: string): string {
     "form-action 'none'",
   ].join('; ');
   const data = embedded({ sheets: c.sheets, frames: c.frames });
+  const tabled = tables(c.summary);
   return `<!doctype html>
 <html lang="en">
 <head>
@@ -75,8 +76,8 @@ export function page(c: PageContent, client: string): string {
 ${keys(c.summary)}
 ${c.sheets.length > 0 ? '<h2>Over time</h2>' : ''}
 <div id="charts"></div>
-${pictures(c)}
-${tables(c.summary)}
+${pictures(c, script.length + data.length + c.scenario.length + tabled.length)}
+${tabled}
 <h2>Cautions</h2>
 <p class="caution">${escaped(cautions)}</p>
 <h2>Methods</h2>
@@ -99,12 +100,13 @@ function keys(summary: object): string {
   return `<dl class="key">${list.join('')}</dl>`;
 }
 
-/** Bytes of all pictures on a page at most; what goes beyond stands beside the page alone. */
-const MOST_BYTES = 700_000;
+/** Characters of a page at most, about: pictures that do not fit stand beside the page alone. */
+const LARGEST = 1_400_000;
 
-function pictures({ pictures: list, title }: PageContent): string {
+function pictures({ pictures: list, title }: PageContent, taken: number): string {
   if (list.length === 0) return '';
-  let left = MOST_BYTES;
+  // Four characters hold three bytes.
+  let left = (3 * (LARGEST - taken)) / 4;
   const figures = list.map(({ name, png }) => {
     if (png.length > left) return `<p>${escaped(name)} stands beside this page.</p>`;
     left -= png.length;

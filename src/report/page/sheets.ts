@@ -35,6 +35,8 @@ export function pageSheet(name: string, sheet: Sheet): PageSheet {
   const unit = timeUnit(sheet.span);
   const inUnit = (s: number): number => digits(s / unit.seconds);
   let style = 0;
+  // One and the same series looks alike in all panels, and is switched on and off in all of them.
+  const known = new Map<string, ReturnType<typeof lineStyle>>();
   return {
     name,
     title: sheet.title,
@@ -50,7 +52,8 @@ export function pageSheet(name: string, sheet: Sheet): PageSheet {
       weight: p.weight,
       limits: p.limits.map((l) => ({ ...l, from: inUnit(l.from) })),
       lines: p.lines.map((l) => {
-        const own = lineStyle(l.marks ? style - 1 : (l.style ?? style++));
+        const own = known.get(l.label) ?? lineStyle(l.marks ? style - 1 : (l.style ?? style++));
+        known.set(l.label, own);
         const data = l.marks ? l.data : thinned(l.data);
         return {
           label: l.label,

@@ -1,6 +1,6 @@
 /** The looks of the report page: light, dark, and on paper. */
-export const style = `:root{--text:#1c1c1c;--soft:#555;--back:#fff;--box:#f5f5f2;--grid:#e2e2e2;--line:#c9c9c4;--accent:#00558a}
-@media (prefers-color-scheme:dark){:root{--text:#ececec;--soft:#b5b5b5;--back:#17191b;--box:#22262a;--grid:#383d42;--line:#4a5056;--accent:#7cc4f0}}
+export const style = `:root{--text:#1c1c1c;--soft:#555;--back:#fff;--box:#f5f5f2;--grid:#e2e2e2;--line:#c9c9c4;--accent:#00558a;--limit:#B00020}
+@media (prefers-color-scheme:dark){:root{--text:#ececec;--soft:#b5b5b5;--back:#17191b;--box:#22262a;--grid:#383d42;--line:#4a5056;--accent:#7cc4f0;--limit:#ff8a94}}
 *{box-sizing:border-box}
 body{margin:0 auto;max-width:1180px;padding:1.2rem 1.4rem 3rem;background:var(--back);color:var(--text);font:15px/1.45 system-ui,"DejaVu Sans",sans-serif}
 h1{font-size:1.55rem;margin:.2rem 0}h2{font-size:1.2rem;margin:2rem 0 .6rem;border-bottom:1px solid var(--line);padding-bottom:.2rem}h3{font-size:1.02rem;margin:.2rem 0}

@@ -48,15 +48,22 @@ const NO_KEYS = new Set([
   'upsettle_version',
 ]);
 
-/** Single figures of a summary. */
-export function keyFigures(
-  summary: object,
-): { readonly name: string; readonly key: string; readonly value: Cell }[] {
-  return Object.entries(summary).flatMap(([key, value]) =>
-    NO_KEYS.has(key) || !isCell(value) || value === null || value === ''
-      ? []
-      : [{ name: words(key), key, value }],
-  );
+/** Parts whose own figures are the answer. */
+const ANSWERS = new Set(['tuned', 'standard', 'nothing']);
+
+export interface KeyFigure {
+  readonly name: string;
+  readonly key: string;
+  readonly value: Cell;
+}
+
+/** Single figures of a summary, those of the parts that hold the answer included. */
+export function keyFigures(summary: object): KeyFigure[] {
+  return Object.entries(summary).flatMap(([key, value]): KeyFigure[] => {
+    if (ANSWERS.has(key) && isRecord(value)) return keyFigures(value);
+    if (NO_KEYS.has(key) || !isCell(value) || value === null || value === '') return [];
+    return [{ name: words(key), key, value }];
+  });
 }
 
 /** Every list of a summary whose members have figures of their own, and every part of it that holds figures alone. */
